@@ -1,0 +1,5 @@
+"""Run the command line with ``python -m chainflow``."""
+
+from chainflow.cli import main
+
+main()

@@ -1,0 +1,47 @@
+"""Which line carries how much, and what crosses the plant's border? Helpers of the other accounts.
+
+SI throughout. A material outlet has one line, and what a product takes comes from outlets that
+offer, so the flow of such a line is the flow of its outlet.
+"""
+
+from __future__ import annotations
+
+from chainflow.equipment.base import Equipment
+from chainflow.equipment.ports import Flow, Heat
+from chainflow.flowsheet.network import Line
+from chainflow.solver.solution import SolvedStream, Solution
+from chainflow.thermo.streams import Stream
+
+
+class Flows:
+    """Finds what leaves each outlet of a solution."""
+
+    def __init__(self, solution: Solution) -> None:
+        self._by_key = {stream.key: stream for stream in solution.streams}
+
+    def on(self, line: Line) -> Flow | None:
+        """Return what passes a line from an outlet that offers; None if nothing was solved."""
+        found = self._by_key.get(line.start)
+        return None if found is None else found.flow
+
+    def material(self, line: Line) -> Stream | None:
+        """Return the matter on a line, or None if it carries something else."""
+        flow = self.on(line)
+        return flow if isinstance(flow, Stream) else None
+
+
+def rate_of(flow: Flow) -> float:
+    """Return the energy flow [W] of power, light or heat; zero for matter."""
+    if isinstance(flow, Stream):
+        return 0.0
+    return flow.rate if isinstance(flow, Heat) else float(flow)
+
+
+def piece_of(solution: Solution, name: str) -> Equipment:
+    """Return the equipment of that name."""
+    return solution.flowsheet.equipment[name]
+
+
+def leaving(solution: Solution, name: str) -> list[SolvedStream]:
+    """Return all that leaves a piece of equipment, linked or not."""
+    return [stream for stream in solution.streams if stream.source == name]

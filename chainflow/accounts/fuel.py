@@ -1,0 +1,179 @@
+"""How much fuel does the plant make, and how much of it is still there when it is used?
+
+Energy [W] on the three bases of `Worth`. The lines of a plant fall into a making part and a using
+part, and the cut between them is found from the graph:
+
+* A *fuel line* carries matter whose lower heating value is at least half of its exergy. Flue gas
+  with a trace of CO, oxygen and condensate are none.
+* Following fuel lines downstream from a line, through all that does not make things (valves,
+  compressors, stores, condensers, separators, ...), one ends at makers (equipment with chemistry),
+  at products, at vents, or at burners and engines. A burner or engine is a *use* if energy or
+  matter goes on from it to a product, a grid's surplus or an outlet of power without a line:
+  matter may go on as anything, heat as heat or power, power as power only, none of it through a
+  maker. So hydrogen that is burnt to run the plant's own electrolyser is not fuel made.
+* A line is *final* if it reaches a use and no maker.
+
+*Fuel made* is what passes the final lines that leave the making part: their sender is a maker, or
+also gets fuel lines that are not final, or gets none. What a supply sends is bought, not made.
+*Fuel kept* is what leaves the last stores before the uses or, where there is no store on the way,
+what arrives at the uses. Every line counts once; lines that lead to vents only do not count.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator
+from dataclasses import dataclass
+
+from chainflow.accounts.border import Flows, rate_of
+from chainflow.accounts.worth import Worth, of_material
+from chainflow.equipment.base import Equipment
+from chainflow.equipment.boundary import Product, Supply
+from chainflow.equipment.power import Grid
+from chainflow.equipment.stores import Store
+from chainflow.flowsheet.network import Line
+from chainflow.solver.solution import Solution
+
+FUEL_SHARE = 0.5  # least LHV per exergy of a fuel line; our own convention
+_GOES_ON = {  # what may leave equipment that was entered by a line of this content
+    "material": ("material", "heat", "power"),
+    "heat": ("heat", "power"),
+    "power": ("power",),
+    "light": (),
+}
+
+
+@dataclass(frozen=True, slots=True)
+class FuelLines:
+    """Lines of the two cuts, by the sending port."""
+
+    made: tuple[str, ...]
+    kept: tuple[str, ...]
+
+
+def fuel_lines(solution: Solution) -> FuelLines:
+    """Return which lines carry the fuel made and the fuel kept."""
+    search = _Search(solution)
+    return FuelLines(
+        made=tuple(line.start for line in search.made()),
+        kept=tuple(line.start for line in search.kept()),
+    )
+
+
+def worth_of_lines(solution: Solution, keys: tuple[str, ...]) -> Worth:
+    """Return the worth of the matter that leaves the named ports."""
+    wanted = set(keys)
+    found = [stream.flow for stream in solution.streams if stream.key in wanted]
+    return Worth.total(of_material(flow) for flow in found if not isinstance(flow, float) and hasattr(flow, "lhv"))
+
+
+class _Search:
+    """Walks the graph of one solution."""
+
+    def __init__(self, solution: Solution) -> None:
+        self.solution = solution
+        self.flowsheet = solution.flowsheet
+        flows = Flows(solution)
+        self.fuel = [line for line in self.flowsheet.lines if _is_fuel(flows, line)]
+        self.final = [line for line in self.fuel if self._is_final(line)]
+
+    def made(self) -> list[Line]:
+        """Return the final lines that leave the making part."""
+        return [line for line in self.final if self._leaves_making(line)]
+
+    def kept(self) -> list[Line]:
+        """Return the lines that leave the last stores, or arrive at uses without a store."""
+        kept: dict[int, Line] = {}
+        for line in self.final:
+            if self._is_use(line.target):
+                origin = self._stored(line, frozenset())
+                kept |= {found.number: found for found in origin or (line,)}
+        return list(kept.values())
+
+    def _piece(self, name: str) -> Equipment:
+        return self.flowsheet.equipment[name]
+
+    def _from(self, name: str) -> Iterator[Line]:
+        return (line for line in self.fuel if line.source == name)
+
+    def _is_final(self, start: Line) -> bool:
+        """Whether fuel lines lead from here to a use and to no maker."""
+        seen, queue, useful = {start.target}, [start.target], False
+        while queue:
+            name = queue.pop()
+            if self._is_use(name):
+                useful = True
+                continue
+            piece = self._piece(name)
+            if piece.makes:
+                if not piece.burns:
+                    return False
+                continue
+            for line in self._from(name):
+                if line.target not in seen:
+                    seen.add(line.target)
+                    queue.append(line.target)
+        return useful
+
+    def _is_use(self, name: str) -> bool:
+        piece = self._piece(name)
+        return isinstance(piece, Product) or (piece.burns and self._delivers(name))
+
+    def _delivers(self, name: str) -> bool:
+        """Whether anything useful comes of what leaves a burner or engine."""
+        lines = list(self.flowsheet.out_of(name))
+        seen = {line.number for line in lines}
+        if self._gives_power_away(name):
+            return True
+        while lines:
+            line = lines.pop()
+            target = self._piece(line.target)
+            if isinstance(target, Product) or (isinstance(target, Grid) and line.content == "power"):
+                return True
+            if target.makes and not target.burns:
+                continue
+            if self._gives_power_away(line.target) and line.content != "light":
+                return True
+            for onward in self.flowsheet.out_of(line.target):
+                if onward.number not in seen and onward.content in _GOES_ON[line.content]:
+                    seen.add(onward.number)
+                    lines.append(onward)
+        return False
+
+    def _gives_power_away(self, name: str) -> bool:
+        return any(
+            stream.source == name and stream.content == "power" and not stream.targets
+            and rate_of(stream.flow) > 0.0
+            for stream in self.solution.streams
+        )
+
+    def _leaves_making(self, line: Line) -> bool:
+        piece = self._piece(line.source)
+        if piece.makes:
+            return True
+        arriving = [other for other in self.fuel if other.target == line.source]
+        if not arriving:
+            return bool(self.flowsheet.into(line.source)) and not isinstance(piece, Supply)
+        return any(other not in self.final for other in arriving)
+
+    def _stored(self, line: Line, seen: frozenset[str]) -> tuple[Line, ...] | None:
+        """Return the store outlets that all of a line comes from; None if some comes from none."""
+        if isinstance(self._piece(line.source), Store):
+            return (line,)
+        if self._leaves_making(line) or line.source in seen:
+            return None
+        found: dict[int, Line] = {}
+        for other in self.final:
+            if other.target == line.source:
+                origin = self._stored(other, seen | {line.source})
+                if origin is None:
+                    return None
+                found |= {one.number: one for one in origin}
+        return tuple(found.values()) or None
+
+
+def _is_fuel(flows: Flows, line: Line) -> bool:
+    stream = flows.material(line)
+    if stream is None:
+        return False
+    worth = of_material(stream)
+    return worth.lhv > 0.0 and worth.lhv >= FUEL_SHARE * worth.exergy

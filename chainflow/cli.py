@@ -1,0 +1,292 @@
+"""The command line: thin commands that read, call the library and print.
+
+Exit codes: 0 solved, 1 the file is wrong, 2 wrong usage, 3 no steady state, 4 a file cannot be
+read or written, 70 a bug of ours, 130 interrupted. Answers go to stdout, everything else to
+stderr.
+"""
+
+from __future__ import annotations
+
+import functools
+import os
+import sys
+from collections.abc import Callable, Iterable
+from pathlib import Path
+from typing import TYPE_CHECKING, Annotated, Any
+
+import typer
+
+from chainflow import __version__
+from chainflow.basis.faults import ChainflowError, Fault, FlowsheetFault, UsageFault
+
+if TYPE_CHECKING:
+    from chainflow.flowsheet.network import Flowsheet
+    from chainflow.solver.solution import Solution
+
+BUG = 70
+INTERRUPTED = 130
+STDOUT = "-"
+
+app = typer.Typer(
+    name="chainflow",
+    help="Steady-state balances of sun-to-fuel chains: one flowsheet file in, one closed balance out.",
+    no_args_is_help=True,
+    add_completion=False,
+    pretty_exceptions_enable=False,
+    rich_markup_mode=None,
+    context_settings={"help_option_names": ["-h", "--help"]},
+)
+
+FileArgument = Annotated[Path, typer.Argument(metavar="FILE", help="Flowsheet file (YAML).")]
+SetOption = Annotated[
+    list[str] | None,
+    typer.Option(
+        "--set",
+        metavar="NAME=VALUE",
+        help="Give a knob or a setting another value; may be repeated: --set sun='600 W/m2'.",
+    ),
+]
+
+
+def main() -> None:
+    """Run the command line and leave with its exit code."""
+    try:
+        app()
+    except KeyboardInterrupt:
+        sys.exit(INTERRUPTED)
+
+
+def reported(command: Callable[..., None]) -> Callable[..., None]:
+    """Turn everything that goes wrong in a command into a sentence and an exit code."""
+
+    @functools.wraps(command)
+    def wrapped(*args: Any, **kwargs: Any) -> None:
+        try:
+            command(*args, **kwargs)
+            sys.stdout.flush()
+        except typer.Exit:
+            raise
+        except BrokenPipeError:
+            _leave_quietly()
+        except KeyboardInterrupt:
+            _say("interrupted")
+            raise typer.Exit(INTERRUPTED) from None
+        except FlowsheetFault as problem:
+            _say_faults(problem.faults, kwargs.get("file"))
+            raise typer.Exit(problem.exit_code) from None
+        except ChainflowError as problem:
+            _say(str(problem))
+            raise typer.Exit(problem.exit_code) from None
+        except Exception as problem:  # noqa: BLE001 - the outermost frame: whatever gets here is a bug
+            _say_bug(problem)
+            raise typer.Exit(BUG) from None
+
+    return wrapped
+
+
+def _version(asked: bool) -> None:
+    if asked:
+        typer.echo(f"chainflow {__version__}")
+        raise typer.Exit
+
+
+@app.callback()
+def common(
+    version: Annotated[
+        bool,
+        typer.Option("--version", callback=_version, is_eager=True, help="Print the version."),
+    ] = False,
+) -> None:
+    """Steady-state balances of sun-to-fuel chains: one flowsheet file in, one closed balance out."""
+
+
+@app.command()
+@reported
+def solve(
+    file: FileArgument,
+    json: Annotated[
+        str | None,
+        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
+    ] = None,
+    csv: Annotated[
+        Path | None,
+        typer.Option("--csv", metavar="DIR", help="Write streams, equipment, duties, plant as CSV."),
+    ] = None,
+    set_: SetOption = None,
+    quiet: Annotated[bool, typer.Option("--quiet", help="Print no answer, only errors.")] = False,
+) -> None:
+    """Close the balance of a flowsheet and print the answer.
+
+    First the efficiencies, what is returned, bought and delivered, then every stream, then
+    idealisations and cautions.
+    """
+    overrides = _overrides(set_)
+    _check_outputs(json, csv)
+    solution = _solved(file, overrides, json)
+    for remark in solution.remarks:
+        _say(f"remark: {remark}")
+    _write(solution, json, csv)
+    if not quiet and json != STDOUT:
+        from chainflow.report.printed import print_answer
+
+        print_answer(solution)
+
+
+@app.command()
+@reported
+def check(file: FileArgument, set_: SetOption = None) -> None:
+    """Check a flowsheet without solving it: who sets each amount, and which loops there are."""
+    from chainflow.flowsheet.building import read_flowsheet
+    from chainflow.report.checked import print_check
+    from chainflow.solver.solve import inspect
+
+    flowsheet = read_flowsheet(file, _overrides(set_))
+    for remark in flowsheet.remarks:
+        _say(f"remark: {remark}")
+    print_check(flowsheet, inspect(flowsheet))
+
+
+@app.command()
+@reported
+def kinds(
+    kind: Annotated[str | None, typer.Argument(metavar="KIND", help="One kind in full.")] = None,
+) -> None:
+    """List the kinds of equipment, or print one in full."""
+    from chainflow.basis.names import shorten, suggest
+    from chainflow.equipment.register import kinds as known_kinds
+    from chainflow.report.kinds import print_kind, print_kinds
+    from chainflow.report.plain import console
+
+    known = known_kinds()
+    if kind is None:
+        print_kinds(console(), known)
+    elif kind in known:
+        print_kind(console(), known[kind])
+    else:
+        hint = suggest(kind, known) or f"; known: {', '.join(known)}"
+        raise UsageFault(f"there is no kind {shorten(kind)}{hint}")
+
+
+@app.command()
+@reported
+def schema() -> None:
+    """Print the JSON Schema of flowsheet files, for editors."""
+    import json
+
+    from chainflow.flowsheet.schema import json_schema
+
+    typer.echo(json.dumps(json_schema(), indent=1))
+
+
+def _overrides(given: Iterable[str] | None) -> dict[str, str]:
+    """Read ``name=value`` pairs."""
+    found: dict[str, str] = {}
+    for text in given or ():
+        name, equals, value = text.partition("=")
+        if not equals or not name.strip() or not value.strip():
+            from chainflow.basis.names import shorten
+
+            raise UsageFault(f"--set {shorten(text)}: wanted NAME=VALUE, as in --set sun='600 W/m2'")
+        found[name.strip()] = value.strip()
+    return found
+
+
+def _check_outputs(json: str | None, csv: Path | None) -> None:
+    """Refuse what cannot be written before any work is done."""
+    if json not in (None, STDOUT) or csv is not None:
+        from chainflow.report.writing import check_directory, check_writable
+
+        if json not in (None, STDOUT):
+            check_writable(Path(str(json)))
+        if csv is not None:
+            check_directory(csv)
+
+
+def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution:
+    """Read and solve; a wrong file or a missing steady state is also written as JSON."""
+    from chainflow.flowsheet.building import read_flowsheet
+    from chainflow.solver.solve import solve_flowsheet
+
+    flowsheet: Flowsheet | None = None
+    try:
+        flowsheet = read_flowsheet(file, overrides)
+        return solve_flowsheet(flowsheet)
+    except ChainflowError as problem:
+        if json is not None and problem.exit_code in (1, 3):
+            _write_failure(file, problem, flowsheet, json)
+        raise
+
+
+def _write_failure(
+    file: Path, problem: ChainflowError, flowsheet: Flowsheet | None, json: str
+) -> None:
+    from chainflow.report.document import faults_document, problem_document, to_json
+
+    if isinstance(problem, FlowsheetFault):
+        found = faults_document(file, problem.faults)
+    else:
+        found = problem_document(file, problem, flowsheet)
+    _write_json(to_json(found), json)
+
+
+def _write(solution: Solution, json: str | None, csv: Path | None) -> None:
+    """Write the files that are asked for; all texts are made before the first is written."""
+    from chainflow.report.writing import write_all
+
+    text = None
+    if json is not None:
+        from chainflow.report.document import document, to_json
+
+        text = to_json(document(solution))
+    if csv is not None:
+        from chainflow.report.csv_files import csv_texts
+
+        write_all(csv, csv_texts(solution))
+    if json is not None and text is not None:
+        _write_json(text, json)
+
+
+def _write_json(text: str, json: str) -> None:
+    if json == STDOUT:
+        sys.stdout.write(text)
+        return
+    from chainflow.report.writing import write_whole
+
+    write_whole(Path(json), text)
+
+
+def _say(text: str) -> None:
+    """Print to stderr, one safe line for each line of text."""
+    from chainflow.report.plain import encoding_of, printable
+
+    encoding = encoding_of(sys.stderr)
+    for line in text.splitlines() or [""]:
+        typer.echo(f"chainflow: {printable(line, encoding)}", err=True)
+
+
+def _say_faults(faults: Iterable[Fault], file: Path | None) -> None:
+    for fault in faults:
+        where = "" if fault.place is None else f"{file}:{fault.place}: "
+        _say(f"{where}{fault.text}")
+
+
+def _say_bug(problem: Exception) -> None:
+    if os.environ.get("CHAINFLOW_DEBUG"):
+        import traceback
+
+        traceback.print_exception(problem)
+    name = type(problem).__name__
+    first = str(problem).partition("\n")[0]
+    _say(
+        f"a bug of ours (please report): {name}: {first} "
+        "[CHAINFLOW_DEBUG=1 prints where it happened]"
+    )
+
+
+def _leave_quietly() -> None:
+    """The reader of our output has gone: say nothing, also not when Python flushes at its end."""
+    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+
+
+if __name__ == "__main__":
+    main()

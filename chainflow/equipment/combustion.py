@@ -1,0 +1,438 @@
+"""Burning: burner and engine, with the oxidiser they ask for.
+
+SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat and power [W].  The oxidiser is
+called so that the oxygen of all inlets together is (1 + excess) times what their combustibles need.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import dataclass
+from typing import Any, ClassVar, Literal
+
+import numpy as np
+from pydantic import Field, model_validator
+from pydantic_core import PydanticCustomError
+
+from chainflow.basis.quantities import HeatingValueShare, Temperature, quantity
+from chainflow.equipment.base import (
+    HEAT_PORTS, Array, Caution, Duty, Equipment, Flow, Outcome, Port, Role, Site, material,
+)
+from chainflow.equipment.junctions import joined, spread_faults
+from chainflow.equipment.ports import Feeds, arriving
+from chainflow.thermo.components import Matter
+from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
+from chainflow.thermo.flames import flame_temperature
+from chainflow.thermo.streams import Stream, enthalpy_slopes
+
+Excess = quantity("1", ge=0.0, le=20.0)
+_MOST_STEPS = 60
+
+
+def oxygen_demand(matter: Matter) -> Array:
+    """Oxygen needed to burn one mol of each component [mol/mol]; zero for what does not burn."""
+    atoms = {element: matter.formula[row] for row, element in enumerate(matter.elements)}
+    zero = np.zeros(len(matter.components))
+    demand = atoms.get("C", zero) + 0.25 * atoms.get("H", zero) - 0.5 * atoms.get("O", zero)
+    return np.where(matter.lhv > 0.0, demand, 0.0)
+
+
+def burnt(matter: Matter) -> Array:
+    """What complete combustion makes of each component, columns by component, oxygen negative."""
+    result = np.eye(len(matter.components))
+    demand = oxygen_demand(matter)
+    atoms = {element: matter.formula[row] for row, element in enumerate(matter.elements)}
+    for place in np.flatnonzero(matter.lhv > 0.0):
+        column = np.zeros(len(matter.components))
+        for product, element, per_atom in (("CO2", "C", 1.0), ("H2O", "H", 0.5), ("N2", "N", 0.5)):
+            count = float(atoms[element][place]) if element in atoms else 0.0
+            if count:
+                column[matter.index[product]] += per_atom * count
+        column[matter.index["O2"]] -= demand[place]
+        result[:, place] = column
+    return result
+
+
+@dataclass(frozen=True, slots=True)
+class Oxygen:
+    """Linear oxygen balance: weights whose sum over what enters is zero at the wanted excess."""
+
+    weights: Array  # per component, (1 + excess) * demand - oxygen
+
+    @staticmethod
+    def at(excess: float, matter: Matter) -> Oxygen:
+        weights = (1.0 + excess) * oxygen_demand(matter)
+        weights[matter.index["O2"]] -= 1.0
+        return Oxygen(weights)
+
+
+class _Combustion(Equipment):
+    """Common part of burner and engine."""
+
+    family: ClassVar[str] = "combustion"
+    makes: ClassVar[bool] = True
+    burns: ClassVar[bool] = True
+
+    excess: Excess = Field(0.0, description="oxygen beyond what is needed, counting oxygen already there")  # type: ignore[valid-type] # a type made by a function
+
+    def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
+        wanted = {"O2", "H2O"} | ({"CO2"} if "C" in matter.elements else set()) | (
+            {"N2"} if any(matter.formula[matter.elements.index("N")][matter.lhv > 0]) else set()
+            if "N" in matter.elements else set()
+        )
+        missing = sorted(wanted - set(matter.components))
+        if missing:
+            yield ("kind",), f"combustion needs {', '.join(missing)} among the components"
+
+    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
+        return spread_faults(inlets)
+
+    def destinations(
+        self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
+    ) -> Iterable[tuple[str, str]]:
+        place = matter.index[species]
+        made = {species} | {
+            name for name in ("H2O", "CO2", "N2")
+            if matter.lhv[place] > 0.0 and name in matter.index
+            and ((matter.formula[:, matter.index[name]] > 0) & (matter.formula[:, place] > 0) & _not_oxygen(matter)).any()
+        }
+        if matter.lhv[place] > 0.0:
+            made |= self._left_in_flue(species, matter)
+        if species == "O2":
+            made |= {n for n in ("H2O", "CO2") if n in matter.index}
+        return [(o, name) for o in outlets for name in matter.components if name in made]
+
+    def _left_in_flue(self, species: str, matter: Matter) -> set[str]:
+        return set()
+
+    def _inlets(self, feeds: Feeds) -> dict[str, list[Stream]]:
+        ports = ("fuel", "oxidiser", "moderator")
+        return {p: [f for f in arriving(feeds, p) if isinstance(f, Stream)] for p in ports}
+
+
+def _not_oxygen(matter: Matter) -> Array:
+    return np.array([element != "O" for element in matter.elements])
+
+
+def _oxidiser_needed(oxygen: Oxygen, given: list[Stream], oxidiser: Stream) -> tuple[float, dict[str, str]]:
+    """Amount [mol/s] of oxidiser for what is given, and why there is none."""
+    need = float(sum(oxygen.weights @ s.flows for s in given))
+    brings = -float(oxygen.weights @ oxidiser.flows)
+    if brings <= 1e-9:
+        return 0.0, ({"oxidiser": "what is served at 'oxidiser' brings no oxygen"} if need > 0.0 else {})
+    amount = need / brings
+    scale = float(sum(np.abs(oxygen.weights) @ s.flows for s in given))
+    if need < -1e-9 * scale and need < 0.0:
+        text = f"overfull: the other inlets already bring {-amount:.6g} mol/s of oxidiser more than the excess allows"
+        return 0.0, {"oxidiser": text}
+    return max(amount, 0.0), {}
+
+
+class Burner(_Combustion):
+    """Burns fuel with the oxidiser it asks for; adiabatic unless a temperature is given.
+
+    `flue_temperature` makes it ask at `moderator` for what keeps the flame at that temperature.
+    """
+
+    kind: ClassVar[str] = "burner"
+    gives: ClassVar[tuple[str, ...]] = ("adiabatic_temperature_K", "flame_temperature_K")
+    ports: ClassVar[tuple[Port, ...]] = (
+        Port("fuel", "material", Role.TAKES, many=True, main=True, means="what burns"),
+        Port("oxidiser", "material", Role.CALLS, means="air or oxygen"),
+        Port("moderator", "material", Role.TAKES, many=True, optional=True, means="what keeps the flame cooler"),
+        HEAT_PORTS[2],
+        Port("flue", "material", Role.OFFERS, main=True, means="the flue gas"),
+    )
+    formulas: ClassVar[tuple[str, ...]] = (
+        "O2 of all inlets = (1 + excess) * O2 needed by all combustibles",
+        "equilibrium: minimum of the Gibbs energy of the flowsheet's components at the temperature that closes energy",
+        "flame_temperature: the same with radicals (O, H, OH, NO, ...)",
+    )
+    sources: ClassVar[tuple[str, ...]] = (
+        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) as shipped with Cantera",
+    )
+
+    model: Literal["equilibrium", "complete"] = Field("equilibrium", description="what the flue holds")
+    temperature: Temperature | None = Field(None, description="flue temperature; the heat is given off")
+    flue_temperature: Temperature | None = Field(None, description="flue temperature kept by the moderator that is asked for")
+    requench: Temperature | None = Field(None, description="temperature down to which equilibrium holds when the flue is cooled")
+
+    @model_validator(mode="after")
+    def _one_temperature(self) -> Burner:
+        if self.temperature is not None and self.flue_temperature is not None:
+            raise PydanticCustomError("burner", "'temperature' and 'flue_temperature' are both given, wanted one of them", {})
+        if self.model == "complete" and self.requench is not None:
+            raise PydanticCustomError("burner", "'requench' goes with model: equilibrium, complete combustion leaves nothing to requench", {})
+        return self
+
+    def port_list(self) -> tuple[Port, ...]:
+        if self.flue_temperature is None:
+            return self.ports
+        called = Port("moderator", "material", Role.CALLS, means="what keeps the flame at `flue_temperature`")
+        return tuple(called if port.name == "moderator" else port for port in self.ports)
+
+    def _left_in_flue(self, species: str, matter: Matter) -> set[str]:
+        """At flame temperature everything of the same elements is there in traces."""
+        if self.model == "complete":
+            return set()
+        place = matter.index[species]
+        shared = ((matter.formula > 0) & (matter.formula[:, [place]] > 0)).any(axis=0)
+        return {name for name, there in zip(matter.components, shared, strict=True) if there}
+
+    def destinations(
+        self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
+    ) -> Iterable[tuple[str, str]]:
+        if self.model == "complete":
+            return super().destinations(inlet, species, outlets, matter)
+        made = self._left_in_flue(species, matter)
+        return [(o, name) for o in outlets for name in matter.components if name in made]
+
+    def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
+        fire = self._fire(feeds, site)
+        flue, heat = self._flue(fire, site)
+        needs = [Duty.between("combustion", heat, fire.adiabatic, float(flue.temperature))]
+        duties, _, drawn, given = self.settle(needs, site)
+        drawn |= fire.drawn
+        outlets: dict[str, Flow] = {"flue": flue, **given}
+        results, cautions = self._report(fire, flue, site) if site.detail else ({}, ())
+        return Outcome(outlets, drawn, duties, results=results, cautions=cautions, unmet=fire.unmet)
+
+    def _fire(self, feeds: Feeds, site: Site) -> _Fire:
+        inlets = self._inlets(feeds)
+        oxygen = Oxygen.at(self.excess, site.matter)
+        (oxidiser,) = inlets["oxidiser"]
+        if self.flue_temperature is not None:
+            (moderator,) = inlets["moderator"]
+            return _moderated(self, inlets["fuel"], oxidiser, moderator, oxygen, site)
+        given = [*inlets["fuel"], *inlets["moderator"]]
+        amount, unmet = _oxidiser_needed(oxygen, given, oxidiser)
+        entering = [*given, oxidiser.scaled(amount)]
+        return _Fire.of(self, entering, {"oxidiser": amount}, unmet, site)
+
+    def flue_of(self, flows: Array, level: float, pressure: float, matter: Matter) -> tuple[Array, Array]:
+        """Composition of the flue at a temperature, and its slopes by what enters."""
+        if self.model == "complete" or not flows.any():
+            conversion = burnt(matter)
+            return np.maximum(conversion @ flows, 0.0), conversion
+        found = equilibrate(matter, flows, level, pressure)
+        return found.flows, found.by_feed
+
+    def _flue(self, fire: _Fire, site: Site) -> tuple[Stream, float]:
+        """The flue and the heat into the burner (zero if adiabatic)."""
+        matter, pressure = site.matter, fire.pressure
+        if self.temperature is None or not fire.flows.any():
+            level = fire.adiabatic
+            if self.requench is not None and level > self.requench and fire.flows.any():
+                flows, _ = self.flue_of(fire.flows, self.requench, pressure, matter)
+            else:
+                flows = fire.burnt
+            return Stream.from_enthalpy(matter, flows, fire.enthalpy, pressure, level), 0.0
+        frozen = max(self.temperature, min(self.requench or 0.0, fire.adiabatic))
+        flows, _ = self.flue_of(fire.flows, frozen, pressure, matter)
+        flue = Stream.at(matter, flows, self.temperature, pressure)
+        return flue, float(flue.enthalpy) - fire.enthalpy
+
+    def _report(self, fire: _Fire, flue: Stream, site: Site) -> tuple[dict[str, float], tuple[Caution, ...]]:
+        results = {"adiabatic_temperature_K": fire.adiabatic}
+        if not fire.flows.any():
+            return results, ()
+        hottest = flame_temperature(site.matter, fire.flows, fire.enthalpy, fire.pressure)
+        results["flame_temperature_K"] = hottest
+        cautions = []
+        if hottest > 1900.0:
+            text = f"flame at {hottest:.0f} K: above 1900 K refractories and nitrogen oxides need care; more moderator or excess cools it"
+            cautions.append(Caution("hot-flame", text))
+        left = float(flue.lhv)
+        burnt_lhv = float(fire.flows @ site.matter.lhv)
+        if burnt_lhv > 0.0 and left > 1e-3 * burnt_lhv:
+            text = f"{100 * left / burnt_lhv:.2g} % of the fuel's LHV is left in the flue as CO and H2 and stays there when it is cooled; 'requench' says down to where it burns out"
+            cautions.append(Caution("frozen-flue", text))
+        return results, tuple(cautions)
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        if self.temperature is not None or self.requench is not None or outcome.unmet:
+            return {}
+        fire = self._fire(feeds, site)
+        flue = outcome.outlets["flue"]
+        if not fire.flows.any() or not isinstance(flue, Stream) or flue.water.any() or fire.drawn["oxidiser"] <= 0.0:
+            return {}
+        return _slopes(self, feeds, fire, flue, site)
+
+
+@dataclass(frozen=True, slots=True)
+class _Fire:
+    """Everything that enters a burner, and what it becomes without loss of heat."""
+
+    flows: Array  # entering [mol/s]
+    enthalpy: float  # entering [W]
+    pressure: float
+    burnt: Array  # flue at the adiabatic temperature [mol/s]
+    adiabatic: float  # [K]
+    drawn: dict[str, float | Any]
+    unmet: dict[str, str]
+
+    @staticmethod
+    def of(burner: Burner, entering: list[Stream], drawn: dict[str, float], unmet: dict[str, str], site: Site) -> _Fire:
+        matter = site.matter
+        flows = np.sum([s.flows for s in entering], axis=0)
+        enthalpy = float(sum(s.enthalpy for s in entering))
+        pressure = min(float(s.pressure) for s in entering)
+        if not flows.any():
+            return _Fire(flows, enthalpy, pressure, flows, site.ambient, dict(drawn), unmet)
+        if burner.model == "complete":
+            out = np.maximum(burnt(matter) @ flows, 0.0)
+            level = float(Stream.from_enthalpy(matter, out, enthalpy, pressure, 1500.0).temperature)
+            return _Fire(flows, enthalpy, pressure, out, level, dict(drawn), unmet)
+        found = equilibrate_adiabatic(matter, flows, enthalpy, pressure)
+        return _Fire(flows, enthalpy, pressure, found.flows, found.temperature, dict(drawn), unmet)
+
+
+def _moderated(
+    burner: Burner, fuel: list[Stream], oxidiser: Stream, moderator: Stream, oxygen: Oxygen, site: Site
+) -> _Fire:
+    """Find the moderator that brings the adiabatic flue to its wanted temperature.
+
+    Newton on its amount m, the oxidiser following from the linear oxygen balance; the residual is
+    the enthalpy of the flue at the wanted temperature less what enters.
+    """
+    matter, level = site.matter, burner.flue_temperature
+    assert level is not None
+    given = joined(fuel, matter) if len(fuel) > 1 else fuel[0]
+    pressure = min(float(s.pressure) for s in (given, oxidiser, moderator))
+    brings = -float(oxygen.weights @ oxidiser.flows)
+    base, unmet = _oxidiser_needed(oxygen, [given], oxidiser)
+    follows = float(oxygen.weights @ moderator.flows) / brings if brings > 0.0 else 0.0
+    per_mol = moderator.flows + follows * oxidiser.flows
+    per_enthalpy = float(moderator.enthalpy) + follows * float(oxidiser.enthalpy)
+    flows = given.flows + base * oxidiser.flows
+    enthalpy = float(given.enthalpy) + base * float(oxidiser.enthalpy)
+    amount = 0.0
+    if flows.any():
+        amount = _moderator_needed(burner, flows, enthalpy, per_mol, per_enthalpy, level, pressure, matter)
+    if amount < 0.0:
+        unmet = {**unmet, "moderator": f"overfull: the flame stays below {level - 273.15:.4g} degC without any moderator"}
+        amount = 0.0
+    drawn = {"oxidiser": base + amount * follows, "moderator": amount}
+    entering = [given, oxidiser.scaled(drawn["oxidiser"]), moderator.scaled(amount)]
+    if amount == 0.0:
+        return _Fire.of(burner, entering, drawn, unmet, site)
+    all_flows = np.sum([s.flows for s in entering], axis=0)
+    total = float(sum(s.enthalpy for s in entering))
+    out, _ = burner.flue_of(all_flows, level, pressure, matter)
+    return _Fire(all_flows, total, pressure, out, level, dict(drawn), unmet)
+
+
+def _moderator_needed(
+    burner: Burner, flows: Array, enthalpy: float, per_mol: Array, per_enthalpy: float,
+    level: float, pressure: float, matter: Matter,
+) -> float:
+    amount = 0.0
+    for _ in range(_MOST_STEPS):
+        out, by_feed = burner.flue_of(flows + amount * per_mol, level, pressure, matter)
+        partial = matter.gas_partial(out, level, pressure)[0]
+        residual = matter.gas_enthalpy(out, level, pressure) - enthalpy - amount * per_enthalpy
+        slope = float(partial @ (by_feed @ per_mol)) - per_enthalpy
+        if slope == 0.0:
+            return -1.0
+        step = -residual / slope
+        if amount == 0.0 and step < 0.0:
+            return step
+        amount = max(amount + step, 0.0)
+        if abs(step) <= 1e-13 * max(amount, float(flows.sum())):
+            break
+    return amount
+
+
+def _slopes(burner: Burner, feeds: Feeds, fire: _Fire, flue: Stream, site: Site) -> dict[str, dict[str, Array]]:
+    """Derivatives of an adiabatic burner: what is called follows implicitly from its balances."""
+    matter = site.matter
+    size = len(matter.components)
+    weights = np.append(Oxygen.at(burner.excess, matter).weights, 0.0)
+    block = _flue_block(burner, fire, flue, matter)
+    one = {p: np.append(s.flows, s.enthalpy) for p in ("oxidiser", "moderator") for s in [material(feeds, p)] if p in fire.drawn}
+    rows = [weights]
+    if "moderator" in fire.drawn:
+        if fire.drawn["moderator"] <= 0.0:
+            return {}
+        out, by_feed = burner.flue_of(fire.flows, fire.adiabatic, fire.pressure, matter)
+        partial = enthalpy_slopes(flue)[0]
+        rows.append(np.append(partial @ by_feed, -1.0))  # d(flue enthalpy at T - what enters)
+    called = list(fire.drawn)
+    columns = np.column_stack([one[port] for port in called])
+    gain = -np.linalg.solve(np.array(rows) @ columns, np.array(rows))  # d amounts / d what enters
+    entering = np.eye(size + 1) + columns @ gain
+    slopes: dict[str, dict[str, Array]] = {}
+    for port in ("fuel", "moderator", "oxidiser"):
+        if not arriving(feeds, port):
+            continue
+        factor = float(fire.drawn[port]) if port in fire.drawn else 1.0
+        slopes[port] = {"flue": factor * block @ entering}
+        for row, name in enumerate(called):
+            slopes[port][f"drawn:{name}"] = factor * gain[row][None, :]
+    return slopes
+
+
+def _flue_block(burner: Burner, fire: _Fire, flue: Stream, matter: Matter) -> Array:
+    """d flue / d all that enters, energy closed."""
+    size = len(matter.components)
+    block = np.zeros((size + 1, size + 1))
+    block[size, size] = 1.0
+    if burner.model == "complete":
+        block[:size, :size] = burnt(matter)
+        return block
+    found = equilibrate_adiabatic(matter, fire.flows, fire.enthalpy, fire.pressure)
+    block[:size, :size] = found.by_feed
+    block[:size, size] = found.by_enthalpy
+    return block
+
+
+class Engine(_Combustion):
+    """Burns fuel completely and gives power at a stated efficiency; the flue leaves at `temperature`.
+
+    What is neither power nor in the flue is given off at `jacket`.
+    """
+
+    kind: ClassVar[str] = "engine"
+    gives: ClassVar[tuple[str, ...]] = ("fuel_W",)
+    ports: ClassVar[tuple[Port, ...]] = (
+        Port("fuel", "material", Role.TAKES, main=True, many=True, means="what burns"),
+        Port("oxidiser", "material", Role.CALLS, means="air or oxygen"),
+        Port("moderator", "material", Role.TAKES, many=True, optional=True, means="what keeps the flame cooler"),
+        HEAT_PORTS[2],
+        Port("flue", "material", Role.OFFERS, optional=True, means="the flue gas"),
+        Port("power", "power", Role.OFFERS, main=True, means="electric power"),
+    )
+    formulas: ClassVar[tuple[str, ...]] = (
+        "power = efficiency * heating value of all that burns (LHV unless the efficiency says HHV)",
+        "heat given off = enthalpy in - power - enthalpy of the flue",
+    )
+
+    efficiency: HeatingValueShare = Field(description="electric power per heating value, 42 % LHV")
+    temperature: Temperature = Field(description="flue temperature")
+    jacket: Temperature = Field(363.15, description="temperature at which the waste heat is given off")
+
+    def material_outlets(self) -> tuple[str, ...]:
+        return ("flue",)
+
+    def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
+        inlets, matter = self._inlets(feeds), site.matter
+        given = [*inlets["fuel"], *inlets["moderator"]]
+        (oxidiser,) = inlets["oxidiser"]
+        amount, unmet = _oxidiser_needed(Oxygen.at(self.excess, matter), given, oxidiser)
+        entering = [*given, oxidiser.scaled(amount)]
+        flows = np.sum([s.flows for s in entering], axis=0)
+        value = matter.hhv if self.efficiency.basis == "HHV" else matter.lhv
+        power = self.efficiency.value * float(value @ flows)
+        pressure = min(float(s.pressure) for s in entering)
+        flue = Stream.at(matter, np.maximum(burnt(matter) @ flows, 0.0), self.temperature, pressure)
+        heat = float(flue.enthalpy) + power - float(sum(s.enthalpy for s in entering))
+        needs = [Duty("jacket and exhaust cooling", heat, self.jacket, self.jacket, self.jacket)]
+        duties, _, drawn, given_off = self.settle(needs, site)
+        outlets: dict[str, Flow] = {"flue": flue, "power": power, **given_off}
+        cautions = (Caution("engine-too-good", "power and flue carry more than the fuel brings: lower the efficiency or the flue temperature"),)
+        return Outcome(
+            outlets, drawn | {"oxidiser": amount}, duties, power=-power, results={"fuel_W": float(value @ flows)},
+            cautions=cautions if heat > 1e-9 * abs(power) and power > 0.0 else (), unmet=unmet,
+        )

@@ -1,0 +1,146 @@
+"""Changing pressure without a compressor: valve, expander, pump.
+
+SI throughout: flows [mol/s], temperature [K], pressure [Pa], power [W].
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from typing import Any, ClassVar
+
+import numpy as np
+from pydantic import Field
+
+from chainflow.basis.quantities import OpenFraction, Pressure
+from chainflow.equipment.base import (
+    Array, Caution, Equipment, Outcome, Port, Role, Site, material,
+)
+from chainflow.equipment.ports import Feeds
+from chainflow.equipment.pressures import higher_feed, lower_feed
+from chainflow.thermo.streams import Stream
+
+_ENTROPY_ROUND_OFF = 1e-13
+_MOST_STEPS = 40
+_GAS_IN_PUMP = 1e-3  # mole share of gas from which a pump deserves a caution
+
+
+class Valve(Equipment):
+    """Lets a stream down to a pressure at constant enthalpy."""
+
+    kind: ClassVar[str] = "valve"
+    family: ClassVar[str] = "compression"
+    through: ClassVar[bool] = True
+    ports: ClassVar[tuple[Port, ...]] = (
+        Port("inlet", "material", Role.TAKES, main=True, means="the stream"),
+        Port("outlet", "material", Role.OFFERS, main=True, means="the stream at its new pressure"),
+    )
+    formulas: ClassVar[tuple[str, ...]] = ("h(T_out, p_out) = h(T_in, p_in)",)
+
+    pressure: Pressure = Field(description="pressure at the outlet, absolute")
+
+    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
+        return lower_feed(inlets, self.pressure, "a valve cannot raise pressure: put a pump or compressor instead")
+
+    def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
+        return Outcome({"outlet": material(feeds, "inlet").at_pressure(self.pressure)})
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        return {"inlet": {"outlet": np.eye(len(site.matter.components) + 1)}}
+
+
+class Expander(Equipment):
+    """Takes power out of a stream that is let down; phases stay in equilibrium on the way."""
+
+    kind: ClassVar[str] = "expander"
+    family: ClassVar[str] = "compression"
+    gives: ClassVar[tuple[str, ...]] = ("work_W",)
+    ports: ClassVar[tuple[Port, ...]] = (
+        Port("inlet", "material", Role.TAKES, main=True, means="the stream"),
+        Port("outlet", "material", Role.OFFERS, main=True, means="the stream at its new pressure"),
+        Port("power", "power", Role.OFFERS, optional=True, means="power at the shaft"),
+    )
+    formulas: ClassVar[tuple[str, ...]] = ("power = efficiency * (h_in - h(s_in, p_out))",)
+
+    pressure: Pressure = Field(description="pressure at the outlet, absolute")
+    efficiency: OpenFraction = Field(0.80, description="isentropic efficiency")
+
+    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
+        return lower_feed(inlets, self.pressure, "an expander lets down: put a compressor instead")
+
+    def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
+        inlet = material(feeds, "inlet")
+        ideal = isentropic(inlet, self.pressure)
+        work = self.efficiency * (float(inlet.enthalpy) - float(ideal.enthalpy))
+        outlet = Stream.from_enthalpy(
+            site.matter, inlet.flows, float(inlet.enthalpy) - work, self.pressure, float(ideal.temperature)
+        )
+        return Outcome({"outlet": outlet, "power": work}, power=-work, results={"work_W": work})
+
+
+class Pump(Equipment):
+    """Raises the pressure of a liquid; all losses stay in the liquid as heat."""
+
+    kind: ClassVar[str] = "pump"
+    family: ClassVar[str] = "compression"
+    through: ClassVar[bool] = True
+    gives: ClassVar[tuple[str, ...]] = ("work_W",)
+    ports: ClassVar[tuple[Port, ...]] = (
+        Port("inlet", "material", Role.TAKES, main=True, means="the liquid"),
+        Port("power", "power", Role.CALLS, optional=True, means="electric power"),
+        Port("outlet", "material", Role.OFFERS, main=True, means="the liquid at its new pressure"),
+    )
+    formulas: ClassVar[tuple[str, ...]] = ("power = (h(s_in, p_out) - h_in) / efficiency",)
+    sources: ClassVar[tuple[str, ...]] = ("default efficiency: common practice, no source",)
+
+    pressure: Pressure = Field(description="pressure at the outlet, absolute")
+    efficiency: OpenFraction = Field(0.70, description="hydraulic power per electric power")
+
+    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
+        return higher_feed(inlets, self.pressure, "use a valve")
+
+    def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
+        inlet = material(feeds, "inlet")
+        ideal = isentropic(inlet, self.pressure)
+        power = (float(ideal.enthalpy) - float(inlet.enthalpy)) / self.efficiency
+        outlet = Stream.from_enthalpy(
+            site.matter, inlet.flows, float(inlet.enthalpy) + power, self.pressure, float(ideal.temperature)
+        )
+        return Outcome(
+            {"outlet": outlet}, {"power": power}, power=power, results={"work_W": power},
+            cautions=_gas_in_pump(inlet),
+        )
+
+
+def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:
+    share = float(inlet.gas.sum()) / float(inlet.total) if float(inlet.total) > 0.0 else 0.0
+    if share <= _GAS_IN_PUMP:
+        return ()
+    text = f"{100 * share:.3g} % of what arrives is gas: a pump wants liquid, put a condenser before it or use a compressor"
+    return (Caution("gas-in-pump", text),)
+
+
+def isentropic(inlet: Stream, pressure: float) -> Stream:
+    """The stream at another pressure with its entropy unchanged, phases in equilibrium.
+
+    Newton on the enthalpy, since ``(dS/dH)_p = 1/T`` holds through phase changes.
+    """
+    entropy = float(inlet.entropy)
+    enthalpy, level = float(inlet.enthalpy), float(inlet.temperature)
+    stream = inlet
+    if float(inlet.total) == 0.0:
+        return inlet.at_pressure(pressure)
+    for step in range(_MOST_STEPS):
+        if step == 0:
+            stream = Stream.at(inlet.matter, inlet.flows, level, pressure)
+        else:
+            stream = Stream.from_enthalpy(inlet.matter, inlet.flows, enthalpy, pressure, level)
+        missing = entropy - float(stream.entropy)
+        level = float(stream.temperature)
+        change = missing * level
+        limit = 0.3 * level * float(inlet.total) * 80.0
+        enthalpy = float(stream.enthalpy) + max(-limit, min(limit, change))
+        if abs(missing) <= _ENTROPY_ROUND_OFF * abs(entropy) + 1e-12 * float(inlet.total):
+            break
+    return stream

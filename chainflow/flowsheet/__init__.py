@@ -1,0 +1,1 @@
+"""From a file to a checked network: reading with places, addresses, checks."""

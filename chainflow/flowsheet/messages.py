@@ -1,0 +1,127 @@
+"""Turn what pydantic finds wrong with settings into one clear sentence each."""
+
+from __future__ import annotations
+
+import typing
+from collections.abc import Iterator, Mapping
+from typing import Any
+
+from pydantic import BaseModel, ValidationError
+
+from chainflow.basis.names import shorten, suggest
+
+_CODES = {
+    "extra_forbidden": "unknown-setting",
+    "missing": "missing-setting",
+    "quantity": "wrong-quantity",
+    "shares": "wrong-shares",
+}
+_NOTES = ("function-", "constrained-", "literal[", "lax-or-strict", "nullable", "json-or-python", "is-instance")
+
+
+class Complaint(typing.NamedTuple):
+    """What is wrong with one setting."""
+
+    code: str
+    path: tuple[str | int, ...]
+    text: str
+    at_key: bool
+
+
+def complaints(problem: ValidationError, model: type[BaseModel], name: str) -> Iterator[Complaint]:
+    """Each fault of the settings of `name`, once for each place."""
+    groups: dict[tuple[str | int, ...], list[Any]] = {}
+    for error in problem.errors(include_url=False, include_context=True):
+        path = tuple(part for part in error["loc"] if not _is_note(part))
+        groups.setdefault(path, []).append(error)
+    for path, errors in groups.items():
+        kind = errors[0]["type"]
+        where = ".".join(str(part) for part in path)
+        text = _sentence(errors, path, model)
+        yield Complaint(_CODES.get(kind, "wrong-setting"), path, f"{name}: {where + ': ' if where and kind not in ('missing', 'extra_forbidden') else ''}{text}", kind == "extra_forbidden")
+
+
+def _is_note(part: str | int) -> bool:
+    """Parts of a location that pydantic adds for its own unions."""
+    return isinstance(part, str) and (part.startswith(_NOTES) or part in ("float", "int", "str", "none"))
+
+
+def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseModel]) -> str:
+    error = errors[0]
+    kind, given = error["type"], error["input"]
+    if kind == "missing":
+        return f"'{path[-1]}' is missing, wanted {_wanted(model, path)}"
+    if kind == "extra_forbidden":
+        known = _fields(model, path[:-1])
+        return f"there is no setting '{path[-1]}'{suggest(str(path[-1]), known)}; known here: {', '.join(known) or 'none'}"
+    if len(errors) > 1:
+        return f"{shorten(str(given))} is not possible, wanted {' or '.join(dict.fromkeys(_expected(e) for e in errors))}"
+    if kind == "literal_error":
+        return f"{shorten(str(given))} is not possible{suggest(str(given), _choices(error))}, wanted {error['ctx']['expected']}"
+    if isinstance(given, Mapping) and not kind.startswith(("value_error", "model")) and error["msg"].startswith("Input"):
+        return f"a map is not possible here, wanted {_expected(error)}"
+    if error["msg"].startswith("Input"):
+        return f"{shorten(str(given))} is not possible, wanted {_expected(error)}"
+    return str(error["msg"])
+
+
+def _choices(error: Any) -> list[str]:
+    return [word.strip("' ") for word in str(error["ctx"]["expected"]).replace(" or ", ",").split(",")]
+
+
+def _expected(error: Any) -> str:
+    kind, context = error["type"], error.get("ctx", {})
+    words = {
+        "int_parsing": "a whole number", "int_type": "a whole number", "int_from_float": "a whole number",
+        "float_parsing": "a number", "float_type": "a number", "bool_parsing": "true or false", "bool_type": "true or false",
+        "dict_type": "a map such as {H2: 4, CO2: 1}", "tuple_type": "a list", "list_type": "a list",
+        "string_type": "a text", "model_type": "a map of settings", "finite_number": "a finite number",
+    }
+    if kind in words:
+        return words[kind]
+    if kind == "literal_error":
+        return str(context["expected"])
+    if kind == "greater_than":
+        return f"more than {context['gt']:g}"
+    if kind == "greater_than_equal":
+        return f"at least {context['ge']:g}"
+    return str(error["msg"]).removeprefix("Input should be ")
+
+
+def _fields(model: type[BaseModel], path: tuple[str | int, ...]) -> list[str]:
+    """Setting names of the model at a path."""
+    found = _model_at(model, path)
+    return list(found.model_fields) if found is not None else []
+
+
+def _model_at(model: type[BaseModel], path: tuple[str | int, ...]) -> type[BaseModel] | None:
+    current: type[BaseModel] | None = model
+    for part in path:
+        if isinstance(part, int):
+            continue
+        info = current.model_fields.get(part) if current is not None else None
+        current = _nested(info.annotation) if info is not None else None
+    return current
+
+
+def _nested(annotation: Any) -> type[BaseModel] | None:
+    if isinstance(annotation, type) and issubclass(annotation, BaseModel):
+        return annotation
+    for part in typing.get_args(annotation):
+        found = _nested(part)
+        if found is not None:
+            return found
+    return None
+
+
+def _wanted(model: type[BaseModel], path: tuple[str | int, ...]) -> str:
+    """What a missing setting is for, from its description."""
+    holder = _model_at(model, path[:-1])
+    info = holder.model_fields.get(str(path[-1])) if holder is not None else None
+    if info is None:
+        return "it here"
+    for note in info.metadata:
+        described = getattr(note, "means", None)
+        if callable(described):
+            return f"{described()} ({info.description})" if info.description else str(described())
+    return info.description or "a value"

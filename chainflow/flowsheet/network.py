@@ -1,0 +1,102 @@
+"""The flowsheet as data: equipment joined by lines, with the places where they were written.
+
+Everything here is immutable and has been checked; nothing has been solved.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from chainflow.basis.faults import Fault, Place
+from chainflow.equipment.base import Equipment
+from chainflow.equipment.ports import Role
+from chainflow.thermo.components import Matter
+
+
+@dataclass(frozen=True, slots=True)
+class Line:
+    """One line from an outlet to an inlet."""
+
+    number: int  # order in the file, from 0
+    source: str  # equipment
+    outlet: str
+    target: str
+    inlet: str
+    content: str  # "material", "power", "heat", "light"
+    called: bool  # the receiver sets the amount
+    place: Place | None = None
+
+    @property
+    def start(self) -> str:
+        """The sending port as an address."""
+        return f"{self.source}.{self.outlet}"
+
+    @property
+    def end(self) -> str:
+        """The receiving port as an address."""
+        return f"{self.target}.{self.inlet}"
+
+
+@dataclass(frozen=True, slots=True)
+class Hold:
+    """Move one setting until one result has a value (SI)."""
+
+    text: str  # the address that is held, as written
+    at: float
+    unit: str  # SI unit of the held result
+    by: str  # the address of the setting, as written
+    piece: str  # equipment whose setting moves
+    path: tuple[str, ...]  # its path
+    low: float
+    high: float
+    by_unit: str
+    place: Place | None = None
+
+
+@dataclass(frozen=True, slots=True)
+class Flowsheet:
+    """A checked flowsheet."""
+
+    title: str
+    basis: str  # "LHV" or "HHV": what is reported, never what is computed
+    ambient: float  # [K]
+    components: tuple[str, ...]
+    equipment: Mapping[str, Equipment]  # in file order, pieces without any line left out
+    lines: tuple[Line, ...]
+    holds: tuple[Hold, ...] = ()
+    knobs: Mapping[str, str] = field(default_factory=dict)  # values as text, overrides applied
+    remarks: tuple[Fault, ...] = ()  # what is odd but no fault
+    sha256: str = ""
+    path: str = ""
+
+    @property
+    def matter(self) -> Matter:
+        """The matter of the flowsheet's components."""
+        return Matter.of(self.components)
+
+    def into(self, name: str) -> tuple[Line, ...]:
+        """Lines that arrive at a piece of equipment, in file order."""
+        return tuple(line for line in self.lines if line.target == name)
+
+    def out_of(self, name: str) -> tuple[Line, ...]:
+        """Lines that leave a piece of equipment, in file order."""
+        return tuple(line for line in self.lines if line.source == name)
+
+    def line_from(self, name: str, outlet: str) -> tuple[Line, ...]:
+        """Lines at one outlet."""
+        return tuple(line for line in self.lines if (line.source, line.outlet) == (name, outlet))
+
+    def line_into(self, name: str, inlet: str) -> tuple[Line, ...]:
+        """Lines at one inlet."""
+        return tuple(line for line in self.lines if (line.target, line.inlet) == (name, inlet))
+
+    def calls_through(self, name: str) -> bool:
+        """Whether a call passes through this equipment (its main inlet then asks)."""
+        piece = self.equipment[name]
+        return piece.through and any(
+            line.called and line.content == "material" for line in self.into(name)
+        )
+
+
+__all__ = ["Flowsheet", "Hold", "Line", "Role"]

@@ -1,0 +1,1 @@
+"""What people and programs get to see: the document, tables and the printed answer."""

@@ -1,0 +1,205 @@
+"""The answer as people read it: the short answer first, then the streams, then what to be wary of.
+
+Plain text through rich: tables on any width, styles on a terminal only. Numbers are in
+engineering units.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Iterator, Mapping
+from typing import TYPE_CHECKING, TextIO
+
+from chainflow.accounts.exergy import exergy_destroyed
+from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
+from chainflow.accounts.plant import PlantAccount, by_species, plant_account
+from chainflow.accounts.worth import BASES
+from chainflow.basis.formatting import format_quantity
+from chainflow.equipment.ports import Heat
+from chainflow.report import numbers
+from chainflow.report.plain import console, encoding_of, printable
+from chainflow.solver.solution import HoldResult, SolvedStream, Solution
+from chainflow.thermo.streams import Stream
+
+if TYPE_CHECKING:
+    from rich.console import Console
+    from rich.table import Table
+
+_MOST_LOSSES = 5
+_LABEL = 18  # characters
+
+
+def print_answer(solution: Solution, out: TextIO | None = None) -> None:
+    """Print the whole answer."""
+    screen = console(out)
+    encoding = encoding_of(screen.file)  # type: ignore[arg-type] # rich types it as IO[str]
+    screen.print(printable(solution.flowsheet.title or "untitled", encoding), style="bold")
+    for line in _short_answer(solution):
+        screen.print(line, soft_wrap=True)
+    _print_tables(screen, solution)
+    _print_remarks(screen, "Idealisations", idealisations(solution))
+    _print_remarks(screen, "Cautions", cautions(solution))
+    screen.print()
+    screen.print(CLOSING_SENTENCE, soft_wrap=True)
+
+
+def _line(label: str, text: str) -> str:
+    return f"{label:<{_LABEL}} {text}"
+
+
+def _short_answer(solution: Solution) -> Iterator[str]:
+    account, basis = plant_account(solution), solution.flowsheet.basis
+    balance = solution.balance
+    yield (
+        f"solved in {solution.passes} passes; balances close to "
+        f"{balance.elements:.1e} (elements) and {balance.energy:.1e} (energy)"
+    )
+    yield ""
+    found = account.efficiency
+    yield _line("overall efficiency", _on_bases(found.overall, basis))
+    yield _line("sunlight to fuel", _on_bases(found.sunlight_to_fuel, basis))
+    yield _line("sunlight share", f"{numbers.percent(found.sunlight_share)} of what goes in")
+    for rung in found.rungs:
+        yield _line("", f"{rung.start + ' -> ' + rung.end:<24} {_on_bases(rung.ratio, basis)}")
+    for name, share in account.returned.items():
+        yield _line(f"{name} returned", numbers.percent(share, 4))
+    yield _line("sunlight", numbers.energy(account.sunlight))
+    yield from _listed("bought", _bought(account))
+    yield from _listed("delivered", _delivered(account))
+    yield _line("exergy lost in", _losses(solution))
+
+
+def _on_bases(values: Mapping[str, float | None], basis: str) -> str:
+    others = [f"{numbers.percent(values[b])} {b}" for b in BASES if b != basis]
+    return f"{numbers.percent(values[basis])} {basis} ({', '.join(others)})"
+
+
+def _listed(label: str, entries: Iterator[str]) -> Iterator[str]:
+    found = list(entries) or ["nothing"]
+    for place, entry in enumerate(found):
+        yield _line(label if place == 0 else "", entry)
+
+
+def _bought(account: PlantAccount) -> Iterator[str]:
+    bought = account.bought
+    for name, power in bought.power.items():
+        yield f"{numbers.energy(power)} of power for {name}"
+    for name, duty in bought.heat:
+        span = f"{numbers.celsius(duty.start)} to {numbers.celsius(duty.end)} degC"
+        yield f"{numbers.energy(duty.heat)} of heat for {name} ({duty.purpose}, {span})"
+    for name, duty in bought.cold:
+        span = f"{numbers.celsius(duty.start)} to {numbers.celsius(duty.end)} degC"
+        yield f"{numbers.energy(-duty.heat)} of cooling for {name} ({duty.purpose}, {span})"
+    for name, stream in bought.material.items():
+        yield f"{_amount(stream)} at {name}: {_shares(stream)}"
+
+
+def _delivered(account: PlantAccount) -> Iterator[str]:
+    sold = account.sold
+    for name, power in sold.power:
+        yield f"{numbers.energy(power)} of power to {name}"
+    for name, heat in sold.heat:
+        yield f"{numbers.energy(heat.rate)} of heat to {name}"
+    for name, stream in sold.material:
+        value = f", {numbers.energy(float(stream.lhv))} LHV" if float(stream.lhv) > 0.0 else ""
+        yield f"{_amount(stream)} to {name}: {_shares(stream)}{value}"
+
+
+def _amount(stream: Stream) -> str:
+    mass = format_quantity(float(stream.mass_flow), "kg/s")
+    return f"{format_quantity(float(stream.total), 'mol/s')} ({mass})"
+
+
+def _shares(stream: Stream) -> str:
+    found = numbers.composition(stream)
+    return found if len(by_species([("", stream)])) < 2 else f"{found} %"
+
+
+def _losses(solution: Solution) -> str:
+    lost = sorted(exergy_destroyed(solution).items(), key=lambda pair: -pair[1])
+    shown = [f"{name} {numbers.energy(value)}" for name, value in lost[:_MOST_LOSSES] if value > 0]
+    return ", ".join(shown) or "nothing"
+
+
+def _print_tables(screen: Console, solution: Solution) -> None:
+    matter = [stream for stream in solution.streams if isinstance(stream.flow, Stream)]
+    energy = [stream for stream in solution.streams if not isinstance(stream.flow, Stream)]
+    for title, rows, make in (
+        ("Streams", matter, _stream_table),
+        ("Power, heat and light", energy, _energy_table),
+        ("Holds", solution.holds, _hold_table),
+    ):
+        if rows:
+            screen.print()
+            screen.print(title, style="bold")
+            screen.print(make(rows))  # type: ignore[operator] # each maker gets its own rows
+
+
+def _table(*columns: str, right: tuple[str, ...] = ()) -> Table:
+    from rich import box
+    from rich.table import Table
+
+    table = Table(box=box.SIMPLE_HEAD, pad_edge=False, show_edge=False)
+    for name in columns:
+        justify = "right" if name in right else "left"
+        table.add_column(name, justify=justify, overflow="fold")  # type: ignore[arg-type] # one of its literals
+    return table
+
+
+def _stream_table(streams: list[SolvedStream]) -> Table:
+    right = ("tag", "degC", "bar", "mol/s", "kg/h")
+    columns = ("tag", "from -> to", "composition, mol %", "degC", "bar", "mol/s", "kg/h", "phase")
+    table = _table(*columns, right=right)
+    for stream in streams:
+        flow = stream.flow
+        if isinstance(flow, Stream):
+            table.add_row(
+                str(stream.tag),
+                _ends(stream),
+                numbers.composition(flow),
+                numbers.celsius(float(flow.temperature)),
+                numbers.bar(float(flow.pressure)),
+                numbers.flow(float(flow.total)),
+                numbers.flow(3600 * float(flow.mass_flow)),
+                numbers.phases(flow),
+            )
+    return table
+
+
+def _energy_table(streams: list[SolvedStream]) -> Table:
+    table = _table("tag", "from -> to", "content", "rate", "degC", right=("tag", "rate"))
+    for stream in streams:
+        flow = stream.flow
+        if isinstance(flow, Heat):
+            span = f"{numbers.celsius(flow.start)} to {numbers.celsius(flow.end)}"
+            row = (numbers.energy(flow.rate), span)
+        else:
+            row = (numbers.energy(float(flow)), "")  # type: ignore[arg-type] # no matter here
+        table.add_row(str(stream.tag), _ends(stream), stream.content, *row)
+    return table
+
+
+def _hold_table(holds: list[HoldResult]) -> Table:
+    table = _table("held", "wanted", "reached", "by", "value")
+    for hold in holds:
+        table.add_row(
+            hold.hold,
+            format_quantity(hold.wanted, hold.unit),
+            format_quantity(hold.reached, hold.unit, digits=6),
+            hold.by,
+            format_quantity(hold.value, hold.by_unit, digits=6),
+        )
+    return table
+
+
+def _ends(stream: SolvedStream) -> str:
+    return f"{stream.key} -> {', '.join(stream.targets) or 'leaves the plant'}"
+
+
+def _print_remarks(screen: Console, title: str, remarks: tuple[Remark, ...]) -> None:
+    if not remarks:
+        return
+    screen.print()
+    screen.print(title, style="bold")
+    for remark in remarks:
+        where = f"{remark.equipment}: " if remark.equipment else ""
+        screen.print(f"- {where}{remark.text} [{remark.code}]", soft_wrap=True)

@@ -1,0 +1,162 @@
+"""Do elements and energy balance, for every piece of equipment and for the plant?
+
+Errors are relative to throughput: the largest flow of any element, the largest energy flow.
+"""
+
+from __future__ import annotations
+
+import numpy as np
+
+from chainflow.equipment.base import Outcome
+from chainflow.equipment.boundary import Product, Supply, Vent
+from chainflow.equipment.ports import Flow, Heat
+from chainflow.equipment.power import Grid
+from chainflow.equipment.stores import Store
+from chainflow.equipment.shares import fractions
+from chainflow.equipment.sunlight import Sunlight
+from chainflow.flowsheet.network import Flowsheet
+from chainflow.solver.finishing import Finish, arriving_whole
+from chainflow.solver.solution import Balance
+from chainflow.thermo.streams import Stream
+
+_BOUNDARY = (Supply, Product, Vent, Sunlight, Grid)
+
+
+def audit(finish: Finish) -> Balance:
+    """Balance every piece of equipment, and the plant by its boundary alone."""
+    flowsheet = finish.flowsheet
+    by_equipment = {}
+    worst_elements = worst_energy = 0.0
+    for name, piece in flowsheet.equipment.items():
+        if isinstance(piece, _BOUNDARY):
+            continue
+        gains, through = _elements(finish, name)
+        energy, size = _energy(finish, name)
+        errors = (_relative(gains, through), _relative(energy, size))
+        by_equipment[name] = errors
+        worst_elements, worst_energy = max(worst_elements, errors[0]), max(worst_energy, errors[1])
+    plant_elements, plant_energy = _plant(finish)
+    return Balance(max(worst_elements, plant_elements), max(worst_energy, plant_energy), by_equipment)
+
+
+def _relative(error: np.ndarray | float, size: float) -> float:
+    return float(np.abs(error).max(initial=0.0) / size) if size > 0.0 else 0.0
+
+
+def _top_up(finish: Finish, name: str) -> Stream | None:
+    """What a store without a make-up line gets from outside."""
+    piece = finish.flowsheet.equipment[name]
+    if not isinstance(piece, Store) or finish.flowsheet.line_into(name, "make_up"):
+        return None
+    matter = finish.flowsheet.matter
+    one = Stream.at(matter, fractions(piece.contents, matter), piece.temperature, piece.pressure)
+    return one.scaled(finish.outcomes[name].results["top_up_mol_s"])
+
+
+def _inflows(finish: Finish, name: str) -> list[Flow]:
+    flows = arriving_whole(finish.feeds, name)
+    extra = _top_up(finish, name)
+    return [*flows, extra] if extra is not None else flows
+
+
+def _elements(finish: Finish, name: str) -> tuple[np.ndarray, float]:
+    formula = finish.flowsheet.matter.formula
+    gains = np.zeros(formula.shape[0])
+    through = 0.0
+    for flow in _inflows(finish, name):
+        if isinstance(flow, Stream):
+            atoms = formula @ flow.flows
+            gains, through = gains + atoms, through + float(atoms.sum())
+    for flow in finish.outcomes[name].outlets.values():
+        if isinstance(flow, Stream):
+            gains = gains - formula @ flow.flows
+    return gains, through
+
+
+def _energy(finish: Finish, name: str) -> tuple[float, float]:
+    """Energy in less energy out; heat and power lines are inside the outcome's heat and power."""
+    outcome = finish.outcomes[name]
+    inward = outlet = size = 0.0
+    for flow in _inflows(finish, name):
+        amount = _stream_energy(flow, finish.flowsheet, name)
+        inward, size = inward + amount, size + abs(amount)
+    for flow in outcome.outlets.values():
+        if isinstance(flow, Stream):
+            outlet, size = outlet + float(flow.enthalpy), size + abs(float(flow.enthalpy))
+    size += abs(outcome.power) + sum(abs(d.heat) for d in outcome.duties)
+    return inward + outcome.heat + outcome.power - outlet - _passing(finish, name), size
+
+
+def _stream_energy(flow: Flow, flowsheet: Flowsheet, name: str) -> float:
+    """Enthalpy of matter, and light that is turned into something else here."""
+    if isinstance(flow, Stream):
+        return float(flow.enthalpy)
+    takes_light = any(line.content == "light" for line in flowsheet.into(name))
+    return float(flow) if isinstance(flow, float) and takes_light else 0.0
+
+
+def _passing(finish: Finish, name: str) -> float:
+    """Power, light and heat that only pass (splitter, switchboard, heat network) must add up."""
+    outcome = finish.outcomes[name]
+    if outcome.power or outcome.duties or finish.flowsheet.equipment[name].kind not in ("splitter", "switchboard", "heat-network"):
+        return 0.0
+    inward = sum(_rate(f) for f in arriving_whole(finish.feeds, name))
+    outward = sum(_rate(f) for f in outcome.outlets.values())
+    return outward - inward
+
+
+def _rate(flow: Flow) -> float:
+    if isinstance(flow, Stream):
+        return 0.0
+    return flow.rate if isinstance(flow, Heat) else float(flow)
+
+
+def _plant(finish: Finish) -> tuple[float, float]:
+    """The plant as one box: what crosses its boundary."""
+    flowsheet, formula = finish.flowsheet, finish.flowsheet.matter.formula
+    atoms, energy = np.zeros(formula.shape[0]), 0.0
+    atom_size = energy_size = 0.0
+    for name, sign, flow in _crossing(finish):
+        if isinstance(flow, Stream):
+            these = formula @ flow.flows
+            atoms, atom_size = atoms + sign * these, atom_size + float(these.sum())
+            energy, energy_size = energy + sign * float(flow.enthalpy), energy_size + abs(float(flow.enthalpy))
+        else:
+            energy, energy_size = energy + sign * _rate(flow), energy_size + abs(_rate(flow))
+        del name
+    for name, outcome in finish.outcomes.items():
+        if isinstance(flowsheet.equipment[name], _BOUNDARY):
+            continue
+        outside = _outside_heat(outcome) + _bought_power(finish, name, outcome)
+        energy, energy_size = energy + outside, energy_size + abs(outside)
+    return _relative(atoms, atom_size), _relative(energy, energy_size)
+
+
+def _crossing(finish: Finish) -> list[tuple[str, float, Flow]]:
+    """Flows over the boundary: sign +1 in, -1 out."""
+    found: list[tuple[str, float, Flow]] = []
+    flowsheet = finish.flowsheet
+    for name, piece in flowsheet.equipment.items():
+        if isinstance(piece, Supply | Sunlight | Grid):
+            found += [(name, 1.0, flow) for flow in finish.outcomes[name].outlets.values()]
+        if isinstance(piece, Product | Vent | Grid):
+            found += [(name, -1.0, flow) for flow in arriving_whole(finish.feeds, name)]
+        extra = _top_up(finish, name)
+        if extra is not None:
+            found.append((name, 1.0, extra))
+    for stream in finish.streams:
+        if not stream.targets and not isinstance(flowsheet.equipment[stream.source], Supply | Sunlight | Grid):
+            found.append((stream.source, -1.0, stream.flow))
+    return found
+
+
+def _outside_heat(outcome: Outcome) -> float:
+    """Heat that comes from or goes to outside the plant."""
+    return sum(d.heat for d in outcome.duties if d.met_by in ("ambient", "bought"))
+
+
+def _bought_power(finish: Finish, name: str, outcome: Outcome) -> float:
+    """Electricity of equipment whose power call is not linked."""
+    linked = {line.inlet for line in finish.flowsheet.into(name)}
+    asked = outcome.drawn.get("power", 0.0)
+    return float(asked) if "power" not in linked and isinstance(asked, float) else 0.0

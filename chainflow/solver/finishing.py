@@ -1,0 +1,153 @@
+"""From the closed values to a solution: every piece of equipment once more, in full detail."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+import networkx as nx
+
+from chainflow.equipment.base import Equipment, Outcome
+from chainflow.equipment.ports import Feeds, Flow, Heat, Role
+from chainflow.flowsheet.network import Flowsheet, Line
+from chainflow.solver.nodes import EquipmentStep, Source, Values
+from chainflow.solver.program import Program, amount_key, site_of
+from chainflow.solver.solution import SolvedStream
+from chainflow.thermo.streams import Stream
+
+
+class Finish:
+    """Outcomes, arriving flows and tagged streams for closed values."""
+
+    def __init__(self, program: Program, values: Values) -> None:
+        self.program, self.flowsheet, self.values = program, program.flowsheet, values
+        self.outcomes: dict[str, Outcome] = {}
+        self.feeds: dict[str, Feeds] = {}
+        pieces = self._pieces()
+        for name in self.flowsheet.equipment:
+            self._operate(name, pieces[name])
+        self.streams = self._streams()
+
+    def _pieces(self) -> dict[str, Equipment]:
+        """Equipment with its settled choices and held settings."""
+        pieces = dict(self.flowsheet.equipment)
+        for step in self.program.steps:
+            if isinstance(step, EquipmentStep) and step.equipment is not None:
+                pieces[step.name] = step.equipment
+        for setting, hold in self.program.settings.items():
+            number = self.values[setting]
+            assert isinstance(number, float)
+            pieces[hold.piece] = pieces[hold.piece].with_setting(hold.path, number)
+        return pieces
+
+    def _operate(self, name: str, piece: Equipment) -> None:
+        through = self.flowsheet.calls_through(name)
+        feeds: dict[str, tuple[Flow, ...]] = {}
+        actual: dict[str, tuple[Flow, ...]] = {}
+        for line in self.flowsheet.into(name):
+            flow = self._sample(line)
+            whole = self._whole(line)
+            if whole is not None:
+                actual[line.inlet] = (*actual.get(line.inlet, ()), whole)
+            if flow is not None:
+                used = whole if through and line.called else flow
+                assert used is not None
+                feeds[line.inlet] = (*feeds.get(line.inlet, ()), used)
+        asked = self._asked(name, piece)
+        many = {p.name for p in piece.port_list() if p.is_inlet and p.many}
+        given = {port: flows if port in many else flows[0] for port, flows in feeds.items()}
+        self.outcomes[name] = piece.operate(given, asked, site_of(self.flowsheet, name, detail=True))
+        self.feeds[name] = {port: flows if port in many else flows[0] for port, flows in actual.items()}
+
+    def _sample(self, line: Line) -> Flow | None:
+        """What equipment gets at an inlet: the flow, or one mol of it where it calls."""
+        if not line.called:
+            return self.values[line.start]
+        return self._state(line).of(self.values) if line.content == "material" else None
+
+    def _state(self, line: Line) -> Source:
+        states = self.program.states
+        return states[(line.source, line.outlet)] if (line.source, line.outlet) in states else states[(line.source, "*")]
+
+    def _amount(self, line: Line) -> Flow:
+        return self.values[amount_key(line)]
+
+    def _whole(self, line: Line) -> Flow | None:
+        """What passes a line."""
+        if not line.called:
+            return self.values[line.start]
+        amount = self._amount(line)
+        if line.content != "material":
+            return amount
+        one = self._state(line).of(self.values)
+        assert isinstance(one, Stream) and isinstance(amount, float)
+        return one.scaled(amount)
+
+    def _asked(self, name: str, piece: Equipment) -> dict[str, float | Heat]:
+        asked: dict[str, float | Heat] = {}
+        for line in self.flowsheet.out_of(name):
+            port = piece.port(line.outlet, inlet=False)
+            if not line.called or port is None or port.role is not Role.SERVES:
+                continue
+            amount = self._amount(line)
+            if isinstance(amount, Heat):
+                asked[line.outlet] = amount
+            else:
+                before = asked.get(line.outlet, 0.0)
+                assert isinstance(amount, float) and not isinstance(before, Heat)
+                asked[line.outlet] = before + amount
+        return asked
+
+    # --- streams -----------------------------------------------------------------------------
+
+    def _streams(self) -> tuple[SolvedStream, ...]:
+        found = []
+        for name in flow_order(self.flowsheet):
+            piece = self.flowsheet.equipment[name]
+            for outlet, flow in self.outcomes[name].outlets.items():
+                lines = self.flowsheet.line_from(name, outlet)
+                if not lines and not _flows(flow):
+                    continue
+                port = piece.port(outlet, inlet=False)
+                content = lines[0].content if lines else _content(flow, port.content if port else "power")
+                found.append((name, outlet, tuple(line.end for line in lines), content, flow))
+        return tuple(SolvedStream(tag, *parts) for tag, parts in enumerate(found, start=1))
+
+
+def flow_order(flowsheet: Flowsheet) -> list[str]:
+    """Equipment from where things come in to where they leave; loops are entered in file order."""
+    graph: nx.DiGraph = nx.DiGraph()
+    graph.add_nodes_from(flowsheet.equipment)
+    graph.add_edges_from((line.source, line.target) for line in flowsheet.lines)
+    place = {name: i for i, name in enumerate(flowsheet.equipment)}
+    waiting = {name: {p for p in graph.predecessors(name) if p != name} for name in graph}
+    ordered: list[str] = []
+    while waiting:
+        free = [name for name, before in waiting.items() if not before]
+        touched = [name for name in waiting if any(p in ordered for p in graph.predecessors(name))]
+        name = min(free or touched or list(waiting), key=place.__getitem__)
+        ordered.append(name)
+        del waiting[name]
+        for follower in graph.successors(name):
+            if follower in waiting:
+                waiting[follower].discard(name)
+    return ordered
+
+
+def _flows(flow: Flow) -> bool:
+    if isinstance(flow, Stream):
+        return float(flow.total) > 0.0
+    return (flow.rate if isinstance(flow, Heat) else flow) != 0.0
+
+
+def _content(flow: Flow, declared: str) -> str:
+    if isinstance(flow, Stream):
+        return "material"
+    return "heat" if isinstance(flow, Heat) else declared if declared in ("power", "light") else "power"
+
+
+def arriving_whole(feeds: Mapping[str, Feeds], name: str) -> list[Flow]:
+    """Every flow that arrives at a piece of equipment."""
+    flows: list[Flow] = []
+    for flow in feeds[name].values():
+        flows += list(flow) if isinstance(flow, tuple) else [flow]
+    return flows

@@ -1,0 +1,416 @@
+"""Closing the loops: Newton on the torn variables, holds in the same system.
+
+One pass evaluates the steps in order; with derivatives it counts once too.  The Newton step is the
+error estimate.  A start from empty loops is passed on until nothing more wakes up; where Newton
+stalls, Anderson's mixing (depth 5) takes over for some passes.  Deterministic throughout.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+import numpy as np
+
+from chainflow.basis.faults import NotSolved
+from chainflow.equipment.ports import Flow
+from chainflow.solver.damping import damped
+from chainflow.solver.linear import Linear, Singular
+from chainflow.solver.nodes import Blocks, EquipmentStep, Step, Values
+from chainflow.solver.order import Order
+from chainflow.solver.program import Program
+from chainflow.solver.starts import initial_state
+from chainflow.solver.variables import ENTHALPY_SCALE, Variable
+from chainflow.thermo.streams import Stream
+from chainflow.thermo.validity import StateError
+
+CLOSED = 1e-10  # largest relative Newton step of a solved loop
+FLOOR = 1e-8  # a step that does not shrink any more is accepted below this
+_RESIDUAL = 1e-8
+_MOST_PASSES = 60
+_SMALL = 1e-6  # of the stream total: flows below it count as this much
+_SETTLED = 1e-2  # step below which discrete choices stay as they are
+_STALLED = 6  # passes without halving the residual
+_MIXED_PASSES, _DEPTH = 15, 5
+_WARM_PASSES = 10
+_SHORT_PASSES = 5
+_GROWN = 1e8
+
+
+@dataclass
+class Closed:
+    """What closing the loops ended with."""
+
+    values: Values
+    passes: int = 0
+    error: float = 0.0
+    aside: dict[str, str] = field(default_factory=dict)  # holds set aside: setting -> "bound"/"unable"
+
+
+@dataclass
+class _State:
+    """The torn values, what the pass made of them, and how far apart they are."""
+
+    torn: Values
+    values: Values
+    back: Values  # the torn variables as the pass computed them
+    residual: np.ndarray
+
+
+class Newton:
+    """One solve of one program."""
+
+    def __init__(self, program: Program, order: Order, fixed: dict[str, float] | None = None) -> None:
+        self.program, self.order = program, order
+        self.variables, self.matter = program.variables, program.flowsheet.matter
+        self.fixed = fixed or {}  # settings kept at a value instead of being solved
+        self.passes = 0
+        self.constants: Values = {}
+        self.places: dict[str, slice] = {}
+        at = 0
+        for key in order.tears:
+            self.places[key] = slice(at, at + self.variables[key].size)
+            at += self.variables[key].size
+        self.size = at
+        self.holds = [(hold, setting, result) for hold, setting, result in program.holds if setting not in self.fixed]
+
+    # --- passes ------------------------------------------------------------------------------
+
+    def solve(self) -> Closed:
+        """Close all loops; NotSolved says why not."""
+        self.constants = self._run(self.order.before, {})
+        if not self.order.tears:
+            self.passes = 1
+            return Closed(self._run(self.order.after, self.constants), 1)
+        closed = self._iterate(self._warm(self._start()))
+        closed.values = self._run(self.order.after, closed.values)
+        closed.passes = self.passes
+        return closed
+
+    def _run(self, steps: list[Step], values: Values) -> Values:
+        values = dict(values)
+        for step in steps:
+            try:
+                values |= step.run(values)
+            except StateError as problem:
+                raise NotSolved("outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}) from problem
+        return values
+
+    def _pass(self, torn: Values, *, blocks: Blocks | None = None) -> _State:
+        """Evaluate the loop once, with derivatives if `blocks` is given to be filled."""
+        self.passes += 1
+        values: Values = {**self.constants, **torn}
+        back: Values = {}
+        for step in self.order.loop:
+            try:
+                written = step.run(values)
+                if blocks is not None:
+                    blocks |= step.blocks(values, written)
+            except StateError as problem:
+                raise NotSolved("outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}) from problem
+            for key, value in written.items():
+                if key in torn:
+                    back[key] = value
+                else:
+                    values[key] = value
+        residual = np.zeros(self.size)
+        for key in torn:
+            if key in back:
+                residual[self.places[key]] = self._pack(key, back[key]) - self._pack(key, torn[key])
+        return _State(torn, values, back, residual)
+
+    def _pack(self, key: str, value: Flow) -> np.ndarray:
+        return self.variables[key].pack(value, self.matter)
+
+    # --- the start ---------------------------------------------------------------------------
+
+    def _start(self) -> Values:
+        settings = self.program.settings
+        torn: Values = {}
+        for key in self.order.tears:
+            variable = self.variables[key]
+            if key in settings:
+                hold = settings[key]
+                own = self.program.flowsheet.equipment[hold.piece].setting(hold.path)
+                torn[key] = self.fixed.get(key, own)
+            elif key.endswith("~state"):
+                torn[key] = initial_state(self.program, key)
+            elif variable.rate:
+                torn[key] = self._supply_of(key)
+            elif variable.form == "matter":
+                torn[key] = Stream.empty(self.matter, pressure=variable.pressure)
+            else:
+                torn[key] = variable.unpack(np.zeros(variable.size), self.matter)
+        return torn
+
+    def _supply_of(self, key: str) -> float:
+        """A switchboard's rest as if nobody asked."""
+        step = next(s for s in self.order.loop if key in s.writes)
+        assert isinstance(step, EquipmentStep)
+        known = [source.of(self.constants) for source in step.feeds.get("supply", ()) if source.key in self.constants]
+        return float(sum(float(power) for power in known))  # type: ignore[arg-type] # power is a number
+
+    def _warm(self, torn: Values) -> Values:
+        """Pass on until no further torn variable wakes up."""
+        awake = -1
+        for _ in range(_WARM_PASSES):
+            state = self._pass(torn)
+            torn = {key: self._substituted(key, state) for key in torn}
+            now = sum(int((self._pack(key, value) > 0.0).sum()) for key, value in torn.items())
+            if now <= awake:
+                break
+            awake = now
+        return torn
+
+    def _substituted(self, key: str, state: _State) -> Flow:
+        if key not in state.back:
+            return state.torn[key]
+        old, new = state.torn[key], state.back[key]
+        if self.variables[key].form == "number" and not float(new) > 0.0:  # type: ignore[arg-type] # a number
+            return 0.05 * float(old)  # type: ignore[arg-type] # a number
+        return new
+
+    # --- Newton ------------------------------------------------------------------------------
+
+    def _iterate(self, torn: Values) -> Closed:
+        best, bad, before = np.inf, 0, np.inf
+        short = 0
+        closed = Closed({})
+        settled = False
+        while self.passes < _MOST_PASSES:
+            blocks: Blocks = {}
+            state = self._pass(torn, blocks=blocks)
+            scales = self._scales(state)
+            change, aside = self._step(state, blocks, scales)
+            error = _largest(change, scales)
+            residual = _largest(self._shown_residual(state, aside), scales)
+            if not np.isfinite(error):
+                raise Singular("the step is not finite")
+            if error < _SETTLED and not settled:
+                settled = self._settle()
+                if settled:
+                    best = np.inf
+            if (error < CLOSED and residual < _RESIDUAL) or (error < FLOOR and error > 0.3 * before):
+                return self._finish(state, change, error, aside)
+            before = error if error < FLOOR else np.inf
+            self._refuse_growth(state)
+            short = self._short_so_far(short, state, change)
+            best, bad = (residual, 0) if residual < 0.5 * best else (best, bad + 1)
+            if bad >= _STALLED:
+                torn, best, bad = self._mix(torn), np.inf, 0
+                continue
+            torn = self._moved(torn, change)
+        raise self._not_converged(state, scales, closed)
+
+    def _finish(self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]) -> Closed:
+        last = self._pass(self._moved(state.torn, change))
+        return Closed({**last.values, **last.torn}, error=error, aside=aside)
+
+    def _moved(self, torn: Values, change: np.ndarray) -> Values:
+        settings = self.program.settings
+        return {
+            key: value if key in self.fixed else damped(self.variables[key], value, change[self.places[key]], self.matter, settings.get(key))
+            for key, value in torn.items()
+        }
+
+    def _step(self, state: _State, blocks: Blocks, scales: np.ndarray) -> tuple[np.ndarray, dict[str, str]]:
+        """The Newton change of all torn numbers, and the holds that are set aside this time."""
+        results = [result for _, _, result in self.holds]
+        linear = Linear(self.order.loop, blocks, self.order.tears, list(self.program.settings), results, self.variables)
+        right = state.residual.copy()
+        for key in self.program.settings:
+            right[self.places[key]] = 0.0
+        try:
+            change, seen = linear.solve(right)
+        except Singular:
+            raise NotSolved(
+                "undetermined", f"the loop through {self._names()} has no single steady state: something in it is neither fixed nor let out; "
+                "open a purge or put a store with a draw into it", {"tears": self.order.tears},
+            ) from None
+        if not self.holds:
+            return change, {}
+        return self._with_holds(linear, state, change, seen)
+
+    def _with_holds(
+        self, linear: Linear, state: _State, change: np.ndarray, seen: np.ndarray
+    ) -> tuple[np.ndarray, dict[str, str]]:
+        """Move the held settings so that all held results are met at once."""
+        responses, effects = [], []
+        for _, setting, _ in self.holds:
+            unit = np.zeros(self.size)
+            unit[self.places[setting]] = 1.0
+            response, effect = linear.solve(unit)
+            responses.append(response)
+            effects.append(effect)
+        table = np.array(effects).T  # d result i / d setting j
+        missing = np.array([h.at - float(state.values[r]) for h, _, r in self.holds]) - seen  # type: ignore[arg-type] # numbers
+        spans = np.array([h.high - h.low for h, _, _ in self.holds])
+        sizes = np.array([self._hold_size(h.at, float(state.values[r]), h.unit) for h, _, r in self.holds])  # type: ignore[arg-type] # numbers
+        aside: dict[str, str] = {}
+        active = []
+        for i in range(len(self.holds)):
+            if np.abs(table[i] * spans).max() < 1e-9 * sizes[i]:
+                aside[self.holds[i][1]] = "unable"
+            else:
+                active.append(i)
+        steps = np.zeros(len(self.holds))
+        while active:
+            found, *_ = np.linalg.lstsq(table[np.ix_(active, active)] * spans[active] / sizes[active, None], missing[active] / sizes[active], rcond=1e-12)
+            steps[:] = 0.0
+            steps[active] = found * spans[active]
+            out = [i for i in active if self._at_bound(i, steps[i], state)]
+            if not out:
+                break
+            aside |= {self.holds[i][1]: "bound" for i in out}
+            active = [i for i in active if i not in out]
+            steps[out] = 0.0
+        for i, step in enumerate(steps):
+            change = change + step * responses[i]
+        return change, aside
+
+    def _hold_size(self, wanted: float, reached: float, unit: str) -> float:
+        return abs(wanted) or abs(reached) or (1.0 if unit == "1" else 1e-3)
+
+    def _at_bound(self, i: int, step: float, state: _State) -> bool:
+        hold, setting, _ = self.holds[i]
+        value = state.torn[setting]
+        assert isinstance(value, float)
+        return (value <= hold.low and step < 0.0) or (value >= hold.high and step > 0.0)
+
+    def _shown_residual(self, state: _State, aside: dict[str, str]) -> np.ndarray:
+        """Residual of the loops, with the misses of active holds in place of their settings."""
+        shown = state.residual.copy()
+        for hold, setting, result in self.holds:
+            if setting not in aside:
+                reached = float(state.values[result])  # type: ignore[arg-type] # a number
+                size = self._hold_size(hold.at, reached, hold.unit)
+                shown[self.places[setting]] = (hold.at - reached) / size * (hold.high - hold.low)
+        return shown
+
+    # --- sizes -------------------------------------------------------------------------------
+
+    def _scales(self, state: _State) -> np.ndarray:
+        """What counts as large, for every torn number."""
+        plant = self._plant_sizes(state.values)
+        scales = np.ones(self.size)
+        for key in self.order.tears:
+            scales[self.places[key]] = self._scale(self.variables[key], state, plant)
+        return scales
+
+    def _plant_sizes(self, values: Values) -> dict[str, float]:
+        matter = max((float(v.total) for v in values.values() if isinstance(v, Stream)), default=0.0)
+        numbers = [
+            abs(float(v)) for k, v in values.items()
+            if isinstance(v, float) and k in self.variables and self.variables[k].content in ("power", "light", "heat")
+        ]
+        return {"material": matter, "power": max(numbers, default=0.0)}
+
+    def _scale(self, variable: Variable, state: _State, plant: dict[str, float]) -> np.ndarray:
+        key = variable.key
+        numbers = self._pack(key, state.torn[key])
+        if key in self.program.settings:
+            hold = self.program.settings[key]
+            return np.array([hold.high - hold.low])
+        if variable.form == "matter":
+            total = max(float(numbers[:-1].sum()), 1e-12 * plant["material"])
+            flows = np.maximum(np.abs(numbers[:-1]), _SMALL * total)
+            return np.append(flows, max(abs(numbers[-1]), total * ENTHALPY_SCALE))
+        size = plant["material" if variable.content == "material" else "power"]
+        return np.maximum(np.abs(numbers), _SMALL * size)
+
+    # --- trouble -----------------------------------------------------------------------------
+
+    def _names(self) -> str:
+        names = list(dict.fromkeys(key.split(".")[0].split("~")[0] for key in self.order.tears if not key.startswith("hold ")))
+        return ", ".join(names) or "the holds"
+
+    def _settle(self) -> bool:
+        """Fix discrete choices; whether any was open."""
+        changed = False
+        for step in self.order.loop:
+            if isinstance(step, EquipmentStep) and step.equipment is not None and step.outcome is not None:
+                piece = step.equipment.settled(step.outcome)
+                changed |= piece is not step.equipment
+                step.equipment = piece
+        return changed
+
+    def _refuse_growth(self, state: _State) -> None:
+        sizes = {k: float(v.total) for k, v in state.values.items() if isinstance(v, Stream)}
+        fed = max((float(v.total) for v in self.constants.values() if isinstance(v, Stream)), default=0.0)
+        power = max((abs(float(v)) for v in self.constants.values() if isinstance(v, float)), default=0.0)
+        limit = _GROWN * max(fed, power / ENTHALPY_SCALE, 1e-9)
+        key = max(sizes, key=sizes.__getitem__, default="")
+        if key and sizes[key] > limit:
+            raise NotSolved("grows", f"what is in '{key}' grows without end ({sizes[key]:.3g} mol/s): open a purge or clean the feed", {"stream": key})
+
+    def _short_so_far(self, short: int, state: _State, change: np.ndarray) -> int:
+        """Count passes in which a switchboard's rest wants to be below zero; short after five."""
+        for key in self.order.tears:
+            if not self.variables[key].rate:
+                continue
+            wanted = float(state.torn[key]) + float(change[self.places[key]][0])  # type: ignore[arg-type] # a number
+            if wanted >= 0.0:
+                continue
+            if short + 1 < _SHORT_PASSES:
+                return short + 1
+            at_zero = self._pass({**state.torn, key: 0.0})
+            missing = -float(at_zero.back[key])  # type: ignore[arg-type] # a number
+            raise short_of_power(key.split(".")[0], missing)
+        return 0
+
+    def _mix(self, torn: Values) -> Values:
+        """Anderson's mixing of the last passes; settings stay."""
+        points: list[np.ndarray] = []
+        images: list[np.ndarray] = []
+        for _ in range(_MIXED_PASSES):
+            if self.passes >= _MOST_PASSES:
+                break
+            state = self._pass(torn)
+            scales = self._scales(state)
+            points.append(np.concatenate([self._pack(key, torn[key]) for key in self.order.tears]))
+            images.append(points[-1] + state.residual)
+            points, images = points[-_DEPTH - 1 :], images[-_DEPTH - 1 :]
+            torn = self._moved(torn, _anderson(points, images, scales) - points[-1])
+        return torn
+
+    def _not_converged(self, state: _State, scales: np.ndarray, closed: Closed) -> NotSolved:
+        worst: list[tuple[float, str]] = []
+        for key in self.order.tears:
+            part = state.residual[self.places[key]] / scales[self.places[key]]
+            worst.append((float(np.abs(part).max()), key))
+        worst.sort(reverse=True)
+        listed = ", ".join(f"'{key}' by {size:.2g}" for size, key in worst[:3])
+        text = (
+            f"the loop through {self._names()} is not closed after {self.passes} passes; still moving (relative): {listed}. "
+            "Look for an inventory with almost no way out, or for two settings that want different things"
+        )
+        return NotSolved("not-converged", text, {"residuals": dict((k, s) for s, k in worst)})
+
+
+def short_of_power(name: str, missing: float) -> NotSolved:
+    """What is said of a switchboard that cannot serve everybody."""
+    text = (
+        f"{name} is short of {missing / 1e3:.6g} kW with everybody served and nothing at 'rest': "
+        f"link '{name}.shortage' to a grid, give it more supply, or make the users smaller"
+    )
+    return NotSolved("short-of-power", text, {"switchboard": name, "short_W": missing})
+
+
+def _largest(change: np.ndarray, scales: np.ndarray) -> float:
+    """Largest relative size; what has no scale counts only if it moves."""
+    if not np.isfinite(change).all():
+        return float("inf")
+    moving = change != 0.0
+    return float((np.abs(change[moving]) / np.maximum(scales[moving], 1e-300)).max(initial=0.0))
+
+
+def _anderson(points: list[np.ndarray], images: list[np.ndarray], scales: np.ndarray) -> np.ndarray:
+    """Next point from the last ones: least squares over their residuals."""
+    residuals = [(y - x) / np.maximum(scales, 1e-300) for x, y in zip(points, images, strict=True)]
+    if len(points) == 1:
+        return images[-1]
+    differences = np.array([residuals[-1] - r for r in residuals[:-1]]).T
+    weights, *_ = np.linalg.lstsq(differences, residuals[-1], rcond=1e-12)
+    return images[-1] - sum(
+        (w * (images[-1] - y) for w, y in zip(weights, images[:-1], strict=True)), np.zeros_like(images[-1])
+    )
+

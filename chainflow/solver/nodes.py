@@ -1,0 +1,317 @@
+"""The steps of a pass: small functions from variables to variables.
+
+A piece of equipment is one step; a store is two (its state, then what it makes up and lets out);
+equipment that a call passes through is two (its state per mol, then its amounts).  Every step can
+give the derivatives of what it writes by what it reads: closed forms where the equipment has them,
+differences on that step alone elsewhere.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Mapping, Sequence
+from dataclasses import dataclass, field
+from typing import Any
+
+import numpy as np
+
+from chainflow.equipment.base import Equipment, Outcome, Site
+from chainflow.equipment.junctions import joined
+from chainflow.equipment.ports import ANY_NAME, Flow, Heat
+from chainflow.solver.variables import ENTHALPY_SCALE, Variable
+from chainflow.thermo.components import Matter
+from chainflow.thermo.streams import Stream
+from chainflow.thermo.validity import StateError
+
+Values = dict[str, Flow]
+Blocks = dict[tuple[str, str], np.ndarray]  # (written, read) -> block
+_STEP = 1e-6  # relative step of differences
+
+
+@dataclass(frozen=True, slots=True)
+class Source:
+    """Where a flow at an inlet, or an amount at an outlet, comes from: a variable or a constant."""
+
+    key: str = ""
+    constant: Flow | None = None
+    amount: Source | None = None  # how much of it, for a called line that is looked at as a whole
+
+    def of(self, values: Mapping[str, Flow]) -> Flow:
+        flow = values[self.key] if self.constant is None else self.constant
+        if self.amount is None:
+            return flow
+        factor = self.amount.of(values)
+        assert isinstance(factor, float)
+        return _times(flow, factor)
+
+    @property
+    def keys(self) -> tuple[str, ...]:
+        """Variables that it reads."""
+        return ((self.key,) if self.key else ()) + (self.amount.keys if self.amount is not None else ())
+
+
+@dataclass
+class Step:
+    """One function of the pass."""
+
+    name: str
+    variables: Mapping[str, Variable]  # all of the program, by key
+    matter: Matter
+    reads: tuple[str, ...] = ()
+    writes: tuple[str, ...] = ()
+    runs: int = 0  # how often the equipment was run
+
+    def run(self, values: Mapping[str, Flow]) -> Values:
+        """Compute what is written."""
+        raise NotImplementedError
+
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        """Blocks by variable read, for those whose derivatives are known."""
+        return {}
+
+    def blocks(self, values: Mapping[str, Flow], written: Values) -> Blocks:
+        """All derivatives of what is written by what is read."""
+        known = self.closed_forms(values)
+        kept = self.memory()
+        found: Blocks = {}
+        for key in self.reads:
+            found |= known[key] if key in known else self._differences(key, values, written)
+        self.remember(kept)
+        return found
+
+    def memory(self) -> Any:
+        """What the last run left behind; differences must not change it."""
+        return None
+
+    def remember(self, kept: Any) -> None:
+        """Put back what `memory` gave."""
+
+    def _differences(self, key: str, values: Mapping[str, Flow], written: Values) -> Blocks:
+        """One-sided differences by one variable; none for matter that does not flow."""
+        variable = self.variables[key]
+        value = values[key]
+        base = variable.pack(value, self.matter)
+        start = {w: self.variables[w].pack(written[w], self.matter) for w in self.writes}
+        found = {(w, key): np.zeros((len(start[w]), variable.size)) for w in self.writes}
+        if isinstance(value, Stream) and float(value.total) == 0.0:
+            return found
+        guess = float(value.temperature) if isinstance(value, Stream) else None
+        for column in range(variable.size):
+            step = _step_of(variable, base, column)
+            changed = base.copy()
+            changed[column] += step
+            moved = self.run({**values, key: variable.unpack(changed, self.matter, guess)})
+            for w in self.writes:
+                found[w, key][:, column] = (self.variables[w].pack(moved[w], self.matter) - start[w]) / step
+        return found
+
+
+def _step_of(variable: Variable, base: np.ndarray, column: int) -> float:
+    if variable.form == "matter":
+        total = float(base[:-1].sum())
+        return _STEP * total * (ENTHALPY_SCALE if column == variable.size - 1 else 1.0)
+    size = abs(float(base[column]))
+    return _STEP * (size if size > 0.0 else 1.0)
+
+
+@dataclass
+class EquipmentStep(Step):
+    """One piece of equipment: flows at its outlets, amounts it asks for, results that are held."""
+
+    equipment: Equipment | None = None
+    site: Site | None = None
+    feeds: dict[str, tuple[Source, ...]] = field(default_factory=dict)
+    many: frozenset[str] = frozenset()  # inlets that take any number of lines
+    asked: dict[str, tuple[Source, ...]] = field(default_factory=dict)
+    settings: tuple[tuple[tuple[str, ...], str], ...] = ()  # (path, variable)
+    outlets: dict[str, str] = field(default_factory=dict)  # outlet -> variable
+    drawn: dict[str, str] = field(default_factory=dict)  # inlet -> variable
+    results: dict[str, Callable[[Outcome], float]] = field(default_factory=dict)  # variable -> getter
+    outcome: Outcome | None = None
+    _used: tuple[Any, Any, Equipment] | None = None
+
+    def inputs(self, values: Mapping[str, Flow]) -> tuple[dict[str, Any], dict[str, Any], Equipment]:
+        """Feeds, amounts asked and the equipment with its held settings, for these values."""
+        assert self.equipment is not None
+        feeds: dict[str, Any] = {}
+        for port, sources in self.feeds.items():
+            flows = tuple(source.of(values) for source in sources)
+            feeds[port] = flows if port in self.many else flows[0]
+        asked = {port: _added([source.of(values) for source in sources]) for port, sources in self.asked.items()}
+        piece = self.equipment
+        for path, key in self.settings:
+            number = values[key]
+            assert isinstance(number, float)
+            piece = piece.with_setting(path, number)
+        return feeds, asked, piece
+
+    def run(self, values: Mapping[str, Flow]) -> Values:
+        assert self.site is not None
+        feeds, asked, piece = self.inputs(values)
+        self.runs += 1
+        outcome = piece.operate(feeds, asked, self.site)
+        self.outcome, self._used = outcome, (feeds, asked, piece)
+        return self._written(outcome)
+
+    def _written(self, outcome: Outcome) -> Values:
+        written: Values = {key: outcome.outlets[port] for port, key in self.outlets.items()}
+        written |= {key: outcome.drawn[port] for port, key in self.drawn.items()}
+        written |= {key: get(outcome) for key, get in self.results.items()}
+        return written
+
+    def memory(self) -> Any:
+        return self.outcome, self._used
+
+    def remember(self, kept: Any) -> None:
+        self.outcome, self._used = kept
+
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        assert self.site is not None and self._used is not None and self.outcome is not None
+        if self.results:
+            return {}
+        feeds, asked, piece = self._used
+        slopes = piece.slopes(feeds, asked, self.site, self.outcome)
+        if not slopes:
+            return {}
+        labels = self._labels()
+        return {
+            key: self._summed(key, [slopes[label] for label in names])
+            for key, names in labels.items()
+            if all(label in slopes for label in names)
+        }
+
+    def _labels(self) -> dict[str, list[str]]:
+        """How the equipment calls each variable that is read."""
+        labels: dict[str, list[str]] = {}
+        for port, sources in self.feeds.items():
+            for source in sources:
+                labels.setdefault(source.key, []).append(port)
+        for port, sources in self.asked.items():
+            for source in sources:
+                labels.setdefault(source.key, []).append(f"asked:{port}")
+        for path, key in self.settings:
+            labels.setdefault(key, []).append(f"settings:{'.'.join(path)}")
+        labels.pop("", None)
+        return labels
+
+    def _summed(self, key: str, columns: Sequence[Mapping[str, np.ndarray]]) -> Blocks:
+        read = self.variables[key]
+        places = read.rows(self.matter)
+        blocks: Blocks = {}
+        names = {w: port for port, w in self.outlets.items()} | {w: f"drawn:{port}" for port, w in self.drawn.items()}
+        for w, label in names.items():
+            rows = self.variables[w].rows(self.matter)
+            block = np.zeros((len(rows), read.size))
+            for column in columns:
+                if label in column:
+                    block += column[label][np.ix_(rows, places)]
+            blocks[w, key] = block
+        return blocks
+
+
+@dataclass
+class StoreStateStep(EquipmentStep):
+    """What one mol of a store's draws is, or of another server whose state can change."""
+
+    state: str = ""  # the variable written
+
+    def run(self, values: Mapping[str, Flow]) -> Values:
+        assert self.site is not None
+        feeds, asked, piece = self.inputs(values)
+        self.runs += 1
+        self._used = (feeds, asked, piece)
+        sample = piece.sample(feeds, asked, self.site)
+        return {self.state: sample[ANY_NAME]}
+
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        assert self.site is not None and self._used is not None
+        feeds, asked, piece = self._used
+        self.outlets = {"state": self.state}
+        self.outcome = Outcome({})
+        return super().closed_forms(values)
+
+
+@dataclass
+class ThroughStateStep(EquipmentStep):
+    """Equipment that a call passes through, run on one mol/s: what one mol of its outlet is."""
+
+    main_outlet: str = ""
+    state: str = ""
+
+    def _written(self, outcome: Outcome) -> Values:
+        outlet = outcome.outlets[self.main_outlet]
+        assert isinstance(outlet, Stream)
+        total = float(outlet.total)
+        return {self.state: outlet.scaled(1.0 / total) if total > 0.0 else outlet}
+
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        return {}
+
+
+@dataclass
+class ThroughAmountStep(EquipmentStep):
+    """What equipment that a call passes through asks and gives, scaled to what is asked of it."""
+
+    main_inlet: str = ""
+    main_outlet: str = ""
+    amount: Source = field(default_factory=Source)  # asked at the main outlet [mol/s]
+
+    def _written(self, outcome: Outcome) -> Values:
+        raise NotImplementedError("amounts are written by run")
+
+    def run(self, values: Mapping[str, Flow]) -> Values:
+        assert self.site is not None
+        feeds, asked, piece = self.inputs(values)
+        self.runs += 1
+        outcome = piece.operate(feeds, asked, self.site)
+        self.outcome = outcome
+        outlet = outcome.outlets[self.main_outlet]
+        wanted = self.amount.of(values)
+        assert isinstance(outlet, Stream) and isinstance(wanted, float)
+        total = float(outlet.total)
+        factor = wanted / total if total > 0.0 else 0.0
+        written: Values = {key: _times(outcome.outlets[port], factor) for port, key in self.outlets.items()}
+        for port, key in self.drawn.items():
+            written[key] = factor if port == self.main_inlet else _times(outcome.drawn[port], factor)
+        return written
+
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        """Everything is proportional to the amount."""
+        key = self.amount.key
+        wanted = self.amount.of(values)
+        if not key or not isinstance(wanted, float) or wanted == 0.0:
+            return {}
+        written = self.run(values)
+        return {key: {(w, key): self.variables[w].pack(written[w], self.matter)[:, None] / wanted for w in self.writes}}
+
+
+@dataclass
+class ResultStep(Step):
+    """The number that a hold looks at, from what passes a port."""
+
+    sources: tuple[Source, ...] = ()
+    get: Callable[[Flow], float] | None = None
+    key: str = ""
+
+    def run(self, values: Mapping[str, Flow]) -> Values:
+        assert self.get is not None
+        flows = [source.of(values) for source in self.sources]
+        streams = [flow for flow in flows if isinstance(flow, Stream)]
+        whole = joined(streams, self.matter) if streams else _added(flows)
+        number = self.get(whole)
+        return {self.key: number if np.isfinite(number) else 0.0}
+
+
+def _times(flow: Flow, factor: float) -> Flow:
+    return flow.scaled(factor) if isinstance(flow, Stream | Heat) else flow * factor
+
+
+def _added(amounts: list[Flow]) -> Any:
+    if any(isinstance(a, Heat) for a in amounts):
+        return Heat.total([a for a in amounts if isinstance(a, Heat)])
+    return sum(float(a) for a in amounts)  # type: ignore[arg-type] # amounts are numbers or heat
+
+
+__all__ = [
+    "EquipmentStep", "ResultStep", "Source", "StateError", "Step", "StoreStateStep",
+    "ThroughAmountStep", "ThroughStateStep", "Values",
+]

@@ -1,0 +1,189 @@
+"""Solve a checked flowsheet: structure first, then the loops, then the audit."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from chainflow.basis.faults import Fault, NotSolved
+from chainflow.equipment.ports import Heat
+from chainflow.equipment.power import Switchboard
+from chainflow.flowsheet.network import Flowsheet, Hold
+from chainflow.solver.audit import audit
+from chainflow.solver.finishing import Finish
+from chainflow.solver.inventories import Conditional, check_inventories, find_presence
+from chainflow.solver.newton import FLOOR, Closed, Newton, short_of_power
+from chainflow.solver.order import Order, order_steps
+from chainflow.solver.pressures import Pressures, settle_pressures
+from chainflow.solver.program import Program, build_program
+from chainflow.solver.recycles import drop_free_recycles
+from chainflow.solver.solution import Balance, HoldResult, Solution
+from chainflow.thermo.streams import Stream
+
+_SOLVED = 1e-9  # largest relative balance error of what is called solved
+_ROUND_OFF = 1e-9
+
+
+@dataclass(frozen=True)
+class Structure:
+    """What is known of a flowsheet before anything is solved."""
+
+    flowsheet: Flowsheet
+    pressures: Pressures
+    loops: tuple[tuple[str, ...], ...]  # equipment of each loop of information
+    tears: tuple[str, ...]  # variables at which the loops are cut
+    remarks: tuple[Fault, ...]
+
+
+def inspect(flowsheet: Flowsheet) -> Structure:
+    """The structure of a flowsheet; raises like `solve_flowsheet` for what its structure shows."""
+    prepared = _Prepared(flowsheet)
+    return Structure(
+        flowsheet, prepared.pressures, _equipment_of(prepared.order, flowsheet),
+        tuple(prepared.order.tears), (*flowsheet.remarks, *prepared.remarks),
+    )
+
+
+def solve_flowsheet(flowsheet: Flowsheet) -> Solution:
+    """The steady state of a flowsheet.
+
+    Raises
+    ------
+    FlowsheetFault
+        If its pressures cannot be.
+    NotSolved
+        If it has no steady state, is short of something, or its loops do not close.
+    """
+    return _Prepared(flowsheet).solve()
+
+
+class _Prepared:
+    """Structure of one topology, ready to be solved."""
+
+    def __init__(self, flowsheet: Flowsheet) -> None:
+        self.flowsheet = flowsheet
+        self.pressures = settle_pressures(flowsheet)
+        presence = find_presence(flowsheet)
+        self.conditional = check_inventories(flowsheet, presence)
+        self.program = build_program(flowsheet, self.pressures, presence)
+        self.order = order_steps(self.program)
+        self.remarks = tuple(drop_free_recycles(flowsheet, self.pressures))
+
+    def solve(self) -> Solution:
+        closed = self._close({})
+        self._judge_holds(closed)
+        finish = Finish(self.program, closed.values)
+        self._judge(finish, closed)
+        balance = audit(finish)
+        self._refuse_imbalance(balance)
+        return Solution(
+            self.flowsheet, finish.outcomes, finish.feeds, finish.streams, balance, closed.passes,
+            sum(step.runs for step in self.program.steps), self._hold_results(closed),
+            (*self.flowsheet.remarks, *self.remarks), closed.error,
+        )
+
+    def _close(self, fixed: Mapping[str, float]) -> Closed:
+        return Newton(self.program, self.order, dict(fixed)).solve()
+
+    # --- holds -------------------------------------------------------------------------------
+
+    def _hold_results(self, closed: Closed) -> tuple[HoldResult, ...]:
+        return tuple(
+            HoldResult(h.text, h.at, _number(closed, result), h.unit, h.by, _number(closed, setting), h.by_unit)
+            for h, setting, result in self.program.holds
+        )
+
+    def _judge_holds(self, closed: Closed) -> None:
+        for hold, setting, result in self.program.holds:
+            why = closed.aside.get(setting)
+            if why == "unable":
+                raise NotSolved(
+                    "hold-unable", f"hold {hold.text}: moving {hold.by} changes nothing there (it stays at {_shown(_number(closed, result), hold.unit)}): "
+                    "aim at a result that the setting can move, or let something flow", {"hold": hold.text},
+                )
+            if why == "bound":
+                raise self._out_of_reach(hold, setting, result, closed)
+
+    def _out_of_reach(self, hold: Hold, setting: str, result: str, closed: Closed) -> NotSolved:
+        """A setting ended at one end of its range: say what comes out at both ends."""
+        here = _number(closed, setting)
+        there = hold.high if abs(here - hold.low) < abs(here - hold.high) else hold.low
+        reached = {here: _number(closed, result)}
+        try:
+            reached[there] = _number(self._close({setting: there}), result)
+        except NotSolved:
+            reached[there] = float("nan")
+        ends = " and ".join(
+            f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}" for value in sorted(reached)
+        )
+        text = f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is {ends}; widen 'within' or change what is wanted"
+        details = {"hold": hold.text, "wanted": hold.at, "ends": [[v, None if r != r else r] for v, r in sorted(reached.items())]}
+        return NotSolved("hold-out-of-reach", text, details)
+
+    # --- judgement ---------------------------------------------------------------------------
+
+    def _judge(self, finish: Finish, closed: Closed) -> None:
+        for name, outcome in finish.outcomes.items():
+            for port, why in outcome.unmet.items():
+                code = "overfull" if why.startswith("overfull") else "heat-short" if port == "shortage" else "no-answer"
+                raise NotSolved(code, f"{name}.{port}: {why}", {"equipment": name, "port": port})
+        for name, piece in self.flowsheet.equipment.items():
+            if isinstance(piece, Switchboard):
+                self._judge_switchboard(finish, name)
+        for conditional in self.conditional:
+            self._judge_conditional(finish, conditional)
+        if closed.error > FLOOR:
+            raise NotSolved("not-converged", f"the loops are closed to {closed.error:.1e} only", {"error": closed.error})
+
+    def _judge_switchboard(self, finish: Finish, name: str) -> None:
+        rest = finish.outcomes[name].outlets["rest"]
+        assert isinstance(rest, float)
+        supplied = sum(f for f in _numbers(finish.feeds[name].get("supply", ())))
+        if rest < -_ROUND_OFF * max(supplied, 1e-300):
+            raise short_of_power(name, -rest)
+        if rest > _ROUND_OFF * supplied and not self.flowsheet.line_from(name, "rest"):
+            text = f"{name} has {rest / 1e3:.6g} kW left and nowhere to go: link '{name}.rest' to a user, a grid or a vent"
+            raise NotSolved("surplus-power", text, {"switchboard": name, "surplus_W": rest})
+
+    def _judge_conditional(self, finish: Finish, conditional: Conditional) -> None:
+        """An inventory that leaves only with a store's surplus needs that surplus."""
+        for name in conditional.stores:
+            rest = finish.outcomes[name].outlets.get("rest")
+            if isinstance(rest, Stream) and float(rest.total) > 0.0:
+                return
+        raise NotSolved(conditional.code, conditional.text, {"stores": list(conditional.stores)})
+
+    def _refuse_imbalance(self, balance: Balance) -> None:
+        for what, error in (("elements", balance.elements), ("energy", balance.energy)):
+            if not error <= _SOLVED:
+                worst = max(balance.by_equipment, key=lambda n: balance.by_equipment[n][what == "energy"], default="the plant")
+                text = f"{what} balance only to {error:.1e} (wanted {_SOLVED:.0e}), worst at {worst}: please report this flowsheet"
+                raise NotSolved("not-balanced", text, {"error": error, "equipment": worst})
+
+
+def _numbers(flows: object) -> list[float]:
+    parts = flows if isinstance(flows, tuple) else (flows,)
+    return [f.rate if isinstance(f, Heat) else float(f) for f in parts if isinstance(f, float | Heat)]
+
+
+def _number(closed: Closed, key: str) -> float:
+    value = closed.values[key]
+    assert isinstance(value, float)
+    return value
+
+
+def _shown(value: float, unit: str) -> str:
+    from chainflow.basis.quantities import format_quantity
+
+    return format_quantity(value, unit) if value == value else "not to be had"
+
+
+def _equipment_of(order: Order, flowsheet: Flowsheet) -> tuple[tuple[str, ...], ...]:
+    loops = []
+    for members in order.loops:
+        names = {key.split(".")[0].split("~")[0] for key in members}
+        loops.append(tuple(name for name in flowsheet.equipment if name in names))
+    return tuple(loops)
+
+
+__all__ = ["Structure", "inspect", "solve_flowsheet"]

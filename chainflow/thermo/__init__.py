@@ -1,0 +1,1 @@
+"""Matter: components, streams, flash, equilibrium, real gas, heating values, exergy."""

@@ -1,0 +1,225 @@
+"""Which phases does a flow form, and at which temperature does it have a given enthalpy?
+
+One case at a time: flows (components,) [mol/s], temperature [K], pressure [Pa], enthalpy [W].
+The enthalpy of gas and liquid water in equilibrium rises steadily with temperature, so a search
+inside a bracket always ends; where it jumps (pure water boils), the split is set by the enthalpy.
+"""
+
+from math import isfinite
+from typing import NamedTuple
+
+import numpy as np
+
+from chainflow.basis.constants import GAS_CONSTANT
+from chainflow.thermo.components import Array, Matter, liquefaction
+from chainflow.thermo.search import NARROWEST, Bracket
+from chainflow.thermo.species import HIGHEST_TEMPERATURE, LOWEST_TEMPERATURE
+from chainflow.thermo.validity import StateError, require_amounts, require_state
+from chainflow.thermo.water import (
+    CRITICAL_PRESSURE,
+    CRITICAL_TEMPERATURE,
+    condenses,
+    saturation_pressure,
+    saturation_temperature,
+    split,
+    split_by_temperature,
+    split_slopes,
+)
+
+LAST_STEP = 2e-6  # [K]: after a Newton step below this the next error is below round-off
+
+
+class Phases(NamedTuple):
+    """Flows of gas and liquid water [mol/s], their temperature [K] and enthalpy [W]."""
+
+    gas: Array
+    water: Array
+    temperature: float
+    enthalpy: float
+
+
+class EnthalpySlopes(NamedTuple):
+    """Slopes of the enthalpy by flows [J/mol] (components,) and by temperature [W/K]."""
+
+    by_flows: Array
+    by_temperature: float
+
+
+def phases_at(
+    matter: Matter,
+    flows: Array,
+    temperature: float,
+    pressure: float,
+    dissolved: tuple[str, ...],
+) -> Phases:
+    """Return what flows form at a temperature and pressure."""
+    require_state(temperature, pressure)
+    found = split(matter, flows, temperature, pressure, dissolved)
+    if found is None:
+        enthalpy = matter.gas_enthalpy(flows, temperature, pressure)
+        return Phases(flows, matter.nothing, temperature, enthalpy)
+    gas, water = found
+    enthalpy = matter.gas_enthalpy(gas, temperature, pressure)
+    enthalpy += matter.water_enthalpy(water, temperature, pressure)
+    return Phases(gas, water, temperature, enthalpy)
+
+
+def find_phases(
+    matter: Matter,
+    flows: Array,
+    enthalpy: float,
+    pressure: float,
+    guess: float,
+    dissolved: tuple[str, ...],
+) -> Phases:
+    """Return the phases whose enthalpy is given; raises `StateError` outside the data."""
+    guess = min(max(guess, LOWEST_TEMPERATURE), HIGHEST_TEMPERATURE)
+    require_state(guess, pressure)
+    total = require_amounts(flows, matter.components)
+    if total == 0.0:
+        return Phases(flows, matter.nothing, guess, 0.0)
+    if not isfinite(enthalpy):
+        raise StateError(f"enthalpy is {enthalpy} W, wanted a finite number")
+    if matter.water is not None and flows[matter.water] == total:
+        boiling = _boiling_water(matter, flows, enthalpy, pressure)
+        if boiling is not None:
+            return boiling
+    return _search(matter, flows, enthalpy, pressure, guess, dissolved)
+
+
+def _boiling_water(matter: Matter, flows: Array, enthalpy: float, pressure: float) -> Phases | None:
+    """Return pure water split by its enthalpy, or None if it does not boil."""
+    lowest = saturation_pressure(LOWEST_TEMPERATURE)
+    if not lowest < pressure < CRITICAL_PRESSURE:
+        return None
+    temperature = saturation_temperature(pressure)
+    steam = matter.gas_enthalpy(flows, temperature, pressure)
+    liquid = matter.water_enthalpy(flows, temperature, pressure)
+    if not liquid <= enthalpy <= steam:
+        return None
+    share = (enthalpy - liquid) / (steam - liquid)
+    return Phases(flows * share, flows * (1.0 - share), temperature, enthalpy)
+
+
+def _search(
+    matter: Matter,
+    flows: Array,
+    enthalpy: float,
+    pressure: float,
+    guess: float,
+    dissolved: tuple[str, ...],
+) -> Phases:
+    bracket, temperature = Bracket(), guess
+    for _ in range(200):
+        trial, capacity = _trial(matter, flows, temperature, pressure, dissolved)
+        excess = trial.enthalpy - enthalpy
+        if excess == 0.0:
+            return trial
+        if bracket.outside(temperature, excess):
+            raise _no_such_enthalpy(flows, enthalpy, pressure)
+        step = -excess / capacity
+        small = abs(step) < LAST_STEP
+        if small and (better := _last_step(matter, trial, step, pressure, enthalpy, dissolved)):
+            return better
+        if bracket.empty or (small and abs(step) < NARROWEST):
+            return _close_by_boiling(matter, trial, pressure, enthalpy)
+        temperature = bracket.next_trial(temperature, excess, step)
+    return _close_by_boiling(matter, trial, pressure, enthalpy)
+
+
+def _trial(
+    matter: Matter,
+    flows: Array,
+    temperature: float,
+    pressure: float,
+    dissolved: tuple[str, ...],
+) -> tuple[Phases, float]:
+    """Return the phases at a temperature and the slope of their enthalpy [W/K]."""
+    found = split(matter, flows, temperature, pressure, dissolved)
+    if found is None:
+        state = matter.gas_state(flows, temperature, pressure)
+        return Phases(flows, matter.nothing, temperature, state.enthalpy), state.heat_capacity
+    gas, water = found
+    vapour = matter.gas_partial(gas, temperature, pressure)
+    names = matter.solubles(dissolved).names
+    liquid = matter.water_partial(temperature, pressure, names).enthalpy
+    enthalpy = float(gas @ vapour.enthalpy + water @ liquid)
+    capacity = vapour.heat_capacity + matter.water_heat_capacity(water, temperature, pressure)
+    moved = split_by_temperature(matter, flows, water, temperature, pressure, dissolved)
+    capacity += float((liquid - vapour.enthalpy) @ moved)
+    return Phases(gas, water, temperature, enthalpy), capacity
+
+
+def _last_step(
+    matter: Matter,
+    trial: Phases,
+    step: float,
+    pressure: float,
+    enthalpy: float,
+    dissolved: tuple[str, ...],
+) -> Phases | None:
+    """Return a gas moved by the last small step, or None if it is wet before or after it."""
+    temperature = trial.temperature + step
+    if trial.water.any() or not LOWEST_TEMPERATURE <= temperature <= HIGHEST_TEMPERATURE:
+        return None
+    if condenses(matter, trial.gas, temperature, pressure, dissolved):
+        return None
+    return Phases(trial.gas, trial.water, temperature, enthalpy)
+
+
+def _close_by_boiling(matter: Matter, trial: Phases, pressure: float, enthalpy: float) -> Phases:
+    """Meet the enthalpy by moving water between the phases at constant temperature.
+
+    For a temperature found to round-off this moves a trace; where the enthalpy jumps because
+    water boils it is the boiling itself. Any other jump is a gas that would liquefy.
+    """
+    gas, water, temperature, found = trial
+    missing, place = enthalpy - found, matter.water
+    wet = temperature <= CRITICAL_TEMPERATURE + 1e-6
+    if place is not None and wet and float(gas[place] + water[place]) > 0.0:
+        temperature = min(temperature, CRITICAL_TEMPERATURE)
+        vapour = matter.gas_partial(gas, temperature, pressure).enthalpy
+        liquid = matter.water_partial(temperature, pressure, ("H2O",)).enthalpy
+        latent = float(vapour[place] - liquid[place])
+        moved = min(max(missing / latent, -float(gas[place])), float(water[place]))
+        change = np.zeros(len(gas))
+        change[place] = moved
+        gas, water, missing = gas + change, water - change, missing - moved * latent
+    scale = abs(enthalpy) + GAS_CONSTANT * temperature * float((gas + water).sum())
+    if abs(missing) > 1e-10 * scale:
+        raise StateError(liquefaction(temperature, pressure))
+    return Phases(gas, water, temperature, enthalpy)
+
+
+def _no_such_enthalpy(flows: Array, enthalpy: float, pressure: float) -> StateError:
+    per_mol = enthalpy / float(flows.sum())
+    side = "below" if per_mol < 0.0 else "outside"
+    return StateError(
+        f"no temperature from {LOWEST_TEMPERATURE:g} to {HIGHEST_TEMPERATURE:g} K gives an "
+        f"enthalpy of {per_mol:.6g} J/mol at {pressure:g} Pa: the heat added or taken away is "
+        f"{side} what the data describe"
+    )
+
+
+def phase_slopes(
+    matter: Matter,
+    gas: Array,
+    water: Array,
+    temperature: float,
+    pressure: float,
+    dissolved: tuple[str, ...],
+) -> EnthalpySlopes:
+    """Return the slopes of the enthalpy of phases that stay in equilibrium."""
+    vapour = matter.gas_partial(gas, temperature, pressure)
+    if not water.any():
+        return EnthalpySlopes(vapour.enthalpy, vapour.heat_capacity)
+    names = matter.solubles(dissolved).names
+    liquid = matter.water_partial(temperature, pressure, names).enthalpy
+    moved = split_slopes(matter, gas + water, gas, water, temperature, pressure, dissolved)
+    condensation = liquid - vapour.enthalpy  # where nothing moves, the split has no slope
+    own = vapour.heat_capacity + matter.water_heat_capacity(water, temperature, pressure)
+    by_temperature = own + float(condensation @ moved.by_temperature)
+    return EnthalpySlopes(vapour.enthalpy + condensation @ moved.by_flows, by_temperature)
+
+
+__all__ = ["EnthalpySlopes", "Phases", "find_phases", "phase_slopes", "phases_at"]

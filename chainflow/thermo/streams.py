@@ -1,0 +1,306 @@
+"""What is in a line: how much of what, in which phases, how hot, at which pressure?
+
+A `Stream` is immutable and holds molar flows per phase [mol/s], temperature [K], pressure [Pa] and
+the enthalpy flow [W] (formation enthalpies included). The last axis is components, axes before it
+are cases. Enthalpy is stored because a boiling stream is not fixed by temperature and pressure.
+Phases: gas, and liquid water with what Henry's law dissolves in it; `liquid` (hydrocarbons,
+liquefied gases) is zero until a flash for them exists.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass
+from typing import TYPE_CHECKING, Any, cast
+
+import numpy as np
+
+from chainflow.basis.constants import T_REFERENCE
+from chainflow.thermo.components import Array, Matter
+from chainflow.thermo.phases import Phases, find_phases, phase_slopes, phases_at
+from chainflow.thermo.validity import without_round_off
+
+if TYPE_CHECKING:
+    from chainflow.thermo.exergy import Environment
+
+Value = float | Array  # one case, or an array of cases
+DISSOLVED = ("CO2",)
+
+
+@dataclass(frozen=True, slots=True, eq=False)
+class Stream:
+    """Flows by phase and the state they are in; made by the class methods below."""
+
+    matter: Matter
+    gas: Array  # (..., components) [mol/s]
+    water: Array  # (..., components) [mol/s], liquid water and what is dissolved in it
+    liquid: Array  # (..., components) [mol/s]
+    temperature: Value  # (...) [K]
+    pressure: Value  # (...) [Pa]
+    enthalpy: Value  # (...) [W]
+
+    @classmethod
+    def at(
+        cls,
+        matter: Matter,
+        flows: Array,
+        temperature: Value,
+        pressure: Value,
+        dissolved: tuple[str, ...] = DISSOLVED,
+    ) -> "Stream":
+        """Return the stream at a temperature [K] and pressure [Pa], phases found.
+
+        `flows` [mol/s] has shape (..., components); temperature and pressure are broadcast over
+        the cases. Raises `StateError` for negative flows and states outside the data.
+        """
+        flows = _own(flows)
+        if flows.ndim > 1 or np.ndim(temperature) or np.ndim(pressure):
+            make = _per_case(lambda n, t, p: cls.at(matter, n, t, p, dissolved))
+            return cast(Stream, make(flows, temperature, pressure))
+        temperature, pressure = float(temperature), float(pressure)
+        clean = without_round_off(flows, matter.components)
+        found = phases_at(matter, clean, temperature, pressure, dissolved)
+        return cls._of(matter, found, pressure)
+
+    @classmethod
+    def gaseous(cls, matter: Matter, flows: Array, temperature: Value, pressure: Value) -> "Stream":
+        """Return the stream as a gas without looking for liquid."""
+        flows = _own(flows)
+        if flows.ndim > 1 or np.ndim(temperature) or np.ndim(pressure):
+            make = _per_case(lambda n, t, p: cls.gaseous(matter, n, t, p))
+            return cast(Stream, make(flows, temperature, pressure))
+        temperature, pressure = float(temperature), float(pressure)
+        clean = without_round_off(flows, matter.components)
+        enthalpy = matter.gas_enthalpy(clean, temperature, pressure)
+        return cls._of(matter, Phases(clean, matter.nothing, temperature, enthalpy), pressure)
+
+    @classmethod
+    def from_enthalpy(
+        cls,
+        matter: Matter,
+        flows: Array,
+        enthalpy: Value,
+        pressure: Value,
+        guess: Value | None = None,
+        dissolved: tuple[str, ...] = DISSOLVED,
+    ) -> "Stream":
+        """Return the stream whose enthalpy [W] is given; temperature and phases are found.
+
+        Boiling water is split so that the enthalpy is met. Without flow the temperature is the
+        guess, or 298.15 K. Raises `StateError` if no temperature of the data has this enthalpy.
+        """
+        flows = _own(flows)
+        if flows.ndim > 1 or np.ndim(enthalpy) or np.ndim(pressure):
+            start: Value = np.nan if guess is None else guess
+            make = _per_case(
+                lambda n, h, p, t: cls.from_enthalpy(
+                    matter, n, h, p, None if np.isnan(t) else t, dissolved
+                )
+            )
+            return cast(Stream, make(flows, enthalpy, pressure, start))
+        pressure = float(pressure)
+        clean = without_round_off(flows, matter.components)
+        start = T_REFERENCE if guess is None else float(guess)
+        found = find_phases(matter, clean, float(enthalpy), pressure, start, dissolved)
+        return cls._of(matter, found, pressure)
+
+    @classmethod
+    def empty(
+        cls, matter: Matter, temperature: float = T_REFERENCE, pressure: float = 101325.0
+    ) -> "Stream":
+        """Return a stream without flow."""
+        nothing = matter.nothing
+        return cls._of(matter, Phases(nothing, nothing, temperature, 0.0), pressure)
+
+    @classmethod
+    def _of(cls, matter: Matter, phases: Phases, pressure: float) -> "Stream":
+        gas, water, temperature, enthalpy = phases
+        gas.setflags(write=False)
+        water.setflags(write=False)
+        return cls(matter, gas, water, matter.nothing, temperature, pressure, enthalpy)
+
+    @classmethod
+    def stack(cls, streams: Sequence["Stream"]) -> "Stream":
+        """Return several streams of the same matter as one with a case axis in front."""
+        if not streams:
+            raise ValueError("nothing to stack: give at least one stream")
+        matter = streams[0].matter
+        if any(stream.matter is not matter for stream in streams):
+            raise ValueError("streams with different components cannot be stacked")
+        fields = ("gas", "water", "liquid", "temperature", "pressure", "enthalpy")
+        arrays = [np.stack([getattr(s, field) for s in streams]) for field in fields]
+        for array in arrays:
+            array.setflags(write=False)
+        return cls(matter, *arrays)
+
+    def case(self, place: int) -> "Stream":
+        """Return one case of a stacked stream."""
+        temperature, pressure, enthalpy = (
+            _plain(np.asarray(values)[place])
+            for values in (self.temperature, self.pressure, self.enthalpy)
+        )
+        gas, water, liquid = self.gas[place], self.water[place], self.liquid[place]
+        return Stream(self.matter, gas, water, liquid, temperature, pressure, enthalpy)
+
+    @property
+    def cases(self) -> tuple[int, ...]:
+        """Shape of the cases; () for a single one."""
+        return self.gas.shape[:-1]
+
+    @property
+    def flows(self) -> Array:
+        """Flows of all phases together [mol/s], shape (..., components)."""
+        return self.gas + self.water + self.liquid
+
+    @property
+    def total(self) -> Value:
+        """Flow of all phases together [mol/s]."""
+        return _plain(self.flows.sum(axis=-1))
+
+    @property
+    def phase_totals(self) -> dict[str, Value]:
+        """Flow of each phase [mol/s]."""
+        phases = {"gas": self.gas, "water": self.water, "liquid": self.liquid}
+        return {name: _plain(flows.sum(axis=-1)) for name, flows in phases.items()}
+
+    @property
+    def mass_flow(self) -> Value:
+        """Mass flow [kg/s]."""
+        return _plain(self.flows @ self.matter.molar_mass)
+
+    @property
+    def lhv(self) -> Value:
+        """Lower heating value of the combustibles at 25 degC [W]."""
+        return _plain(self.flows @ self.matter.lhv)
+
+    @property
+    def hhv(self) -> Value:
+        """Upper heating value of the combustibles at 25 degC [W]."""
+        return _plain(self.flows @ self.matter.hhv)
+
+    def flow(self, name: str) -> Value:
+        """Return the flow of one component in all phases [mol/s]; zero if it is not in use."""
+        place = self.matter.index.get(name)
+        return _plain(self.total * 0.0 if place is None else self.flows[..., place])
+
+    def fraction(self, name: str) -> Value:
+        """Return the mole fraction of a component over all phases; zero without flow."""
+        return _ratio(self.flow(name), self.total)
+
+    def dry_fraction(self, name: str) -> Value:
+        """Return the mole fraction with water left out; zero if nothing but water is there."""
+        dry = self.total - self.flow("H2O")
+        return _ratio(0.0 * dry if name == "H2O" else self.flow(name), dry)
+
+    @property
+    def entropy(self) -> Value:
+        """Entropy flow [W/K]."""
+        return self._each(Stream._entropy_of_one)
+
+    def _entropy_of_one(self) -> float:
+        temperature, pressure = float(self.temperature), float(self.pressure)
+        entropy = self.matter.gas_entropy(self.gas, temperature, pressure)
+        return entropy + self.matter.water_entropy(self.water, temperature, pressure)
+
+    @property
+    def volume_flow(self) -> Value:
+        """Volume flow of the gas [m3/s]."""
+        return self._each(
+            lambda s: s.matter.gas_volume(s.gas, float(s.temperature), float(s.pressure))
+        )
+
+    def _each(self, kernel: Any) -> Value:
+        """Apply a kernel for one case to every case."""
+        if not self.cases:
+            return float(kernel(self))
+        return np.array([self.case(i)._each(kernel) for i in range(self.cases[0])])
+
+    def exergy(self, environment: "Environment | None" = None) -> Value:
+        """Return physical plus chemical exergy [W]; see `chainflow.thermo.exergy`."""
+        from chainflow.thermo.exergy import STANDARD_ENVIRONMENT, stream_exergy
+
+        return stream_exergy(self, environment or STANDARD_ENVIRONMENT)
+
+    def scaled(self, factor: Value) -> "Stream":
+        """Return the same state with every flow multiplied; `factor` may have the case shape."""
+        each = np.asarray(factor)[..., np.newaxis] if np.ndim(factor) else factor
+        gas, water, liquid = (self.gas * each, self.water * each, self.liquid * each)
+        for flows in (gas, water, liquid):
+            flows.setflags(write=False)
+        enthalpy = self.enthalpy * factor
+        return Stream(self.matter, gas, water, liquid, self.temperature, self.pressure, enthalpy)
+
+    def at_pressure(self, pressure: Value, dissolved: tuple[str, ...] = DISSOLVED) -> "Stream":
+        """Return the stream let down to another pressure [Pa] at constant enthalpy (a valve)."""
+        if not self.cases and float(self.pressure) == pressure:
+            return self
+        return Stream.from_enthalpy(
+            self.matter, self.flows, self.enthalpy, pressure, self.temperature, dissolved
+        )
+
+
+def _per_case(make: Any) -> Any:
+    """Return a maker of stacked streams: it broadcasts its arguments and loops over the cases."""
+
+    def looped(flows: Array, *values: Value) -> Stream:
+        cases = np.broadcast_shapes(flows.shape[:-1], *(np.shape(value) for value in values))
+        flows = np.broadcast_to(flows, (*cases, flows.shape[-1]))
+        spread = [np.broadcast_to(value, cases) for value in values]
+        return Stream.stack(
+            [
+                make(flows[i], *(v[i] if len(cases) > 1 else float(v[i]) for v in spread))
+                for i in range(cases[0])
+            ]
+        )
+
+    return looped
+
+
+def _own(flows: Array) -> Array:
+    """Return the flows as an array that nobody else can change."""
+    array = np.asarray(flows, dtype=float)
+    return array.copy() if array.flags.writeable else array
+
+
+def _plain(value: Any) -> Value:
+    return float(value) if np.ndim(value) == 0 else cast(Array, value)
+
+
+def _ratio(part: Value, whole: Value) -> Value:
+    if np.ndim(whole) == 0:
+        return float(part) / float(whole) if whole else 0.0
+    return np.divide(part, whole, out=np.zeros_like(whole), where=np.asarray(whole) != 0.0)
+
+
+def enthalpy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tuple[Array, float]:
+    """Return dH/dn (components,) [J/mol] and dH/dT [W/K] of one stream, phases in equilibrium.
+
+    The first at constant temperature and pressure, the second at constant flows. Pure boiling
+    water has no such slopes: dH/dT is infinite and dH/dn is the mean enthalpy per mol.
+    """
+    temperature, pressure = float(stream.temperature), float(stream.pressure)
+    if _boils(stream):
+        by_flows = stream.matter.water_partial(temperature, pressure).enthalpy.copy()
+        by_flows[stream.matter.water] = float(stream.enthalpy) / float(stream.total)
+        return by_flows, np.inf
+    found = phase_slopes(stream.matter, stream.gas, stream.water, temperature, pressure, dissolved)
+    return found.by_flows, found.by_temperature
+
+
+def temperature_slopes(
+    stream: Stream, dissolved: tuple[str, ...] = DISSOLVED
+) -> tuple[Array, float]:
+    """Return dT/dn (components,) [K s/mol] at constant enthalpy, and dT/dH [K/W].
+
+    Both at constant pressure; zero for pure boiling water and without flow.
+    """
+    by_flows, by_temperature = enthalpy_slopes(stream, dissolved)
+    if by_temperature == 0.0 or np.isinf(by_temperature):
+        return np.zeros(len(by_flows)), 0.0
+    return -by_flows / by_temperature, 1.0 / by_temperature
+
+
+def _boils(stream: Stream) -> bool:
+    """Return whether the stream is pure water in both phases."""
+    place = stream.matter.water
+    if place is None or not stream.water[place] > 0.0 or not stream.gas[place] > 0.0:
+        return False
+    return bool(stream.flows[place] == stream.flows.sum())
