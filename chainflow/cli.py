@@ -29,7 +29,6 @@ STDOUT = "-"
 
 app = typer.Typer(
     name="chainflow",
-    help="Steady-state balances of sun-to-fuel chains: one flowsheet file in, one closed balance out.",
     no_args_is_help=True,
     add_completion=False,
     pretty_exceptions_enable=False,
@@ -97,7 +96,7 @@ def common(
         typer.Option("--version", callback=_version, is_eager=True, help="Print the version."),
     ] = False,
 ) -> None:
-    """Steady-state balances of sun-to-fuel chains: one flowsheet file in, one closed balance out."""
+    """Steady states of sun-to-fuel chains: one flowsheet file in, one closed balance out."""
 
 
 @app.command()
@@ -110,7 +109,7 @@ def solve(
     ] = None,
     csv: Annotated[
         Path | None,
-        typer.Option("--csv", metavar="DIR", help="Write streams, equipment, duties, plant as CSV."),
+        typer.Option("--csv", metavar="DIR", help="Write four CSV files: streams, ..."),
     ] = None,
     set_: SetOption = None,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print no answer, only errors.")] = False,
@@ -123,8 +122,8 @@ def solve(
     overrides = _overrides(set_)
     _check_outputs(json, csv)
     solution = _solved(file, overrides, json)
-    for remark in solution.remarks:
-        _say(f"remark: {remark}")
+    if not quiet:
+        _say_faults(solution.remarks, file, "remark: ")
     _write(solution, json, csv)
     if not quiet and json != STDOUT:
         from chainflow.report.printed import print_answer
@@ -140,10 +139,9 @@ def check(file: FileArgument, set_: SetOption = None) -> None:
     from chainflow.report.checked import print_check
     from chainflow.solver.solve import inspect
 
-    flowsheet = read_flowsheet(file, _overrides(set_))
-    for remark in flowsheet.remarks:
-        _say(f"remark: {remark}")
-    print_check(flowsheet, inspect(flowsheet))
+    structure = inspect(read_flowsheet(file, _overrides(set_)))
+    _say_faults(structure.remarks, file, "remark: ")
+    print_check(structure)
 
 
 @app.command()
@@ -186,7 +184,7 @@ def _overrides(given: Iterable[str] | None) -> dict[str, str]:
         if not equals or not name.strip() or not value.strip():
             from chainflow.basis.names import shorten
 
-            raise UsageFault(f"--set {shorten(text)}: wanted NAME=VALUE, as in --set sun='600 W/m2'")
+            raise UsageFault(f"--set {shorten(text)}: wanted NAME=VALUE, as sun='600 W/m2'")
         found[name.strip()] = value.strip()
     return found
 
@@ -264,10 +262,10 @@ def _say(text: str) -> None:
         typer.echo(f"chainflow: {printable(line, encoding)}", err=True)
 
 
-def _say_faults(faults: Iterable[Fault], file: Path | None) -> None:
+def _say_faults(faults: Iterable[Fault], file: Path | None, what: str = "") -> None:
     for fault in faults:
         where = "" if fault.place is None else f"{file}:{fault.place}: "
-        _say(f"{where}{fault.text}")
+        _say(f"{where}{what}{fault.text}")
 
 
 def _say_bug(problem: Exception) -> None:
@@ -284,7 +282,7 @@ def _say_bug(problem: Exception) -> None:
 
 
 def _leave_quietly() -> None:
-    """The reader of our output has gone: say nothing, also not when Python flushes at its end."""
+    """Say nothing to a reader who has gone, also not when Python flushes at its end."""
     os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 

@@ -9,7 +9,7 @@ from __future__ import annotations
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.ports import Flow, Heat
 from chainflow.flowsheet.network import Line
-from chainflow.solver.solution import SolvedStream, Solution
+from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.streams import Stream
 
 

@@ -70,10 +70,8 @@ def _power(solution: Solution, flows: Flows) -> Iterator[tuple[str, float]]:
             if flow is not None:
                 yield line.target, rate_of(flow)
     for stream in solution.streams:
-        if stream.content == "power" and not stream.targets and _sends_power(solution, stream.source):
+        sender = solution.flowsheet.equipment[stream.source]
+        # the rest that a switchboard cannot give to anybody is round-off, else it is not solved
+        leaves = stream.content == "power" and not stream.targets
+        if leaves and not isinstance(sender, Switchboard | Grid):
             yield stream.source, rate_of(stream.flow)
-
-
-def _sends_power(solution: Solution, name: str) -> bool:
-    """Whether power that leaves here unlinked is delivered: a switchboard's rest is round-off."""
-    return not isinstance(solution.flowsheet.equipment[name], Switchboard | Grid)

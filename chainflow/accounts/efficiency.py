@@ -11,6 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from itertools import pairwise
 
 from chainflow.accounts.border import leaving, rate_of
 from chainflow.accounts.deliveries import Deliveries, deliveries
@@ -67,7 +68,7 @@ def efficiency(
         overall=delivered.worth.over(entering),
         sunlight_to_fuel=made.over(entering),
         sunlight_share=light / entering.lhv if entering.lhv > 0.0 else None,
-        rungs=tuple(Rung(a.name, b.name, b.worth.over(a.worth)) for a, b in zip(cuts, cuts[1:], strict=False)),
+        rungs=tuple(Rung(a.name, b.name, b.worth.over(a.worth)) for a, b in pairwise(cuts)),
     )
 
 
@@ -101,8 +102,9 @@ def _cuts(
 
 
 def _last_name(delivered: Deliveries) -> str:
-    only_power = delivered.power_total > 0.0 and not delivered.heat_total
-    return "power out" if only_power and not any(s.total for _, s in delivered.material) else "useful"
+    matter = any(float(stream.total) > 0.0 for _, stream in delivered.material)
+    only_power = delivered.power_total > 0.0 and not delivered.heat_total and not matter
+    return "power out" if only_power else "useful"
 
 
 def _same(first: Worth, second: Worth) -> bool:

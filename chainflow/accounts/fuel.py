@@ -32,6 +32,7 @@ from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.flowsheet.network import Line
 from chainflow.solver.solution import Solution
+from chainflow.thermo.streams import Stream
 
 FUEL_SHARE = 0.5  # least LHV per exergy of a fuel line; our own convention
 _GOES_ON = {  # what may leave equipment that was entered by a line of this content
@@ -61,9 +62,8 @@ def fuel_lines(solution: Solution) -> FuelLines:
 
 def worth_of_lines(solution: Solution, keys: tuple[str, ...]) -> Worth:
     """Return the worth of the matter that leaves the named ports."""
-    wanted = set(keys)
-    found = [stream.flow for stream in solution.streams if stream.key in wanted]
-    return Worth.total(of_material(flow) for flow in found if not isinstance(flow, float) and hasattr(flow, "lhv"))
+    found = [stream.flow for stream in solution.streams if stream.key in keys]
+    return Worth.total(of_material(flow) for flow in found if isinstance(flow, Stream))
 
 
 class _Search:
@@ -127,21 +127,25 @@ class _Search:
         while lines:
             line = lines.pop()
             target = self._piece(line.target)
-            if isinstance(target, Product) or (isinstance(target, Grid) and line.content == "power"):
+            if isinstance(target, Product | Grid):
                 return True
             if target.makes and not target.burns:
                 continue
-            if self._gives_power_away(line.target) and line.content != "light":
+            if self._gives_power_away(line.target):
                 return True
-            for onward in self.flowsheet.out_of(line.target):
-                if onward.number not in seen and onward.content in _GOES_ON[line.content]:
-                    seen.add(onward.number)
-                    lines.append(onward)
+            onward = self.flowsheet.out_of(line.target)
+            fresh = [
+                o for o in onward if o.number not in seen and o.content in _GOES_ON[line.content]
+            ]
+            seen |= {one.number for one in fresh}
+            lines += fresh
         return False
 
     def _gives_power_away(self, name: str) -> bool:
         return any(
-            stream.source == name and stream.content == "power" and not stream.targets
+            stream.source == name
+            and stream.content == "power"
+            and not stream.targets
             and rate_of(stream.flow) > 0.0
             for stream in self.solution.streams
         )

@@ -11,7 +11,7 @@ from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 
 from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, gas_mixture
-from chainflow.solver.solution import SolvedStream, Solution
+from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.densities import liquefying
 from chainflow.thermo.species import component_species
 from chainflow.thermo.streams import Stream
@@ -197,7 +197,7 @@ _HAZARDS: tuple[tuple[str, Callable[[Stream], str], str], ...] = (
     (
         "oxygen-enriched",
         _oxygen_enriched,
-        "more than 23.5 % oxygen makes things burn that do not burn in air, keep oil and grease out",
+        "above 23.5 % oxygen much burns that does not burn in air, keep oil and grease out",
     ),
     (
         "toxic-contents",
@@ -232,7 +232,7 @@ def _dusting(solution: Solution) -> Iterator[Remark]:
         level = float(product.temperature)
         if DUSTING_RANGE[0] <= level <= DUSTING_RANGE[1] and product.flow("CO") > 0.0:
             text = (
-                f"carbon activity {activity:.3g} with CO at {level - 273.15:.4g} degC: metal dusting "
-                "eats steels between 400 and 800 degC"
+                f"carbon activity {activity:.3g} with CO at {level - 273.15:.4g} degC: "
+                "metal dusting eats steels between 400 and 800 degC"
             )
             yield Remark("metal-dusting", name, text)

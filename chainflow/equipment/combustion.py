@@ -8,13 +8,13 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
-from typing import Any, ClassVar, Literal
+from typing import Annotated, Any, ClassVar, Literal
 
 import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
-from chainflow.basis.quantities import HeatingValueShare, Temperature, quantity
+from chainflow.basis.quantities import HeatingValueShare, Temperature, measured
 from chainflow.equipment.base import (
     HEAT_PORTS, Array, Caution, Duty, Equipment, Flow, Outcome, Port, Role, Site, material,
 )
@@ -25,7 +25,7 @@ from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
 from chainflow.thermo.flames import flame_temperature
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
-Excess = quantity("1", ge=0.0, le=20.0)
+Excess = Annotated[float, measured("1", ge=0.0, le=20.0)]
 _MOST_STEPS = 60
 
 
@@ -73,7 +73,7 @@ class _Combustion(Equipment):
     makes: ClassVar[bool] = True
     burns: ClassVar[bool] = True
 
-    excess: Excess = Field(0.0, description="oxygen beyond what is needed, counting oxygen already there")  # type: ignore[valid-type] # a type made by a function
+    excess: Excess = Field(0.0, description="oxygen beyond what is needed, counting oxygen already there")
 
     def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
         wanted = {"O2", "H2O"} | ({"CO2"} if "C" in matter.elements else set()) | (

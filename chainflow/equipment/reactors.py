@@ -8,14 +8,14 @@ carbon activity of the product says whether it would be.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from typing import Any, ClassVar, Literal, NamedTuple
+from typing import Annotated, Any, ClassVar, Literal, NamedTuple
 
 import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from chainflow.basis.quantities import (
-    Fraction, Power, PressureDrop, Temperature, TemperatureDifference, quantity,
+    Fraction, Power, PressureDrop, Temperature, TemperatureDifference, measured,
 )
 from chainflow.equipment.base import (
     HEAT_PORTS, Array, Caution, Duty, Equipment, Flow, Outcome, Port, Role, Site, material,
@@ -29,6 +29,7 @@ from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 _SHIFT = ("H2", "H2O", "CO", "CO2")
 _METHANATION = (*_SHIFT, "CH4")
+_OXYGEN = ("O2",)  # burns on every one of these catalysts
 _NICKEL_CARBONYL_BELOW = 473.15  # [K], with CO over nickel; common practice, no source
 _TRACE = 1e-4  # mole fraction from which CO or O2 deserves a caution
 
@@ -277,7 +278,7 @@ class ShiftReactor(_Reactor):
     kind: ClassVar[str] = "shift-reactor"
     formulas: ClassVar[tuple[str, ...]] = ("minimum of the Gibbs energy of H2 H2O CO CO2 (CH4), constants at T - approach",)
 
-    temperature: quantity("K", ge=573.15, le=1573.15) | None = Field(None, description="temperature of the product")  # type: ignore[valid-type] # a type made by a function
+    temperature: Annotated[float, measured("K", ge=573.15, le=1573.15)] | None = Field(None, description="temperature of the product")
     methane: Literal["formed", "excluded"] = Field("formed", description="whether the catalyst lets methane form")
     approach: TemperatureDifference = Field(0.0, description="distance from equilibrium in temperature")
     conversion: Fraction | None = Field(None, description="stated conversion of CO2 instead of equilibrium")
@@ -288,12 +289,13 @@ class ShiftReactor(_Reactor):
     def destinations(
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
     ) -> Iterable[tuple[str, str]]:
-        return _exchanging(species, _METHANATION if self.methane == "formed" and self.conversion is None else _SHIFT, outlets, matter)
+        reacting = _METHANATION if self.methane == "formed" and self.conversion is None else _SHIFT
+        return _exchanging(species, (*reacting, *_OXYGEN), outlets, matter)
 
     def equilibrium_species(self, matter: Matter) -> tuple[str, ...] | None:
         if self.conversion is not None:
             return None
-        return _METHANATION if self.methane == "formed" else _SHIFT
+        return _there(matter, _METHANATION if self.methane == "formed" else _SHIFT)
 
     @property
     def shift_of_temperature(self) -> float:
@@ -318,7 +320,7 @@ class MethanationReactor(_Reactor):
         *_Reactor.sources, "window of nickel catalysts: Roensch et al., Fuel 166 (2016) 276 (from memory)",
     )
 
-    temperature: quantity("K", ge=423.15, le=1273.15) | None = Field(None, description="temperature of the product")  # type: ignore[valid-type] # a type made by a function
+    temperature: Annotated[float, measured("K", ge=423.15, le=1273.15)] | None = Field(None, description="temperature of the product")
     approach: TemperatureDifference = Field(0.0, description="distance from equilibrium in temperature")
     conversion: Fraction | None = Field(None, description="stated conversion of CO2 instead of equilibrium")
 
@@ -328,10 +330,10 @@ class MethanationReactor(_Reactor):
     def destinations(
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
     ) -> Iterable[tuple[str, str]]:
-        return _exchanging(species, _METHANATION, outlets, matter)
+        return _exchanging(species, (*_METHANATION, *_OXYGEN), outlets, matter)
 
     def equilibrium_species(self, matter: Matter) -> tuple[str, ...] | None:
-        return None if self.conversion is not None else _METHANATION
+        return None if self.conversion is not None else _there(matter, _METHANATION)
 
     @property
     def shift_of_temperature(self) -> float:
@@ -375,6 +377,11 @@ def _exchanging(
         return [(o, species) for o in outlets]
     made = [name for name in reacting if name == species or _share_element(species, name, matter)]
     return [(o, name) for o in outlets for name in made]
+
+
+def _there(matter: Matter, reacting: tuple[str, ...]) -> tuple[str, ...]:
+    """The reacting species, and oxygen where it is a component."""
+    return tuple(name for name in (*reacting, *_OXYGEN) if name in matter.index)
 
 
 def _share_element(first: str, second: str, matter: Matter) -> bool:

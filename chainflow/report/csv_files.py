@@ -49,10 +49,20 @@ def _stream_rows(found: Mapping[str, Any], components: Sequence[str]) -> Iterato
     yield ["tag", "from", "to", "content", *_STREAM_COLUMNS, *phases, *flows]
     for key, stream in found["streams"].items():
         to = stream["to"]
-        where = [stream["tag"], key, " ".join(to) if isinstance(to, list) else to, stream["content"]]
+        where = [
+            stream["tag"],
+            key,
+            " ".join(to) if isinstance(to, list) else to,
+            stream["content"],
+        ]
         values = [stream.get(column) for column in _STREAM_COLUMNS]
         by_phase = [stream.get("phases_mol_s", {}).get(phase) for phase in _PHASES]
-        yield [*where, *values, *by_phase, *(stream.get("flow_mol_s", {}).get(c) for c in components)]
+        yield [
+            *where,
+            *values,
+            *by_phase,
+            *(stream.get("flow_mol_s", {}).get(c) for c in components),
+        ]
 
 
 def _equipment_rows(found: Mapping[str, Any]) -> Iterator[Row]:

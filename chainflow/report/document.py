@@ -23,7 +23,7 @@ from chainflow.equipment.base import Outcome
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Heat
 from chainflow.flowsheet.network import Flowsheet
-from chainflow.solver.solution import HoldResult, SolvedStream, Solution
+from chainflow.solver.solution import HoldResult, Solution, SolvedStream
 from chainflow.thermo.streams import Stream
 
 FORMAT = 1
@@ -43,7 +43,9 @@ def document(solution: Solution) -> Document:
         "faults": [],
         "streams": {stream.key: stream_entry(stream) for stream in solution.streams},
         "equipment": {
-            name: _equipment_entry(solution.flowsheet.equipment[name].kind, outcome, destroyed[name])
+            name: _equipment_entry(
+                solution.flowsheet.equipment[name].kind, outcome, destroyed[name]
+            )
             for name, outcome in solution.outcomes.items()
         },
         "holds": [_hold_entry(hold) for hold in solution.holds],
@@ -67,12 +69,9 @@ def faults_document(path: Path | str, faults: Iterable[Fault]) -> Document:
 
 def problem_document(path: Path | str, problem: Exception, flowsheet: Flowsheet | None) -> Document:
     """Return the document of a flowsheet that has no answer."""
-    is_known = isinstance(problem, NotSolved)
-    entry = {
-        "code": problem.code if is_known else "state",
-        "text": str(problem),
-        "details": problem.details if is_known else {},
-    }
+    entry: Document = {"code": "outside-the-data", "text": str(problem), "details": {}}
+    if isinstance(problem, NotSolved):
+        entry |= {"code": problem.code, "details": problem.details}
     sheet = _unread(path) if flowsheet is None else _sheet(flowsheet)
     return _clean(_head(sheet) | {"solved": False, "problem": entry, "faults": []})
 
@@ -99,11 +98,15 @@ def _sheet(flowsheet: Flowsheet) -> Document:
 
 def _unread(path: Path | str) -> Document:
     """Return what is known of a file that could not be understood."""
+    return {"title": None, "basis": None, "sha256": _digest(Path(path))}
+
+
+def _digest(path: Path) -> str | None:
+    """Return the SHA-256 of a regular file; a pipe cannot be read twice."""
     try:
-        digest: str | None = hashlib.sha256(Path(path).read_bytes()).hexdigest()
+        return hashlib.sha256(path.read_bytes()).hexdigest() if path.is_file() else None
     except OSError:
-        digest = None
-    return {"title": None, "basis": None, "sha256": digest}
+        return None
 
 
 def stream_entry(stream: SolvedStream) -> Document:

@@ -40,10 +40,16 @@ def console(out: TextIO | None = None) -> Console:
 
     from rich.console import Console
 
+    class Piped(Console):
+        """A console that leaves it to the command what to do when its reader has gone."""
+
+        def on_broken_pipe(self) -> None:
+            raise BrokenPipeError
+
     out = out or sys.stdout
     terminal = bool(getattr(out, "isatty", lambda: False)())
     styled = terminal and not os.environ.get("NO_COLOR") and os.environ.get("TERM") != "dumb"
-    return Console(
+    return Piped(
         file=out,
         force_terminal=terminal,
         color_system="auto" if styled else None,

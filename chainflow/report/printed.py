@@ -11,13 +11,13 @@ from typing import TYPE_CHECKING, TextIO
 
 from chainflow.accounts.exergy import exergy_destroyed
 from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
-from chainflow.accounts.plant import PlantAccount, by_species, plant_account
+from chainflow.accounts.plant import PlantAccount, plant_account
 from chainflow.accounts.worth import BASES
 from chainflow.basis.formatting import format_quantity
 from chainflow.equipment.ports import Heat
 from chainflow.report import numbers
 from chainflow.report.plain import console, encoding_of, printable
-from chainflow.solver.solution import HoldResult, SolvedStream, Solution
+from chainflow.solver.solution import HoldResult, Solution, SolvedStream
 from chainflow.thermo.streams import Stream
 
 if TYPE_CHECKING:
@@ -110,8 +110,7 @@ def _amount(stream: Stream) -> str:
 
 
 def _shares(stream: Stream) -> str:
-    found = numbers.composition(stream)
-    return found if len(by_species([("", stream)])) < 2 else f"{found} %"
+    return f"{numbers.composition(stream)} %"
 
 
 def _losses(solution: Solution) -> str:
@@ -123,15 +122,15 @@ def _losses(solution: Solution) -> str:
 def _print_tables(screen: Console, solution: Solution) -> None:
     matter = [stream for stream in solution.streams if isinstance(stream.flow, Stream)]
     energy = [stream for stream in solution.streams if not isinstance(stream.flow, Stream)]
-    for title, rows, make in (
-        ("Streams", matter, _stream_table),
-        ("Power, heat and light", energy, _energy_table),
-        ("Holds", solution.holds, _hold_table),
+    for title, table in (
+        ("Streams", _stream_table(matter)),
+        ("Power, heat and light", _energy_table(energy)),
+        ("Holds", _hold_table(solution.holds)),
     ):
-        if rows:
+        if table.row_count:
             screen.print()
             screen.print(title, style="bold")
-            screen.print(make(rows))  # type: ignore[operator] # each maker gets its own rows
+            screen.print(table)
 
 
 def _table(*columns: str, right: tuple[str, ...] = ()) -> Table:
@@ -178,7 +177,7 @@ def _energy_table(streams: list[SolvedStream]) -> Table:
     return table
 
 
-def _hold_table(holds: list[HoldResult]) -> Table:
+def _hold_table(holds: tuple[HoldResult, ...]) -> Table:
     table = _table("held", "wanted", "reached", "by", "value")
     for hold in holds:
         table.add_row(

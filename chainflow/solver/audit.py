@@ -27,15 +27,17 @@ def audit(finish: Finish) -> Balance:
     flowsheet = finish.flowsheet
     by_equipment = {}
     worst_elements = worst_energy = 0.0
+    largest = [0.0, 0.0]  # throughput of the busiest piece: a closed plant has none of its own
     for name, piece in flowsheet.equipment.items():
         if isinstance(piece, _BOUNDARY):
             continue
         gains, through = _elements(finish, name)
         energy, size = _energy(finish, name)
+        largest = [max(largest[0], through), max(largest[1], size)]
         errors = (_relative(gains, through), _relative(energy, size))
         by_equipment[name] = errors
         worst_elements, worst_energy = max(worst_elements, errors[0]), max(worst_energy, errors[1])
-    plant_elements, plant_energy = _plant(finish)
+    plant_elements, plant_energy = _plant(finish, *largest)
     return Balance(max(worst_elements, plant_elements), max(worst_energy, plant_energy), by_equipment)
 
 
@@ -111,42 +113,38 @@ def _rate(flow: Flow) -> float:
     return flow.rate if isinstance(flow, Heat) else float(flow)
 
 
-def _plant(finish: Finish) -> tuple[float, float]:
+def _plant(finish: Finish, atom_size: float, energy_size: float) -> tuple[float, float]:
     """The plant as one box: what crosses its boundary."""
     flowsheet, formula = finish.flowsheet, finish.flowsheet.matter.formula
     atoms, energy = np.zeros(formula.shape[0]), 0.0
-    atom_size = energy_size = 0.0
-    for name, sign, flow in _crossing(finish):
+    for sign, flow in _crossing(finish):
         if isinstance(flow, Stream):
             these = formula @ flow.flows
-            atoms, atom_size = atoms + sign * these, atom_size + float(these.sum())
-            energy, energy_size = energy + sign * float(flow.enthalpy), energy_size + abs(float(flow.enthalpy))
+            atoms, energy = atoms + sign * these, energy + sign * float(flow.enthalpy)
         else:
-            energy, energy_size = energy + sign * _rate(flow), energy_size + abs(_rate(flow))
-        del name
+            energy += sign * _rate(flow)
     for name, outcome in finish.outcomes.items():
         if isinstance(flowsheet.equipment[name], _BOUNDARY):
             continue
-        outside = _outside_heat(outcome) + _bought_power(finish, name, outcome)
-        energy, energy_size = energy + outside, energy_size + abs(outside)
+        energy += _outside_heat(outcome) + _bought_power(finish, name, outcome)
     return _relative(atoms, atom_size), _relative(energy, energy_size)
 
 
-def _crossing(finish: Finish) -> list[tuple[str, float, Flow]]:
+def _crossing(finish: Finish) -> list[tuple[float, Flow]]:
     """Flows over the boundary: sign +1 in, -1 out."""
-    found: list[tuple[str, float, Flow]] = []
+    found: list[tuple[float, Flow]] = []
     flowsheet = finish.flowsheet
     for name, piece in flowsheet.equipment.items():
         if isinstance(piece, Supply | Sunlight | Grid):
-            found += [(name, 1.0, flow) for flow in finish.outcomes[name].outlets.values()]
+            found += [(1.0, flow) for flow in finish.outcomes[name].outlets.values()]
         if isinstance(piece, Product | Vent | Grid):
-            found += [(name, -1.0, flow) for flow in arriving_whole(finish.feeds, name)]
+            found += [(-1.0, flow) for flow in arriving_whole(finish.feeds, name)]
         extra = _top_up(finish, name)
         if extra is not None:
-            found.append((name, 1.0, extra))
+            found.append((1.0, extra))
     for stream in finish.streams:
         if not stream.targets and not isinstance(flowsheet.equipment[stream.source], Supply | Sunlight | Grid):
-            found.append((stream.source, -1.0, stream.flow))
+            found.append((-1.0, stream.flow))
     return found
 
 

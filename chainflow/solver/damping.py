@@ -16,6 +16,7 @@ from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
 _KEPT = 0.05
+_ROUND_OFF = 1e-6  # of a flow's old value
 _LARGEST_CHANGE = 400.0  # [K]
 _SETTING_STEP = 0.3  # of its range
 
@@ -40,6 +41,7 @@ def _damped_stream(variable: Variable, old: Stream, change: np.ndarray, matter: 
     assert variable.places is not None
     flows_before = old.flows[variable.places]
     wanted = flows_before + change[:-1]
+    wanted[np.abs(wanted) <= _ROUND_OFF * flows_before] = 0.0  # a flow that goes to nothing
     below = wanted < 0.0
     flows_after = np.where(below, _KEPT * flows_before, wanted)
     enthalpy = float(old.enthalpy) + float(change[-1])

@@ -70,7 +70,8 @@ def isentropic(
         trial = bracket.next_trial(trial, excess, trial * (ratio - 1.0))
     raise StateError(
         f"isentropic change from {temperature:g} K, {pressure:g} Pa to {end_pressure:g} Pa ends "
-        f"outside {bracket.lowest:g} to {bracket.highest:g} K: take more stages, or change the temperature it starts from"
+        f"outside {bracket.lowest:g} to {bracket.highest:g} K: "
+        "take more stages, or change the temperature it starts from"
     )
 
 

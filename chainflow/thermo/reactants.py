@@ -63,8 +63,7 @@ class Reactants:
         fed = self.formula @ amounts
         found = self._composition(amounts, fed, diluent, temperature, pressure)
         response = self._response(found, fed, diluent, temperature)
-        for _ in range(2):
-            found = found + response.by_element @ (fed - self.formula @ found)
+        found = found + response.by_element @ (fed - self.formula @ found)
         found[found < TRACE * (found.sum() + diluent)] = 0.0
         return Balance(found, response)
 
@@ -72,8 +71,10 @@ class Reactants:
         self, amounts: Array, fed: Array, diluent: float, temperature: float, pressure: float
     ) -> Array:
         count = len(self.names)
-        phase = self._diluted if diluent > 0.0 else self._alone
-        start = np.append(amounts, diluent) if diluent > 0.0 else amounts
+        phase, start = self._alone, amounts
+        if diluent > 0.0:
+            phase, start = self._diluted, np.full(count + 1, diluent)
+            start[:count] = amounts
         phase.TPX = temperature, pressure, start
         try:
             phase.equilibrate("TP", rtol=TOLERANCE)

@@ -124,6 +124,9 @@ def water_split(
     return split(matter, flows, temperature, pressure, dissolved) or (flows, matter.nothing)
 
 
+_NO_LIQUID = 1e-15  # share of the flow below which condensate is round-off
+
+
 def split(
     matter: "Matter",
     flows: "Array",
@@ -146,6 +149,8 @@ def split(
     water = np.zeros(len(amounts))
     for i, value in zip(places, values, strict=True):
         water[i] = amounts[i] * min((1.0 - vapour) / (1.0 + vapour * (value - 1.0)), 1.0)
+    if float(water.sum()) <= _NO_LIQUID * total:  # just saturated, to round-off
+        return None
     return flows - water, water
 
 

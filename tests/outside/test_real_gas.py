@@ -5,12 +5,11 @@ dioxide. US DOE Hydrogen Program Record 9013 (2009).
 """
 
 import pytest
+from CoolProp import CoolProp
 
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
 from chainflow.thermo.compression import isentropic, isentropic_temperature
 from chainflow.thermo.densities import pure_density, vapour_pressure
-
-CoolProp = pytest.importorskip("CoolProp.CoolProp")
 
 MATTER = Matter.of(DEFAULT_COMPONENTS)
 
@@ -129,16 +128,12 @@ def test_vapour_pressures(name, fluid):
     [{"H2": 0.8, "CO2": 0.2}, {"CH4": 0.9, "H2": 0.1}, {"N2": 0.85, "CO2": 0.15}],
 )
 def test_mixtures_against_helmholtz_models(gas):
-    # CoolProp 8.0.0 mixture models at 320 K: departure of enthalpy within 15 % or 30 J/mol,
-    # density within 1.4 % to 100 bar
+    # CoolProp 8.0.0 mixture models at 320 K; Redlich-Kwong stays within 1 % at 30 and 2 % at
+    # 100 bar in density
     names = {"H2": "Hydrogen", "CO2": "CarbonDioxide", "CH4": "Methane", "N2": "Nitrogen"}
-    mixture = CoolProp.AbstractState if False else None
-    assert mixture is None
     fluid = "&".join(f"{names[name]}[{share}]" for name, share in gas.items())
     flows = MATTER.vector(gas)
-    mass = float(flows @ MATTER.molar_mass)
-    for bar in (30, 100):
+    for bar, tolerance in ((30, 0.01), (100, 0.02)):
         published = CoolProp.PropsSI("DMASS", "T|gas", 320.0, "P", bar * 1e5, fluid)
         own = MATTER.gas_density(flows, 320.0, bar * 1e5)
-        assert own == pytest.approx(published, rel=0.014)
-        assert mass > 0.0
+        assert own == pytest.approx(published, rel=tolerance)

@@ -7,12 +7,12 @@ IAPWS formulas by the libraries CoolProp 8.0.0 and iapws 1.5.5 (test only); Sand
 import math
 
 import pytest
+from CoolProp import CoolProp
+from iapws import _iapws
 
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
 from chainflow.thermo.saturation import HENRY
 from chainflow.thermo.water import henry_constant, saturation_pressure, saturation_temperature
-
-CoolProp = pytest.importorskip("CoolProp.CoolProp")
 
 MATTER = Matter.of(DEFAULT_COMPONENTS)
 WATER = MATTER.vector({"H2O": 1.0})
@@ -105,10 +105,9 @@ def test_enthalpy_of_liquid_water(celsius):
 
 @pytest.mark.parametrize("name", list(HENRY))
 def test_henrys_constants_equal_the_iapws_ones(name):
-    iapws = pytest.importorskip("iapws._iapws")
     # IAPWS G7-04 in the library iapws 1.5.5, [MPa]; same formula, so to round-off
     for temperature in (300.0, 350.0, 450.0):
-        published = iapws._Henry(temperature, name) * 1e6
+        published = _iapws._Henry(temperature, name) * 1e6
         assert henry_constant(name, temperature) == pytest.approx(published, rel=1e-9)
 
 

@@ -25,7 +25,9 @@ def test_slopes_of_henrys_constants(name, temperature):
     second = (at(name, temperature + step).first - at(name, temperature - step).first) / (2 * step)
     assert at(name, temperature).first == pytest.approx(first, rel=1e-6, abs=1e-9)
     assert at(name, temperature).second == pytest.approx(second, rel=1e-6)
-    assert water.henry_slope(name, temperature) == pytest.approx(-(temperature**2) * first, rel=1e-5)
+    assert water.henry_slope(name, temperature) == pytest.approx(
+        -(temperature**2) * first, rel=1e-5
+    )
 
 
 @pytest.mark.parametrize("temperature", [201.0, 250.0, 373.15, 500.0, 646.9])
