@@ -85,19 +85,23 @@ def sunlight(solution: Solution) -> float:
 def _cuts(
     solution: Solution, light: float, entering: Worth, bought: Purchases, delivered: Deliveries
 ) -> Iterator[Cut]:
+    """Yield the cuts that this plant has, in order; each is more than nothing but the last."""
     if not entering.positive:
         return
     yield Cut("light" if light > 0.0 else "input", entering)
+    hydrogen = Worth.total(of_material(gas) for gas in _hydrogen(solution))
     lines = fuel_lines(solution)
-    kept = worth_of_lines(solution, lines.kept)
-    between = (
-        Cut("power", of_power(_solar_power(solution) + bought.power_total)),
-        Cut("hydrogen", Worth.total(of_material(gas) for gas in _hydrogen(solution))),
-        Cut("fuel made", worth_of_lines(solution, lines.made)),
-        Cut("fuel kept", kept),
-    )
-    yield from (cut for cut in between if cut.worth.positive)
-    if not (kept.positive and _same(kept, delivered.worth)):
+    made, kept = worth_of_lines(solution, lines.made), worth_of_lines(solution, lines.kept)
+    solar = _solar_power(solution)
+    if solar > 0.0 or hydrogen.positive:  # else power only drives a plant that runs on bought fuel
+        yield Cut("power", of_power(solar + bought.power_total))
+    if hydrogen.positive:
+        yield Cut("hydrogen", hydrogen)
+    if made.positive:
+        yield Cut("fuel made", made)
+    if made.positive and kept.positive:
+        yield Cut("fuel kept", kept)
+    if not (made.positive and _same(kept, delivered.worth)):
         yield Cut(_last_name(delivered), delivered.worth)
 
 

@@ -1,7 +1,7 @@
 """Can what is inside a line burn by itself?
 
-Mole fractions [-]. Limits in air: IEC 60079-20-1:2010, as shipped in the library chemicals 1.5.2
-(lower, upper). Limiting oxygen concentrations, with nitrogen at ambient temperature: NFPA 69, from
+Mole fractions [-]. Lower limits in air: IEC 60079-20-1:2010, as shipped in the library chemicals
+1.5.2. Limiting oxygen concentrations, with nitrogen at ambient temperature: NFPA 69, from
 memory; where none is known 5 % is taken, the lowest of all. Mixtures of fuels by Le Chatelier's
 rule, 1 / L = sum(share / L). The lower limit is about the same in air and in oxygen; the upper one
 is not, so no upper limit excuses a mixture that holds more oxygen than the limiting concentration.
@@ -17,27 +17,27 @@ from chainflow.thermo.streams import Stream
 
 @dataclass(frozen=True, slots=True)
 class Limits:
-    """Flammability limits in air and limiting oxygen concentration, mole fractions."""
+    """Lower flammability limit in air and limiting oxygen concentration, mole fractions."""
 
     lower: float
-    upper: float
     oxygen: float
 
 
 LIMITS = {
-    "H2": Limits(0.040, 0.77, 0.05),
-    "CH4": Limits(0.044, 0.17, 0.12),
-    "CO": Limits(0.109, 0.74, 0.055),
-    "CH3OH": Limits(0.060, 0.36, 0.10),
-    "NH3": Limits(0.150, 0.336, 0.05),
-    "C2H2": Limits(0.023, 1.0, 0.05),
-    "C2H4": Limits(0.023, 0.36, 0.10),
-    "C2H6": Limits(0.024, 0.155, 0.11),
-    "C3H6": Limits(0.020, 0.111, 0.115),
-    "C3H8": Limits(0.017, 0.109, 0.115),
-    "n-C4H10": Limits(0.014, 0.093, 0.12),
+    "H2": Limits(0.040, 0.05),
+    "CH4": Limits(0.044, 0.12),
+    "CO": Limits(0.109, 0.055),
+    "CH3OH": Limits(0.060, 0.10),
+    "CH3OCH3": Limits(0.027, 0.05),
+    "NH3": Limits(0.150, 0.05),
+    "C2H2": Limits(0.023, 0.05),
+    "C2H4": Limits(0.023, 0.10),
+    "C2H6": Limits(0.024, 0.11),
+    "C3H6": Limits(0.020, 0.115),
+    "C3H8": Limits(0.017, 0.115),
+    "n-C4H10": Limits(0.014, 0.12),
 }
-UNKNOWN_FUEL = Limits(0.014, 0.77, 0.05)  # the worst of the others, for fuels without data
+UNKNOWN_FUEL = Limits(0.014, 0.05)  # the worst of the others, for fuels without data
 ALARM_SHARE = 0.5  # of the limits; alarms at half the lower limit are common practice, no source
 
 

@@ -9,8 +9,10 @@ from __future__ import annotations
 
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
+from typing import NamedTuple
 
-from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, gas_mixture
+from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, Mixture, gas_mixture
+from chainflow.basis.constants import ICE_POINT
 from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.densities import liquefying
 from chainflow.thermo.species import component_species
@@ -20,14 +22,21 @@ CLOSING_SENTENCE = (
     "This is a study tool: local codes and a licensed engineer decide what may be built and run."
 )
 
-EXPOSURE_LIMITS = {  # [mol/mol], mean over 8 hours
-    "CO": (20e-6, "EU 2017/164"),
-    "CH3OH": (200e-6, "EU 2006/15"),
-    "NH3": (20e-6, "EU 2000/39"),
-    "NO": (2e-6, "EU 2017/164"),
-    "NO2": (0.5e-6, "EU 2017/164"),
-    "H2S": (5e-6, "EU 2009/161"),
-}  # CO in the directive's text; the others from memory
+
+class Exposure(NamedTuple):
+    """Occupational exposure limit as a mean over 8 hours [mol/mol], and who says so."""
+
+    limit: float
+    source: str
+
+
+EXPOSURE_LIMITS = {  # all from memory of the directives named
+    "CO": Exposure(20e-6, "EU 2017/164"),
+    "CH3OH": Exposure(200e-6, "EU 2006/15"),
+    "NH3": Exposure(20e-6, "EU 2000/39"),
+    "NO": Exposure(2e-6, "EU 2017/164"),
+    "NO2": Exposure(0.5e-6, "EU 2017/164"),
+}
 OXYGEN_ENRICHED = 0.235  # [mol/mol], OSHA 29 CFR 1910.146, from memory
 CARBON_DIOXIDE = 0.5  # [mol/mol], gas that is mostly CO2; our own threshold
 HIGH_PRESSURE = 100e5  # [Pa], our own threshold
@@ -38,6 +47,13 @@ WELL_BELOW_CRITICAL = 0.75  # T / Tc below which Raoult's law serves mixtures; o
 DUSTING_RANGE = (673.15, 1073.15)  # [K], 400-800 degC: Grabke; AMPP paper 07416
 _MOST_NAMES = 6
 _HOT_GAS = 1000.0  # [K], above this a gas with oxygen burns at once and is no lurking mixture
+
+
+class Finding(NamedTuple):
+    """What was found in a stream; the larger the severity, the worse."""
+
+    severity: float
+    note: str
 
 
 @dataclass(frozen=True, slots=True)
@@ -76,16 +92,18 @@ def idealisations(solution: Solution) -> tuple[Remark, ...]:
 
 
 def stream_cautions(solution: Solution) -> Iterator[Remark]:
-    """Yield one caution for each kind of hazard found in the streams."""
-    lines = [s for s in solution.streams if isinstance(s.flow, Stream) and float(s.flow.total) > 0]
+    """Yield one caution for each kind of hazard found in the streams, the worst stream first."""
+    lines = [(s, s.flow) for s in solution.streams if isinstance(s.flow, Stream)]
+    flowing = [(line, stream) for line, stream in lines if float(stream.total) > 0.0]
     for code, finds, sentence in _HAZARDS:
-        found = [(line, note) for line in lines if (note := finds(line.flow))]  # type: ignore[arg-type] # streams only
+        found = [(line, finding) for line, stream in flowing if (finding := finds(stream))]
         if found:
-            yield Remark(code, found[0][0].source, f"{sentence}: {_listed(found)}")
+            worst = sorted(found, key=lambda pair: -pair[1].severity)
+            yield Remark(code, worst[0][0].source, f"{sentence}: {_listed(worst)}")
 
 
-def _listed(found: list[tuple[SolvedStream, str]]) -> str:
-    named = [f"{line.key} ({note})" for line, note in found[:_MOST_NAMES]]
+def _listed(found: list[tuple[SolvedStream, Finding]]) -> str:
+    named = [f"{line.key} ({finding.note})" for line, finding in found[:_MOST_NAMES]]
     more = len(found) - len(named)
     return ", ".join(named) + (f" and {more} more" if more > 0 else "")
 
@@ -103,69 +121,75 @@ def _percent(share: float) -> str:
     return f"{100 * share:.3g} %"
 
 
-def _flammable_mixture(stream: Stream) -> str:
+def _flammable_mixture(stream: Stream) -> Finding | None:
     mixture = gas_mixture(stream)
     if not mixture.flammable or float(stream.temperature) > _HOT_GAS:
-        return ""
-    return f"{_percent(mixture.fuel)} fuel, {_percent(mixture.oxygen)} O2"
+        return None
+    return _fuel_and_oxygen(mixture)
 
 
-def _near_flammable(stream: Stream) -> str:
+def _near_flammable(stream: Stream) -> Finding | None:
     mixture = gas_mixture(stream)
     if mixture.flammable or not mixture.within(ALARM_SHARE):
-        return ""
-    if float(stream.temperature) > _HOT_GAS:
-        return ""
-    return f"{_percent(mixture.fuel)} fuel, {_percent(mixture.oxygen)} O2"
+        return None
+    return _fuel_and_oxygen(mixture) if float(stream.temperature) <= _HOT_GAS else None
 
 
-def _flammable_contents(stream: Stream) -> str:
+def _fuel_and_oxygen(mixture: Mixture) -> Finding:
+    note = f"{_percent(mixture.fuel)} fuel, {_percent(mixture.oxygen)} O2"
+    return Finding(min(mixture.fuel, mixture.oxygen), note)
+
+
+def _flammable_contents(stream: Stream) -> Finding | None:
     mixture = gas_mixture(stream)
     if mixture.fuel < mixture.lower:
-        return ""
+        return None
     shares = _shares(stream)
     main = max((name for name in shares if name in LIMITS), key=lambda n: shares[n], default="")
-    return f"{_percent(shares[main])} {main}" if main else f"{_percent(mixture.fuel)} fuel"
+    note = f"{_percent(shares[main])} {main}" if main else f"{_percent(mixture.fuel)} fuel"
+    return Finding(mixture.fuel, note)
 
 
-def _toxic(stream: Stream) -> str:
-    shares = _shares(stream)
-    over = {n: s for n, s in shares.items() if n in EXPOSURE_LIMITS and s > EXPOSURE_LIMITS[n][0]}
+def _toxic(stream: Stream) -> Finding | None:
+    shares = {name: share for name, share in _shares(stream).items() if name in EXPOSURE_LIMITS}
+    over = {name: share for name, share in shares.items() if share > EXPOSURE_LIMITS[name].limit}
     if not over:
-        return ""
-    return ", ".join(f"{name} {1e6 * share:.3g} ppm" for name, share in over.items())
+        return None
+    note = ", ".join(f"{name} {1e6 * share:.3g} ppm" for name, share in over.items())
+    return Finding(max(share / EXPOSURE_LIMITS[name].limit for name, share in over.items()), note)
 
 
-def _oxygen_enriched(stream: Stream) -> str:
+def _oxygen_enriched(stream: Stream) -> Finding | None:
     oxygen = _shares(stream).get("O2", 0.0)
-    return f"{_percent(oxygen)} O2" if oxygen > OXYGEN_ENRICHED else ""
+    return Finding(oxygen, f"{_percent(oxygen)} O2") if oxygen > OXYGEN_ENRICHED else None
 
 
-def _carbon_dioxide(stream: Stream) -> str:
+def _carbon_dioxide(stream: Stream) -> Finding | None:
     share = _shares(stream).get("CO2", 0.0)
-    return f"{_percent(share)} CO2" if share > CARBON_DIOXIDE else ""
+    return Finding(share, f"{_percent(share)} CO2") if share > CARBON_DIOXIDE else None
 
 
-def _high_pressure(stream: Stream) -> str:
+def _high_pressure(stream: Stream) -> Finding | None:
     pressure = float(stream.pressure)
-    return f"{pressure / 1e5:.4g} bar" if pressure > HIGH_PRESSURE else ""
+    return Finding(pressure, f"{pressure / 1e5:.4g} bar") if pressure > HIGH_PRESSURE else None
 
 
-def _hot_hydrogen(stream: Stream) -> str:
+def _hot_hydrogen(stream: Stream) -> Finding | None:
     partial = _shares(stream).get("H2", 0.0) * float(stream.pressure)
     level = float(stream.temperature)
     if partial <= HOT_HYDROGEN_PRESSURE or level <= HOT_HYDROGEN_TEMPERATURE:
-        return ""
-    return f"{partial / 1e5:.3g} bar of H2 at {level - 273.15:.4g} degC"
+        return None
+    return Finding(level, f"{partial / 1e5:.3g} bar of H2 at {level - ICE_POINT:.4g} degC")
 
 
-def _liquid_expected(stream: Stream) -> str:
+def _liquid_expected(stream: Stream) -> Finding | None:
     level, pressure, shares = float(stream.temperature), float(stream.pressure), _shares(stream)
     names = liquefying(stream.matter, stream.gas, level, pressure)
     sure = [name for name in names if shares[name] >= NEARLY_PURE or _far_below(name, level)]
     if not sure:
-        return ""
-    return f"{', '.join(sure)} at {level - 273.15:.4g} degC and {pressure / 1e5:.4g} bar"
+        return None
+    note = f"{', '.join(sure)} at {level - ICE_POINT:.4g} degC and {pressure / 1e5:.4g} bar"
+    return Finding(pressure, note)
 
 
 def _far_below(name: str, level: float) -> bool:
@@ -173,7 +197,7 @@ def _far_below(name: str, level: float) -> bool:
     return bool(level < WELL_BELOW_CRITICAL * critical["critical-temperature"])
 
 
-_HAZARDS: tuple[tuple[str, Callable[[Stream], str], str], ...] = (
+_HAZARDS: tuple[tuple[str, Callable[[Stream], Finding | None], str], ...] = (
     (
         "flammable-mixture",
         _flammable_mixture,
@@ -232,7 +256,7 @@ def _dusting(solution: Solution) -> Iterator[Remark]:
         level = float(product.temperature)
         if DUSTING_RANGE[0] <= level <= DUSTING_RANGE[1] and product.flow("CO") > 0.0:
             text = (
-                f"carbon activity {activity:.3g} with CO at {level - 273.15:.4g} degC: "
+                f"carbon activity {activity:.3g} with CO at {level - ICE_POINT:.4g} degC: "
                 "metal dusting eats steels between 400 and 800 degC"
             )
             yield Remark("metal-dusting", name, text)

@@ -9,65 +9,23 @@ one gas passing through.
 
 from __future__ import annotations
 
-import types
-import typing
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import dataclass, field, replace
-from typing import Annotated, Any, ClassVar, Literal, Self
+from dataclasses import replace
+from typing import Annotated, Any, ClassVar, Self
 
 import numpy as np
 from pydantic import BaseModel, ConfigDict
 
 from chainflow.basis.faults import NotSolved
+from chainflow.equipment.cases import case_count, matter_of, one_case, stack_outcomes
 from chainflow.equipment.heat_needs import Duty, settle
+from chainflow.equipment.outcome import Caution, Outcome, Site
 from chainflow.equipment.ports import Feeds, Flow, Heat, Port, Role, arriving
+from chainflow.equipment.setting_numbers import replaced, unit_of
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 
 Array = np.ndarray
-Asked = Mapping[str, float]  # at serving outlets: mol/s or W
-HeatsAsked = Mapping[str, tuple[Heat, ...]]
-
-
-@dataclass(frozen=True, slots=True)
-class Caution:
-    """A doubtful but usable result: what was seen and why it matters."""
-
-    code: str
-    text: str
-
-
-@dataclass(frozen=True, slots=True)
-class Site:
-    """What the place gives: the matter, the ambient temperature [K] and which ports are linked.
-
-    `detail` asks for what only the printed answer needs (duty segments, cautions).
-    """
-
-    matter: Matter
-    ambient: float = 298.15
-    inlets: frozenset[str] = frozenset()
-    outlets: frozenset[str] = frozenset()
-    detail: bool = True
-
-
-@dataclass(frozen=True, slots=True)
-class Outcome:
-    """What equipment did: flows at every outlet, amounts asked for, duties and results."""
-
-    outlets: dict[str, Flow]
-    drawn: dict[str, float | Heat] = field(default_factory=dict)
-    duties: tuple[Duty, ...] = ()
-    power: float = 0.0  # net electric power into the equipment [W]
-    results: dict[str, float] = field(default_factory=dict)
-    cautions: tuple[Caution, ...] = ()
-    idealisations: tuple[Caution, ...] = ()
-    unmet: dict[str, str] = field(default_factory=dict)  # port -> why its amount has no answer
-
-    @property
-    def heat(self) -> float:
-        """Net heat into the equipment that is not electric [W]."""
-        return sum(duty.heat for duty in self.duties if duty.met_by != "power")
 
 
 class Equipment(BaseModel):
@@ -143,7 +101,7 @@ class Equipment(BaseModel):
         entering = [p for pressures in inlets.values() for p in pressures]
         level = set_pressure if set_pressure is not None else min(entering, default=float("inf"))
         level -= getattr(self, "pressure_drop", 0.0)
-        return {ANY: level for ANY in self.material_outlets()}
+        return dict.fromkeys(self.material_outlets(), level)
 
     def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
         """What is wrong with the pressures that arrive: (inlet, sentence)."""
@@ -181,7 +139,9 @@ class Equipment(BaseModel):
         """This equipment with its discrete choices (number of stages) fixed as they now are."""
         return self
 
-    def run(self, feeds: Feeds, asked: Mapping[str, Any] | None = None, site: Site | None = None) -> Outcome:
+    def run(
+        self, feeds: Feeds, asked: Mapping[str, Any] | None = None, site: Site | None = None
+    ) -> Outcome:
         """Do the work, for one case or for a batch of cases (leading axis of every stream).
 
         Streams of a batch have flows of shape (cases, components); plain numbers may be arrays of
@@ -189,14 +149,12 @@ class Equipment(BaseModel):
         """
         asked = asked or {}
         if site is None:
-            site = Site(_matter_of(feeds), inlets=frozenset(feeds))
-        cases = _case_count(feeds, asked)
+            site = Site(matter_of(feeds), inlets=frozenset(feeds))
+        cases = case_count(feeds, asked)
         if cases is None:
             return self.operate(feeds, asked, site)
-        singles = [
-            self.operate(_case(feeds, i), _case(asked, i), site) for i in range(cases)
-        ]
-        return _stack_outcomes(singles)
+        singles = [self.operate(one_case(feeds, i), one_case(asked, i), site) for i in range(cases)]
+        return stack_outcomes(singles)
 
     # --- settings ----------------------------------------------------------------------------
 
@@ -210,7 +168,7 @@ class Equipment(BaseModel):
     def with_setting(self, path: tuple[str, ...], number: float) -> Self:
         """A copy in which one number is another."""
         old = getattr(self, path[0])
-        return self.model_copy(update={path[0]: _replaced(old, path[1:], number)})
+        return self.model_copy(update={path[0]: replaced(old, path[1:], number)})
 
     @classmethod
     def setting_unit(cls, path: tuple[str, ...]) -> str | None:
@@ -218,11 +176,15 @@ class Equipment(BaseModel):
         info = cls.model_fields.get(path[0])
         if info is None:
             return None
-        return _unit_of(Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation)
+        return unit_of(
+            Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
+        )
 
     # --- for subclasses ----------------------------------------------------------------------
 
-    def settle(self, needs: Iterable[Duty], site: Site) -> tuple[tuple[Duty, ...], float, dict[str, Any], dict[str, Flow]]:
+    def settle(
+        self, needs: Iterable[Duty], site: Site
+    ) -> tuple[tuple[Duty, ...], float, dict[str, Any], dict[str, Flow]]:
         """Meet the heat needs: (duties, electric power, drawn, heat outlets)."""
         inlets, outlets = site.inlets, site.outlets
         if not any(p.name == "heat" and p.is_inlet for p in self.ports):
@@ -259,118 +221,19 @@ def rate(feeds: Feeds, port: str) -> float:
     return sum(f.rate if isinstance(f, Heat) else f for f in arriving(feeds, port))  # type: ignore[misc] # streams do not arrive here
 
 
-def vector(flow: Flow) -> Array:
-    """A flow as the solver's numbers: ``[n_1..n_C, H]``, ``[W]`` or ``[W, start, end, mean]``."""
-    if isinstance(flow, Stream):
-        return np.append(flow.flows, flow.enthalpy)
-    if isinstance(flow, Heat):
-        return np.array([flow.rate, flow.start, flow.end, flow.mean])
-    return np.array([flow])
-
-
-# --- cases ---------------------------------------------------------------------------------------
-
-
-def _matter_of(feeds: Feeds) -> Matter:
-    for port in feeds:
-        for flow in arriving(feeds, port):
-            if isinstance(flow, Stream):
-                return flow.matter
-    return Matter.of(())
-
-
-def _case_count(*groups: Mapping[str, Any]) -> int | None:
-    for group in groups:
-        for port in group:
-            for flow in arriving(group, port):
-                if isinstance(flow, Stream) and flow.gas.ndim == 2:
-                    return int(flow.gas.shape[0])
-                if isinstance(flow, np.ndarray) and flow.ndim == 1:
-                    return int(flow.shape[0])
-    return None
-
-
-def _case(group: Mapping[str, Any], i: int) -> dict[str, Any]:
-    def one(flow: Any) -> Any:
-        if isinstance(flow, Stream) and flow.gas.ndim == 2:
-            return flow.case(i)
-        if isinstance(flow, np.ndarray) and flow.ndim == 1:
-            return float(flow[i])
-        return flow
-
-    return {
-        port: tuple(one(f) for f in flow) if isinstance(flow, tuple) else one(flow)
-        for port, flow in group.items()
-    }
-
-
-def _stack(values: list[Any]) -> Any:
-    if isinstance(values[0], Stream):
-        return Stream.stack(values)
-    if isinstance(values[0], Heat):
-        return Heat(*(np.array([getattr(v, name) for v in values]) for name in ("rate", "start", "end", "mean")))  # type: ignore[arg-type] # a batch of heats holds arrays
-    return np.array(values)
-
-
-def _stack_outcomes(singles: list[Outcome]) -> Outcome:
-    first = singles[0]
-    return Outcome(
-        outlets={k: _stack([s.outlets[k] for s in singles]) for k in first.outlets},
-        drawn={k: _stack([s.drawn[k] for s in singles]) for k in first.drawn},
-        duties=_stack_duties(singles),
-        power=np.array([s.power for s in singles]),  # type: ignore[arg-type] # one number a case
-        results={k: np.array([s.results.get(k, np.nan) for s in singles]) for k in first.results},  # type: ignore[misc] # one number a case
-        cautions=tuple(dict.fromkeys(c for s in singles for c in s.cautions)),
-        idealisations=tuple(dict.fromkeys(c for s in singles for c in s.idealisations)),
-        unmet={k: v for s in singles for k, v in s.unmet.items()},
-    )
-
-
-def _stack_duties(singles: list[Outcome]) -> tuple[Duty, ...]:
-    """One duty per purpose and way of meeting, with the heat of each case."""
-    keys = list(dict.fromkeys((d.purpose, d.met_by) for s in singles for d in s.duties))
-    stacked = []
-    for purpose, met_by in keys:
-        mine = [[d for d in s.duties if (d.purpose, d.met_by) == (purpose, met_by)] for s in singles]
-        some = next(d[0] for d in mine if d)
-        heat = np.array([sum(d.heat for d in group) for group in mine])
-        stacked.append(replace(some, heat=heat))  # type: ignore[arg-type] # one number a case
-    return tuple(stacked)
-
-
-# --- settings ------------------------------------------------------------------------------------
-
-
-def _replaced(old: Any, path: tuple[str, ...], number: float) -> Any:
-    if path:
-        return {**old, path[0]: _replaced(old[path[0]], path[1:], number)}
-    if hasattr(old, "value") and hasattr(old, "_replace"):
-        return old._replace(value=number)
-    if hasattr(old, "value"):
-        return replace(old, value=number)
-    return number
-
-
-def _unit_of(annotation: Any) -> str | None:
-    """Find the unit of the number inside a setting's type."""
-    if annotation is float:
-        return ""
-    origin = typing.get_origin(annotation)
-    if origin is Annotated:
-        for note in annotation.__metadata__:
-            unit = getattr(note, "unit", None)
-            if unit is not None:
-                return str(unit)
-        return _unit_of(annotation.__origin__)
-    if origin in (typing.Union, types.UnionType, dict):
-        for part in typing.get_args(annotation)[1 if origin is dict else 0 :]:
-            unit = _unit_of(part)
-            if unit is not None:
-                return unit
-    return None
-
-
 __all__ = [
-    "HEAT_PORTS", "Array", "Asked", "Caution", "Duty", "Equipment", "Flow", "Heat", "Impossible",
-    "Literal", "Outcome", "Port", "Role", "Site", "material", "rate", "vector",
+    "HEAT_PORTS",
+    "Array",
+    "Caution",
+    "Duty",
+    "Equipment",
+    "Flow",
+    "Heat",
+    "Impossible",
+    "Outcome",
+    "Port",
+    "Role",
+    "Site",
+    "material",
+    "rate",
 ]

@@ -32,7 +32,9 @@ def cascade(given: Sequence[Heat], needed: Sequence[Heat], approach: float = 0.0
     shift = 0.5 * approach
     sources = [(max(h.start, h.end) - shift, min(h.start, h.end) - shift, h.rate) for h in given]
     sinks = [(max(h.start, h.end) + shift, min(h.start, h.end) + shift, h.rate) for h in needed]
-    levels = np.array(sorted({t for hot, cold, _ in (*sources, *sinks) for t in (hot, cold)}, reverse=True))
+    levels = np.array(
+        sorted({t for hot, cold, _ in (*sources, *sinks) for t in (hot, cold)}, reverse=True)
+    )
     if levels.size == 0:
         return Cascade(0.0, 0.0, None, levels, levels, None)
     supply = _by_interval(sources, levels)
@@ -71,5 +73,9 @@ def _left_over(supply: np.ndarray, demand: np.ndarray, levels: np.ndarray) -> He
     for k in np.flatnonzero(left > 0.0):
         start = levels[k // 2]
         end = levels[k // 2 + (k % 2)]
-        parts.append(Heat(float(left[k]), float(start), float(end), mean_temperature(float(start), float(end))))
+        parts.append(
+            Heat(
+                float(left[k]), float(start), float(end), mean_temperature(float(start), float(end))
+            )
+        )
     return Heat.total(parts) if parts else None

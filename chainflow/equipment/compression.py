@@ -16,7 +16,16 @@ from pydantic import Field, PositiveInt
 
 from chainflow.basis.quantities import OpenFraction, Pressure, Temperature
 from chainflow.equipment.base import (
-    HEAT_PORTS, Array, Caution, Duty, Equipment, Outcome, Port, Role, Site, material,
+    HEAT_PORTS,
+    Array,
+    Caution,
+    Duty,
+    Equipment,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
 )
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed
@@ -57,7 +66,13 @@ class Compressor(Equipment):
         Port("power", "power", Role.CALLS, optional=True, means="electric power of the drive"),
         HEAT_PORTS[2],
         Port("outlet", "material", Role.OFFERS, main=True, means="the gas at its new pressure"),
-        Port("condensate", "material", Role.OFFERS, optional=True, means="water knocked out, at suction pressure"),
+        Port(
+            "condensate",
+            "material",
+            Role.OFFERS,
+            optional=True,
+            means="water knocked out, at suction pressure",
+        ),
     )
     formulas: ClassVar[tuple[str, ...]] = (
         "stage ratio = (p_out / p_in)^(1 / stages)",
@@ -70,9 +85,15 @@ class Compressor(Equipment):
     )
 
     pressure: Pressure = Field(description="pressure at the outlet, absolute")
-    stages: PositiveInt | Literal["auto"] = Field("auto", description="number of stages; auto keeps each discharge below `discharge_limit`")
-    intercool: Temperature = Field(308.15, description="suction temperature of the second and later stages")
-    aftercool: Temperature | None = Field(None, description="temperature at the outlet (default: not cooled)")
+    stages: PositiveInt | Literal["auto"] = Field(
+        "auto", description="number of stages; auto keeps each discharge below `discharge_limit`"
+    )
+    intercool: Temperature = Field(
+        308.15, description="suction temperature of the second and later stages"
+    )
+    aftercool: Temperature | None = Field(
+        None, description="temperature at the outlet (default: not cooled)"
+    )
     efficiency: OpenFraction = Field(0.75, description="isentropic efficiency of each stage")
     drive_efficiency: OpenFraction = Field(0.95, description="shaft power per electric power")
     discharge_limit: Temperature = Field(423.15, description="highest discharge temperature wanted")
@@ -102,22 +123,37 @@ class Compressor(Equipment):
         outlet = Stream.gaseous(matter, gas, level, self.pressure)
         condensate = self._condensate(inlet, stages, matter)
         needs = [
-            Duty.between("aftercooling" if stage is last else "intercooling", stage.cooling, stage.discharge, stage.cooled_to)
-            for stage in stages if stage.cooled_to is not None and stage.cooling != 0.0
+            Duty.between(
+                "aftercooling" if stage is last else "intercooling",
+                stage.cooling,
+                stage.discharge,
+                stage.cooled_to,
+            )
+            for stage in stages
+            if stage.cooled_to is not None and stage.cooling != 0.0
         ]
         loss = Duty("drive loss", work - power, site.ambient, site.ambient, site.ambient, "ambient")
         needs = needs or [Duty("intercooling", 0.0, level, level, level)]
         duties, _, drawn, given = self.settle([*needs, loss], site)
         hottest = max(stage.discharge for stage in stages)
         return Outcome(
-            {"outlet": outlet, "condensate": condensate, **given}, {"power": power} | drawn, duties, power=power,
-            results=self._results(stages, inlet, work, hottest), cautions=self._cautions(inlet, hottest),
+            {"outlet": outlet, "condensate": condensate, **given},
+            {"power": power} | drawn,
+            duties,
+            power=power,
+            results=self._results(stages, inlet, work, hottest),
+            cautions=self._cautions(inlet, hottest),
+            inner=stages,
         )
 
-    def _results(self, stages: list[Stage], inlet: Stream, work: float, hottest: float) -> dict[str, float]:
+    def _results(
+        self, stages: list[Stage], inlet: Stream, work: float, hottest: float
+    ) -> dict[str, float]:
         mass = float(inlet.mass_flow)
         return {
-            "stages": float(len(stages)), "work_W": work, "discharge_K": hottest,
+            "stages": float(len(stages)),
+            "work_W": work,
+            "discharge_K": hottest,
             "specific_work_J_kg": work / mass if mass > 0.0 else 0.0,
         }
 
@@ -165,7 +201,13 @@ class Compressor(Equipment):
         return train
 
     def _stage(
-        self, matter: Matter, gas: Array, suction: float, low: float, high: float, cool: float | None
+        self,
+        matter: Matter,
+        gas: Array,
+        suction: float,
+        low: float,
+        high: float,
+        cool: float | None,
     ) -> Stage:
         nothing = np.zeros_like(gas)
         if not gas.any():
@@ -176,9 +218,17 @@ class Compressor(Equipment):
         discharge = _gas_temperature(matter, gas, before + work, high, ideal)
         if cool is None or cool >= discharge:
             return Stage(gas, suction, low, high, ideal, discharge, work, None, 0.0, nothing)
-        dry, wet = water_split(matter, gas, cool, high, ("CO2",)) if matter.water is not None else (gas, nothing)
-        after = matter.gas_enthalpy(dry, cool, high) + (matter.water_enthalpy(wet, cool, high) if wet.any() else 0.0)
-        return Stage(gas, suction, low, high, ideal, discharge, work, cool, after - before - work, wet)
+        dry, wet = (
+            water_split(matter, gas, cool, high, ("CO2",))
+            if matter.water is not None
+            else (gas, nothing)
+        )
+        after = matter.gas_enthalpy(dry, cool, high) + (
+            matter.water_enthalpy(wet, cool, high) if wet.any() else 0.0
+        )
+        return Stage(
+            gas, suction, low, high, ideal, discharge, work, cool, after - before - work, wet
+        )
 
     def settled(self, outcome: Outcome) -> Equipment:
         if self.stages != "auto":
@@ -191,7 +241,7 @@ class Compressor(Equipment):
         inlet = material(feeds, "inlet")
         if inlet.water.any() or float(inlet.total) == 0.0 or "heat" in site.outlets:
             return {}
-        return {"inlet": self._train_slopes(inlet, site.matter, self._train(inlet, site.matter, int(outcome.results["stages"])))}
+        return {"inlet": self._train_slopes(inlet, site.matter, outcome.inner)}
 
     def _train_slopes(self, inlet: Stream, matter: Matter, train: list[Stage]) -> dict[str, Array]:
         """Chain rule along the stages; every block has a column for each inlet flow and enthalpy."""
@@ -217,7 +267,9 @@ class Compressor(Equipment):
                 continue
             if stage.condensate.any():
                 dry = stage.gas - stage.condensate
-                share = water_split_slopes(matter, stage.gas, dry, stage.condensate, stage.cooled_to, stage.high, ("CO2",))
+                share = water_split_slopes(
+                    matter, stage.gas, dry, stage.condensate, stage.cooled_to, stage.high, ("CO2",)
+                )
                 wet = share @ gas
                 partial = matter.water_partial(stage.cooled_to, stage.high, _WET).enthalpy
                 condensate += np.vstack([wet, partial @ wet])
@@ -232,7 +284,9 @@ class Compressor(Equipment):
         }
 
 
-def _gas_temperature(matter: Matter, gas: Array, enthalpy: float, pressure: float, guess: float) -> float:
+def _gas_temperature(
+    matter: Matter, gas: Array, enthalpy: float, pressure: float, guess: float
+) -> float:
     """Temperature [K] of a gas that has an enthalpy [W]; Newton, near-linear in a compressor."""
     level = guess
     for _ in range(30):

@@ -18,7 +18,17 @@ from chainflow.basis.constants import FARADAY
 from chainflow.basis.quantities import Flow as FlowSetting
 from chainflow.basis.quantities import OpenFraction, Pressure, SpecificEnergy, Temperature, Voltage
 from chainflow.equipment.base import (
-    HEAT_PORTS, Array, Caution, Duty, Equipment, Outcome, Port, Role, Site, material, rate,
+    HEAT_PORTS,
+    Array,
+    Caution,
+    Duty,
+    Equipment,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
+    rate,
 )
 from chainflow.equipment.boundary import amounts
 from chainflow.equipment.ports import Feeds
@@ -38,12 +48,36 @@ class Electrolyser(Equipment):
     kind: ClassVar[str] = "electrolyser"
     family: ClassVar[str] = "electrolysis"
     makes: ClassVar[bool] = True
-    gives: ClassVar[tuple[str, ...]] = ("hydrogen_mol_s", "hydrogen_kg_s", "water_kg_s", "direct_current_W", "voltage_V", "stack_efficiency_LHV", "stack_efficiency_HHV")
+    gives: ClassVar[tuple[str, ...]] = (
+        "hydrogen_mol_s",
+        "hydrogen_kg_s",
+        "water_kg_s",
+        "direct_current_W",
+        "voltage_V",
+        "stack_efficiency_LHV",
+        "stack_efficiency_HHV",
+    )
     ports: ClassVar[tuple[Port, ...]] = (
-        Port("power", "power", Role.TAKES, main=True, many=True, means="alternating or direct current before the rectifier"),
-        Port("water", "material", Role.CALLS, means="water for the reaction and for the moisture of both gases"),
-        Port("hydrogen", "material", Role.OFFERS, main=True, means="hydrogen, saturated with water"),
-        Port("oxygen", "material", Role.OFFERS, optional=True, means="oxygen, saturated with water"),
+        Port(
+            "power",
+            "power",
+            Role.TAKES,
+            main=True,
+            many=True,
+            means="alternating or direct current before the rectifier",
+        ),
+        Port(
+            "water",
+            "material",
+            Role.CALLS,
+            means="water for the reaction and for the moisture of both gases",
+        ),
+        Port(
+            "hydrogen", "material", Role.OFFERS, main=True, means="hydrogen, saturated with water"
+        ),
+        Port(
+            "oxygen", "material", Role.OFFERS, optional=True, means="oxygen, saturated with water"
+        ),
         HEAT_PORTS[1],
         HEAT_PORTS[2],
     )
@@ -58,21 +92,32 @@ class Electrolyser(Equipment):
         "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387 (IAPWS-95 auxiliary equation)",
     )
 
-    model: Literal["specific-energy", "voltage"] = Field("specific-energy", description="how power becomes hydrogen")
-    energy_use: SpecificEnergy | None = Field(None, description="direct current at the stack per mass of hydrogen")
+    model: Literal["specific-energy", "voltage"] = Field(
+        "specific-energy", description="how power becomes hydrogen"
+    )
+    energy_use: SpecificEnergy | None = Field(
+        None, description="direct current at the stack per mass of hydrogen"
+    )
     voltage: Voltage | None = Field(None, description="voltage of one cell (model: voltage)")
     rectifier: OpenFraction = Field(1.0, description="direct current per power drawn")
     temperature: Temperature = Field(description="stack temperature; both gases leave at it")
     pressure: Pressure = Field(description="stack pressure, absolute")
-    hydrogen: FlowSetting | None = Field(None, description="dry hydrogen wanted; the stack then calls for power")
+    hydrogen: FlowSetting | None = Field(
+        None, description="dry hydrogen wanted; the stack then calls for power"
+    )
 
     @model_validator(mode="after")
     def _one_model(self) -> Electrolyser:
-        wanted, other = ("energy_use", "voltage") if self.model == "specific-energy" else ("voltage", "energy_use")
+        wanted, other = (
+            ("energy_use", "voltage")
+            if self.model == "specific-energy"
+            else ("voltage", "energy_use")
+        )
         if getattr(self, wanted) is None or getattr(self, other) is not None:
             example = "energy_use: 52 kWh/kg" if wanted == "energy_use" else "voltage: 1.9 V"
             raise PydanticCustomError(
-                "electrolyser", "model {model} wants '{wanted}' and not '{other}'; write {example}",
+                "electrolyser",
+                "model {model} wants '{wanted}' and not '{other}'; write {example}",
                 {"model": self.model, "wanted": wanted, "other": other, "example": example},
             )
         return self
@@ -80,17 +125,30 @@ class Electrolyser(Equipment):
     def port_list(self) -> tuple[Port, ...]:
         if self.hydrogen is None:
             return self.ports
-        called = Port("power", "power", Role.CALLS, optional=True, main=True, means="power for the hydrogen wanted")
+        called = Port(
+            "power",
+            "power",
+            Role.CALLS,
+            optional=True,
+            main=True,
+            means="power for the hydrogen wanted",
+        )
         return (called, *self.ports[1:])
 
     def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
         missing = [name for name in ("H2", "O2", "H2O") if name not in matter.index]
         if missing:
             yield ("kind",), f"electrolysis needs {', '.join(missing)} among the components"
-        if self.temperature > 473.15 or saturation_pressure(self.temperature) >= 0.95 * self.pressure:
-            yield ("temperature",), (
-                f"at {self.temperature - 273.15:.4g} degC and {self.pressure / 1e5:.4g} bar the water boils, "
-                "wanted liquid water: lower the temperature or raise the pressure"
+        if (
+            self.temperature > 473.15
+            or saturation_pressure(self.temperature) >= 0.95 * self.pressure
+        ):
+            yield (
+                ("temperature",),
+                (
+                    f"at {self.temperature - 273.15:.4g} degC and {self.pressure / 1e5:.4g} bar the water boils, "
+                    "wanted liquid water: lower the temperature or raise the pressure"
+                ),
             )
 
     def destinations(
@@ -118,27 +176,50 @@ class Electrolyser(Equipment):
             made = self.hydrogen.value / (_HYDROGEN_MASS if self.hydrogen.per == "kg" else 1.0)
             power = made * self.energy_per_mol / self.rectifier
         else:
-            power = max(rate(feeds, "power"), 0.0)  # below zero only while a plant that is short is being solved
+            power = max(
+                rate(feeds, "power"), 0.0
+            )  # below zero only while a plant that is short is being solved
             made = power * self.rectifier / self.energy_per_mol
         moisture = self._moisture()
         amount, unmet = self._water_needed(made, water, moisture)
         gases = self._gases(made, amount * water.flows, moisture, matter)
         hot_water = Stream.at(matter, amount * water.flows, self.temperature, self.pressure)
         direct = power * self.rectifier
-        stack_heat = float(sum(g.enthalpy for g in gases.values())) - float(hot_water.enthalpy) - direct
+        stack_heat = (
+            float(sum(g.enthalpy for g in gases.values())) - float(hot_water.enthalpy) - direct
+        )
         level = self.temperature
         needs = [
-            Duty.between("water to stack temperature", float(hot_water.enthalpy) - amount * float(water.enthalpy), float(water.temperature), level),
+            Duty.between(
+                "water to stack temperature",
+                float(hot_water.enthalpy) - amount * float(water.enthalpy),
+                float(water.temperature),
+                level,
+            ),
             Duty("stack", stack_heat, level, level, level),
-            Duty("rectifier loss", -(power - direct), site.ambient, site.ambient, site.ambient, "ambient"),
+            Duty(
+                "rectifier loss",
+                -(power - direct),
+                site.ambient,
+                site.ambient,
+                site.ambient,
+                "ambient",
+            ),
         ]
-        duties, _, drawn, heat = self.settle([d for d in needs if d.heat != 0.0 or d.purpose == "stack"], site)
+        duties, _, drawn, heat = self.settle(
+            [d for d in needs if d.heat != 0.0 or d.purpose == "stack"], site
+        )
         drawn |= {"water": amount}
         if self.hydrogen is not None:
             drawn["power"] = power
         return Outcome(
-            {**gases, **heat}, drawn, duties, power=power, results=self._results(made, power, direct, amount * float(water.mass_flow), matter),
-            cautions=self._cautions() if site.detail else (), unmet=unmet,
+            {**gases, **heat},
+            drawn,
+            duties,
+            power=power,
+            results=self._results(made, power, direct, amount * float(water.mass_flow), matter),
+            cautions=self._cautions() if site.detail else (),
+            unmet=unmet,
         )
 
     def _moisture(self) -> float:
@@ -146,12 +227,14 @@ class Electrolyser(Equipment):
         share = saturation_pressure(self.temperature) / self.pressure
         return share / (1.0 - share)
 
-    def _water_needed(self, made: float, water: Stream, moisture: float) -> tuple[float, dict[str, str]]:
+    def _water_needed(
+        self, made: float, water: Stream, moisture: float
+    ) -> tuple[float, dict[str, str]]:
         """Feed water [mol/s] for reaction and moisture; what is dissolved takes moisture along."""
-        pure = float(water.fraction("H2O"))
-        per_mol = pure - (1.0 - pure) * moisture
+        per_mol = _reacting_share(water, moisture)
         if per_mol <= 0.0:
-            return 0.0, {"water": "what is served at 'water' holds too little H2O to be electrolysed"}
+            text = "what is served at 'water' holds too little H2O to be electrolysed"
+            return 0.0, {"water": text}
         return made * (1.0 + 1.5 * moisture) / per_mol, {}
 
     def _gases(self, made: float, fed: Array, moisture: float, matter: Matter) -> dict[str, Any]:
@@ -165,7 +248,9 @@ class Electrolyser(Equipment):
             "oxygen": Stream.gaseous(matter, oxygen, self.temperature, self.pressure),
         }
 
-    def _results(self, made: float, power: float, direct: float, water: float, matter: Matter) -> dict[str, float]:
+    def _results(
+        self, made: float, power: float, direct: float, water: float, matter: Matter
+    ) -> dict[str, float]:
         ratio = {"LHV": matter.lhv, "HHV": matter.hhv}
         share = made / direct if direct > 0.0 else 0.0
         return {
@@ -174,7 +259,10 @@ class Electrolyser(Equipment):
             "water_kg_s": water,
             "direct_current_W": direct,
             "voltage_V": self.energy_per_mol / (2.0 * FARADAY),
-        } | {f"stack_efficiency_{name}": share * float(value[matter.index["H2"]]) for name, value in ratio.items()}
+        } | {
+            f"stack_efficiency_{name}": share * float(value[matter.index["H2"]])
+            for name, value in ratio.items()
+        }
 
     def _cautions(self) -> tuple[Caution, ...]:
         cell, limit = self.energy_per_mol / (2.0 * FARADAY), reversible_voltage(self.temperature)
@@ -186,15 +274,44 @@ class Electrolyser(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        power = outcome.power
-        if power == 0.0 or self.hydrogen is not None or "heat" in site.inlets | site.outlets:
+        if outcome.unmet or site.inlets & {"heat"} or "heat" in site.outlets:
             return {}
-        made: dict[str, Array] = {"drawn:water": np.array([[outcome.drawn["water"] / power]])}  # type: ignore[operator] # a number
+        known = {"water": self._by_water(material(feeds, "water"), outcome, site.matter)}
+        if self.hydrogen is not None or outcome.power == 0.0:
+            return known
+        power = outcome.power
+        made = {"drawn:water": np.array([[float(outcome.drawn["water"]) / power]])}  # type: ignore[arg-type] # a number
         for name in ("hydrogen", "oxygen"):
             gas = outcome.outlets[name]
             assert isinstance(gas, Stream)
             made[name] = np.append(gas.flows, gas.enthalpy)[:, None] / power
-        return {"power": made}
+        return known | {"power": made}
+
+    def _by_water(self, water: Stream, outcome: Outcome, matter: Matter) -> dict[str, Array]:
+        """Slopes by what one mol of the feed water is: its amount, and what leaves with oxygen."""
+        size, place = len(matter.components), matter.index["H2O"]
+        moisture = self._moisture()
+        amount = float(outcome.drawn["water"])  # type: ignore[arg-type] # a number
+        share = np.full(size, -moisture)
+        share[place] = 1.0
+        by_flow = -amount / _reacting_share(water, moisture) * share
+        oxygen = outcome.outlets["oxygen"]
+        assert isinstance(oxygen, Stream)
+        block = amount * np.eye(size) + np.outer(water.flows, by_flow)
+        block[place] = 0.0
+        block[place] = moisture * block.sum(axis=0)
+        partial = matter.gas_partial(oxygen.gas, self.temperature, self.pressure).enthalpy
+        none = np.zeros((size + 1, 1))
+        return {
+            "drawn:water": np.append(by_flow, 0.0)[None, :],
+            "oxygen": np.hstack([np.vstack([block, partial @ block]), none]),
+        }
+
+
+def _reacting_share(water: Stream, moisture: float) -> float:
+    """Water per mol of feed that is left when what is dissolved has taken its moisture along."""
+    pure = float(water.flow("H2O"))
+    return pure - (float(water.total) - pure) * moisture
 
 
 _HYDROGEN_MASS = 2.01588e-3  # [kg/mol], IUPAC standard atomic weight of hydrogen 1.00794

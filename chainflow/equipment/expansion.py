@@ -13,10 +13,18 @@ from pydantic import Field
 
 from chainflow.basis.quantities import OpenFraction, Pressure
 from chainflow.equipment.base import (
-    Array, Caution, Equipment, Outcome, Port, Role, Site, material,
+    Array,
+    Caution,
+    Equipment,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
 )
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed, lower_feed
+from chainflow.thermo.components import WATER_MOLAR_VOLUME
 from chainflow.thermo.streams import Stream
 
 _ENTROPY_ROUND_OFF = 1e-13
@@ -39,7 +47,9 @@ class Valve(Equipment):
     pressure: Pressure = Field(description="pressure at the outlet, absolute")
 
     def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
-        return lower_feed(inlets, self.pressure, "a valve cannot raise pressure: put a pump or compressor instead")
+        return lower_feed(
+            inlets, self.pressure, "a valve cannot raise pressure: put a pump or compressor instead"
+        )
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         return Outcome({"outlet": material(feeds, "inlet").at_pressure(self.pressure)})
@@ -74,7 +84,11 @@ class Expander(Equipment):
         ideal = isentropic(inlet, self.pressure)
         work = self.efficiency * (float(inlet.enthalpy) - float(ideal.enthalpy))
         outlet = Stream.from_enthalpy(
-            site.matter, inlet.flows, float(inlet.enthalpy) - work, self.pressure, float(ideal.temperature)
+            site.matter,
+            inlet.flows,
+            float(inlet.enthalpy) - work,
+            self.pressure,
+            float(ideal.temperature),
         )
         return Outcome({"outlet": outlet, "power": work}, power=-work, results={"work_W": work})
 
@@ -102,15 +116,43 @@ class Pump(Equipment):
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         inlet = material(feeds, "inlet")
-        ideal = isentropic(inlet, self.pressure)
-        power = (float(ideal.enthalpy) - float(inlet.enthalpy)) / self.efficiency
+        power = self._ideal_work(inlet) / self.efficiency
         outlet = Stream.from_enthalpy(
-            site.matter, inlet.flows, float(inlet.enthalpy) + power, self.pressure, float(ideal.temperature)
+            site.matter,
+            inlet.flows,
+            float(inlet.enthalpy) + power,
+            self.pressure,
+            float(inlet.temperature),
         )
         return Outcome(
-            {"outlet": outlet}, {"power": power}, power=power, results={"work_W": power},
+            {"outlet": outlet},
+            {"power": power},
+            power=power,
+            results={"work_W": power},
             cautions=_gas_in_pump(inlet),
         )
+
+    def _ideal_work(self, inlet: Stream) -> float:
+        """Isentropic work [W]; for a liquid that keeps its volume it is volume times pressure."""
+        place = inlet.matter.water
+        if place is None or inlet.gas.any():
+            return float(isentropic(inlet, self.pressure).enthalpy) - float(inlet.enthalpy)
+        volume = WATER_MOLAR_VOLUME * float(inlet.water[place])
+        return volume * (self.pressure - float(inlet.pressure))
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        inlet, place = material(feeds, "inlet"), site.matter.water
+        if place is None or inlet.gas.any():
+            return {}
+        size = len(site.matter.components)
+        by_water = WATER_MOLAR_VOLUME * (self.pressure - float(inlet.pressure)) / self.efficiency
+        power = np.zeros((1, size + 1))
+        power[0, place] = by_water
+        block = np.eye(size + 1)
+        block[size, place] += by_water
+        return {"inlet": {"outlet": block, "drawn:power": power}}
 
 
 def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:

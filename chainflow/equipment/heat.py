@@ -14,11 +14,21 @@ from pydantic_core import PydanticCustomError
 
 from chainflow.basis.quantities import OpenFraction, Power, PressureDrop, Temperature
 from chainflow.equipment.base import (
-    HEAT_PORTS, Array, Caution, Duty, Equipment, Heat, Outcome, Port, Role, Site, material,
+    HEAT_PORTS,
+    Array,
+    Caution,
+    Duty,
+    Equipment,
+    Heat,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
 )
 from chainflow.equipment.cooling import cooling_duties, wrong_way
 from chainflow.equipment.ports import Feeds, arriving
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
 
 
 class _Exchanger(Equipment):
@@ -31,11 +41,17 @@ class _Exchanger(Equipment):
     ports: ClassVar[tuple[Port, ...]] = (
         Port("inlet", "material", Role.TAKES, main=True, means="the stream"),
         *HEAT_PORTS,
-        Port("outlet", "material", Role.OFFERS, main=True, means="the stream at its new temperature"),
+        Port(
+            "outlet", "material", Role.OFFERS, main=True, means="the stream at its new temperature"
+        ),
     )
 
-    temperature: Temperature | None = Field(None, description="temperature at the outlet (or give `duty`)")
-    duty: Power | None = Field(None, description="heat into the stream, negative for cooling (or give `temperature`)")
+    temperature: Temperature | None = Field(
+        None, description="temperature at the outlet (or give `duty`)"
+    )
+    duty: Power | None = Field(
+        None, description="heat into the stream, negative for cooling (or give `temperature`)"
+    )
     pressure_drop: PressureDrop = Field(0.0, description="pressure lost on the way")
 
     @model_validator(mode="after")
@@ -53,18 +69,31 @@ class _Exchanger(Equipment):
         else:
             heat = self.duty or 0.0
             outlet = Stream.from_enthalpy(
-                site.matter, inlet.flows, float(inlet.enthalpy) + heat, pressure, float(inlet.temperature)
+                site.matter,
+                inlet.flows,
+                float(inlet.enthalpy) + heat,
+                pressure,
+                float(inlet.temperature),
             )
         level = float(outlet.temperature)
-        needs = cooling_duties("cooling" if self.cools else "heating", inlet, level, pressure, heat, site)
+        needs = cooling_duties(
+            "cooling" if self.cools else "heating", inlet, level, pressure, heat, site
+        )
         duties, electric, drawn, given = self.settle(needs, site)
         caution = wrong_way(self.kind, heat, float(inlet.total), cools=self.cools)
-        return Outcome({"outlet": outlet, **given}, drawn, duties, power=electric, results={"duty_W": heat}, cautions=caution)
+        return Outcome(
+            {"outlet": outlet, **given},
+            drawn,
+            duties,
+            power=electric,
+            results={"duty_W": heat},
+            cautions=caution,
+        )
 
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if self.temperature is None or site.inlets & {"heat", "power"} or "heat" in site.outlets:
+        if self.temperature is None or site.inlets & {"heat", "power"}:
             return {}
         outlet = outcome.outlets["outlet"]
         assert isinstance(outlet, Stream)
@@ -73,7 +102,25 @@ class _Exchanger(Equipment):
         block = np.zeros((size + 1, size + 1))
         block[:size, :size] = np.eye(size)
         block[size, :size] = partial
-        return {"inlet": {"outlet": block}}
+        if "heat" not in site.outlets:
+            return {"inlet": {"outlet": block}}
+        heat = _given_slopes(material(feeds, "inlet"), block, outcome)
+        return {} if heat is None else {"inlet": {"outlet": block, "heat": heat}}
+
+
+def _given_slopes(inlet: Stream, block: Array, outcome: Outcome) -> Array | None:
+    """Slopes of the heat given off, if all of it is given off evenly and goes to one line."""
+    offered, duties = outcome.outlets["heat"], outcome.duties
+    assert isinstance(offered, Heat)
+    if len(duties) != 1 or duties[0].met_by != "heat" or offered.start == offered.end:
+        return None
+    start, end, mean = offered.start, offered.end, offered.mean
+    by_flow, by_enthalpy = temperature_slopes(inlet)
+    level = np.append(by_flow, by_enthalpy)
+    rate = -block[-1].copy()
+    rate[-1] += 1.0
+    by_start = mean / (start - end) * (1.0 - mean / start)  # of the entropy-mean temperature
+    return np.vstack([rate, level, np.zeros_like(level), by_start * level])
 
 
 class Heater(_Exchanger):
@@ -107,7 +154,9 @@ class HeatEngine(Equipment):
     sources: ClassVar[tuple[str, ...]] = ("Carnot 1824; the share of it is the user's",)
 
     share_of_carnot: OpenFraction = Field(description="power per power of a reversible engine")
-    sink: Temperature | None = Field(None, description="temperature of the heat sink (default: ambient)")
+    sink: Temperature | None = Field(
+        None, description="temperature of the heat sink (default: ambient)"
+    )
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         heat = Heat.total([h for h in arriving(feeds, "heat") if isinstance(h, Heat)])
@@ -118,8 +167,18 @@ class HeatEngine(Equipment):
             Duty("heat taken in", heat.rate, heat.start, heat.end, heat.mean, "heat"),
             Duty("heat rejected", power - heat.rate, sink, sink, sink, "ambient"),
         )
-        results = {"mean_temperature_K": heat.mean, "efficiency": power / heat.rate if heat.rate > 0.0 else 0.0}
-        return Outcome({"power": power}, {}, duties, power=-power, results=results, cautions=_too_cold(carnot, heat, sink))
+        results = {
+            "mean_temperature_K": heat.mean,
+            "efficiency": power / heat.rate if heat.rate > 0.0 else 0.0,
+        }
+        return Outcome(
+            {"power": power},
+            {},
+            duties,
+            power=-power,
+            results=results,
+            cautions=_too_cold(carnot, heat, sink),
+        )
 
 
 def _too_cold(carnot: float, heat: Heat, sink: float) -> tuple[Caution, ...]:

@@ -24,11 +24,15 @@ class HeatNetwork(Equipment):
     gives: ClassVar[tuple[str, ...]] = ("shortage_W", "rest_W")
     ports: ClassVar[tuple[Port, ...]] = (
         Port("supply", "heat", Role.TAKES, many=True, main=True, means="heat fed in"),
-        Port("shortage", "heat", Role.CALLS, optional=True, means="asked when no heat is hot enough"),
+        Port(
+            "shortage", "heat", Role.CALLS, optional=True, means="asked when no heat is hot enough"
+        ),
         Port(ANY_NAME, "heat", Role.SERVES, optional=True, means="each user by a name of its own"),
         Port("rest", "heat", Role.OFFERS, optional=True, means="what the users leave"),
     )
-    formulas: ClassVar[tuple[str, ...]] = ("problem table over all temperature intervals, approach 0 K",)
+    formulas: ClassVar[tuple[str, ...]] = (
+        "problem table over all temperature intervals, approach 0 K",
+    )
     sources: ClassVar[tuple[str, ...]] = ("Linnhoff and Flower, AIChE J. 24 (1978) 633",)
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
@@ -45,7 +49,12 @@ class HeatNetwork(Equipment):
             unmet["shortage"] = self._sentence(missing, hottest, given)
         outlets: dict[str, Flow] = {name: h for name, h in asked.items() if isinstance(h, Heat)}
         outlets["rest"] = self._rest(table, given, site)
-        return Outcome(outlets, drawn, results={"shortage_W": missing, "rest_W": table.cold_utility}, unmet=unmet)
+        return Outcome(
+            outlets,
+            drawn,
+            results={"shortage_W": missing, "rest_W": table.cold_utility},
+            unmet=unmet,
+        )
 
     def _rest(self, table: Cascade, given: list[Heat], site: Site) -> Heat:
         if table.rest is not None:
@@ -55,7 +64,11 @@ class HeatNetwork(Equipment):
 
     def _sentence(self, missing: float, hottest: float, given: list[Heat]) -> str:
         best = max((max(h.start, h.end) for h in given), default=0.0)
-        found = f"the hottest heat it gets is at {best - 273.15:.4g} degC" if given else "it gets no heat"
+        found = (
+            f"the hottest heat it gets is at {best - 273.15:.4g} degC"
+            if given
+            else "it gets no heat"
+        )
         return (
             f"{missing / 1e3:.6g} kW of the heat asked (up to {hottest - 273.15:.4g} degC) cannot be met: {found}; "
             "link 'shortage', or meet the need with 'power'"

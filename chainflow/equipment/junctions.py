@@ -13,7 +13,15 @@ from pydantic import BaseModel, ConfigDict, Field, PositiveFloat, model_validato
 from pydantic_core import PydanticCustomError
 
 from chainflow.equipment.base import (
-    Array, Equipment, Flow, Heat, Outcome, Port, Role, Site, material,
+    Array,
+    Equipment,
+    Flow,
+    Heat,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
 )
 from chainflow.equipment.boundary import amounts
 from chainflow.equipment.ports import ANY_NAME, Feeds, arriving
@@ -33,7 +41,9 @@ def joined(streams: Iterable[Stream], matter: Matter, pressure: float | None = N
     flows = np.sum([s.flows for s in streams], axis=0)
     enthalpy = float(sum(s.enthalpy for s in streams))
     total = float(flows.sum())
-    guess = sum(float(s.total) * float(s.temperature) for s in streams) / total if total > 0 else None
+    guess = (
+        sum(float(s.total) * float(s.temperature) for s in streams) / total if total > 0 else None
+    )
     return Stream.from_enthalpy(matter, flows, enthalpy, level, guess)
 
 
@@ -42,9 +52,12 @@ def spread_faults(inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str
     known = [(p, port) for port, pressures in inlets.items() for p in pressures if np.isfinite(p)]
     if known and (max(known)[0] - min(known)[0]) > _PRESSURE_SPREAD * max(known)[0]:
         (low, _), (high, port) = min(known), max(known)
-        yield port, (
-            f"inlets are at {low / 1e5:.4g} bar and {high / 1e5:.4g} bar, wanted within 10 %: "
-            "put a valve, pump or compressor before one of them"
+        yield (
+            port,
+            (
+                f"inlets are at {low / 1e5:.4g} bar and {high / 1e5:.4g} bar, wanted within 10 %: "
+                "put a valve, pump or compressor before one of them"
+            ),
         )
 
 
@@ -58,7 +71,9 @@ class Mixer(Equipment):
         Port("outlet", "material", Role.OFFERS, main=True, means="the mixture"),
     )
 
-    let_down: bool = Field(False, description="let inlets that differ by more than 10 % be let down")
+    let_down: bool = Field(
+        False, description="let inlets that differ by more than 10 % be let down"
+    )
 
     def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
         if not self.let_down:
@@ -98,19 +113,29 @@ class Blend(Equipment):
         Port("trim", "material", Role.CALLS, means="what is asked for to reach the ratio"),
         Port("outlet", "material", Role.OFFERS, main=True, means="the blend"),
     )
-    formulas: ClassVar[tuple[str, ...]] = ("amount = -w.n(main) / w.y(trim), w = over - value * under",)
+    formulas: ClassVar[tuple[str, ...]] = (
+        "amount = -w.n(main) / w.y(trim), w = over - value * under",
+    )
 
-    ratio: dict[str, PositiveFloat] | None = Field(None, description="two components and their parts, {H2: 4, CO2: 1}")
+    ratio: dict[str, PositiveFloat] | None = Field(
+        None, description="two components and their parts, {H2: 4, CO2: 1}"
+    )
     module: Module | None = Field(None, description="ratio of sums: over, under, value")
-    let_down: bool = Field(False, description="let inlets that differ by more than 10 % be let down")
+    let_down: bool = Field(
+        False, description="let inlets that differ by more than 10 % be let down"
+    )
 
     @model_validator(mode="after")
     def _one_ratio(self) -> Blend:
         if (self.ratio is None) == (self.module is None):
-            raise PydanticCustomError("blend", "give one of 'ratio' and 'module', such as ratio: {{H2: 4, CO2: 1}}", {})
+            raise PydanticCustomError(
+                "blend", "give one of 'ratio' and 'module', such as ratio: {{H2: 4, CO2: 1}}", {}
+            )
         if self.ratio is not None and len(self.ratio) != 2:
             raise PydanticCustomError(
-                "blend", "ratio names {count} components, wanted two: one inlet can trim one ratio", {"count": len(self.ratio)}
+                "blend",
+                "ratio names {count} components, wanted two: one inlet can trim one ratio",
+                {"count": len(self.ratio)},
             )
         return self
 
@@ -129,7 +154,9 @@ class Blend(Equipment):
     def weights(self, matter: Matter) -> Array:
         """Weights whose sum over the outlet is zero when the ratio is met; shape (components,)."""
         if self.module is not None:
-            return amounts(self.module.over, matter) - self.module.value * amounts(self.module.under, matter)
+            return amounts(self.module.over, matter) - self.module.value * amounts(
+                self.module.under, matter
+            )
         assert self.ratio is not None
         (first, a), (second, b) = self.ratio.items()
         return amounts({first: 1.0 / a}, matter) - amounts({second: 1.0 / b}, matter)
@@ -146,7 +173,9 @@ class Blend(Equipment):
         else:
             amount = wanted / brought
             if amount < -1e-12 * sum(float(s.total) for s in mains):
-                unmet["trim"] = f"overfull: 'main' already holds so much that {-amount:.6g} mol/s would have to be taken out"
+                unmet["trim"] = (
+                    f"overfull: 'main' already holds so much that {-amount:.6g} mol/s would have to be taken out"
+                )
         amount = max(amount, 0.0)
         level = min(float(s.pressure) for s in (*mains, trim))
         outlet = joined((*mains, trim.scaled(amount)), site.matter, level)
@@ -166,7 +195,10 @@ class Blend(Equipment):
         eye = np.eye(len(one))
         return {
             "main": {"outlet": eye + np.outer(one, by_main), "drawn:trim": by_main[None, :]},
-            "trim": {"outlet": amount * eye + np.outer(one, by_trim), "drawn:trim": by_trim[None, :]},
+            "trim": {
+                "outlet": amount * eye + np.outer(one, by_trim),
+                "drawn:trim": by_trim[None, :],
+            },
         }
 
 
@@ -184,7 +216,10 @@ class Splitter(Equipment):
 
     def port_list(self) -> tuple[Port, ...]:
         means = "its share of the inlet"
-        return (self.ports[0], *(Port(name, "any", Role.OFFERS, optional=True, means=means) for name in self.shares))
+        return (
+            self.ports[0],
+            *(Port(name, "any", Role.OFFERS, optional=True, means=means) for name in self.shares),
+        )
 
     def destinations(
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
@@ -207,7 +242,9 @@ class Splitter(Equipment):
         if isinstance(inlet, Heat):
             return {}
         size = len(site.matter.components) + 1 if isinstance(inlet, Stream) else 1
-        return {"inlet": {name: share * np.eye(size) for name, share in resolved(self.shares).items()}}
+        return {
+            "inlet": {name: share * np.eye(size) for name, share in resolved(self.shares).items()}
+        }
 
 
 def _streams(feeds: Feeds, port: str) -> tuple[Stream, ...]:

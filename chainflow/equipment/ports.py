@@ -83,7 +83,9 @@ class Heat:
         coldest = min(min(part.start, part.end) for part in flowing)
         if rate == 0.0 or entropy == 0.0:
             return Heat(rate, hottest, coldest, mean_temperature(hottest, coldest))
-        start, end = (hottest, coldest) if flowing[0].start >= flowing[0].end else (coldest, hottest)
+        start, end = (
+            (hottest, coldest) if flowing[0].start >= flowing[0].end else (coldest, hottest)
+        )
         return Heat(rate, start, end, rate / entropy)
 
     def scaled(self, factor: float) -> Heat:

@@ -42,7 +42,11 @@ class Switchboard(Equipment):
     ) -> dict[str, dict[str, Array]]:
         short = "shortage" in site.inlets and outcome.drawn["shortage"] > 0.0  # type: ignore[operator] # a number
         one = np.array([[1.0]])
-        gain, loss = ({"drawn:shortage": -one}, {"drawn:shortage": one}) if short else ({"rest": one}, {"rest": -one})
+        gain, loss = (
+            ({"drawn:shortage": -one}, {"drawn:shortage": one})
+            if short
+            else ({"rest": one}, {"rest": -one})
+        )
         return {"supply": gain} | {f"asked:{name}": {name: one, **loss} for name in asked}
 
 
@@ -53,11 +57,17 @@ class Grid(Equipment):
     family: ClassVar[str] = "power"
     gives: ClassVar[tuple[str, ...]] = ("bought_W", "sold_W")
     ports: ClassVar[tuple[Port, ...]] = (
-        Port("surplus", "power", Role.TAKES, many=True, optional=True, main=True, means="power sold"),
-        Port("power", "power", Role.SERVES, many=True, optional=True, main=True, means="power bought"),
+        Port(
+            "surplus", "power", Role.TAKES, many=True, optional=True, main=True, means="power sold"
+        ),
+        Port(
+            "power", "power", Role.SERVES, many=True, optional=True, main=True, means="power bought"
+        ),
     )
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         bought = float(asked.get("power", 0.0))
         sold = rate(feeds, "surplus")
-        return Outcome({"power": bought}, results={"bought_W": bought, "sold_W": sold}, power=sold - bought)
+        return Outcome(
+            {"power": bought}, results={"bought_W": bought, "sold_W": sold}, power=sold - bought
+        )

@@ -13,13 +13,18 @@ _SLACK = 1e-9  # relative, so that 30 bar is not below 30 bar
 
 
 def lower_feed(
-    inlets: Mapping[str, tuple[float, ...]], pressure: float, mend: str = "put a pump or compressor between"
+    inlets: Mapping[str, tuple[float, ...]],
+    pressure: float,
+    mend: str = "put a pump or compressor between",
 ) -> Iterator[tuple[str, str]]:
     """Feeds below the pressure at which equipment works: (inlet, sentence)."""
     for port, pressures in inlets.items():
         for level in pressures:
             if np.isfinite(level) and level < pressure * (1.0 - _SLACK):
-                yield port, f"'{port}' is at {level / 1e5:.4g} bar, works at {pressure / 1e5:.4g} bar: {mend}"
+                yield (
+                    port,
+                    f"'{port}' is at {level / 1e5:.4g} bar, works at {pressure / 1e5:.4g} bar: {mend}",
+                )
 
 
 def higher_feed(
@@ -29,4 +34,7 @@ def higher_feed(
     for port, pressures in inlets.items():
         for level in pressures:
             if np.isfinite(level) and level > pressure * (1.0 + _SLACK):
-                yield port, f"'{port}' is at {level / 1e5:.4g} bar, above the {pressure / 1e5:.4g} bar wanted at the outlet: {mend}"
+                yield (
+                    port,
+                    f"'{port}' is at {level / 1e5:.4g} bar, above the {pressure / 1e5:.4g} bar wanted at the outlet: {mend}",
+                )

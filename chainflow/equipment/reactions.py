@@ -27,13 +27,17 @@ def parse_equation(text: str) -> dict[str, float]:
         raise ValueError("the equation is too long")
     sides = text.split("->")
     if len(sides) != 2:
-        raise ValueError(f"'{text}' has no single '->', wanted an equation such as CO2 + 4 H2 -> CH4 + 2 H2O")
+        raise ValueError(
+            f"'{text}' has no single '->', wanted an equation such as CO2 + 4 H2 -> CH4 + 2 H2O"
+        )
     numbers: dict[str, float] = {}
     for sign, side in zip((-1.0, 1.0), sides, strict=True):
         for term in side.split(" + "):
             match = _TERM.match(term.strip())
             if match is None:
-                raise ValueError(f"cannot read '{term.strip()}' in '{text}', wanted a number and a component such as 4 H2")
+                raise ValueError(
+                    f"cannot read '{term.strip()}' in '{text}', wanted a number and a component such as 4 H2"
+                )
             numbers[match[2]] = numbers.get(match[2], 0.0) + sign * _number(match[1])
     return numbers
 
@@ -58,8 +62,12 @@ class Reaction(BaseModel):
 
     model_config = ConfigDict(frozen=True, extra="forbid")
 
-    equation: Annotated[str, AfterValidator(_readable)] = Field(description="CO2 + 3 H2 -> CH3OH + H2O")
-    conversion: dict[str, Fraction] | None = Field(None, description="share of one component of the feed that this reaction uses, {CO2: 20 %}")
+    equation: Annotated[str, AfterValidator(_readable)] = Field(
+        description="CO2 + 3 H2 -> CH3OH + H2O"
+    )
+    conversion: dict[str, Fraction] | None = Field(
+        None, description="share of one component of the feed that this reaction uses, {CO2: 20 %}"
+    )
     extent: FlowSetting | None = Field(None, description="extent of the reaction, 0.1 mol/s")
 
     @model_validator(mode="after")
@@ -67,9 +75,15 @@ class Reaction(BaseModel):
         if (self.conversion is None) == (self.extent is None):
             raise PydanticCustomError("reaction", "give one of 'conversion' and 'extent'", {})
         if self.conversion is not None and len(self.conversion) != 1:
-            raise PydanticCustomError("reaction", "conversion names {count} components, wanted one", {"count": len(self.conversion)})
+            raise PydanticCustomError(
+                "reaction",
+                "conversion names {count} components, wanted one",
+                {"count": len(self.conversion)},
+            )
         if self.extent is not None and self.extent.per != "mol":
-            raise PydanticCustomError("reaction", "extent is a molar flow, wanted for example 0.1 mol/s", {})
+            raise PydanticCustomError(
+                "reaction", "extent is a molar flow, wanted for example 0.1 mol/s", {}
+            )
         return self
 
     @property
@@ -87,7 +101,10 @@ class Reaction(BaseModel):
             yield ("equation",), f"'{self.equation}' is not balanced: {listed} from left to right"
         for name in self.conversion or {}:
             if self.numbers.get(name, 0.0) >= 0.0:
-                yield ("conversion", name), f"'{name}' is not used by '{self.equation}', wanted one of its left side"
+                yield (
+                    ("conversion", name),
+                    f"'{name}' is not used by '{self.equation}', wanted one of its left side",
+                )
 
     def vector(self, matter: Matter) -> np.ndarray:
         """Stoichiometric numbers in the order of the components; shape (components,)."""

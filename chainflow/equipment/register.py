@@ -11,13 +11,15 @@ from importlib.metadata import entry_points
 
 from chainflow.equipment import (
     boundary,
-    combustion,
+    burner,
     compression,
     electrolysis,
+    engine,
     expansion,
     heat,
     heat_network,
     junctions,
+    methane_reactors,
     power,
     reactors,
     separation,
@@ -29,16 +31,32 @@ from chainflow.equipment.base import Equipment
 ENTRY_POINT_GROUP = "chainflow.equipment"
 
 _CORE: tuple[type[Equipment], ...] = (
-    boundary.Supply, boundary.Product, boundary.Vent,
-    sunlight.Sunlight, sunlight.PvField,
-    power.Switchboard, power.Grid,
+    boundary.Supply,
+    boundary.Product,
+    boundary.Vent,
+    sunlight.Sunlight,
+    sunlight.PvField,
+    power.Switchboard,
+    power.Grid,
     electrolysis.Electrolyser,
-    junctions.Mixer, junctions.Blend, junctions.Splitter,
-    separation.Separator, separation.Condenser,
-    heat.Heater, heat.Cooler, heat.HeatEngine, heat_network.HeatNetwork,
-    expansion.Valve, compression.Compressor, expansion.Expander, expansion.Pump,
-    reactors.Reactor, reactors.ShiftReactor, reactors.MethanationReactor,
-    combustion.Burner, combustion.Engine,
+    junctions.Mixer,
+    junctions.Blend,
+    junctions.Splitter,
+    separation.Separator,
+    separation.Condenser,
+    heat.Heater,
+    heat.Cooler,
+    heat.HeatEngine,
+    heat_network.HeatNetwork,
+    expansion.Valve,
+    compression.Compressor,
+    expansion.Expander,
+    expansion.Pump,
+    reactors.Reactor,
+    methane_reactors.ShiftReactor,
+    methane_reactors.MethanationReactor,
+    burner.Burner,
+    engine.Engine,
     stores.Store,
 )
 
@@ -50,6 +68,8 @@ def kinds() -> dict[str, type[Equipment]]:
     for point in sorted(entry_points(group=ENTRY_POINT_GROUP), key=lambda p: p.name):
         cls = point.load()
         if not (isinstance(cls, type) and issubclass(cls, Equipment)):
-            raise TypeError(f"entry point {point.name!r} is no kind of equipment: it must be a class derived from Equipment")
+            raise TypeError(
+                f"entry point {point.name!r} is no kind of equipment: it must be a class derived from Equipment"
+            )
         known.setdefault(cls.kind, cls)
     return known

@@ -13,7 +13,16 @@ from pydantic import Field
 
 from chainflow.basis.quantities import Fraction, MolarEnergy, PressureDrop, Temperature
 from chainflow.equipment.base import (
-    HEAT_PORTS, Array, Caution, Duty, Equipment, Outcome, Port, Role, Site, material,
+    HEAT_PORTS,
+    Array,
+    Caution,
+    Duty,
+    Equipment,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
 )
 from chainflow.equipment.cooling import cooling_duties, wrong_way
 from chainflow.equipment.ports import Feeds
@@ -38,7 +47,13 @@ class Separator(Equipment):
     gives: ClassVar[tuple[str, ...]] = ("minimum_work_W", "stated_work_W", "stated_heat_W")
     ports: ClassVar[tuple[Port, ...]] = (
         Port("inlet", "material", Role.TAKES, main=True, means="what is separated"),
-        Port("power", "power", Role.CALLS, optional=True, means="the stated work (and heat, if `heat` is not linked)"),
+        Port(
+            "power",
+            "power",
+            Role.CALLS,
+            optional=True,
+            means="the stated work (and heat, if `heat` is not linked)",
+        ),
         *HEAT_PORTS[1:],
         Port("passed", "material", Role.OFFERS, main=True, means="what is not kept"),
         Port("kept", "material", Role.OFFERS, optional=True, means="the recovered shares"),
@@ -48,10 +63,14 @@ class Separator(Equipment):
         "minimum work = exergy(kept) + exergy(passed) - exergy(inlet)",
     )
 
-    recovery: dict[str, Fraction] = Field(description="share of each component that is kept, {CO2: 90 %}")
+    recovery: dict[str, Fraction] = Field(
+        description="share of each component that is kept, {CO2: 90 %}"
+    )
     work: MolarEnergy = Field(0.0, description="electric work per mol of all that is kept")
     heat: MolarEnergy = Field(0.0, description="heat per mol of all that is kept")
-    heat_temperature: Temperature = Field(393.15, description="temperature at which the heat is needed")
+    heat_temperature: Temperature = Field(
+        393.15, description="temperature at which the heat is needed"
+    )
 
     def component_names(self) -> Iterator[tuple[tuple[str, ...], str]]:
         return ((("recovery", name), name) for name in self.recovery)
@@ -75,18 +94,30 @@ class Separator(Equipment):
         amount = float(kept.total)
         work, heat = self.work * amount, self.heat * amount
         mixing = float(kept.enthalpy) + float(passed.enthalpy) - float(inlet.enthalpy)
-        duties, electric, drawn, given = self.settle(self._needs(heat, mixing - work - heat, level), site)
-        if "power" in site.inlets:
-            drawn["power"] = electric + work
+        duties, electric, drawn, given = self.settle(
+            self._needs(heat, mixing - work - heat, level), site
+        )
+        drawn["power"] = electric + work  # without a line it is bought
         least = self._minimum_work(inlet, kept, passed) if site.detail else 0.0
         return Outcome(
-            {"passed": passed, "kept": kept, **given}, drawn, duties, power=electric + work,
+            {"passed": passed, "kept": kept, **given},
+            drawn,
+            duties,
+            power=electric + work,
             results={"minimum_work_W": least, "stated_work_W": work, "stated_heat_W": heat},
             idealisations=self._idealisations(least, work, heat, site) if site.detail else (),
         )
 
     def _needs(self, heat: float, balance: float, level: float) -> list[Duty]:
-        needs = [Duty("regeneration", heat, self.heat_temperature, self.heat_temperature, self.heat_temperature)]
+        needs = [
+            Duty(
+                "regeneration",
+                heat,
+                self.heat_temperature,
+                self.heat_temperature,
+                self.heat_temperature,
+            )
+        ]
         needs.append(Duty("separation", balance, level, level, level))
         return [need for need in needs if need.heat != 0.0] or needs[-1:]
 
@@ -98,9 +129,13 @@ class Separator(Equipment):
 
     def _minimum_work(self, inlet: Stream, kept: Stream, passed: Stream) -> float:
         environment = Environment()
-        return float(kept.exergy(environment) + passed.exergy(environment) - inlet.exergy(environment))
+        return float(
+            kept.exergy(environment) + passed.exergy(environment) - inlet.exergy(environment)
+        )
 
-    def _idealisations(self, least: float, work: float, heat: float, site: Site) -> tuple[Caution, ...]:
+    def _idealisations(
+        self, least: float, work: float, heat: float, site: Site
+    ) -> tuple[Caution, ...]:
         worth = work + heat * max(0.0, 1.0 - site.ambient / self.heat_temperature)
         if worth >= least - 1e-9 * abs(least) or least <= 0.0:
             return ()
@@ -181,7 +216,10 @@ class Condenser(Equipment):
         needs = cooling_duties("cooling and condensing", inlet, level, pressure, heat, site)
         duties, electric, drawn, given = self.settle(needs, site)
         return Outcome(
-            {"gas": gas, "liquid": liquid, **given}, drawn, duties, power=electric,
+            {"gas": gas, "liquid": liquid, **given},
+            drawn,
+            duties,
+            power=electric,
             results={"condensed_mol_s": float(liquid.total)},
             cautions=wrong_way("condenser", heat, float(inlet.total), cools=True),
         )
@@ -197,15 +235,19 @@ class Condenser(Equipment):
         level, pressure = self.temperature, float(gas.pressure)
         size = len(matter.components)
         if float(liquid.total) > 0.0:
-            to_liquid = water_split_slopes(matter, inlet.flows, gas.gas, liquid.water, level, pressure, self._gases)
+            to_liquid = water_split_slopes(
+                matter, inlet.flows, gas.gas, liquid.water, level, pressure, self._gases
+            )
         else:
             to_liquid = np.zeros((size, size))
         partial = matter.gas_partial(gas.gas, level, pressure)[0]
         wet = matter.water_partial(level, pressure, WET).enthalpy
-        return {"inlet": {
-            "gas": _with_enthalpy(np.eye(size) - to_liquid, partial),
-            "liquid": _with_enthalpy(to_liquid, wet),
-        }}
+        return {
+            "inlet": {
+                "gas": _with_enthalpy(np.eye(size) - to_liquid, partial),
+                "liquid": _with_enthalpy(to_liquid, wet),
+            }
+        }
 
 
 def _aqueous(matter: Matter, flows: Array, level: float, pressure: float) -> Stream:

@@ -24,13 +24,17 @@ def _adds_up(shares: dict[str, Any]) -> dict[str, Any]:
     rests = [name for name, value in shares.items() if value == REST]
     if len(rests) > 1:
         raise PydanticCustomError(
-            "shares", "{names} are all 'rest', wanted at most one of them", {"names": ", ".join(rests)}
+            "shares",
+            "{names} are all 'rest', wanted at most one of them",
+            {"names": ", ".join(rests)},
         )
     total = sum(value for value in shares.values() if value != REST)
     if total > 1 + _ONE or (not rests and abs(total - 1) > _ONE):
         hint = "lower one of them" if rests else "write 'rest' for one of them"
         raise PydanticCustomError(
-            "shares", "the shares add up to {total}, wanted 100 %; {hint}", {"total": f"{100 * total:.6g} %", "hint": hint}
+            "shares",
+            "the shares add up to {total}, wanted 100 %; {hint}",
+            {"total": f"{100 * total:.6g} %", "hint": hint},
         )
     if not shares:
         raise PydanticCustomError("shares", "no shares are given, wanted at least one", {})

@@ -17,7 +17,16 @@ from pydantic import Field
 from chainflow.basis.constants import GAS_CONSTANT, T_REFERENCE
 from chainflow.basis.quantities import Pressure, Temperature
 from chainflow.equipment.base import (
-    HEAT_PORTS, Array, Caution, Duty, Equipment, Flow, Outcome, Port, Role, Site,
+    HEAT_PORTS,
+    Array,
+    Caution,
+    Duty,
+    Equipment,
+    Flow,
+    Outcome,
+    Port,
+    Role,
+    Site,
 )
 from chainflow.equipment.junctions import joined
 from chainflow.equipment.ports import ANY_NAME, Feeds, arriving
@@ -51,20 +60,49 @@ class Store(Equipment):
 
     kind: ClassVar[str] = "store"
     family: ClassVar[str] = "stores"
-    gives: ClassVar[tuple[str, ...]] = ("top_up_mol_s", "net_mol_s", "minimum_work_W", "top_up_enthalpy_W")
+    gives: ClassVar[tuple[str, ...]] = (
+        "top_up_mol_s",
+        "net_mol_s",
+        "minimum_work_W",
+        "top_up_enthalpy_W",
+    )
     ports: ClassVar[tuple[Port, ...]] = (
-        Port("returns", "material", Role.TAKES, many=True, main=True, optional=True, means="what comes in"),
-        Port("make_up", "material", Role.CALLS, optional=True, means="asked when more is drawn than returns"),
+        Port(
+            "returns",
+            "material",
+            Role.TAKES,
+            many=True,
+            main=True,
+            optional=True,
+            means="what comes in",
+        ),
+        Port(
+            "make_up",
+            "material",
+            Role.CALLS,
+            optional=True,
+            means="asked when more is drawn than returns",
+        ),
         *HEAT_PORTS,
-        Port(ANY_NAME, "material", Role.SERVES, optional=True, means="each draw by a name of its own"),
-        Port("rest", "material", Role.OFFERS, optional=True, means="what returns beyond what is drawn"),
+        Port(
+            ANY_NAME, "material", Role.SERVES, optional=True, means="each draw by a name of its own"
+        ),
+        Port(
+            "rest",
+            "material",
+            Role.OFFERS,
+            optional=True,
+            means="what returns beyond what is drawn",
+        ),
     )
     formulas: ClassVar[tuple[str, ...]] = (
         "N = asked - returned; made up = max(N, 0); rest = max(-N, 0); net = -N",
         "state = (returned + made up) / their total",
     )
 
-    contents: Shares = Field(description="what is kept, and what is bought if no `make_up` is linked")
+    contents: Shares = Field(
+        description="what is kept, and what is bought if no `make_up` is linked"
+    )
     temperature: Temperature = Field(description="temperature of the store")
     pressure: Pressure = Field(description="pressure of the store, absolute")
     pure: bool = Field(False, description="idealisation: draws are pure contents")
@@ -110,7 +148,15 @@ class Store(Equipment):
         per_mol = _amount_of(contents, fresh)
         made_up = max(balance, 0.0) / per_mol if per_mol > 0.0 else 0.0
         refused = returned - kept * contents + made_up * (fresh - per_mol * contents)
-        return Turnover(returned, drawn, made_up, max(-balance, 0.0), contents, np.maximum(refused, 0.0), -balance)
+        return Turnover(
+            returned,
+            drawn,
+            made_up,
+            max(-balance, 0.0),
+            contents,
+            np.maximum(refused, 0.0),
+            -balance,
+        )
 
     def _fresh(self, feeds: Feeds, site: Site) -> Array:
         make_up = arriving(feeds, "make_up")
@@ -127,7 +173,9 @@ class Store(Equipment):
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         turn = self.turnover(feeds, asked, site)
         one = self._stream(turn.state, site)
-        outlets: dict[str, Flow] = {name: one.scaled(float(amount)) for name, amount in asked.items()}
+        outlets: dict[str, Flow] = {
+            name: one.scaled(float(amount)) for name, amount in asked.items()
+        }
         leaving = turn.surplus * turn.state + turn.refused
         outlets["rest"] = self._stream(leaving, site) if self.pure else one.scaled(turn.surplus)
         entering = self._entering(feeds, turn, site)
@@ -144,8 +192,17 @@ class Store(Equipment):
             text = f"draws are pure contents at no cost; the separation would take at least {results['minimum_work_W'] / 1e3:.4g} kW"
             idealisations = (Caution("pure-store", text),)
         if "make_up" not in feeds:
-            results["top_up_enthalpy_W"] = turn.made_up * float(self._stream(fractions(self.contents, site.matter), site).enthalpy)
-        return Outcome({**outlets, **given}, drawn, duties, power=sum(d.heat for d in duties if d.met_by == "power"), results=results, idealisations=idealisations)
+            results["top_up_enthalpy_W"] = turn.made_up * float(
+                self._stream(fractions(self.contents, site.matter), site).enthalpy
+            )
+        return Outcome(
+            {**outlets, **given},
+            drawn,
+            duties,
+            power=sum(d.heat for d in duties if d.met_by == "power"),
+            results=results,
+            idealisations=idealisations,
+        )
 
     def _entering(self, feeds: Feeds, turn: Turnover, site: Site) -> list[Stream]:
         returns = [f for f in arriving(feeds, "returns") if isinstance(f, Stream)]
@@ -162,7 +219,9 @@ class Store(Equipment):
             start = float(joined(entering, site.matter, self.pressure).temperature)
         return Duty.between("to store temperature", heat, start, self.temperature)
 
-    def _minimum_work(self, turn: Turnover, outlets: Mapping[str, Flow], entering: list[Stream]) -> float:
+    def _minimum_work(
+        self, turn: Turnover, outlets: Mapping[str, Flow], entering: list[Stream]
+    ) -> float:
         """Least work [W] to part what was mixed, at 25 degC and one pressure (ideal mixing)."""
         after = [s.flows for s in outlets.values() if isinstance(s, Stream)]
         before = np.sum([s.flows for s in entering], axis=0)
@@ -179,8 +238,16 @@ class Store(Equipment):
 class _StoreSlopes:
     """Derivatives of a store on one branch of its kink, the sign of N."""
 
-    def __init__(self, store: Store, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome) -> None:
-        self.store, self.feeds, self.asked, self.site, self.outcome = store, feeds, asked, site, outcome
+    def __init__(
+        self, store: Store, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> None:
+        self.store, self.feeds, self.asked, self.site, self.outcome = (
+            store,
+            feeds,
+            asked,
+            site,
+            outcome,
+        )
         self.turn = store.turnover(feeds, asked, site)
         self.one = store._stream(self.turn.state, site)
         self.partial = self._partial_enthalpies()
@@ -190,7 +257,9 @@ class _StoreSlopes:
 
     def all(self) -> dict[str, dict[str, Array]]:
         turn, size = self.turn, len(self.turn.state)
-        total = float((turn.returned + turn.made_up * self.store._fresh(self.feeds, self.site)).sum())
+        total = float(
+            (turn.returned + turn.made_up * self.store._fresh(self.feeds, self.site)).sum()
+        )
         short = 1.0 if turn.made_up > 0.0 else 0.0
         fresh = self.store._fresh(self.feeds, self.site)
         by_return = np.eye(size) - short * np.outer(fresh, np.ones(size))  # d mixed / d returned
@@ -198,9 +267,17 @@ class _StoreSlopes:
         scale = 1.0 / total if total > 0.0 else 0.0
         state_return = scale * (by_return - np.outer(turn.state, by_return.sum(axis=0)))
         state_asked = scale * (by_asked - turn.state * by_asked.sum())
-        slopes = {"returns": self._column(np.hstack([state_return, np.zeros((size, 1))]), np.append((1.0 - short) * np.ones(size), 0.0), np.append(-short * np.ones(size), 0.0))}
+        slopes = {
+            "returns": self._column(
+                np.hstack([state_return, np.zeros((size, 1))]),
+                np.append((1.0 - short) * np.ones(size), 0.0),
+                np.append(-short * np.ones(size), 0.0),
+            )
+        }
         for name in self.asked:
-            column = self._column(state_asked[:, None], np.array([-(1.0 - short)]), np.array([short]))
+            column = self._column(
+                state_asked[:, None], np.array([-(1.0 - short)]), np.array([short])
+            )
             column[name] = column[name] + self._full(self.turn.state)[:, None]
             slopes[f"asked:{name}"] = column
         return slopes
@@ -212,7 +289,10 @@ class _StoreSlopes:
         """Blocks for one input from d state, d surplus and d made up."""
         full_state = np.vstack([state, self.partial @ state])
         one = self._full(self.turn.state)
-        column = {"rest": self.turn.surplus * full_state + np.outer(one, surplus), "state": full_state}
+        column = {
+            "rest": self.turn.surplus * full_state + np.outer(one, surplus),
+            "state": full_state,
+        }
         for name, amount in self.asked.items():
             column[name] = float(amount) * full_state
         if "make_up" in self.feeds:

@@ -49,7 +49,14 @@ class PvField(Equipment):
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         light = rate(feeds, "light")
         power = self.efficiency * light
-        lost = Duty("light not converted", power - light, site.ambient, site.ambient, site.ambient, "ambient")
+        lost = Duty(
+            "light not converted",
+            power - light,
+            site.ambient,
+            site.ambient,
+            site.ambient,
+            "ambient",
+        )
         return Outcome({"power": power}, duties=(lost,), power=-power)
 
     def slopes(

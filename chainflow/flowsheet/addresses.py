@@ -17,11 +17,26 @@ from chainflow.equipment.ports import Flow, Heat
 from chainflow.thermo.streams import Stream
 
 PROPERTY_UNITS = {
-    "flow": "mol/s", "mass_flow": "kg/s", "fraction": "1", "dry_fraction": "1",
-    "temperature": "K", "pressure": "Pa", "ratio": "1", "rate": "W",
+    "flow": "mol/s",
+    "mass_flow": "kg/s",
+    "fraction": "1",
+    "dry_fraction": "1",
+    "temperature": "K",
+    "pressure": "Pa",
+    "ratio": "1",
+    "rate": "W",
 }
 _WITH_COMPONENT = ("fraction", "dry_fraction")
-_RESULT_UNITS = {"_mol_s": "mol/s", "_kg_s": "kg/s", "_J_kg": "J/kg", "_J_mol": "J/mol", "_Pa": "Pa", "_K": "K", "_W": "W", "_V": "V"}
+_RESULT_UNITS = {
+    "_mol_s": "mol/s",
+    "_kg_s": "kg/s",
+    "_J_kg": "J/kg",
+    "_J_mol": "J/mol",
+    "_Pa": "Pa",
+    "_K": "K",
+    "_W": "W",
+    "_V": "V",
+}
 
 
 class AddressError(ValueError):
@@ -67,27 +82,39 @@ def parse_setting(address: str, equipment: Mapping[str, Equipment]) -> SettingAd
     fields = type(piece).model_fields
     if len(words) < 2 or words[1] not in fields:
         word = words[1] if len(words) > 1 else ""
-        raise AddressError(f"'{address}': {words[0]} ({piece.kind}) has no setting '{word}'{suggest(word, fields)}")
+        raise AddressError(
+            f"'{address}': {words[0]} ({piece.kind}) has no setting '{word}'{suggest(word, fields)}"
+        )
     path = tuple(words[1:])
     unit = piece.setting_unit(path)
     value: object = getattr(piece, path[0])
     for key in path[1:]:
         if not isinstance(value, Mapping) or key not in value:
             known = list(value) if isinstance(value, Mapping) else []
-            raise AddressError(f"'{address}': there is no '{key}' in {words[0]}.{path[0]}{suggest(key, known)}")
+            raise AddressError(
+                f"'{address}': there is no '{key}' in {words[0]}.{path[0]}{suggest(key, known)}"
+            )
         value = value[key]
     number = getattr(value, "value", value)
     if unit is None or isinstance(number, bool) or not isinstance(number, int | float):
-        raise AddressError(f"'{address}' is {number!r} and no number that can be moved" if not isinstance(number, Mapping) else f"'{address}' is a map, name one entry of it: {', '.join(map(str, number))}")
+        raise AddressError(
+            f"'{address}' is {number!r} and no number that can be moved"
+            if not isinstance(number, Mapping)
+            else f"'{address}' is a map, name one entry of it: {', '.join(map(str, number))}"
+        )
     return SettingAddress(words[0], path, unit)
 
 
-def parse_result(address: str, equipment: Mapping[str, Equipment], components: tuple[str, ...]) -> ResultAddress:
+def parse_result(
+    address: str, equipment: Mapping[str, Equipment], components: tuple[str, ...]
+) -> ResultAddress:
     """Find the result that an address names."""
     words = address.split(".")
     piece = _piece(words, address, equipment)
     if len(words) < 2:
-        raise AddressError(f"'{address}' names no result, wanted {words[0]}.port.property or {words[0]}.result")
+        raise AddressError(
+            f"'{address}' names no result, wanted {words[0]}.port.property or {words[0]}.result"
+        )
     if words[1] == "duty":
         if len(words) != 3 or words[2] not in ("heat", "power"):
             raise AddressError(f"'{address}': wanted {words[0]}.duty.heat or {words[0]}.duty.power")
@@ -97,18 +124,28 @@ def parse_result(address: str, equipment: Mapping[str, Equipment], components: t
     outlet, inlet = piece.port(words[1], inlet=False), piece.port(words[1], inlet=True)
     if outlet is None and inlet is None:
         ports = [p.name for p in piece.port_list() if not p.any_name]
-        raise AddressError(f"'{address}': {words[0]} ({piece.kind}) has no port '{words[1]}'{suggest(words[1], ports)}")
+        raise AddressError(
+            f"'{address}': {words[0]} ({piece.kind}) has no port '{words[1]}'{suggest(words[1], ports)}"
+        )
     unit = _check_property(words, address, components)
-    named_inlet = inlet is not None and any(p.name == words[1] and p.is_inlet for p in piece.port_list())
-    named_outlet = outlet is not None and any(p.name == words[1] and not p.is_inlet for p in piece.port_list())
-    where: Literal["outlet", "inlet"] = "inlet" if named_inlet and not named_outlet or outlet is None else "outlet"
+    named_inlet = inlet is not None and any(
+        p.name == words[1] and p.is_inlet for p in piece.port_list()
+    )
+    named_outlet = outlet is not None and any(
+        p.name == words[1] and not p.is_inlet for p in piece.port_list()
+    )
+    where: Literal["outlet", "inlet"] = (
+        "inlet" if named_inlet and not named_outlet or outlet is None else "outlet"
+    )
     return ResultAddress(words[0], where, words[1], words[2], ".".join(words[3:]), unit)
 
 
 def _piece(words: list[str], address: str, equipment: Mapping[str, Equipment]) -> Equipment:
     piece = equipment.get(words[0])
     if piece is None:
-        raise AddressError(f"'{address}': there is no equipment '{words[0]}'{suggest(words[0], equipment)}")
+        raise AddressError(
+            f"'{address}': there is no equipment '{words[0]}'{suggest(words[0], equipment)}"
+        )
     return piece
 
 
@@ -117,18 +154,28 @@ def _own(name: str, result: str, piece: Equipment, address: str) -> ResultAddres
         if result in (full, short_name(full)):
             return ResultAddress(name, "own", full, unit=unit_of_result(full))
     known = [short_name(full) for full in piece.gives]
-    listed = f"; it has {', '.join(known)}" if known else "; a port's property has three words, as in stack.hydrogen.flow"
-    raise AddressError(f"'{address}': {name} ({piece.kind}) has no result '{result}'{suggest(result, known)}{listed}")
+    listed = (
+        f"; it has {', '.join(known)}"
+        if known
+        else "; a port's property has three words, as in stack.hydrogen.flow"
+    )
+    raise AddressError(
+        f"'{address}': {name} ({piece.kind}) has no result '{result}'{suggest(result, known)}{listed}"
+    )
 
 
 def _check_property(words: list[str], address: str, components: tuple[str, ...]) -> str:
     prop, rest = words[2], words[3:]
     if prop not in PROPERTY_UNITS:
-        raise AddressError(f"'{address}': a port has no '{prop}'{suggest(prop, PROPERTY_UNITS)}; it has {', '.join(PROPERTY_UNITS)}")
+        raise AddressError(
+            f"'{address}': a port has no '{prop}'{suggest(prop, PROPERTY_UNITS)}; it has {', '.join(PROPERTY_UNITS)}"
+        )
     names = ".".join(rest).split("/") if rest else []
     for name in names:
         if name not in components:
-            raise AddressError(f"'{address}': there is no component '{name}'{suggest(name, components)}")
+            raise AddressError(
+                f"'{address}': there is no component '{name}'{suggest(name, components)}"
+            )
     wanted = 2 if prop == "ratio" else 1 if prop in _WITH_COMPONENT else None
     if wanted is not None and len(names) != wanted:
         example = "ratio.H2/CO2" if prop == "ratio" else f"{prop}.CO2"
@@ -146,7 +193,9 @@ def property_of(flow: Flow, prop: str, argument: str) -> float:
         return flow.rate if isinstance(flow, Heat) else float(flow)
     if prop == "temperature" and isinstance(flow, Heat):
         return flow.mean
-    raise AddressError(f"this port carries {'heat' if isinstance(flow, Heat) else 'power or light'}: it has 'rate', not '{prop}'")
+    raise AddressError(
+        f"this port carries {'heat' if isinstance(flow, Heat) else 'power or light'}: it has 'rate', not '{prop}'"
+    )
 
 
 def _of_stream(stream: Stream, prop: str, argument: str) -> float:

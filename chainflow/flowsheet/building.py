@@ -7,30 +7,37 @@ Faults are collected over the whole file and raised together.
 from __future__ import annotations
 
 from collections.abc import Mapping as AnyMapping
-from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
 from pydantic import ValidationError
 
-from chainflow.basis.faults import Fault, FlowsheetFault, Place, UsageFault
+from chainflow.basis.faults import Fault, FlowsheetFault, Place
 from chainflow.basis.names import name_trouble, shorten, suggest
 from chainflow.basis.quantities import QuantityFault, parse
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.register import kinds
 from chainflow.flowsheet import lines as line_texts
 from chainflow.flowsheet import roles
-from chainflow.flowsheet.addresses import AddressError, parse_result, parse_setting
+from chainflow.flowsheet.holds import HoldReader
 from chainflow.flowsheet.messages import complaints
-from chainflow.flowsheet.network import Flowsheet, Hold, Line
+from chainflow.flowsheet.network import Flowsheet, Line
+from chainflow.flowsheet.overrides import blamed, with_settings
 from chainflow.flowsheet.reading import (
-    Mapping, Node, Sequence, Text, Tree, place_at, plain, read_tree, substitute_knobs,
+    Mapping,
+    Node,
+    Sequence,
+    Text,
+    Tree,
+    place_at,
+    plain,
+    read_tree,
+    substitute_knobs,
 )
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter, known_components
 
 _TOP = ("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds")
 _AMBIENT = 298.15  # [K]
-_SET = Place(0, 0)  # where a value came from the command line
 
 
 def read_flowsheet(path: Path | str, overrides: AnyMapping[str, str] | None = None) -> Flowsheet:
@@ -59,61 +66,18 @@ def read_text(text: str, overrides: AnyMapping[str, str] | None = None) -> Flows
     return build_flowsheet(read_tree(text), overrides)
 
 
-def build_flowsheet(tree: Tree, overrides: AnyMapping[str, str] | None = None, path: str = "") -> Flowsheet:
+def build_flowsheet(
+    tree: Tree, overrides: AnyMapping[str, str] | None = None, path: str = ""
+) -> Flowsheet:
     """Check a tree of words and make the flowsheet of it."""
     overrides = dict(overrides or {})
     knobs = {name: text for name, text in overrides.items() if "." not in name}
-    tree = substitute_knobs(_with_settings(tree, {k: v for k, v in overrides.items() if "." in k}), knobs)
+    settings = {name: text for name, text in overrides.items() if "." in name}
+    tree = substitute_knobs(with_settings(tree, settings), knobs)
     try:
         return _Builder(tree, path, knobs).flowsheet()
     except FlowsheetFault as problem:
-        mine = [fault for fault in problem.faults if fault.line == 0]
-        if mine:
-            raise UsageFault("; ".join(f"--set: {fault.text}" for fault in mine)) from None
-        raise _blame_knobs(problem, tree, knobs) from None
-
-
-def _blame_knobs(problem: FlowsheetFault, tree: Tree, knobs: AnyMapping[str, str]) -> Exception:
-    """A fault at a value that an override brought is wrong usage, not a fault of the file."""
-    places = {node.place: node.knob for node in _texts(tree.root) if node.knob in knobs}
-    blamed = [f for f in problem.faults if f.place in places]
-    if not blamed:
-        return problem
-    return UsageFault("; ".join(f"--set {places[f.place]}: {f.text}" for f in blamed if f.place is not None))
-
-
-def _texts(node: Node) -> list[Text]:
-    if isinstance(node, Text):
-        return [node]
-    children = node.items if isinstance(node, Sequence) else [child for _, child in node.entries.values()]
-    return [text for child in children for text in _texts(child)]
-
-
-def _with_settings(tree: Tree, overrides: AnyMapping[str, str]) -> Tree:
-    """Put other texts at the addresses of settings."""
-    root: Node = tree.root
-    for address, text in overrides.items():
-        words = address.split(".")
-        pieces = tree.root.get("equipment")
-        if not isinstance(pieces, Mapping) or words[0] not in pieces.entries:
-            known = pieces.entries if isinstance(pieces, Mapping) else ()
-            raise UsageFault(f"--set: there is no equipment {shorten(words[0])}{suggest(words[0], known)}")
-        root = _put(root, ("equipment", *words), Text(text, _SET))
-    assert isinstance(root, Mapping)
-    return replace(tree, root=root)
-
-
-def _put(node: Node, path: tuple[str, ...], value: Node) -> Node:
-    if not path:
-        return value
-    if isinstance(node, Sequence) and path[0].isdigit() and int(path[0]) < len(node.items):
-        items = list(node.items)
-        items[int(path[0])] = _put(items[int(path[0])], path[1:], value)
-        return Sequence(tuple(items), node.place)
-    entries = dict(node.entries) if isinstance(node, Mapping) else {}
-    key_place, old = entries.get(path[0], (_SET, Mapping({}, _SET)))
-    entries[path[0]] = (key_place, _put(old, path[1:], value))
-    return Mapping(entries, node.place)
+        raise blamed(problem, tree, knobs) from None
 
 
 class _Builder:
@@ -145,11 +109,22 @@ class _Builder:
         roles.check_counts(joined, self.faults)
         lines = roles.assign(joined, contents, pieces, self.faults)
         used = self._used(pieces, lines)
-        holds = self._holds(pieces, components or DEFAULT_COMPONENTS)
+        broken = frozenset(self.all_names) - frozenset(pieces)
+        known = components or DEFAULT_COMPONENTS
+        holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
         self.stop_on_faults()
         return Flowsheet(
-            title, basis, ambient, components or DEFAULT_COMPONENTS, used, tuple(lines), holds,
-            self._knob_texts(), tuple(self.remarks), self.tree.sha256, self.path,
+            title,
+            basis,
+            ambient,
+            components or DEFAULT_COMPONENTS,
+            used,
+            tuple(lines),
+            holds,
+            self._knob_texts(),
+            tuple(self.remarks),
+            self.tree.sha256,
+            self.path,
         )
 
     # --- the small entries -------------------------------------------------------------------
@@ -157,10 +132,16 @@ class _Builder:
     def _top_keys(self) -> None:
         for key, (place, _) in self.root.entries.items():
             if key not in _TOP:
-                self.fault("unknown-key", f"there is no entry '{shorten(key)}' at the top of a flowsheet{suggest(key, _TOP)}; it has {', '.join(_TOP)}", place)
+                self.fault(
+                    "unknown-key",
+                    f"there is no entry '{shorten(key)}' at the top of a flowsheet{suggest(key, _TOP)}; it has {', '.join(_TOP)}",
+                    place,
+                )
         for key in ("equipment", "lines"):
             if key not in self.root.entries:
-                self.fault("missing-key", f"'{key}' is missing at the top of the file", self.root.place)
+                self.fault(
+                    "missing-key", f"'{key}' is missing at the top of the file", self.root.place
+                )
 
     def _text(self, key: str) -> Text | None:
         node = self.root.get(key)
@@ -180,7 +161,11 @@ class _Builder:
         if node is None:
             return "LHV"
         if node.value not in ("LHV", "HHV"):
-            self.fault("wrong-value", f"basis: {shorten(str(node.value))} is not possible, wanted LHV or HHV", node.place)
+            self.fault(
+                "wrong-value",
+                f"basis: {shorten(str(node.value))} is not possible, wanted LHV or HHV",
+                node.place,
+            )
         return str(node.value)
 
     def _ambient(self) -> float:
@@ -201,14 +186,22 @@ class _Builder:
         if node is None:
             return DEFAULT_COMPONENTS
         if not isinstance(node, Sequence):
-            self.fault("wrong-value", "components: wanted a list such as [H2, O2, H2O, CO2, CH4]", node.place)
+            self.fault(
+                "wrong-value",
+                "components: wanted a list such as [H2, O2, H2O, CO2, CH4]",
+                node.place,
+            )
             return None
         names: list[str] = []
         known = known_components()
         for item in node.items:
             name = item.value if isinstance(item, Text) else None
             if name not in known:
-                self.fault("unknown-component", f"components: there is no component {shorten(str(name))}{suggest(str(name), known)}; known: {', '.join(known)}", item.place)
+                self.fault(
+                    "unknown-component",
+                    f"components: there is no component {shorten(str(name))}{suggest(str(name), known)}; known: {', '.join(known)}",
+                    item.place,
+                )
             elif name in names:
                 self.fault("duplicate-component", f"components: '{name}' stands twice", item.place)
             else:
@@ -227,7 +220,11 @@ class _Builder:
         if node is None:
             return {}
         if not isinstance(node, Mapping):
-            self.fault("wrong-value", "equipment: wanted a map of names, as in 'stack: {kind: electrolyser, ...}'", node.place)
+            self.fault(
+                "wrong-value",
+                "equipment: wanted a map of names, as in 'stack: {kind: electrolyser, ...}'",
+                node.place,
+            )
             return {}
         pieces = {}
         for name, (place, entry) in node.entries.items():
@@ -244,16 +241,28 @@ class _Builder:
 
     def _piece(self, name: str, place: Place, entry: Node) -> Equipment | None:
         if not isinstance(entry, Mapping):
-            self.fault("wrong-value", f"{shorten(name)}: wanted its kind and settings, as in {{kind: mixer}}", entry.place)
+            self.fault(
+                "wrong-value",
+                f"{shorten(name)}: wanted its kind and settings, as in {{kind: mixer}}",
+                entry.place,
+            )
             return None
         kind = entry.get("kind")
         known = kinds()
         if kind is None:
-            self.fault("missing-kind", f"{shorten(name)}: 'kind' is missing, wanted one of: {', '.join(known)}", place)
+            self.fault(
+                "missing-kind",
+                f"{shorten(name)}: 'kind' is missing, wanted one of: {', '.join(known)}",
+                place,
+            )
             return None
         word = kind.value if isinstance(kind, Text) else None
         if word not in known:
-            self.fault("unknown-kind", f"{shorten(name)}: there is no kind {shorten(str(word))}{suggest(str(word), known)}; 'chainflow kinds' lists them", kind.place)
+            self.fault(
+                "unknown-kind",
+                f"{shorten(name)}: there is no kind {shorten(str(word))}{suggest(str(word), known)}; 'chainflow kinds' lists them",
+                kind.place,
+            )
             return None
         cls = known[str(word)]
         settings: dict[str, Any] = plain(entry)
@@ -262,7 +271,11 @@ class _Builder:
             return cls.model_validate(settings)
         except ValidationError as problem:
             for complaint in complaints(problem, cls, name):
-                spot = place_at(entry, complaint.path, at_key=complaint.at_key) if complaint.path else place
+                spot = (
+                    place_at(entry, complaint.path, at_key=complaint.at_key)
+                    if complaint.path
+                    else place
+                )
                 self.fault(complaint.code, complaint.text, spot)
             return None
 
@@ -273,15 +286,23 @@ class _Builder:
         parts = [int(part) if part.isdigit() else part for part in path]
         return place_at(node.entries[name][1], parts)
 
-    def _check_components(self, pieces: AnyMapping[str, Equipment], components: tuple[str, ...]) -> None:
+    def _check_components(
+        self, pieces: AnyMapping[str, Equipment], components: tuple[str, ...]
+    ) -> None:
         matter = Matter.of(components)
         for name, piece in pieces.items():
             strange = False
             for path, component in piece.component_names():
                 if component not in components:
                     strange = True
-                    hint = suggest(component, components) or ("; add it to 'components'" if component in known_components() else "")
-                    self.fault("unknown-component", f"{name}: {'.'.join(path)}: there is no component {shorten(component)}{hint}", self._spot(name, path))
+                    hint = suggest(component, components) or (
+                        "; add it to 'components'" if component in known_components() else ""
+                    )
+                    self.fault(
+                        "unknown-component",
+                        f"{name}: {'.'.join(path)}: there is no component {shorten(component)}{hint}",
+                        self._spot(name, path),
+                    )
             if not strange:
                 for path, text in piece.setting_faults(matter):
                     self.fault("wrong-setting", f"{name}: {text}", self._spot(name, path))
@@ -293,12 +314,18 @@ class _Builder:
         if node is None:
             return []
         if not isinstance(node, Sequence):
-            self.fault("wrong-value", "lines: wanted a list, as in '- stack.hydrogen -> dry'", node.place)
+            self.fault(
+                "wrong-value", "lines: wanted a list, as in '- stack.hydrogen -> dry'", node.place
+            )
             return []
         joined = []
         for item in node.items:
             if not isinstance(item, Text) or item.value is None:
-                self.fault("bad-line", "lines: wanted 'from -> to', as in '- stack.hydrogen -> dry'", item.place)
+                self.fault(
+                    "bad-line",
+                    "lines: wanted 'from -> to', as in '- stack.hydrogen -> dry'",
+                    item.place,
+                )
                 continue
             for joint in line_texts.cut_chain(item.value, item.place, self.faults):
                 if {joint.source, joint.target} & (set(self.all_names) - set(pieces)):
@@ -308,9 +335,13 @@ class _Builder:
                     joined.append(found)
         return joined
 
-    def _required_ports(self, pieces: AnyMapping[str, Equipment], joined: list[line_texts.JoinedPorts]) -> None:
+    def _required_ports(
+        self, pieces: AnyMapping[str, Equipment], joined: list[line_texts.JoinedPorts]
+    ) -> None:
         """A required inlet without a line is a fault, an outlet without one a remark."""
-        if len(pieces) < len(self.all_names) or any(f.code in ("bad-line", "unknown-port", "unknown-equipment") for f in self.faults):
+        if len(pieces) < len(self.all_names) or any(
+            f.code in ("bad-line", "unknown-port", "unknown-equipment") for f in self.faults
+        ):
             return  # lines may be missing only because something else is wrong
         ends = {(line.target, line.inlet.name) for line in joined}
         starts = {(line.source, line.outlet.name) for line in joined}
@@ -319,12 +350,24 @@ class _Builder:
             if name not in touched:
                 continue
             for port in piece.port_list():
-                if port.optional or port.any_name or (name, port.name) in (ends if port.is_inlet else starts):
+                if (
+                    port.optional
+                    or port.any_name
+                    or (name, port.name) in (ends if port.is_inlet else starts)
+                ):
                     continue
                 if port.is_inlet:
-                    self.fault("missing-line", f"{name}: no line arrives at '{name}.{port.name}' ({port.means}): write '- ... -> {name}.{port.name}' under lines", self._spot(name, ()))
+                    self.fault(
+                        "missing-line",
+                        f"{name}: no line arrives at '{name}.{port.name}' ({port.means}): write '- ... -> {name}.{port.name}' under lines",
+                        self._spot(name, ()),
+                    )
                 else:
-                    self.remark("unlinked-outlet", f"{name}: '{name}.{port.name}' is not linked, what comes there leaves the plant", self._spot(name, ()))
+                    self.remark(
+                        "unlinked-outlet",
+                        f"{name}: '{name}.{port.name}' is not linked, what comes there leaves the plant",
+                        self._spot(name, ()),
+                    )
 
     def remark(self, code: str, text: str, place: Place | None) -> None:
         self.remarks.append(Fault(code, text).located(place))
@@ -336,81 +379,9 @@ class _Builder:
             if name in touched:
                 used[name] = piece
             else:
-                self.remark("unused-equipment", f"{name}: no line touches it, it takes no part", self._spot(name, ()))
+                self.remark(
+                    "unused-equipment",
+                    f"{name}: no line touches it, it takes no part",
+                    self._spot(name, ()),
+                )
         return used
-
-    # --- holds -------------------------------------------------------------------------------
-
-    def _holds(self, pieces: AnyMapping[str, Equipment], components: tuple[str, ...]) -> tuple[Hold, ...]:
-        node = self.root.get("holds")
-        if node is None or isinstance(node, Text) and node.value is None:
-            return ()
-        if not isinstance(node, Sequence):
-            self.fault("wrong-value", "holds: wanted a list of {hold, at, by, within}", node.place)
-            return ()
-        found = [self._hold(item, pieces, components) for item in node.items]
-        holds = tuple(hold for hold in found if hold is not None)
-        seen: dict[str, Hold] = {}
-        for hold in holds:
-            if hold.by in seen:
-                self.fault("two-holds", f"holds: two holds move '{hold.by}': each needs a setting of its own", hold.place)
-            seen.setdefault(hold.by, hold)
-        return holds
-
-    def _hold(self, item: Node, pieces: AnyMapping[str, Equipment], components: tuple[str, ...]) -> Hold | None:
-        keys = ("hold", "at", "by", "within")
-        if not isinstance(item, Mapping):
-            self.fault("bad-hold", "holds: wanted {hold: result, at: value, by: setting, within: [low, high]}", item.place)
-            return None
-        for key, (place, _) in item.entries.items():
-            if key not in keys:
-                self.fault("unknown-setting", f"holds: there is no '{shorten(key)}'{suggest(key, keys)} in a hold; it has {', '.join(keys)}", place)
-        for key in keys:
-            if key not in item.entries:
-                self.fault("missing-setting", f"holds: '{key}' is missing, wanted {{hold: result, at: value, by: setting, within: [low, high]}}", item.place)
-        if set(item.entries) != set(keys):
-            return None
-        return self._aimed(item, pieces, components)
-
-    def _aimed(self, item: Mapping, pieces: AnyMapping[str, Equipment], components: tuple[str, ...]) -> Hold | None:
-        texts = {key: item.get(key) for key in ("hold", "at", "by")}
-        within = item.get("within")
-        if not all(isinstance(node, Text) and node.value for node in texts.values()) or not isinstance(within, Sequence) or len(within.items) != 2:
-            self.fault("bad-hold", "holds: wanted texts for hold, at and by, and two values for within, as in [250 degC, 450 degC]", item.place)
-            return None
-        before = len(self.faults)
-        words = {key: str(node.value) for key, node in texts.items() if isinstance(node, Text)}
-        broken = set(self.all_names) - set(pieces)
-        if {words["hold"].split(".")[0], words["by"].split(".")[0]} & broken:
-            return None  # that equipment has faults of its own
-        result = setting = None
-        try:
-            result = parse_result(words["hold"], pieces, components)
-        except AddressError as problem:
-            self.fault("unknown-address", f"holds: {problem}", place_at(item, ("hold",)))
-        try:
-            setting = parse_setting(words["by"], pieces)
-        except AddressError as problem:
-            self.fault("unknown-address", f"holds: {problem}", place_at(item, ("by",)))
-        if setting is not None and setting.path[0] in ("pressure", "pressure_drop"):
-            self.fault("bad-hold", f"holds: '{words['by']}' is a pressure; pressures are settled before anything is solved, hold something by another setting", place_at(item, ("by",)))
-        if result is None or setting is None:
-            return None
-        at = self._value("at", texts["at"], result.unit)
-        ends = [self._value("within", node, setting.unit) for node in within.items]
-        if len(self.faults) > before:
-            return None
-        if not ends[0] < ends[1]:
-            self.fault("bad-hold", "holds: within: the first value must be below the second", within.place)
-            return None
-        start = pieces[setting.piece].setting(setting.path)
-        if not ends[0] <= start <= ends[1]:
-            self.fault("bad-hold", f"holds: '{words['by']}' starts outside its own range 'within': change one of them", within.place)
-            return None
-        return Hold(words["hold"], at, result.unit, words["by"], setting.piece, setting.path, *ends, setting.unit, item.place)
-
-    def _value(self, key: str, node: Node | None, unit: str) -> float:
-        if isinstance(node, Text) and node.value is not None:
-            return self._quantity(f"holds: {key}", node, unit, 0.0)
-        self.fault("bad-hold", f"holds: {key}: wanted a value", node.place if node is not None else None)
-        return 0.0

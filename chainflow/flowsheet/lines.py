@@ -56,14 +56,18 @@ def cut_chain(text: str, place: Place | None, faults: list[Fault]) -> Iterator[J
             return
         ends.append((match[1], match[2]))
     if len(ends) < 2:
-        faults.append(Fault("bad-line", f"lines: '{text}' joins nothing, wanted 'from -> to'").located(place))
+        faults.append(
+            Fault("bad-line", f"lines: '{text}' joins nothing, wanted 'from -> to'").located(place)
+        )
         return
     for number, ((source, outlet), (target, inlet)) in enumerate(zip(ends, ends[1:], strict=False)):
         # a port named in the middle of a chain is where the chain enters
         yield Joint(source, outlet if number == 0 else None, target, inlet, place)
 
 
-def join(joint: Joint, equipment: Mapping[str, Equipment], faults: list[Fault]) -> JoinedPorts | None:
+def join(
+    joint: Joint, equipment: Mapping[str, Equipment], faults: list[Fault]
+) -> JoinedPorts | None:
     """Find the two ports of a line; faults say what is not there."""
     outlet = _find(joint.source, joint.outlet, False, equipment, joint.place, faults)
     inlet = _find(joint.target, joint.inlet, True, equipment, joint.place, faults)
@@ -73,7 +77,12 @@ def join(joint: Joint, equipment: Mapping[str, Equipment], faults: list[Fault]) 
 
 
 def _find(
-    name: str, port: str | None, inlet: bool, equipment: Mapping[str, Equipment], place: Place | None, faults: list[Fault]
+    name: str,
+    port: str | None,
+    inlet: bool,
+    equipment: Mapping[str, Equipment],
+    place: Place | None,
+    faults: list[Fault],
 ) -> Port | None:
     piece = equipment.get(name)
     side = "inlet" if inlet else "outlet"
@@ -92,7 +101,13 @@ def _find(
             say += " or a name of your own"
     else:
         other = piece.port(port, inlet=not inlet)
-        turned = f"; '{port}' is an {'outlet' if inlet else 'inlet'}" if other is not None and not other.any_name and port in [p.name for p in piece.port_list()] else ""
+        turned = (
+            f"; '{port}' is an {'outlet' if inlet else 'inlet'}"
+            if other is not None
+            and not other.any_name
+            and port in [p.name for p in piece.port_list()]
+            else ""
+        )
         say = f"lines: '{name}' ({piece.kind}) has no {side} '{port}'{suggest(port, known)}{turned}; it has {listed}"
     faults.append(Fault("unknown-port", say).located(place))
     return None

@@ -16,7 +16,15 @@ _CODES = {
     "quantity": "wrong-quantity",
     "shares": "wrong-shares",
 }
-_NOTES = ("function-", "constrained-", "literal[", "lax-or-strict", "nullable", "json-or-python", "is-instance")
+_NOTES = (
+    "function-",
+    "constrained-",
+    "literal[",
+    "lax-or-strict",
+    "nullable",
+    "json-or-python",
+    "is-instance",
+)
 
 
 class Complaint(typing.NamedTuple):
@@ -38,12 +46,19 @@ def complaints(problem: ValidationError, model: type[BaseModel], name: str) -> I
         kind = errors[0]["type"]
         where = ".".join(str(part) for part in path)
         text = _sentence(errors, path, model)
-        yield Complaint(_CODES.get(kind, "wrong-setting"), path, f"{name}: {where + ': ' if where and kind not in ('missing', 'extra_forbidden') else ''}{text}", kind == "extra_forbidden")
+        yield Complaint(
+            _CODES.get(kind, "wrong-setting"),
+            path,
+            f"{name}: {where + ': ' if where and kind not in ('missing', 'extra_forbidden') else ''}{text}",
+            kind == "extra_forbidden",
+        )
 
 
 def _is_note(part: str | int) -> bool:
     """Parts of a location that pydantic adds for its own unions."""
-    return isinstance(part, str) and (part.startswith(_NOTES) or part in ("float", "int", "str", "none"))
+    return isinstance(part, str) and (
+        part.startswith(_NOTES) or part in ("float", "int", "str", "none")
+    )
 
 
 def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseModel]) -> str:
@@ -58,7 +73,11 @@ def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseMo
         return f"{shorten(str(given))} is not possible, wanted {' or '.join(dict.fromkeys(_expected(e) for e in errors))}"
     if kind == "literal_error":
         return f"{shorten(str(given))} is not possible{suggest(str(given), _choices(error))}, wanted {error['ctx']['expected']}"
-    if isinstance(given, Mapping) and not kind.startswith(("value_error", "model")) and error["msg"].startswith("Input"):
+    if (
+        isinstance(given, Mapping)
+        and not kind.startswith(("value_error", "model"))
+        and error["msg"].startswith("Input")
+    ):
         return f"a map is not possible here, wanted {_expected(error)}"
     if error["msg"].startswith("Input"):
         return f"{shorten(str(given))} is not possible, wanted {_expected(error)}"
@@ -66,16 +85,27 @@ def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseMo
 
 
 def _choices(error: Any) -> list[str]:
-    return [word.strip("' ") for word in str(error["ctx"]["expected"]).replace(" or ", ",").split(",")]
+    return [
+        word.strip("' ") for word in str(error["ctx"]["expected"]).replace(" or ", ",").split(",")
+    ]
 
 
 def _expected(error: Any) -> str:
     kind, context = error["type"], error.get("ctx", {})
     words = {
-        "int_parsing": "a whole number", "int_type": "a whole number", "int_from_float": "a whole number",
-        "float_parsing": "a number", "float_type": "a number", "bool_parsing": "true or false", "bool_type": "true or false",
-        "dict_type": "a map such as {H2: 4, CO2: 1}", "tuple_type": "a list", "list_type": "a list",
-        "string_type": "a text", "model_type": "a map of settings", "finite_number": "a finite number",
+        "int_parsing": "a whole number",
+        "int_type": "a whole number",
+        "int_from_float": "a whole number",
+        "float_parsing": "a number",
+        "float_type": "a number",
+        "bool_parsing": "true or false",
+        "bool_type": "true or false",
+        "dict_type": "a map such as {H2: 4, CO2: 1}",
+        "tuple_type": "a list",
+        "list_type": "a list",
+        "string_type": "a text",
+        "model_type": "a map of settings",
+        "finite_number": "a finite number",
     }
     if kind in words:
         return words[kind]

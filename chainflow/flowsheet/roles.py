@@ -24,11 +24,16 @@ def contents(joined: Sequence[JoinedPorts], faults: list[Fault]) -> list[str]:
     for _ in range(len(joined) + 1):
         before = list(known)
         through = {
-            line.target: known[i] for i, line in enumerate(joined)
+            line.target: known[i]
+            for i, line in enumerate(joined)
             if line.target in passing and known[i] != "any"
         }
         for i, line in enumerate(joined):
-            given = line.outlet.content if line.outlet.content != "any" else through.get(line.source, "any")
+            given = (
+                line.outlet.content
+                if line.outlet.content != "any"
+                else through.get(line.source, "any")
+            )
             known[i] = given if given != "any" else line.inlet.content
         if known == before:
             break
@@ -60,7 +65,10 @@ def check_counts(joined: Sequence[JoinedPorts], faults: list[Fault]) -> None:
 
 
 def assign(
-    joined: Sequence[JoinedPorts], kinds: Sequence[str], equipment: Mapping[str, Equipment], faults: list[Fault]
+    joined: Sequence[JoinedPorts],
+    kinds: Sequence[str],
+    equipment: Mapping[str, Equipment],
+    faults: list[Fault],
 ) -> list[Line]:
     """Decide for each line whether it is called, and refuse ends that do not agree."""
     called = [line.inlet.role is Role.CALLS for line in joined]
@@ -79,14 +87,27 @@ def assign(
         if not called[i] and line.outlet.role is Role.SERVES:
             faults.append(_nobody_sets(line, kinds[i], equipment))
         lines.append(
-            Line(i, line.source, line.outlet.name, line.target, line.inlet.name, kinds[i], called[i], line.place)
+            Line(
+                i,
+                line.source,
+                line.outlet.name,
+                line.target,
+                line.inlet.name,
+                kinds[i],
+                called[i],
+                line.place,
+            )
         )
     return lines
 
 
 def _call_passes(
-    line: JoinedPorts, content: str, equipment: Mapping[str, Equipment], into: Mapping[str, list[int]],
-    joined: Sequence[JoinedPorts], faults: list[Fault],
+    line: JoinedPorts,
+    content: str,
+    equipment: Mapping[str, Equipment],
+    into: Mapping[str, list[int]],
+    joined: Sequence[JoinedPorts],
+    faults: list[Fault],
 ) -> list[int]:
     """The lines that a call at the end of `line` goes back to."""
     piece = equipment[line.source]

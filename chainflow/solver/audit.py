@@ -38,7 +38,9 @@ def audit(finish: Finish) -> Balance:
         by_equipment[name] = errors
         worst_elements, worst_energy = max(worst_elements, errors[0]), max(worst_energy, errors[1])
     plant_elements, plant_energy = _plant(finish, *largest)
-    return Balance(max(worst_elements, plant_elements), max(worst_energy, plant_energy), by_equipment)
+    return Balance(
+        max(worst_elements, plant_elements), max(worst_energy, plant_energy), by_equipment
+    )
 
 
 def _relative(error: np.ndarray | float, size: float) -> float:
@@ -100,7 +102,11 @@ def _stream_energy(flow: Flow, flowsheet: Flowsheet, name: str) -> float:
 def _passing(finish: Finish, name: str) -> float:
     """Power, light and heat that only pass (splitter, switchboard, heat network) must add up."""
     outcome = finish.outcomes[name]
-    if outcome.power or outcome.duties or finish.flowsheet.equipment[name].kind not in ("splitter", "switchboard", "heat-network"):
+    if (
+        outcome.power
+        or outcome.duties
+        or finish.flowsheet.equipment[name].kind not in ("splitter", "switchboard", "heat-network")
+    ):
         return 0.0
     inward = sum(_rate(f) for f in arriving_whole(finish.feeds, name))
     outward = sum(_rate(f) for f in outcome.outlets.values())
@@ -143,7 +149,9 @@ def _crossing(finish: Finish) -> list[tuple[float, Flow]]:
         if extra is not None:
             found.append((1.0, extra))
     for stream in finish.streams:
-        if not stream.targets and not isinstance(flowsheet.equipment[stream.source], Supply | Sunlight | Grid):
+        if not stream.targets and not isinstance(
+            flowsheet.equipment[stream.source], Supply | Sunlight | Grid
+        ):
             found.append((-1.0, stream.flow))
     return found
 

@@ -21,7 +21,9 @@ _LARGEST_CHANGE = 400.0  # [K]
 _SETTING_STEP = 0.3  # of its range
 
 
-def damped(variable: Variable, old: Flow, change: np.ndarray, matter: Matter, hold: Hold | None) -> Flow:
+def damped(
+    variable: Variable, old: Flow, change: np.ndarray, matter: Matter, hold: Hold | None
+) -> Flow:
     """The value after a step, held back where it would leave what is possible."""
     if variable.form == "matter":
         assert isinstance(old, Stream)
@@ -55,7 +57,9 @@ def _damped_stream(variable: Variable, old: Stream, change: np.ndarray, matter: 
     return _within_reach(flows, enthalpy, variable.pressure, level, matter)
 
 
-def _within_reach(flows: np.ndarray, enthalpy: float, pressure: float, level: float, matter: Matter) -> Stream:
+def _within_reach(
+    flows: np.ndarray, enthalpy: float, pressure: float, level: float, matter: Matter
+) -> Stream:
     """The stream of that enthalpy, or at the nearest temperature that may be reached."""
     if not flows.any():
         return Stream.empty(matter, level, pressure)
@@ -68,4 +72,6 @@ def _within_reach(flows: np.ndarray, enthalpy: float, pressure: float, level: fl
         return Stream.at(matter, flows, hot if float(stream.temperature) > hot else cold, pressure)
     except StateError:
         middle = Stream.at(matter, flows, min(max(level, cold), hot), pressure)
-        return Stream.at(matter, flows, hot if enthalpy > float(middle.enthalpy) else cold, pressure)
+        return Stream.at(
+            matter, flows, hot if enthalpy > float(middle.enthalpy) else cold, pressure
+        )

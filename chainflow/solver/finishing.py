@@ -55,8 +55,12 @@ class Finish:
         asked = self._asked(name, piece)
         many = {p.name for p in piece.port_list() if p.is_inlet and p.many}
         given = {port: flows if port in many else flows[0] for port, flows in feeds.items()}
-        self.outcomes[name] = piece.operate(given, asked, site_of(self.flowsheet, name, detail=True))
-        self.feeds[name] = {port: flows if port in many else flows[0] for port, flows in actual.items()}
+        self.outcomes[name] = piece.operate(
+            given, asked, site_of(self.flowsheet, name, detail=True)
+        )
+        self.feeds[name] = {
+            port: flows if port in many else flows[0] for port, flows in actual.items()
+        }
 
     def _sample(self, line: Line) -> Flow | None:
         """What equipment gets at an inlet: the flow, or one mol of it where it calls."""
@@ -66,7 +70,11 @@ class Finish:
 
     def _state(self, line: Line) -> Source:
         states = self.program.states
-        return states[(line.source, line.outlet)] if (line.source, line.outlet) in states else states[(line.source, "*")]
+        return (
+            states[(line.source, line.outlet)]
+            if (line.source, line.outlet) in states
+            else states[(line.source, "*")]
+        )
 
     def _amount(self, line: Line) -> Flow:
         return self.values[amount_key(line)]
@@ -108,7 +116,9 @@ class Finish:
                 if not lines and not _flows(flow):
                     continue
                 port = piece.port(outlet, inlet=False)
-                content = lines[0].content if lines else _content(flow, port.content if port else "power")
+                content = (
+                    lines[0].content if lines else _content(flow, port.content if port else "power")
+                )
                 found.append((name, outlet, tuple(line.end for line in lines), content, flow))
         return tuple(SolvedStream(tag, *parts) for tag, parts in enumerate(found, start=1))
 
@@ -142,7 +152,13 @@ def _flows(flow: Flow) -> bool:
 def _content(flow: Flow, declared: str) -> str:
     if isinstance(flow, Stream):
         return "material"
-    return "heat" if isinstance(flow, Heat) else declared if declared in ("power", "light") else "power"
+    return (
+        "heat"
+        if isinstance(flow, Heat)
+        else declared
+        if declared in ("power", "light")
+        else "power"
+    )
 
 
 def arriving_whole(feeds: Mapping[str, Feeds], name: str) -> list[Flow]:

@@ -115,9 +115,15 @@ def check_inventories(flowsheet: Flowsheet, presence: Presence) -> tuple[Conditi
 def _material_loops(flowsheet: Flowsheet) -> list[list[str]]:
     graph: nx.DiGraph = nx.DiGraph()
     graph.add_nodes_from(flowsheet.equipment)
-    graph.add_edges_from((li.source, li.target) for li in flowsheet.lines if li.content == "material")
+    graph.add_edges_from(
+        (li.source, li.target) for li in flowsheet.lines if li.content == "material"
+    )
     order = {name: i for i, name in enumerate(flowsheet.equipment)}
-    found = [sorted(c, key=order.__getitem__) for c in nx.strongly_connected_components(graph) if len(c) > 1]
+    found = [
+        sorted(c, key=order.__getitem__)
+        for c in nx.strongly_connected_components(graph)
+        if len(c) > 1
+    ]
     return sorted(found, key=lambda members: order[members[0]])
 
 
@@ -128,15 +134,23 @@ class _Loop:
         self.flowsheet, self.presence, self.members = flowsheet, presence, members
         inside = set(members)
         self.lines = [
-            li for li in flowsheet.lines if li.content == "material" and li.source in inside and li.target in inside
+            li
+            for li in flowsheet.lines
+            if li.content == "material" and li.source in inside and li.target in inside
         ]
         self.spots = [
-            (li.source, li.outlet, s) for li in self.lines for s in presence.species.get((li.source, li.outlet), ())
+            (li.source, li.outlet, s)
+            for li in self.lines
+            for s in presence.species.get((li.source, li.outlet), ())
         ]
 
     def _entering(self) -> list[Line]:
         inside = set(self.members)
-        return [li for li in self.flowsheet.lines if li.content == "material" and li.target in inside and li.source not in inside]
+        return [
+            li
+            for li in self.flowsheet.lines
+            if li.content == "material" and li.target in inside and li.source not in inside
+        ]
 
     def _is_exit(self, name: str, outlet: str, *, sure_only: bool) -> bool:
         """Whether what is at this outlet leaves the loop."""
@@ -164,17 +178,24 @@ class _Loop:
             if isinstance(piece, Store) and piece.pure:
                 kept = resolved(piece.contents)
                 found |= {
-                    s for s in self.presence.graph.nodes
-                    if s[0] == name and s[1] == "rest" and kept.get(s[2], 0.0) == 0.0 and self._is_exit(name, "rest", sure_only=False)
+                    s
+                    for s in self.presence.graph.nodes
+                    if s[0] == name
+                    and s[1] == "rest"
+                    and kept.get(s[2], 0.0) == 0.0
+                    and self._is_exit(name, "rest", sure_only=False)
                 }
         return found
 
     def surplus_stores(self) -> tuple[str, ...]:
         """Stores with draws whose `rest` leaves the loop and may carry something out."""
         return tuple(
-            name for name in self.members
-            if isinstance(self.flowsheet.equipment[name], Store) and self._draws(name)
-            and self._is_exit(name, "rest", sure_only=False) and self._foreign(name)
+            name
+            for name in self.members
+            if isinstance(self.flowsheet.equipment[name], Store)
+            and self._draws(name)
+            and self._is_exit(name, "rest", sure_only=False)
+            and self._foreign(name)
         )
 
     def _foreign(self, name: str) -> bool:
@@ -185,7 +206,9 @@ class _Loop:
         others = [li for li in self._entering() if li.source not in own]
         kept = resolved(self.flowsheet.equipment[name].contents)  # type: ignore[attr-defined] # a store
         return any(
-            s not in kept for li in others for s in self.presence.species.get((li.source, li.outlet), ())
+            s not in kept
+            for li in others
+            for s in self.presence.species.get((li.source, li.outlet), ())
         )
 
     def _upstream(self, name: str) -> set[str]:
@@ -193,7 +216,11 @@ class _Loop:
         queue = [name]
         while queue:
             for line in self.flowsheet.into(queue.pop()):
-                if line.content == "material" and line.source not in found and line.source not in self.members:
+                if (
+                    line.content == "material"
+                    and line.source not in found
+                    and line.source not in self.members
+                ):
                     found.add(line.source)
                     queue.append(line.source)
         return found
@@ -202,11 +229,19 @@ class _Loop:
         """What is not fixed in this loop: (code, sentence), or None."""
         exits = self._exits(sure_only=sure_only)
         pinned = self._store_pins()
-        elements = [e for e in self.flowsheet.matter.elements if any(self._holds(s, e) for _, _, s in self.spots)]
+        elements = [
+            e
+            for e in self.flowsheet.matter.elements
+            if any(self._holds(s, e) for _, _, s in self.spots)
+        ]
         sure = {e for e in elements if any(self._holds(s, e) for _, _, s in exits)} | {
             e for e in elements if any(self._holds(s, e) for pin in pinned for s in pin)
         }
-        one_way = [pin for pin in self._call_pins() if all(e in sure for s in pin for e in elements if self._holds(s, e))]
+        one_way = [
+            pin
+            for pin in self._call_pins()
+            if all(e in sure for s in pin for e in elements if self._holds(s, e))
+        ]
         columns = [self._column({s: 1.0}) for s in dict.fromkeys(s for _, _, s in exits)]
         columns += [self._column(pin) for pin in (*pinned, *one_way)]
         return self._trapped(exits, pinned, one_way, elements) or self._unpinned(columns, elements)
@@ -217,7 +252,9 @@ class _Loop:
 
     def _column(self, mixture: dict[str, float]) -> np.ndarray:
         matter = self.flowsheet.matter
-        return np.sum([share * matter.formula[:, matter.index[s]] for s, share in mixture.items()], axis=0)
+        return np.sum(
+            [share * matter.formula[:, matter.index[s]] for s, share in mixture.items()], axis=0
+        )
 
     def _store_pins(self) -> list[dict[str, float]]:
         """Contents of stores with draws: they make up and let out, whichever is needed."""
@@ -225,14 +262,18 @@ class _Loop:
         for name in self.members:
             piece = self.flowsheet.equipment[name]
             if isinstance(piece, Store) and self._draws(name):
-                pins.append({s: share for s, share in resolved(piece.contents).items() if share > 0.0})
+                pins.append(
+                    {s: share for s, share in resolved(piece.contents).items() if share > 0.0}
+                )
         return pins
 
     def _call_pins(self) -> list[dict[str, float]]:
         """What calls of the loop get from outside: they can only bring in."""
         pins = []
         for line in self._entering():
-            if line.called and not (isinstance(self.flowsheet.equipment[line.target], Store) and line.inlet == "make_up"):
+            if line.called and not (
+                isinstance(self.flowsheet.equipment[line.target], Store) and line.inlet == "make_up"
+            ):
                 species = self.presence.species.get((line.source, line.outlet), ())
                 pins.append(self._served(line, species))
         return [pin for pin in pins if pin]
@@ -247,7 +288,11 @@ class _Loop:
         return dict.fromkeys(species[:1], 1.0)
 
     def _trapped(
-        self, exits: set[Spot], pinned: list[dict[str, float]], one_way: list[dict[str, float]], elements: list[str]
+        self,
+        exits: set[Spot],
+        pinned: list[dict[str, float]],
+        one_way: list[dict[str, float]],
+        elements: list[str],
     ) -> tuple[str, str] | None:
         """An element that enters where no exit and no pin of it can be reached."""
         pins = [*pinned, *one_way]
@@ -267,8 +312,12 @@ class _Loop:
     def _no_way_out(self, element: str, stuck: list[Spot]) -> str:
         species = sorted({s for _, _, s in stuck}, key=self.flowsheet.components.index)
         sources = [
-            f"{li.source}.{li.outlet}" for li in self._entering()
-            if any(self._holds(s, element) for s in self.presence.species.get((li.source, li.outlet), ()))
+            f"{li.source}.{li.outlet}"
+            for li in self._entering()
+            if any(
+                self._holds(s, element)
+                for s in self.presence.species.get((li.source, li.outlet), ())
+            )
         ]
         starts = f" enters at {', '.join(sources)}" if sources else " is in the loop"
         carried = f" (as {', '.join(species)})" if species != [element] else ""

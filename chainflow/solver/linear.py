@@ -25,8 +25,13 @@ class Linear:
     """(I - dy/dx) d = r for the torn variables, with what follows for other variables."""
 
     def __init__(
-        self, steps: Sequence[Step], blocks: Blocks, tears: Sequence[str], settings: Sequence[str],
-        watched: Sequence[str], variables: Mapping[str, Variable],
+        self,
+        steps: Sequence[Step],
+        blocks: Blocks,
+        tears: Sequence[str],
+        settings: Sequence[str],
+        watched: Sequence[str],
+        variables: Mapping[str, Variable],
     ) -> None:
         self.tears, self.watched, self.variables = tears, watched, variables
         self.places = _places(tears, variables)
@@ -73,7 +78,11 @@ class Linear:
                     response[written] = row
         self._matrix = matrix
         none = np.zeros((1, self.size))
-        self._watched_rows = np.vstack([response.get(key, none) for key in self.watched]) if self.watched else np.zeros((0, self.size))
+        self._watched_rows = (
+            np.vstack([response.get(key, none) for key in self.watched])
+            if self.watched
+            else np.zeros((0, self.size))
+        )
 
     # --- many torn numbers -------------------------------------------------------------------
 
@@ -92,7 +101,8 @@ class Linear:
                 columns.append(np.tile(column, len(row)))
                 data.append(-block.ravel())
         matrix = coo_matrix(
-            (np.concatenate(data), (np.concatenate(rows), np.concatenate(columns))), shape=(total, total)
+            (np.concatenate(data), (np.concatenate(rows), np.concatenate(columns))),
+            shape=(total, total),
         ).tocsc()
         try:
             self._factors = splu(matrix)
@@ -106,7 +116,10 @@ class Linear:
             full[self._all_places[key]] = right[self.places[key]]
         found = self._factors.solve(full)
         change = np.concatenate([found[self._all_places[key]] for key in self.tears])
-        watched = [float(found[self._all_places[key]][0]) if key in self._all_places else 0.0 for key in self.watched]
+        watched = [
+            float(found[self._all_places[key]][0]) if key in self._all_places else 0.0
+            for key in self.watched
+        ]
         return change, np.array(watched)
 
 

@@ -43,7 +43,9 @@ class Closed:
     values: Values
     passes: int = 0
     error: float = 0.0
-    aside: dict[str, str] = field(default_factory=dict)  # holds set aside: setting -> "bound"/"unable"
+    aside: dict[str, str] = field(
+        default_factory=dict
+    )  # holds set aside: setting -> "bound"/"unable"
 
 
 @dataclass
@@ -59,7 +61,9 @@ class _State:
 class Newton:
     """One solve of one program."""
 
-    def __init__(self, program: Program, order: Order, fixed: dict[str, float] | None = None) -> None:
+    def __init__(
+        self, program: Program, order: Order, fixed: dict[str, float] | None = None
+    ) -> None:
         self.program, self.order = program, order
         self.variables, self.matter = program.variables, program.flowsheet.matter
         self.fixed = fixed or {}  # settings kept at a value instead of being solved
@@ -71,7 +75,11 @@ class Newton:
             self.places[key] = slice(at, at + self.variables[key].size)
             at += self.variables[key].size
         self.size = at
-        self.holds = [(hold, setting, result) for hold, setting, result in program.holds if setting not in self.fixed]
+        self.holds = [
+            (hold, setting, result)
+            for hold, setting, result in program.holds
+            if setting not in self.fixed
+        ]
 
     # --- passes ------------------------------------------------------------------------------
 
@@ -92,7 +100,9 @@ class Newton:
             try:
                 values |= step.run(values)
             except StateError as problem:
-                raise NotSolved("outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}) from problem
+                raise NotSolved(
+                    "outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}
+                ) from problem
         return values
 
     def _pass(self, torn: Values, *, blocks: Blocks | None = None) -> _State:
@@ -106,7 +116,9 @@ class Newton:
                 if blocks is not None:
                     blocks |= step.blocks(values, written)
             except StateError as problem:
-                raise NotSolved("outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}) from problem
+                raise NotSolved(
+                    "outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}
+                ) from problem
             for key, value in written.items():
                 if key in torn:
                     back[key] = value
@@ -131,7 +143,7 @@ class Newton:
             if key in settings:
                 hold = settings[key]
                 own = self.program.flowsheet.equipment[hold.piece].setting(hold.path)
-                torn[key] = self.fixed.get(key, own)
+                torn[key] = self.fixed.get(key, min(max(own, hold.low), hold.high))
             elif key.endswith("~state"):
                 torn[key] = initial_state(self.program, key)
             elif variable.rate:
@@ -146,7 +158,11 @@ class Newton:
         """A switchboard's rest as if nobody asked."""
         step = next(s for s in self.order.loop if key in s.writes)
         assert isinstance(step, EquipmentStep)
-        known = [source.of(self.constants) for source in step.feeds.get("supply", ()) if source.key in self.constants]
+        known = [
+            source.of(self.constants)
+            for source in step.feeds.get("supply", ())
+            if source.key in self.constants
+        ]
         return float(sum(float(power) for power in known))  # type: ignore[arg-type] # power is a number
 
     def _warm(self, torn: Values) -> Values:
@@ -189,7 +205,9 @@ class Newton:
                 settled = self._settle()
                 if settled:
                     best = np.inf
-            if (error < CLOSED and residual < _RESIDUAL) or (error < FLOOR and error > 0.3 * before):
+            if (error < CLOSED and residual < _RESIDUAL) or (
+                error < FLOOR and error > 0.3 * before
+            ):
                 return self._finish(state, change, error, aside)
             before = error if error < FLOOR else np.inf
             self._refuse_growth(state)
@@ -201,21 +219,36 @@ class Newton:
             torn = self._moved(torn, change)
         raise self._not_converged(state, scales, closed)
 
-    def _finish(self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]) -> Closed:
+    def _finish(
+        self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]
+    ) -> Closed:
         last = self._pass(self._moved(state.torn, change))
         return Closed({**last.values, **last.torn}, error=error, aside=aside)
 
     def _moved(self, torn: Values, change: np.ndarray) -> Values:
         settings = self.program.settings
         return {
-            key: value if key in self.fixed else damped(self.variables[key], value, change[self.places[key]], self.matter, settings.get(key))
+            key: value
+            if key in self.fixed
+            else damped(
+                self.variables[key], value, change[self.places[key]], self.matter, settings.get(key)
+            )
             for key, value in torn.items()
         }
 
-    def _step(self, state: _State, blocks: Blocks, scales: np.ndarray) -> tuple[np.ndarray, dict[str, str]]:
+    def _step(
+        self, state: _State, blocks: Blocks, scales: np.ndarray
+    ) -> tuple[np.ndarray, dict[str, str]]:
         """The Newton change of all torn numbers, and the holds that are set aside this time."""
         results = [result for _, _, result in self.holds]
-        linear = Linear(self.order.loop, blocks, self.order.tears, list(self.program.settings), results, self.variables)
+        linear = Linear(
+            self.order.loop,
+            blocks,
+            self.order.tears,
+            list(self.program.settings),
+            results,
+            self.variables,
+        )
         right = state.residual.copy()
         for key in self.program.settings:
             right[self.places[key]] = 0.0
@@ -223,8 +256,10 @@ class Newton:
             change, seen = linear.solve(right)
         except Singular:
             raise NotSolved(
-                "undetermined", f"the loop through {self._names()} has no single steady state: something in it is neither fixed nor let out; "
-                "open a purge or put a store with a draw into it", {"tears": self.order.tears},
+                "undetermined",
+                f"the loop through {self._names()} has no single steady state: something in it is neither fixed nor let out; "
+                "open a purge or put a store with a draw into it",
+                {"tears": self.order.tears},
             ) from None
         if not self.holds:
             return change, {}
@@ -244,7 +279,9 @@ class Newton:
         table = np.array(effects).T  # d result i / d setting j
         missing = np.array([h.at - float(state.values[r]) for h, _, r in self.holds]) - seen  # type: ignore[arg-type] # numbers
         spans = np.array([h.high - h.low for h, _, _ in self.holds])
-        sizes = np.array([self._hold_size(h.at, float(state.values[r]), h.unit) for h, _, r in self.holds])  # type: ignore[arg-type] # numbers
+        sizes = np.array(
+            [self._hold_size(h.at, float(state.values[r]), h.unit) for h, _, r in self.holds]
+        )  # type: ignore[arg-type] # numbers
         aside: dict[str, str] = {}
         active = []
         for i in range(len(self.holds)):
@@ -254,7 +291,11 @@ class Newton:
                 active.append(i)
         steps = np.zeros(len(self.holds))
         while active:
-            found, *_ = np.linalg.lstsq(table[np.ix_(active, active)] * spans[active] / sizes[active, None], missing[active] / sizes[active], rcond=1e-12)
+            found, *_ = np.linalg.lstsq(
+                table[np.ix_(active, active)] * spans[active] / sizes[active, None],
+                missing[active] / sizes[active],
+                rcond=1e-12,
+            )
             steps[:] = 0.0
             steps[active] = found * spans[active]
             out = [i for i in active if self._at_bound(i, steps[i], state)]
@@ -297,10 +338,15 @@ class Newton:
         return scales
 
     def _plant_sizes(self, values: Values) -> dict[str, float]:
-        matter = max((float(v.total) for v in values.values() if isinstance(v, Stream)), default=0.0)
+        matter = max(
+            (float(v.total) for v in values.values() if isinstance(v, Stream)), default=0.0
+        )
         numbers = [
-            abs(float(v)) for k, v in values.items()
-            if isinstance(v, float) and k in self.variables and self.variables[k].content in ("power", "light", "heat")
+            abs(float(v))
+            for k, v in values.items()
+            if isinstance(v, float)
+            and k in self.variables
+            and self.variables[k].content in ("power", "light", "heat")
         ]
         return {"material": matter, "power": max(numbers, default=0.0)}
 
@@ -320,14 +366,24 @@ class Newton:
     # --- trouble -----------------------------------------------------------------------------
 
     def _names(self) -> str:
-        names = list(dict.fromkeys(key.split(".")[0].split("~")[0] for key in self.order.tears if not key.startswith("hold ")))
+        names = list(
+            dict.fromkeys(
+                key.split(".")[0].split("~")[0]
+                for key in self.order.tears
+                if not key.startswith("hold ")
+            )
+        )
         return ", ".join(names) or "the holds"
 
     def _settle(self) -> bool:
         """Fix discrete choices; whether any was open."""
         changed = False
         for step in self.order.loop:
-            if isinstance(step, EquipmentStep) and step.equipment is not None and step.outcome is not None:
+            if (
+                isinstance(step, EquipmentStep)
+                and step.equipment is not None
+                and step.outcome is not None
+            ):
                 piece = step.equipment.settled(step.outcome)
                 changed |= piece is not step.equipment
                 step.equipment = piece
@@ -335,12 +391,20 @@ class Newton:
 
     def _refuse_growth(self, state: _State) -> None:
         sizes = {k: float(v.total) for k, v in state.values.items() if isinstance(v, Stream)}
-        fed = max((float(v.total) for v in self.constants.values() if isinstance(v, Stream)), default=0.0)
-        power = max((abs(float(v)) for v in self.constants.values() if isinstance(v, float)), default=0.0)
+        fed = max(
+            (float(v.total) for v in self.constants.values() if isinstance(v, Stream)), default=0.0
+        )
+        power = max(
+            (abs(float(v)) for v in self.constants.values() if isinstance(v, float)), default=0.0
+        )
         limit = _GROWN * max(fed, power / ENTHALPY_SCALE, 1e-9)
         key = max(sizes, key=sizes.__getitem__, default="")
         if key and sizes[key] > limit:
-            raise NotSolved("grows", f"what is in '{key}' grows without end ({sizes[key]:.3g} mol/s): open a purge or clean the feed", {"stream": key})
+            raise NotSolved(
+                "grows",
+                f"what is in '{key}' grows without end ({sizes[key]:.3g} mol/s): open a purge or clean the feed",
+                {"stream": key},
+            )
 
     def _short_so_far(self, short: int, state: _State, change: np.ndarray) -> int:
         """Count passes in which a switchboard's rest wants to be below zero; short after five."""
@@ -411,6 +475,6 @@ def _anderson(points: list[np.ndarray], images: list[np.ndarray], scales: np.nda
     differences = np.array([residuals[-1] - r for r in residuals[:-1]]).T
     weights, *_ = np.linalg.lstsq(differences, residuals[-1], rcond=1e-12)
     return images[-1] - sum(
-        (w * (images[-1] - y) for w, y in zip(weights, images[:-1], strict=True)), np.zeros_like(images[-1])
+        (w * (images[-1] - y) for w, y in zip(weights, images[:-1], strict=True)),
+        np.zeros_like(images[-1]),
     )
-

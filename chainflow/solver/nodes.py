@@ -46,7 +46,9 @@ class Source:
     @property
     def keys(self) -> tuple[str, ...]:
         """Variables that it reads."""
-        return ((self.key,) if self.key else ()) + (self.amount.keys if self.amount is not None else ())
+        return ((self.key,) if self.key else ()) + (
+            self.amount.keys if self.amount is not None else ()
+        )
 
 
 @dataclass
@@ -101,7 +103,9 @@ class Step:
             changed[column] += step
             moved = self.run({**values, key: variable.unpack(changed, self.matter, guess)})
             for w in self.writes:
-                found[w, key][:, column] = (self.variables[w].pack(moved[w], self.matter) - start[w]) / step
+                found[w, key][:, column] = (
+                    self.variables[w].pack(moved[w], self.matter) - start[w]
+                ) / step
         return found
 
 
@@ -125,18 +129,25 @@ class EquipmentStep(Step):
     settings: tuple[tuple[tuple[str, ...], str], ...] = ()  # (path, variable)
     outlets: dict[str, str] = field(default_factory=dict)  # outlet -> variable
     drawn: dict[str, str] = field(default_factory=dict)  # inlet -> variable
-    results: dict[str, Callable[[Outcome], float]] = field(default_factory=dict)  # variable -> getter
+    results: dict[str, Callable[[Outcome], float]] = field(
+        default_factory=dict
+    )  # variable -> getter
     outcome: Outcome | None = None
     _used: tuple[Any, Any, Equipment] | None = None
 
-    def inputs(self, values: Mapping[str, Flow]) -> tuple[dict[str, Any], dict[str, Any], Equipment]:
+    def inputs(
+        self, values: Mapping[str, Flow]
+    ) -> tuple[dict[str, Any], dict[str, Any], Equipment]:
         """Feeds, amounts asked and the equipment with its held settings, for these values."""
         assert self.equipment is not None
         feeds: dict[str, Any] = {}
         for port, sources in self.feeds.items():
             flows = tuple(source.of(values) for source in sources)
             feeds[port] = flows if port in self.many else flows[0]
-        asked = {port: _added([source.of(values) for source in sources]) for port, sources in self.asked.items()}
+        asked = {
+            port: _added([source.of(values) for source in sources])
+            for port, sources in self.asked.items()
+        }
         piece = self.equipment
         for path, key in self.settings:
             number = values[key]
@@ -197,7 +208,9 @@ class EquipmentStep(Step):
         read = self.variables[key]
         places = read.rows(self.matter)
         blocks: Blocks = {}
-        names = {w: port for port, w in self.outlets.items()} | {w: f"drawn:{port}" for port, w in self.drawn.items()}
+        names = {w: port for port, w in self.outlets.items()} | {
+            w: f"drawn:{port}" for port, w in self.drawn.items()
+        }
         for w, label in names.items():
             rows = self.variables[w].rows(self.matter)
             block = np.zeros((len(rows), read.size))
@@ -231,57 +244,136 @@ class StoreStateStep(EquipmentStep):
 
 
 @dataclass
-class ThroughStateStep(EquipmentStep):
-    """Equipment that a call passes through, run on one mol/s: what one mol of its outlet is."""
+class ThroughStep(EquipmentStep):
+    """Equipment that a call passes through, run on one mol/s of what its server gives."""
 
+    main_inlet: str = ""
     main_outlet: str = ""
+
+    def operate(self, values: Mapping[str, Flow]) -> Outcome:
+        """Run the equipment, unless it ran on the very same sample before."""
+        assert self.site is not None
+        feeds, asked, piece = self.inputs(values)
+        if self.outcome is not None and self._used is not None:
+            before, _, same = self._used
+            if same is piece and all(before[port] is flow for port, flow in feeds.items()):
+                return self.outcome
+        self.runs += 1
+        self.outcome = piece.operate(feeds, asked, self.site)
+        self._used = (feeds, asked, piece)
+        return self.outcome
+
+    def outlet(self, outcome: Outcome) -> Stream:
+        """The main outlet for one mol/s at the main inlet."""
+        stream = outcome.outlets[self.main_outlet]
+        assert isinstance(stream, Stream)
+        return stream
+
+    def sample_slopes(self) -> dict[str, np.ndarray] | None:
+        """Closed forms by what one mol of the main inlet is, on full vectors."""
+        assert self.site is not None and self._used is not None and self.outcome is not None
+        feeds, asked, piece = self._used
+        return piece.slopes(feeds, asked, self.site, self.outcome).get(self.main_inlet)
+
+    @property
+    def sample_key(self) -> str:
+        """The variable of the sample, empty if it is a constant."""
+        return self.feeds[self.main_inlet][0].key
+
+
+@dataclass
+class ThroughStateStep(ThroughStep):
+    """What one mol of the outlet is, where a call passes through."""
+
     state: str = ""
 
-    def _written(self, outcome: Outcome) -> Values:
-        outlet = outcome.outlets[self.main_outlet]
-        assert isinstance(outlet, Stream)
+    def run(self, values: Mapping[str, Flow]) -> Values:
+        outlet = self.outlet(self.operate(values))
         total = float(outlet.total)
         return {self.state: outlet.scaled(1.0 / total) if total > 0.0 else outlet}
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
-        return {}
+        slopes = self.sample_slopes() if self.sample_key else None
+        if slopes is None:
+            return {}
+        outlet = self.outlet(self.operate(values))
+        total = float(outlet.total)
+        block = slopes[self.main_outlet]
+        one = np.append(outlet.flows, outlet.enthalpy) / total
+        block = (block - np.outer(one, block[:-1].sum(axis=0))) / total
+        rows = self.variables[self.state].rows(self.matter)
+        columns = self.variables[self.sample_key].rows(self.matter)
+        return {self.sample_key: {(self.state, self.sample_key): block[np.ix_(rows, columns)]}}
 
 
 @dataclass
-class ThroughAmountStep(EquipmentStep):
+class ThroughAmountStep(ThroughStep):
     """What equipment that a call passes through asks and gives, scaled to what is asked of it."""
 
-    main_inlet: str = ""
-    main_outlet: str = ""
     amount: Source = field(default_factory=Source)  # asked at the main outlet [mol/s]
 
-    def _written(self, outcome: Outcome) -> Values:
-        raise NotImplementedError("amounts are written by run")
+    def _factor(self, values: Mapping[str, Flow], outcome: Outcome) -> tuple[float, float]:
+        """Amount at the main inlet per mol/s of the sample, and what one mol becomes."""
+        wanted = self.amount.of(values)
+        total = float(self.outlet(outcome).total)
+        assert isinstance(wanted, float)
+        return (wanted / total if total > 0.0 else 0.0), total
 
     def run(self, values: Mapping[str, Flow]) -> Values:
-        assert self.site is not None
-        feeds, asked, piece = self.inputs(values)
-        self.runs += 1
-        outcome = piece.operate(feeds, asked, self.site)
-        self.outcome = outcome
-        outlet = outcome.outlets[self.main_outlet]
-        wanted = self.amount.of(values)
-        assert isinstance(outlet, Stream) and isinstance(wanted, float)
-        total = float(outlet.total)
-        factor = wanted / total if total > 0.0 else 0.0
-        written: Values = {key: _times(outcome.outlets[port], factor) for port, key in self.outlets.items()}
+        outcome = self.operate(values)
+        factor, _ = self._factor(values, outcome)
+        written: Values = {
+            key: _times(outcome.outlets[port], factor) for port, key in self.outlets.items()
+        }
         for port, key in self.drawn.items():
-            written[key] = factor if port == self.main_inlet else _times(outcome.drawn[port], factor)
+            whole = port == self.main_inlet
+            written[key] = factor if whole else _times(outcome.drawn[port], factor)
         return written
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
-        """Everything is proportional to the amount."""
-        key = self.amount.key
-        wanted = self.amount.of(values)
-        if not key or not isinstance(wanted, float) or wanted == 0.0:
-            return {}
-        written = self.run(values)
-        return {key: {(w, key): self.variables[w].pack(written[w], self.matter)[:, None] / wanted for w in self.writes}}
+        """Everything is proportional to the amount; the sample acts through the equipment."""
+        known: dict[str, Blocks] = {}
+        key, wanted = self.amount.key, self.amount.of(values)
+        if key and isinstance(wanted, float) and wanted != 0.0:
+            written = self.run(values)
+            known[key] = {
+                (w, key): self.variables[w].pack(written[w], self.matter)[:, None] / wanted
+                for w in self.writes
+            }
+        slopes = self.sample_slopes() if self.sample_key else None
+        if slopes is not None and self.sample_key != key:
+            known[self.sample_key] = self._by_sample(values, slopes)
+        return known
+
+    def _by_sample(self, values: Mapping[str, Flow], slopes: Mapping[str, np.ndarray]) -> Blocks:
+        outcome = self.operate(values)
+        factor, total = self._factor(values, outcome)
+        by_factor = -factor / total * slopes[self.main_outlet][:-1].sum(axis=0)
+        columns = self.variables[self.sample_key].rows(self.matter)
+        blocks: Blocks = {}
+        for port, w in (*self.outlets.items(), *((p, k) for p, k in self.drawn.items())):
+            inlet = self.drawn.get(port) == w
+            if inlet and port == self.main_inlet:
+                block = by_factor[None, :]
+            else:
+                value = outcome.drawn[port] if inlet else outcome.outlets[port]
+                label = f"drawn:{port}" if inlet else port
+                full = _full(value)
+                block = np.outer(full, by_factor)
+                if label in slopes:
+                    block = block + factor * slopes[label]
+            rows = self.variables[w].rows(self.matter)
+            blocks[w, self.sample_key] = block[np.ix_(rows, columns)]
+        return blocks
+
+
+def _full(value: Flow) -> np.ndarray:
+    """A value as numbers over all components."""
+    if isinstance(value, Stream):
+        return np.append(value.flows, value.enthalpy)
+    if isinstance(value, Heat):
+        return np.array([value.rate, value.start, value.end, value.mean])
+    return np.array([float(value)])
 
 
 @dataclass
@@ -312,6 +404,13 @@ def _added(amounts: list[Flow]) -> Any:
 
 
 __all__ = [
-    "EquipmentStep", "ResultStep", "Source", "StateError", "Step", "StoreStateStep",
-    "ThroughAmountStep", "ThroughStateStep", "Values",
+    "EquipmentStep",
+    "ResultStep",
+    "Source",
+    "StateError",
+    "Step",
+    "StoreStateStep",
+    "ThroughAmountStep",
+    "ThroughStateStep",
+    "Values",
 ]

@@ -38,7 +38,9 @@ def order_steps(program: Program) -> Order:
     tears = list(settings)
     for members in loops:
         forced = [s for s in settings if s in members]
-        tears += [t for t in choose_tears(graph.subgraph(members), weights, forced) if t not in tears]
+        tears += [
+            t for t in choose_tears(graph.subgraph(members), weights, forced) if t not in tears
+        ]
     order = Order(tears=tears, loops=loops)
     steps = _sorted_steps(program, set(tears))
     _deal(steps, program, order)

@@ -40,7 +40,9 @@ def settle_pressures(flowsheet: Flowsheet) -> Pressures:
     return pressures
 
 
-def inlet_pressures(flowsheet: Flowsheet, pressures: Pressures, name: str) -> dict[str, tuple[float, ...]]:
+def inlet_pressures(
+    flowsheet: Flowsheet, pressures: Pressures, name: str
+) -> dict[str, tuple[float, ...]]:
     """Pressures that arrive at each material inlet of a piece of equipment."""
     arriving: dict[str, tuple[float, ...]] = {}
     for line in flowsheet.into(name):
@@ -82,7 +84,9 @@ def _loop_among(flowsheet: Flowsheet, names: list[str]) -> list[str]:
     path: list[str] = [names[0]]
     while True:
         follow = [
-            line.target for line in flowsheet.out_of(path[-1]) if line.content == "material" and line.target in names
+            line.target
+            for line in flowsheet.out_of(path[-1])
+            if line.content == "material" and line.target in names
         ]
         if not follow:
             names = [name for name in names if name != path[-1]]

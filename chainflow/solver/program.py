@@ -19,7 +19,13 @@ from chainflow.flowsheet.addresses import of_outcome, parse_result, property_of
 from chainflow.flowsheet.network import Flowsheet, Hold, Line
 from chainflow.solver.inventories import Presence
 from chainflow.solver.nodes import (
-    EquipmentStep, ResultStep, Source, Step, StoreStateStep, ThroughAmountStep, ThroughStateStep,
+    EquipmentStep,
+    ResultStep,
+    Source,
+    Step,
+    StoreStateStep,
+    ThroughAmountStep,
+    ThroughStateStep,
 )
 from chainflow.solver.pressures import Pressures
 from chainflow.solver.variables import Variable
@@ -50,9 +56,11 @@ def build_program(flowsheet: Flowsheet, pressures: Pressures, presence: Presence
 def site_of(flowsheet: Flowsheet, name: str, *, detail: bool) -> Site:
     """The place a piece of equipment stands in."""
     return Site(
-        flowsheet.matter, flowsheet.ambient,
+        flowsheet.matter,
+        flowsheet.ambient,
         frozenset(line.inlet for line in flowsheet.into(name)),
-        frozenset(line.outlet for line in flowsheet.out_of(name)), detail,
+        frozenset(line.outlet for line in flowsheet.out_of(name)),
+        detail,
     )
 
 
@@ -81,7 +89,14 @@ class _Builder:
     # --- variables ---------------------------------------------------------------------------
 
     def _variable(
-        self, key: str, form: str, source: str = "", outlet: str = "", *, content: str = "material", rate: bool = False
+        self,
+        key: str,
+        form: str,
+        source: str = "",
+        outlet: str = "",
+        *,
+        content: str = "material",
+        rate: bool = False,
     ) -> str:
         if key not in self.program.variables:
             places = None
@@ -89,13 +104,19 @@ class _Builder:
             if form == "matter":
                 species = self.presence.species.get((source, outlet), ())
                 places = np.array([self.flowsheet.matter.index[s] for s in species], dtype=int)
-                pressure = self.pressures.get((source, outlet), 0.0) or self._own_pressure(source, outlet)
+                pressure = self.pressures.get((source, outlet), 0.0) or self._own_pressure(
+                    source, outlet
+                )
             self.program.variables[key] = Variable(key, form, places, pressure, content, rate)
         return key
 
     def _own_pressure(self, name: str, outlet: str) -> float:
         given = self.flowsheet.equipment[name].outlet_pressures(
-            {li.inlet: (self.pressures[li.source, li.outlet],) for li in self.into[name] if li.content == "material"}
+            {
+                li.inlet: (self.pressures[li.source, li.outlet],)
+                for li in self.into[name]
+                if li.content == "material"
+            }
         )
         return given.get(outlet, given.get(ANY_NAME, 1e5))
 
@@ -108,7 +129,9 @@ class _Builder:
         return self._variable(f"{name}.{outlet}", form, name, outlet, content=content, rate=rate)
 
     def _amount(self, line: Line) -> str:
-        return self._variable(amount_key(line), "heat" if line.content == "heat" else "number", content=line.content)
+        return self._variable(
+            amount_key(line), "heat" if line.content == "heat" else "number", content=line.content
+        )
 
     # --- what servers give --------------------------------------------------------------------
 
@@ -139,7 +162,9 @@ class _Builder:
         (feeding,) = [li for li in self.into[name] if li.called and li.content == "material"]
         before = self._state(feeding)
         if before.constant is None or name in self.held:
-            return Source(self._variable(f"{name}.{line.outlet}~state", "matter", name, line.outlet))
+            return Source(
+                self._variable(f"{name}.{line.outlet}~state", "matter", name, line.outlet)
+            )
         outcome = piece.operate({feeding.inlet: before.constant}, {}, site)
         outlet = outcome.outlets[line.outlet]
         assert isinstance(outlet, Stream)
@@ -161,10 +186,14 @@ class _Builder:
     def _common(self, name: str, piece: Equipment, cls: type[EquipmentStep]) -> EquipmentStep:
         """A step with its feeds, amounts asked and held settings."""
         step = cls(
-            name, self.program.variables, self.flowsheet.matter, equipment=piece,
+            name,
+            self.program.variables,
+            self.flowsheet.matter,
+            equipment=piece,
             site=site_of(self.flowsheet, name, detail=name in self.results),
             many=frozenset(p.name for p in piece.port_list() if p.is_inlet and p.many),
-            settings=tuple(self.held.get(name, ())), results=self.results.get(name, {}),
+            settings=tuple(self.held.get(name, ())),
+            results=self.results.get(name, {}),
         )
         for line in self.into[name]:
             if line.called and line.content != "material":
@@ -173,7 +202,10 @@ class _Builder:
             step.feeds[line.inlet] = (*step.feeds.get(line.inlet, ()), source)
         for line in self.out[name]:
             if line.called and self._serves(piece, line):
-                step.asked[line.outlet] = (*step.asked.get(line.outlet, ()), Source(self._amount(line)))
+                step.asked[line.outlet] = (
+                    *step.asked.get(line.outlet, ()),
+                    Source(self._amount(line)),
+                )
         return step
 
     def _serves(self, piece: Equipment, line: Line) -> bool:
@@ -190,7 +222,9 @@ class _Builder:
             if line.called:
                 step.drawn[line.inlet] = self._amount(line)
 
-    def _close(self, step: EquipmentStep, writes: Iterable[str], more_reads: Iterable[str] = ()) -> None:
+    def _close(
+        self, step: EquipmentStep, writes: Iterable[str], more_reads: Iterable[str] = ()
+    ) -> None:
         reads: list[str] = []
         for sources in (*step.feeds.values(), *step.asked.values()):
             reads += [key for source in sources for key in source.keys]
@@ -221,18 +255,23 @@ class _Builder:
         if state.constant is None:
             step = self._common(name, piece, ThroughStateStep)
             assert isinstance(step, ThroughStateStep)
-            step.main_outlet, step.state, step.results = main.name, state.key, {}
+            step.main_inlet, step.main_outlet = feeding.inlet, main.name
+            step.state, step.results = state.key, {}
             self._close(step, [state.key])
         amounts = self._common(name, piece, ThroughAmountStep)
         assert isinstance(amounts, ThroughAmountStep)
         amounts.main_inlet, amounts.main_outlet, amounts.results = feeding.inlet, main.name, {}
         amounts.amount = Source(self._amount(asking))
         self._outputs(amounts, name)
-        self._close(amounts, [*amounts.outlets.values(), *amounts.drawn.values()], [amounts.amount.key])
+        self._close(
+            amounts, [*amounts.outlets.values(), *amounts.drawn.values()], [amounts.amount.key]
+        )
         if name in self.results:
             whole = self._common(name, piece, EquipmentStep)
             (sample,) = whole.feeds[feeding.inlet]
-            whole.feeds[feeding.inlet] = (Source(sample.key, sample.constant, Source(self._amount(feeding))),)
+            whole.feeds[feeding.inlet] = (
+                Source(sample.key, sample.constant, Source(self._amount(feeding))),
+            )
             self._close(whole, list(whole.results))
 
     # --- holds -------------------------------------------------------------------------------
@@ -245,8 +284,12 @@ class _Builder:
             self.program.holds.append((hold, setting, result))
             address = parse_result(hold.text, self.flowsheet.equipment, self.flowsheet.components)
             if address.where in ("own", "duty"):
-                self.results.setdefault(address.piece, {})[result] = _getter(address.where, address.name)
-            elif address.where == "outlet" and not self.flowsheet.line_from(address.piece, address.name):
+                self.results.setdefault(address.piece, {})[result] = _getter(
+                    address.where, address.name
+                )
+            elif address.where == "outlet" and not self.flowsheet.line_from(
+                address.piece, address.name
+            ):
                 self.extra_outlets.setdefault(address.piece, set()).add(address.name)
                 port = self.flowsheet.equipment[address.piece].port(address.name, inlet=False)
                 content = port.content if port is not None and port.content != "any" else "material"
@@ -261,8 +304,17 @@ class _Builder:
                 lines = self.flowsheet.line_from(address.piece, address.name)
             else:
                 lines = self.flowsheet.line_into(address.piece, address.name)
-            sources = tuple(self._whole(line) for line in lines) or (Source(f"{address.piece}.{address.name}"),)
-            step = ResultStep(hold.text, self.program.variables, self.flowsheet.matter, sources=sources, get=_property(address.prop, address.argument), key=result)
+            sources = tuple(self._whole(line) for line in lines) or (
+                Source(f"{address.piece}.{address.name}"),
+            )
+            step = ResultStep(
+                hold.text,
+                self.program.variables,
+                self.flowsheet.matter,
+                sources=sources,
+                get=_property(address.prop, address.argument),
+                key=result,
+            )
             step.reads = tuple(dict.fromkeys(key for source in sources for key in source.keys))
             step.writes = (result,)
             self.program.steps.append(step)

@@ -22,7 +22,11 @@ def drop_free_recycles(flowsheet: Flowsheet, pressures: Pressures) -> Iterator[F
         if line.content != "material":
             continue
         level = pressures[line.source, line.outlet]
-        arriving = [pressures[li.source, li.outlet] for li in flowsheet.into(line.source) if li.content == "material"]
+        arriving = [
+            pressures[li.source, li.outlet]
+            for li in flowsheet.into(line.source)
+            if li.content == "material"
+        ]
         changes = any(abs(level - before) > _MOVED * level for before in arriving)
         if not changes and not isinstance(flowsheet.equipment[line.source], Store):
             graph.add_edge(line.source, line.target)

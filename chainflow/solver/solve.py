@@ -39,8 +39,11 @@ def inspect(flowsheet: Flowsheet) -> Structure:
     """The structure of a flowsheet; raises like `solve_flowsheet` for what its structure shows."""
     prepared = _Prepared(flowsheet)
     return Structure(
-        flowsheet, prepared.pressures, _equipment_of(prepared.order, flowsheet),
-        tuple(prepared.order.tears), (*flowsheet.remarks, *prepared.remarks),
+        flowsheet,
+        prepared.pressures,
+        _equipment_of(prepared.order, flowsheet),
+        tuple(prepared.order.tears),
+        (*flowsheet.remarks, *prepared.remarks),
     )
 
 
@@ -77,9 +80,16 @@ class _Prepared:
         balance = audit(finish)
         self._refuse_imbalance(balance)
         return Solution(
-            self.flowsheet, finish.outcomes, finish.feeds, finish.streams, balance, closed.passes,
-            sum(step.runs for step in self.program.steps), self._hold_results(closed),
-            (*self.flowsheet.remarks, *self.remarks), closed.error,
+            self.flowsheet,
+            finish.outcomes,
+            finish.feeds,
+            finish.streams,
+            balance,
+            closed.passes,
+            sum(step.runs for step in self.program.steps),
+            self._hold_results(closed),
+            (*self.flowsheet.remarks, *self.remarks),
+            closed.error,
         )
 
     def _close(self, fixed: Mapping[str, float]) -> Closed:
@@ -89,7 +99,15 @@ class _Prepared:
 
     def _hold_results(self, closed: Closed) -> tuple[HoldResult, ...]:
         return tuple(
-            HoldResult(h.text, h.at, _number(closed, result), h.unit, h.by, _number(closed, setting), h.by_unit)
+            HoldResult(
+                h.text,
+                h.at,
+                _number(closed, result),
+                h.unit,
+                h.by,
+                _number(closed, setting),
+                h.by_unit,
+            )
             for h, setting, result in self.program.holds
         )
 
@@ -98,8 +116,10 @@ class _Prepared:
             why = closed.aside.get(setting)
             if why == "unable":
                 raise NotSolved(
-                    "hold-unable", f"hold {hold.text}: moving {hold.by} changes nothing there (it stays at {_shown(_number(closed, result), hold.unit)}): "
-                    "aim at a result that the setting can move, or let something flow", {"hold": hold.text},
+                    "hold-unable",
+                    f"hold {hold.text}: moving {hold.by} changes nothing there (it stays at {_shown(_number(closed, result), hold.unit)}): "
+                    "aim at a result that the setting can move, or let something flow",
+                    {"hold": hold.text},
                 )
             if why == "bound":
                 raise self._out_of_reach(hold, setting, result, closed)
@@ -114,10 +134,15 @@ class _Prepared:
         except NotSolved:
             reached[there] = float("nan")
         ends = " and ".join(
-            f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}" for value in sorted(reached)
+            f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}"
+            for value in sorted(reached)
         )
         text = f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is {ends}; widen 'within' or change what is wanted"
-        details = {"hold": hold.text, "wanted": hold.at, "ends": [[v, None if r != r else r] for v, r in sorted(reached.items())]}
+        details = {
+            "hold": hold.text,
+            "wanted": hold.at,
+            "ends": [[v, None if r != r else r] for v, r in sorted(reached.items())],
+        }
         return NotSolved("hold-out-of-reach", text, details)
 
     # --- judgement ---------------------------------------------------------------------------
@@ -125,7 +150,13 @@ class _Prepared:
     def _judge(self, finish: Finish, closed: Closed) -> None:
         for name, outcome in finish.outcomes.items():
             for port, why in outcome.unmet.items():
-                code = "overfull" if why.startswith("overfull") else "heat-short" if port == "shortage" else "no-answer"
+                code = (
+                    "overfull"
+                    if why.startswith("overfull")
+                    else "heat-short"
+                    if port == "shortage"
+                    else "no-answer"
+                )
                 raise NotSolved(code, f"{name}.{port}: {why}", {"equipment": name, "port": port})
         for name, piece in self.flowsheet.equipment.items():
             if isinstance(piece, Switchboard):
@@ -133,7 +164,11 @@ class _Prepared:
         for conditional in self.conditional:
             self._judge_conditional(finish, conditional)
         if closed.error > FLOOR:
-            raise NotSolved("not-converged", f"the loops are closed to {closed.error:.1e} only", {"error": closed.error})
+            raise NotSolved(
+                "not-converged",
+                f"the loops are closed to {closed.error:.1e} only",
+                {"error": closed.error},
+            )
 
     def _judge_switchboard(self, finish: Finish, name: str) -> None:
         rest = finish.outcomes[name].outlets["rest"]
@@ -156,14 +191,20 @@ class _Prepared:
     def _refuse_imbalance(self, balance: Balance) -> None:
         for what, error in (("elements", balance.elements), ("energy", balance.energy)):
             if not error <= _SOLVED:
-                worst = max(balance.by_equipment, key=lambda n: balance.by_equipment[n][what == "energy"], default="the plant")
+                worst = max(
+                    balance.by_equipment,
+                    key=lambda n: balance.by_equipment[n][what == "energy"],
+                    default="the plant",
+                )
                 text = f"{what} balance only to {error:.1e} (wanted {_SOLVED:.0e}), worst at {worst}: please report this flowsheet"
                 raise NotSolved("not-balanced", text, {"error": error, "equipment": worst})
 
 
 def _numbers(flows: object) -> list[float]:
     parts = flows if isinstance(flows, tuple) else (flows,)
-    return [f.rate if isinstance(f, Heat) else float(f) for f in parts if isinstance(f, float | Heat)]
+    return [
+        f.rate if isinstance(f, Heat) else float(f) for f in parts if isinstance(f, float | Heat)
+    ]
 
 
 def _number(closed: Closed, key: str) -> float:

@@ -18,8 +18,15 @@ def initial_state(program: Program, key: str) -> Stream:
         contents = piece.model_copy(update={"pure": True}).sample({}, {}, site)[ANY_NAME]
         assert isinstance(contents, Stream)
         return contents
-    (feeding,) = [li for li in program.flowsheet.into(name) if li.called and li.content == "material"]
-    spot = (feeding.source, ANY_NAME if isinstance(program.flowsheet.equipment[feeding.source], Store) else feeding.outlet)
+    (feeding,) = [
+        li for li in program.flowsheet.into(name) if li.called and li.content == "material"
+    ]
+    spot = (
+        feeding.source,
+        ANY_NAME
+        if isinstance(program.flowsheet.equipment[feeding.source], Store)
+        else feeding.outlet,
+    )
     source = program.states[spot]
     before = source.constant if source.constant is not None else initial_state(program, source.key)
     outcome = piece.operate({feeding.inlet: before}, {}, site)

@@ -13,7 +13,9 @@ import networkx as nx
 import numpy as np
 
 
-def choose_tears(graph: nx.DiGraph, weights: Mapping[str, float], forced: Iterable[str] = ()) -> list[str]:
+def choose_tears(
+    graph: nx.DiGraph, weights: Mapping[str, float], forced: Iterable[str] = ()
+) -> list[str]:
     """Smallest-weight set of nodes that cuts every cycle.
 
     Parameters
@@ -71,8 +73,11 @@ def _cover(graph: nx.DiGraph, weights: Mapping[str, float]) -> list[str]:
         for row, cycle in enumerate(cycles):
             rows[row, [place[node] for node in cycle]] = 1.0
         found = milp(
-            [weights[node] for node in nodes], integrality=np.ones(len(nodes)), bounds=Bounds(0, 1),
-            constraints=LinearConstraint(rows, lb=1.0), options={"mip_rel_gap": 0.0},
+            [weights[node] for node in nodes],
+            integrality=np.ones(len(nodes)),
+            bounds=Bounds(0, 1),
+            constraints=LinearConstraint(rows, lb=1.0),
+            options={"mip_rel_gap": 0.0},
         )
         chosen = [node for node in nodes if found.x[place[node]] > 0.5]
         missed = _missed(graph, chosen)

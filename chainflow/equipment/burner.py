@@ -1,134 +1,43 @@
-"""Burning: burner and engine, with the oxidiser they ask for.
+"""The burner: adiabatic or cooled, its flame kept at a temperature by a moderator if wanted.
 
-SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat and power [W].  The oxidiser is
-called so that the oxygen of all inlets together is (1 + excess) times what their combustibles need.
+SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat [W].
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Mapping
+from collections.abc import Iterable, Mapping
 from dataclasses import dataclass
-from typing import Annotated, Any, ClassVar, Literal
+from typing import Any, ClassVar, Literal
 
 import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
-from chainflow.basis.quantities import HeatingValueShare, Temperature, measured
+from chainflow.basis.quantities import Temperature
 from chainflow.equipment.base import (
-    HEAT_PORTS, Array, Caution, Duty, Equipment, Flow, Outcome, Port, Role, Site, material,
+    HEAT_PORTS,
+    Array,
+    Caution,
+    Duty,
+    Flow,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
 )
-from chainflow.equipment.junctions import joined, spread_faults
+from chainflow.equipment.burning import Combustion, Oxygen, burnt, oxidiser_needed
+from chainflow.equipment.junctions import joined
 from chainflow.equipment.ports import Feeds, arriving
 from chainflow.thermo.components import Matter
-from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
+from chainflow.thermo.equilibrium import Equilibrium, equilibrate, equilibrate_adiabatic
 from chainflow.thermo.flames import flame_temperature
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
-Excess = Annotated[float, measured("1", ge=0.0, le=20.0)]
 _MOST_STEPS = 60
 
 
-def oxygen_demand(matter: Matter) -> Array:
-    """Oxygen needed to burn one mol of each component [mol/mol]; zero for what does not burn."""
-    atoms = {element: matter.formula[row] for row, element in enumerate(matter.elements)}
-    zero = np.zeros(len(matter.components))
-    demand = atoms.get("C", zero) + 0.25 * atoms.get("H", zero) - 0.5 * atoms.get("O", zero)
-    return np.where(matter.lhv > 0.0, demand, 0.0)
-
-
-def burnt(matter: Matter) -> Array:
-    """What complete combustion makes of each component, columns by component, oxygen negative."""
-    result = np.eye(len(matter.components))
-    demand = oxygen_demand(matter)
-    atoms = {element: matter.formula[row] for row, element in enumerate(matter.elements)}
-    for place in np.flatnonzero(matter.lhv > 0.0):
-        column = np.zeros(len(matter.components))
-        for product, element, per_atom in (("CO2", "C", 1.0), ("H2O", "H", 0.5), ("N2", "N", 0.5)):
-            count = float(atoms[element][place]) if element in atoms else 0.0
-            if count:
-                column[matter.index[product]] += per_atom * count
-        column[matter.index["O2"]] -= demand[place]
-        result[:, place] = column
-    return result
-
-
-@dataclass(frozen=True, slots=True)
-class Oxygen:
-    """Linear oxygen balance: weights whose sum over what enters is zero at the wanted excess."""
-
-    weights: Array  # per component, (1 + excess) * demand - oxygen
-
-    @staticmethod
-    def at(excess: float, matter: Matter) -> Oxygen:
-        weights = (1.0 + excess) * oxygen_demand(matter)
-        weights[matter.index["O2"]] -= 1.0
-        return Oxygen(weights)
-
-
-class _Combustion(Equipment):
-    """Common part of burner and engine."""
-
-    family: ClassVar[str] = "combustion"
-    makes: ClassVar[bool] = True
-    burns: ClassVar[bool] = True
-
-    excess: Excess = Field(0.0, description="oxygen beyond what is needed, counting oxygen already there")
-
-    def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
-        wanted = {"O2", "H2O"} | ({"CO2"} if "C" in matter.elements else set()) | (
-            {"N2"} if any(matter.formula[matter.elements.index("N")][matter.lhv > 0]) else set()
-            if "N" in matter.elements else set()
-        )
-        missing = sorted(wanted - set(matter.components))
-        if missing:
-            yield ("kind",), f"combustion needs {', '.join(missing)} among the components"
-
-    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
-        return spread_faults(inlets)
-
-    def destinations(
-        self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
-    ) -> Iterable[tuple[str, str]]:
-        place = matter.index[species]
-        made = {species} | {
-            name for name in ("H2O", "CO2", "N2")
-            if matter.lhv[place] > 0.0 and name in matter.index
-            and ((matter.formula[:, matter.index[name]] > 0) & (matter.formula[:, place] > 0) & _not_oxygen(matter)).any()
-        }
-        if matter.lhv[place] > 0.0:
-            made |= self._left_in_flue(species, matter)
-        if species == "O2":
-            made |= {n for n in ("H2O", "CO2") if n in matter.index}
-        return [(o, name) for o in outlets for name in matter.components if name in made]
-
-    def _left_in_flue(self, species: str, matter: Matter) -> set[str]:
-        return set()
-
-    def _inlets(self, feeds: Feeds) -> dict[str, list[Stream]]:
-        ports = ("fuel", "oxidiser", "moderator")
-        return {p: [f for f in arriving(feeds, p) if isinstance(f, Stream)] for p in ports}
-
-
-def _not_oxygen(matter: Matter) -> Array:
-    return np.array([element != "O" for element in matter.elements])
-
-
-def _oxidiser_needed(oxygen: Oxygen, given: list[Stream], oxidiser: Stream) -> tuple[float, dict[str, str]]:
-    """Amount [mol/s] of oxidiser for what is given, and why there is none."""
-    need = float(sum(oxygen.weights @ s.flows for s in given))
-    brings = -float(oxygen.weights @ oxidiser.flows)
-    if brings <= 1e-9:
-        return 0.0, ({"oxidiser": "what is served at 'oxidiser' brings no oxygen"} if need > 0.0 else {})
-    amount = need / brings
-    scale = float(sum(np.abs(oxygen.weights) @ s.flows for s in given))
-    if need < -1e-9 * scale and need < 0.0:
-        text = f"overfull: the other inlets already bring {-amount:.6g} mol/s of oxidiser more than the excess allows"
-        return 0.0, {"oxidiser": text}
-    return max(amount, 0.0), {}
-
-
-class Burner(_Combustion):
+class Burner(Combustion):
     """Burns fuel with the oxidiser it asks for; adiabatic unless a temperature is given.
 
     `flue_temperature` makes it ask at `moderator` for what keeps the flame at that temperature.
@@ -139,7 +48,14 @@ class Burner(_Combustion):
     ports: ClassVar[tuple[Port, ...]] = (
         Port("fuel", "material", Role.TAKES, many=True, main=True, means="what burns"),
         Port("oxidiser", "material", Role.CALLS, means="air or oxygen"),
-        Port("moderator", "material", Role.TAKES, many=True, optional=True, means="what keeps the flame cooler"),
+        Port(
+            "moderator",
+            "material",
+            Role.TAKES,
+            many=True,
+            optional=True,
+            means="what keeps the flame cooler",
+        ),
         HEAT_PORTS[2],
         Port("flue", "material", Role.OFFERS, main=True, means="the flue gas"),
     )
@@ -152,23 +68,41 @@ class Burner(_Combustion):
         "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) as shipped with Cantera",
     )
 
-    model: Literal["equilibrium", "complete"] = Field("equilibrium", description="what the flue holds")
-    temperature: Temperature | None = Field(None, description="flue temperature; the heat is given off")
-    flue_temperature: Temperature | None = Field(None, description="flue temperature kept by the moderator that is asked for")
-    requench: Temperature | None = Field(None, description="temperature down to which equilibrium holds when the flue is cooled")
+    model: Literal["equilibrium", "complete"] = Field(
+        "equilibrium", description="what the flue holds"
+    )
+    temperature: Temperature | None = Field(
+        None, description="flue temperature; the heat is given off"
+    )
+    flue_temperature: Temperature | None = Field(
+        None, description="flue temperature kept by the moderator that is asked for"
+    )
+    requench: Temperature | None = Field(
+        None, description="temperature down to which equilibrium holds when the flue is cooled"
+    )
 
     @model_validator(mode="after")
     def _one_temperature(self) -> Burner:
         if self.temperature is not None and self.flue_temperature is not None:
-            raise PydanticCustomError("burner", "'temperature' and 'flue_temperature' are both given, wanted one of them", {})
+            raise PydanticCustomError(
+                "burner",
+                "'temperature' and 'flue_temperature' are both given, wanted one of them",
+                {},
+            )
         if self.model == "complete" and self.requench is not None:
-            raise PydanticCustomError("burner", "'requench' goes with model: equilibrium, complete combustion leaves nothing to requench", {})
+            raise PydanticCustomError(
+                "burner",
+                "'requench' goes with model: equilibrium, complete combustion leaves nothing to requench",
+                {},
+            )
         return self
 
     def port_list(self) -> tuple[Port, ...]:
         if self.flue_temperature is None:
             return self.ports
-        called = Port("moderator", "material", Role.CALLS, means="what keeps the flame at `flue_temperature`")
+        called = Port(
+            "moderator", "material", Role.CALLS, means="what keeps the flame at `flue_temperature`"
+        )
         return tuple(called if port.name == "moderator" else port for port in self.ports)
 
     def _left_in_flue(self, species: str, matter: Matter) -> set[str]:
@@ -195,7 +129,15 @@ class Burner(_Combustion):
         drawn |= fire.drawn
         outlets: dict[str, Flow] = {"flue": flue, **given}
         results, cautions = self._report(fire, flue, site) if site.detail else ({}, ())
-        return Outcome(outlets, drawn, duties, results=results, cautions=cautions, unmet=fire.unmet)
+        return Outcome(
+            outlets,
+            drawn,
+            duties,
+            results=results,
+            cautions=cautions,
+            unmet=fire.unmet,
+            inner=fire,
+        )
 
     def _fire(self, feeds: Feeds, site: Site) -> _Fire:
         inlets = self._inlets(feeds)
@@ -205,11 +147,13 @@ class Burner(_Combustion):
             (moderator,) = inlets["moderator"]
             return _moderated(self, inlets["fuel"], oxidiser, moderator, oxygen, site)
         given = [*inlets["fuel"], *inlets["moderator"]]
-        amount, unmet = _oxidiser_needed(oxygen, given, oxidiser)
+        amount, unmet = oxidiser_needed(oxygen, given, oxidiser)
         entering = [*given, oxidiser.scaled(amount)]
         return _Fire.of(self, entering, {"oxidiser": amount}, unmet, site)
 
-    def flue_of(self, flows: Array, level: float, pressure: float, matter: Matter) -> tuple[Array, Array]:
+    def flue_of(
+        self, flows: Array, level: float, pressure: float, matter: Matter
+    ) -> tuple[Array, Array]:
         """Composition of the flue at a temperature, and its slopes by what enters."""
         if self.model == "complete" or not flows.any():
             conversion = burnt(matter)
@@ -232,7 +176,9 @@ class Burner(_Combustion):
         flue = Stream.at(matter, flows, self.temperature, pressure)
         return flue, float(flue.enthalpy) - fire.enthalpy
 
-    def _report(self, fire: _Fire, flue: Stream, site: Site) -> tuple[dict[str, float], tuple[Caution, ...]]:
+    def _report(
+        self, fire: _Fire, flue: Stream, site: Site
+    ) -> tuple[dict[str, float], tuple[Caution, ...]]:
         results = {"adiabatic_temperature_K": fire.adiabatic}
         if not fire.flows.any():
             return results, ()
@@ -254,9 +200,13 @@ class Burner(_Combustion):
     ) -> dict[str, dict[str, Array]]:
         if self.temperature is not None or self.requench is not None or outcome.unmet:
             return {}
-        fire = self._fire(feeds, site)
-        flue = outcome.outlets["flue"]
-        if not fire.flows.any() or not isinstance(flue, Stream) or flue.water.any() or fire.drawn["oxidiser"] <= 0.0:
+        fire, flue = outcome.inner, outcome.outlets["flue"]
+        if (
+            not fire.flows.any()
+            or not isinstance(flue, Stream)
+            or flue.water.any()
+            or fire.drawn["oxidiser"] <= 0.0
+        ):
             return {}
         return _slopes(self, feeds, fire, flue, site)
 
@@ -272,9 +222,16 @@ class _Fire:
     adiabatic: float  # [K]
     drawn: dict[str, float | Any]
     unmet: dict[str, str]
+    found: Equilibrium | None = None  # the adiabatic equilibrium, if one was looked for
 
     @staticmethod
-    def of(burner: Burner, entering: list[Stream], drawn: dict[str, float], unmet: dict[str, str], site: Site) -> _Fire:
+    def of(
+        burner: Burner,
+        entering: list[Stream],
+        drawn: dict[str, float],
+        unmet: dict[str, str],
+        site: Site,
+    ) -> _Fire:
         matter = site.matter
         flows = np.sum([s.flows for s in entering], axis=0)
         enthalpy = float(sum(s.enthalpy for s in entering))
@@ -286,11 +243,17 @@ class _Fire:
             level = float(Stream.from_enthalpy(matter, out, enthalpy, pressure, 1500.0).temperature)
             return _Fire(flows, enthalpy, pressure, out, level, dict(drawn), unmet)
         found = equilibrate_adiabatic(matter, flows, enthalpy, pressure)
-        return _Fire(flows, enthalpy, pressure, found.flows, found.temperature, dict(drawn), unmet)
+        level = found.temperature
+        return _Fire(flows, enthalpy, pressure, found.flows, level, dict(drawn), unmet, found)
 
 
 def _moderated(
-    burner: Burner, fuel: list[Stream], oxidiser: Stream, moderator: Stream, oxygen: Oxygen, site: Site
+    burner: Burner,
+    fuel: list[Stream],
+    oxidiser: Stream,
+    moderator: Stream,
+    oxygen: Oxygen,
+    site: Site,
 ) -> _Fire:
     """Find the moderator that brings the adiabatic flue to its wanted temperature.
 
@@ -302,7 +265,7 @@ def _moderated(
     given = joined(fuel, matter) if len(fuel) > 1 else fuel[0]
     pressure = min(float(s.pressure) for s in (given, oxidiser, moderator))
     brings = -float(oxygen.weights @ oxidiser.flows)
-    base, unmet = _oxidiser_needed(oxygen, [given], oxidiser)
+    base, unmet = oxidiser_needed(oxygen, [given], oxidiser)
     follows = float(oxygen.weights @ moderator.flows) / brings if brings > 0.0 else 0.0
     per_mol = moderator.flows + follows * oxidiser.flows
     per_enthalpy = float(moderator.enthalpy) + follows * float(oxidiser.enthalpy)
@@ -310,9 +273,14 @@ def _moderated(
     enthalpy = float(given.enthalpy) + base * float(oxidiser.enthalpy)
     amount = 0.0
     if flows.any():
-        amount = _moderator_needed(burner, flows, enthalpy, per_mol, per_enthalpy, level, pressure, matter)
+        amount = _moderator_needed(
+            burner, flows, enthalpy, per_mol, per_enthalpy, level, pressure, matter
+        )
     if amount < 0.0:
-        unmet = {**unmet, "moderator": f"overfull: the flame stays below {level - 273.15:.4g} degC without any moderator"}
+        unmet = {
+            **unmet,
+            "moderator": f"overfull: the flame stays below {level - 273.15:.4g} degC without any moderator",
+        }
         amount = 0.0
     drawn = {"oxidiser": base + amount * follows, "moderator": amount}
     entering = [given, oxidiser.scaled(drawn["oxidiser"]), moderator.scaled(amount)]
@@ -325,8 +293,14 @@ def _moderated(
 
 
 def _moderator_needed(
-    burner: Burner, flows: Array, enthalpy: float, per_mol: Array, per_enthalpy: float,
-    level: float, pressure: float, matter: Matter,
+    burner: Burner,
+    flows: Array,
+    enthalpy: float,
+    per_mol: Array,
+    per_enthalpy: float,
+    level: float,
+    pressure: float,
+    matter: Matter,
 ) -> float:
     amount = 0.0
     for _ in range(_MOST_STEPS):
@@ -345,13 +319,16 @@ def _moderator_needed(
     return amount
 
 
-def _slopes(burner: Burner, feeds: Feeds, fire: _Fire, flue: Stream, site: Site) -> dict[str, dict[str, Array]]:
+def _slopes(
+    burner: Burner, feeds: Feeds, fire: _Fire, flue: Stream, site: Site
+) -> dict[str, dict[str, Array]]:
     """Derivatives of an adiabatic burner: what is called follows implicitly from its balances."""
     matter = site.matter
     size = len(matter.components)
     weights = np.append(Oxygen.at(burner.excess, matter).weights, 0.0)
     block = _flue_block(burner, fire, flue, matter)
-    one = {p: np.append(s.flows, s.enthalpy) for p in ("oxidiser", "moderator") for s in [material(feeds, p)] if p in fire.drawn}
+    served = {port: material(feeds, port) for port in fire.drawn}
+    one = {port: np.append(s.flows, s.enthalpy) for port, s in served.items()}
     rows = [weights]
     if "moderator" in fire.drawn:
         if fire.drawn["moderator"] <= 0.0:
@@ -382,57 +359,9 @@ def _flue_block(burner: Burner, fire: _Fire, flue: Stream, matter: Matter) -> Ar
     if burner.model == "complete":
         block[:size, :size] = burnt(matter)
         return block
-    found = equilibrate_adiabatic(matter, fire.flows, fire.enthalpy, fire.pressure)
+    found = fire.found or equilibrate_adiabatic(
+        matter, fire.flows, fire.enthalpy, fire.pressure, guess=fire.adiabatic
+    )
     block[:size, :size] = found.by_feed
     block[:size, size] = found.by_enthalpy
     return block
-
-
-class Engine(_Combustion):
-    """Burns fuel completely and gives power at a stated efficiency; the flue leaves at `temperature`.
-
-    What is neither power nor in the flue is given off at `jacket`.
-    """
-
-    kind: ClassVar[str] = "engine"
-    gives: ClassVar[tuple[str, ...]] = ("fuel_W",)
-    ports: ClassVar[tuple[Port, ...]] = (
-        Port("fuel", "material", Role.TAKES, main=True, many=True, means="what burns"),
-        Port("oxidiser", "material", Role.CALLS, means="air or oxygen"),
-        Port("moderator", "material", Role.TAKES, many=True, optional=True, means="what keeps the flame cooler"),
-        HEAT_PORTS[2],
-        Port("flue", "material", Role.OFFERS, optional=True, means="the flue gas"),
-        Port("power", "power", Role.OFFERS, main=True, means="electric power"),
-    )
-    formulas: ClassVar[tuple[str, ...]] = (
-        "power = efficiency * heating value of all that burns (LHV unless the efficiency says HHV)",
-        "heat given off = enthalpy in - power - enthalpy of the flue",
-    )
-
-    efficiency: HeatingValueShare = Field(description="electric power per heating value, 42 % LHV")
-    temperature: Temperature = Field(description="flue temperature")
-    jacket: Temperature = Field(363.15, description="temperature at which the waste heat is given off")
-
-    def material_outlets(self) -> tuple[str, ...]:
-        return ("flue",)
-
-    def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
-        inlets, matter = self._inlets(feeds), site.matter
-        given = [*inlets["fuel"], *inlets["moderator"]]
-        (oxidiser,) = inlets["oxidiser"]
-        amount, unmet = _oxidiser_needed(Oxygen.at(self.excess, matter), given, oxidiser)
-        entering = [*given, oxidiser.scaled(amount)]
-        flows = np.sum([s.flows for s in entering], axis=0)
-        value = matter.hhv if self.efficiency.basis == "HHV" else matter.lhv
-        power = self.efficiency.value * float(value @ flows)
-        pressure = min(float(s.pressure) for s in entering)
-        flue = Stream.at(matter, np.maximum(burnt(matter) @ flows, 0.0), self.temperature, pressure)
-        heat = float(flue.enthalpy) + power - float(sum(s.enthalpy for s in entering))
-        needs = [Duty("jacket and exhaust cooling", heat, self.jacket, self.jacket, self.jacket)]
-        duties, _, drawn, given_off = self.settle(needs, site)
-        outlets: dict[str, Flow] = {"flue": flue, "power": power, **given_off}
-        cautions = (Caution("engine-too-good", "power and flue carry more than the fuel brings: lower the efficiency or the flue temperature"),)
-        return Outcome(
-            outlets, drawn | {"oxidiser": amount}, duties, power=-power, results={"fuel_W": float(value @ flows)},
-            cautions=cautions if heat > 1e-9 * abs(power) and power > 0.0 else (), unmet=unmet,
-        )

@@ -1,0 +1,112 @@
+from math import prod
+
+import pytest
+
+from chainflow.accounts.efficiency import efficiency
+from chainflow.accounts.worth import BASES
+from tests.plants import BOUGHT, CYCLE, ENGINE_INSIDE, HYDROGEN, METHANE, solved
+
+PLANTS = {
+    "hydrogen": HYDROGEN,
+    "methane": METHANE,
+    "engine inside": ENGINE_INSIDE,
+    "cycle": CYCLE,
+    "bought": BOUGHT,
+}
+
+
+@pytest.mark.parametrize("text", PLANTS.values(), ids=PLANTS)
+@pytest.mark.parametrize("basis", BASES)
+def test_rungs_multiply_to_the_overall_efficiency(text, basis):
+    found = efficiency(solved(text))
+    assert prod(rung.ratio[basis] for rung in found.rungs) == pytest.approx(
+        found.overall[basis], rel=1e-14
+    )
+
+
+@pytest.mark.parametrize("text", PLANTS.values(), ids=PLANTS)
+def test_each_rung_starts_where_the_one_before_ends(text):
+    rungs = efficiency(solved(text)).rungs
+    assert [rung.end for rung in rungs[:-1]] == [rung.start for rung in rungs[1:]]
+
+
+def names(text, **overrides):
+    rungs = efficiency(solved(text, **overrides)).rungs
+    return [rungs[0].start, *(rung.end for rung in rungs)]
+
+
+def test_cuts_of_each_plant():
+    chain = ["light", "power", "hydrogen", "fuel made", "fuel kept"]
+    assert names(HYDROGEN) == chain
+    assert names(METHANE) == chain
+    assert names(CYCLE) == [*chain, "power out"]
+    assert names(BOUGHT) == ["input", "useful"]
+
+
+def test_sunlight_to_hydrogen_by_hand():
+    # 20 % of the light is power, hydrogen takes 52 kWh/kg and has 33.33 kWh/kg LHV
+    # (ISO/TR 15916: 119.9 MJ/kg); the pump and the compressor take power before the stack
+    solution = solved(HYDROGEN)
+    machines = solution.outcomes["feed"].power + solution.outcomes["press"].power
+    power = 0.2 * 8e6
+    by_hand = (power - machines) / 8e6 * (119.9 / 3.6) / 52
+    found = efficiency(solution)
+    assert found.overall["LHV"] == pytest.approx(by_hand, rel=1e-3)
+    assert found.sunlight_to_fuel["LHV"] == pytest.approx(found.overall["LHV"], rel=1e-12)
+    assert found.sunlight_share == 1.0
+
+
+def test_field_only_by_hand():
+    text = """
+equipment:
+  sun:   {kind: sunlight, irradiance: 1000 W/m2, aperture: 100 m2}
+  field: {kind: pv-field, efficiency: 20 %}
+  town:  {kind: product}
+lines:
+  - sun -> field -> town
+"""
+    found = efficiency(solved(text))
+    assert found.overall["LHV"] == pytest.approx(0.2, rel=1e-14)
+    # exergy of sunlight 0.9312: Petela, J. Heat Transfer 86 (1964) 187
+    assert found.overall["exergy"] == pytest.approx(0.2 / 0.9312, rel=1e-4)
+    assert names(text) == ["light", "power", "power out"]
+
+
+def test_nothing_goes_in():
+    found = efficiency(solved(HYDROGEN, sun="0 W/m2"))
+    assert found.overall == {"LHV": None, "HHV": None, "exergy": None}
+    assert found.sunlight_share is None
+    assert found.rungs == ()
+
+
+def test_all_that_is_bought_is_an_input():
+    solution = solved(BOUGHT)
+    found = efficiency(solution)
+    given, made = solution.stream("gas.outlet").flow, solution.stream("chill.outlet").flow
+    warm = (
+        solution.stream("warm.outlet").flow.enthalpy - solution.stream("press.outlet").flow.enthalpy
+    )
+    entering = given.lhv + solution.outcomes["press"].power + warm
+    assert found.overall["LHV"] == pytest.approx(made.lhv / entering, rel=1e-12)
+    assert found.sunlight_share == 0.0
+
+
+def test_nothing_useful_is_an_efficiency_of_zero():
+    text = """
+equipment:
+  sun:   {kind: sunlight, irradiance: 1000 W/m2, aperture: 100 m2}
+  field: {kind: pv-field, efficiency: 20 %}
+  sky:   {kind: vent}
+lines:
+  - sun -> field -> sky
+"""
+    found = efficiency(solved(text))
+    assert found.overall["LHV"] == 0.0
+    assert found.rungs[-1].end == "useful"
+
+
+def test_hydrogen_cut_holds_the_lhv_of_what_the_stack_makes():
+    solution = solved(METHANE)
+    rung = next(r for r in efficiency(solution).rungs if r.end == "hydrogen")
+    made = float(solution.stream("stack.hydrogen").flow.lhv)
+    assert rung.ratio["LHV"] == pytest.approx(made / (0.2 * 850 * 6000), rel=1e-12)
