@@ -17,7 +17,7 @@ from typing import TYPE_CHECKING, Annotated, Any
 import typer
 
 from chainflow import __version__
-from chainflow.basis.faults import ChainflowError, Fault, FlowsheetFault, UsageFault
+from chainflow.basis.faults import ChainflowError, Fault, FileFault, FlowsheetFault, UsageFault
 
 if TYPE_CHECKING:
     from chainflow.flowsheet.network import Flowsheet
@@ -49,6 +49,8 @@ SetOption = Annotated[
 
 def main() -> None:
     """Run the command line and leave with its exit code."""
+    sys.stdout = sys.stdout or open(os.devnull, "w")  # closed by the caller
+    sys.stderr = sys.stderr or open(os.devnull, "w")
     try:
         app()
     except KeyboardInterrupt:
@@ -66,7 +68,7 @@ def reported(command: Callable[..., None]) -> Callable[..., None]:
         except typer.Exit:
             raise
         except BrokenPipeError:
-            _leave_quietly()
+            _forget_output()
         except KeyboardInterrupt:
             _say("interrupted")
             raise typer.Exit(INTERRUPTED) from None
@@ -76,6 +78,10 @@ def reported(command: Callable[..., None]) -> Callable[..., None]:
         except ChainflowError as problem:
             _say(str(problem))
             raise typer.Exit(problem.exit_code) from None
+        except OSError as problem:
+            _forget_output()
+            _say(f"the answer cannot be written: {problem.strerror or problem}")
+            raise typer.Exit(FileFault.exit_code) from None
         except Exception as problem:  # noqa: BLE001 - the outermost frame: whatever gets here is a bug
             _say_bug(problem)
             raise typer.Exit(BUG) from None
@@ -120,7 +126,7 @@ def solve(
     idealisations and cautions.
     """
     overrides = _overrides(set_)
-    _check_outputs(json, csv)
+    _check_outputs(file, json, csv)
     solution = _solved(file, overrides, json)
     if not quiet:
         _say_faults(solution.remarks, file, "remark: ")
@@ -189,15 +195,16 @@ def _overrides(given: Iterable[str] | None) -> dict[str, str]:
     return found
 
 
-def _check_outputs(json: str | None, csv: Path | None) -> None:
+def _check_outputs(file: Path, json: str | None, csv: Path | None) -> None:
     """Refuse what cannot be written before any work is done."""
-    if json not in (None, STDOUT) or csv is not None:
-        from chainflow.report.writing import check_directory, check_writable
+    from chainflow.report.writing import check_directory, check_writable
 
-        if json not in (None, STDOUT):
-            check_writable(Path(str(json)))
-        if csv is not None:
-            check_directory(csv)
+    if json is not None and json != STDOUT:
+        if Path(json).resolve() == file.resolve():
+            raise UsageFault(f"--json {json} is the flowsheet itself: name another file")
+        check_writable(Path(json))
+    if csv is not None:
+        check_directory(csv)
 
 
 def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution:
@@ -281,8 +288,8 @@ def _say_bug(problem: Exception) -> None:
     )
 
 
-def _leave_quietly() -> None:
-    """Say nothing to a reader who has gone, also not when Python flushes at its end."""
+def _forget_output() -> None:
+    """Send what is left for stdout nowhere, so that Python's last flush cannot fail."""
     os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 

@@ -48,7 +48,8 @@ equipment:
   board:   {kind: switchboard}
   water:   {kind: store, contents: {H2O: 1}, temperature: 25 degC, pressure: 1 bar}
   feed:    {kind: pump, pressure: 12 bar}
-  bought:  {kind: supply, composition: {N2: 0.1 %, CO2: rest}, temperature: 25 degC, pressure: 12 bar}
+  bought:  {kind: supply, composition: {N2: 0.1 %, CO2: rest}, temperature: 25 degC,
+           pressure: 12 bar}
   stack:   {kind: electrolyser, energy_use: 52 kWh/kg, temperature: 60 degC, pressure: 12 bar}
   dryh:    {kind: condenser, temperature: 30 degC, pressure_drop: 0.2 bar}
   blend:   {kind: blend, ratio: {H2: 4, CO2: 1}, let_down: true}
@@ -92,13 +93,15 @@ equipment:
   stack:   {kind: electrolyser, energy_use: 52 kWh/kg, temperature: 60 degC, pressure: 12 bar}
   dryh:    {kind: condenser, temperature: 30 degC, pressure_drop: 0.2 bar}
   h2:      {kind: store, contents: {H2: 1}, temperature: 30 degC, pressure: 11 bar}
-  co2:     {kind: supply, composition: {CO2: 1}, temperature: 25 degC, pressure: 11 bar, flow: 6 mol/s}
+  co2:     {kind: supply, composition: {CO2: 1}, temperature: 25 degC, pressure: 11 bar,
+           flow: 6 mol/s}
   blend:   {kind: blend, ratio: {CO2: 1, H2: 4}}
   reactor: {kind: methanation-reactor, temperature: 320 degC}
   knock:   {kind: condenser, temperature: 30 degC, pressure_drop: 0.5 bar}
   town:    {kind: product}
   letdown: {kind: valve, pressure: 1.2 bar}
-  air:     {kind: supply, composition: {N2: 79 %, O2: rest}, temperature: 25 degC, pressure: 1.2 bar}
+  air:     {kind: supply, composition: {N2: 79 %, O2: rest}, temperature: 25 degC,
+           pressure: 1.2 bar}
   engine:  {kind: engine, efficiency: 42 %, excess: 100 %, temperature: 120 degC}
   stackgas: {kind: vent}
   o2vent:  {kind: vent}
@@ -182,7 +185,8 @@ BOUGHT = """
 title: Bought from outside (invented)
 components: [H2, N2, H2O, CH4]
 equipment:
-  gas:   {kind: supply, composition: {CH4: 90 %, N2: rest}, temperature: 25 degC, pressure: 2 bar, flow: 10 mol/s}
+  gas:   {kind: supply, composition: {CH4: 90 %, N2: rest}, temperature: 25 degC, pressure: 2 bar,
+           flow: 10 mol/s}
   press: {kind: compressor, pressure: 6 bar, stages: 1}
   warm:  {kind: heater, temperature: 400 degC}
   chill: {kind: cooler, temperature: -20 degC}
@@ -208,7 +212,8 @@ def one_line(composition: str, temperature: str, pressure: str, components: str)
         f"""
 components: [{components}]
 equipment:
-  gas:  {{kind: supply, composition: {{{composition}}}, temperature: {temperature}, pressure: {pressure}, flow: 1 mol/s}}
+  gas:  {{kind: supply, composition: {{{composition}}}, temperature: {temperature},
+           pressure: {pressure}, flow: 1 mol/s}}
   sky:  {{kind: vent}}
 lines:
   - gas -> sky

@@ -11,6 +11,7 @@ part, and the cut between them is found from the graph:
   matter goes on from it to a product, a grid's surplus or an outlet of power without a line:
   matter may go on as anything, heat as heat or power, power as power only, none of it through a
   maker. So hydrogen that is burnt to run the plant's own electrolyser is not fuel made.
+* A store whose surplus has no line keeps the fuel: that is a use too, though nothing is delivered.
 * A line is *final* if it reaches a use and no maker.
 
 *Fuel made* is what passes the final lines that leave the making part: their sender is a maker, or
@@ -84,7 +85,7 @@ class _Search:
         """Return the lines that leave the last stores, or arrive at uses without a store."""
         kept: dict[int, Line] = {}
         for line in self.final:
-            if self._is_use(line.target):
+            if self._is_use(line.target) or self._fills(line.target):
                 origin = self._stored(line, frozenset())
                 kept |= {found.number: found for found in origin or (line,)}
         return list(kept.values())
@@ -108,6 +109,7 @@ class _Search:
                 if not piece.burns:
                     return False
                 continue
+            useful = useful or self._fills(name)
             for line in self._from(name):
                 if line.target not in seen:
                     seen.add(line.target)
@@ -149,6 +151,13 @@ class _Search:
             and rate_of(stream.flow) > 0.0
             for stream in self.solution.streams
         )
+
+    def _fills(self, name: str) -> bool:
+        """Whether fuel stays in a store: its rest has no line."""
+        lines = self.flowsheet.line_from(name, "rest")
+        rest = self.solution.outcomes[name].outlets.get("rest")
+        stays = isinstance(self._piece(name), Store) and not lines and isinstance(rest, Stream)
+        return stays and float(rest.total) > 0.0
 
     def _leaves_making(self, line: Line) -> bool:
         piece = self._piece(line.source)

@@ -27,6 +27,7 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
+from chainflow.equipment.cooling import cooling_duties
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed
 from chainflow.thermo.components import Matter
@@ -122,16 +123,7 @@ class Compressor(Equipment):
         level = last.discharge if last.cooled_to is None else last.cooled_to
         outlet = Stream.gaseous(matter, gas, level, self.pressure)
         condensate = self._condensate(inlet, stages, matter)
-        needs = [
-            Duty.between(
-                "aftercooling" if stage is last else "intercooling",
-                stage.cooling,
-                stage.discharge,
-                stage.cooled_to,
-            )
-            for stage in stages
-            if stage.cooled_to is not None and stage.cooling != 0.0
-        ]
+        needs = self._cooling(stages, matter, site)
         loss = Duty("drive loss", work - power, site.ambient, site.ambient, site.ambient, "ambient")
         needs = needs or [Duty("intercooling", 0.0, level, level, level)]
         duties, _, drawn, given = self.settle([*needs, loss], site)
@@ -145,6 +137,21 @@ class Compressor(Equipment):
             cautions=self._cautions(inlet, hottest),
             inner=stages,
         )
+
+    def _cooling(self, stages: list[Stage], matter: Matter, site: Site) -> list[Duty]:
+        """The heat that the coolers take out, stage by stage."""
+        needs: list[Duty] = []
+        for stage in stages:
+            if stage.cooled_to is None or stage.cooling == 0.0:
+                continue
+            purpose = "aftercooling" if stage is stages[-1] else "intercooling"
+            ends = stage.discharge, stage.cooled_to
+            if site.detail or "heat" in site.outlets:
+                hot = Stream.gaseous(matter, stage.gas, stage.discharge, stage.high)
+                needs += cooling_duties(purpose, hot, ends[1], stage.high, stage.cooling, site)
+            else:
+                needs.append(Duty.between(purpose, stage.cooling, *ends))
+        return needs
 
     def _results(
         self, stages: list[Stage], inlet: Stream, work: float, hottest: float

@@ -9,20 +9,29 @@ the path is cut where that begins and into even steps from there on.
 from __future__ import annotations
 
 from collections.abc import Callable
+from typing import NamedTuple
 
 import numpy as np
 
-from chainflow.equipment.base import Caution, Site
+from chainflow.equipment.base import Array, Caution, Outcome, Site
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import mean_temperature
-from chainflow.thermo.streams import DISSOLVED, Stream
-from chainflow.thermo.water import condenses
+from chainflow.thermo.streams import (
+    DISSOLVED,
+    Stream,
+    enthalpy_slopes,
+    entropy_slopes,
+    temperature_slopes,
+)
+from chainflow.thermo.water import condenses, saturation_temperature
 
 _STEPS = 6  # even steps in temperature where part of the stream is liquid water
-_HALVINGS = 45  # of the temperatures between which water begins to condense
+_HALVINGS = 24  # of the temperatures between which water begins to condense
 _AROUND_BOILING = 1e-9  # relative distance from the temperature at which pure water boils
 _DATA_SPREAD = 0.01  # latent heat / latent entropy is the boiling temperature to 0.5 % at 30 bar
+_ASKED = np.array([[-1.0], [1.0], [1.0], [1.0]])  # heat asked for is negative heat given off
 _NO_HEAT = 1e-9  # relative to R T per mol
+_SAME = 1e-9  # relative: a mean that is heat over entropy and no limit
 
 
 def cooling_duties(
@@ -36,14 +45,16 @@ def cooling_duties(
 ) -> list[Duty]:
     """Duties that bring `inlet` to the temperature `level` at `pressure`, adding up to `heat`."""
     start = float(inlet.temperature)
-    wanted = site.detail or "heat" in site.outlets or "heat" in site.inlets
-    if not wanted or heat == 0.0 or float(inlet.total) == 0.0:
+    linked = bool(site.inlets & {"heat", "power"}) or "heat" in site.outlets
+    if not (site.detail or linked) or heat == 0.0 or float(inlet.total) == 0.0:
         return [Duty.between(purpose, heat, start, level)]
     matter, flows = inlet.matter, inlet.flows
     first = inlet.at_pressure(pressure, dissolved)
     after = float(inlet.enthalpy) + heat
     last = Stream.from_enthalpy(matter, flows, after, pressure, level, dissolved)
-    between = _cuts(first, level, dissolved)
+    between = _cuts(first, level, dissolved) if site.detail else []
+    if min(start, level) < site.ambient < max(start, level):  # below it heat is another thing
+        between = sorted({*between, site.ambient}, reverse=start > level)
     path = [first, *(Stream.at(matter, flows, t, pressure, dissolved) for t in between), last]
     levels = [start, *between, level]
     return [
@@ -76,14 +87,19 @@ def _cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[float
         return []
     if wet_start and wet_end:
         return _inside(start, level, _STEPS)
-    dew = _dew_point(wet, *((start, level) if wet_start else (level, start)))
     if float(flows[matter.water]) == float(first.total):
-        cuts = [dew * (1.0 - _AROUND_BOILING), dew * (1.0 + _AROUND_BOILING)]
-        cuts = cuts if wet_start else cuts[::-1]
-        return [t for t in cuts if min(start, level) < t < max(start, level)]
+        return _around_boiling(start, level, saturation_temperature(pressure))
+    dew = _dew_point(wet, *((start, level) if wet_start else (level, start)))
     if wet_start:
         return [*_inside(start, dew, _STEPS), dew]
     return [dew, *_inside(dew, level, _STEPS)]
+
+
+def _around_boiling(start: float, level: float, boiling: float) -> list[float]:
+    """The temperatures just before and after pure water boils, as far as they are on the way."""
+    cuts = [boiling * (1.0 - _AROUND_BOILING), boiling * (1.0 + _AROUND_BOILING)]
+    low, high = min(start, level), max(start, level)
+    return [t for t in (cuts if start < level else cuts[::-1]) if low < t < high]
 
 
 def _dew_point(wet: Callable[[float], bool], low: float, high: float) -> float:
@@ -96,6 +112,91 @@ def _dew_point(wet: Callable[[float], bool], low: float, high: float) -> float:
 
 def _inside(start: float, end: float, steps: int) -> list[float]:
     return [float(t) for t in np.linspace(start, end, steps + 1)[1:-1]]
+
+
+def add_heat_slopes(
+    blocks: dict[str, Array],
+    inlet: Stream,
+    outlet_row: Array,
+    site: Site,
+    outcome: Outcome,
+    at: tuple[float, float],
+) -> dict[str, dict[str, Array]]:
+    """Add what the linked `heat` or `power` port carries to the slopes; {} if it is not known.
+
+    `outlet_row` holds the slopes of the enthalpy that leaves by ``[n_1..n_C, H]`` of the inlet, `at`
+    the temperature [K] and pressure [Pa] of the outlet.
+    """
+    if not (site.inlets & {"heat", "power"} or "heat" in site.outlets):
+        return {"inlet": blocks}
+    carried = [duty for duty in outcome.duties if duty.met_by in ("heat", "power")]
+    if len(carried) > 1:
+        return {}
+    none = np.zeros((4, len(outlet_row)))
+    rows: Array | None = none
+    if carried:
+        rows = _heat_rows(inlet, outlet_row, carried[0], at)
+    if rows is None:
+        return {}
+    given = bool(carried) and carried[0].heat < 0.0
+    if "power" in site.inlets:
+        by_power = bool(carried) and carried[0].met_by == "power"
+        blocks["drawn:power"] = -rows[:1] if by_power else none[:1]
+    if "heat" in site.inlets:
+        blocks["drawn:heat"] = none if given else rows * _ASKED
+    if "heat" in site.outlets:
+        blocks["heat"] = rows if given else none
+    return {"inlet": blocks}
+
+
+class _End(NamedTuple):
+    """One end of a heat flow: its state, and its slopes by the inlet."""
+
+    stream: Stream
+    temperature: Array
+    enthalpy: Array
+    entropy: Array
+
+
+def _heat_rows(
+    inlet: Stream, outlet_row: Array, duty: Duty, at: tuple[float, float]
+) -> Array | None:
+    """Slopes of heat given off, ``[rate, start, end, mean]``; None if a limit set its mean.
+
+    Its mean temperature is heat over entropy, the entropy being that of the stream at the
+    outlet's pressure before less after.
+    """
+    level, pressure = at
+    own = duty.start == float(inlet.temperature)
+    before = _inlet_end(inlet, pressure) if own else _fixed_end(inlet, duty.start, pressure)
+    after = _fixed_end(inlet, duty.end, pressure)
+    after_row = outlet_row if duty.end == level else after.enthalpy
+    entropy = float(before.stream.entropy) - float(after.stream.entropy)
+    if entropy == 0.0 or abs(-duty.heat / entropy - duty.mean) > _SAME * duty.mean:
+        return None
+    rate = before.enthalpy - after_row
+    mean = (rate - duty.mean * (before.entropy - after.entropy)) / entropy
+    return np.vstack([rate, before.temperature, after.temperature, mean])
+
+
+def _inlet_end(inlet: Stream, pressure: float) -> _End:
+    """The inlet, let down to the outlet's pressure where its entropy counts."""
+    first = inlet.at_pressure(pressure)
+    by_flow, by_level = entropy_slopes(first)
+    to_flow, to_enthalpy = temperature_slopes(first)
+    temperature = np.append(*temperature_slopes(inlet))
+    enthalpy = np.zeros(len(temperature))
+    enthalpy[-1] = 1.0
+    entropy = np.append(by_flow + by_level * to_flow, by_level * to_enthalpy)
+    return _End(first, temperature, enthalpy, entropy)
+
+
+def _fixed_end(inlet: Stream, level: float, pressure: float) -> _End:
+    """The same flows at a temperature that does not move."""
+    stream = Stream.at(inlet.matter, inlet.flows, level, pressure)
+    enthalpy = np.append(enthalpy_slopes(stream)[0], 0.0)
+    entropy = np.append(entropy_slopes(stream)[0], 0.0)
+    return _End(stream, np.zeros(len(enthalpy)), enthalpy, entropy)
 
 
 def wrong_way(what: str, heat: float, total: float, *, cools: bool) -> tuple[Caution, ...]:

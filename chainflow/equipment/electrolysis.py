@@ -8,6 +8,7 @@ pressure).  What else is dissolved in the feed water leaves with the oxygen.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import replace
 from typing import Any, ClassVar, Literal
 
 import numpy as np
@@ -182,6 +183,7 @@ class Electrolyser(Equipment):
             made = power * self.rectifier / self.energy_per_mol
         moisture = self._moisture()
         amount, unmet = self._water_needed(made, water, moisture)
+        made = 0.0 if unmet else made
         gases = self._gases(made, amount * water.flows, moisture, matter)
         hot_water = Stream.at(matter, amount * water.flows, self.temperature, self.pressure)
         direct = power * self.rectifier
@@ -206,8 +208,11 @@ class Electrolyser(Equipment):
                 "ambient",
             ),
         ]
+        beside = replace(
+            site, inlets=site.inlets - {"power"}
+        )  # `power` feeds the cells, not a heater
         duties, _, drawn, heat = self.settle(
-            [d for d in needs if d.heat != 0.0 or d.purpose == "stack"], site
+            [d for d in needs if d.heat != 0.0 or d.purpose == "stack"], beside
         )
         drawn |= {"water": amount}
         if self.hydrogen is not None:

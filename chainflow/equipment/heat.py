@@ -26,9 +26,9 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
-from chainflow.equipment.cooling import cooling_duties, wrong_way
+from chainflow.equipment.cooling import add_heat_slopes, cooling_duties, wrong_way
 from chainflow.equipment.ports import Feeds, arriving
-from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
+from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 
 class _Exchanger(Equipment):
@@ -67,7 +67,7 @@ class _Exchanger(Equipment):
             outlet = Stream.at(site.matter, inlet.flows, self.temperature, pressure)
             heat = float(outlet.enthalpy) - float(inlet.enthalpy)
         else:
-            heat = self.duty or 0.0
+            heat = (self.duty or 0.0) if float(inlet.total) > 0.0 else 0.0
             outlet = Stream.from_enthalpy(
                 site.matter,
                 inlet.flows,
@@ -93,34 +93,17 @@ class _Exchanger(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if self.temperature is None or site.inlets & {"heat", "power"}:
+        if self.temperature is None:
             return {}
-        outlet = outcome.outlets["outlet"]
+        inlet, outlet = material(feeds, "inlet"), outcome.outlets["outlet"]
         assert isinstance(outlet, Stream)
         partial, _ = enthalpy_slopes(outlet)
         size = len(partial)
         block = np.zeros((size + 1, size + 1))
         block[:size, :size] = np.eye(size)
         block[size, :size] = partial
-        if "heat" not in site.outlets:
-            return {"inlet": {"outlet": block}}
-        heat = _given_slopes(material(feeds, "inlet"), block, outcome)
-        return {} if heat is None else {"inlet": {"outlet": block, "heat": heat}}
-
-
-def _given_slopes(inlet: Stream, block: Array, outcome: Outcome) -> Array | None:
-    """Slopes of the heat given off, if all of it is given off evenly and goes to one line."""
-    offered, duties = outcome.outlets["heat"], outcome.duties
-    assert isinstance(offered, Heat)
-    if len(duties) != 1 or duties[0].met_by != "heat" or offered.start == offered.end:
-        return None
-    start, end, mean = offered.start, offered.end, offered.mean
-    by_flow, by_enthalpy = temperature_slopes(inlet)
-    level = np.append(by_flow, by_enthalpy)
-    rate = -block[-1].copy()
-    rate[-1] += 1.0
-    by_start = mean / (start - end) * (1.0 - mean / start)  # of the entropy-mean temperature
-    return np.vstack([rate, level, np.zeros_like(level), by_start * level])
+        at = (self.temperature, float(outlet.pressure))
+        return add_heat_slopes({"outlet": block}, inlet, block[size], site, outcome, at)
 
 
 class Heater(_Exchanger):
@@ -162,10 +145,11 @@ class HeatEngine(Equipment):
         heat = Heat.total([h for h in arriving(feeds, "heat") if isinstance(h, Heat)])
         sink = self.sink if self.sink is not None else site.ambient
         carnot = 1.0 - sink / heat.mean
+        rejected = min(sink, heat.mean)  # heat colder than the sink goes elsewhere, not uphill
         power = max(self.share_of_carnot * carnot * heat.rate, 0.0)
         duties = (
             Duty("heat taken in", heat.rate, heat.start, heat.end, heat.mean, "heat"),
-            Duty("heat rejected", power - heat.rate, sink, sink, sink, "ambient"),
+            Duty("heat rejected", power - heat.rate, rejected, rejected, rejected, "ambient"),
         )
         results = {
             "mean_temperature_K": heat.mean,

@@ -31,6 +31,7 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
+from chainflow.equipment.cooling import cooling_duties
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.carbon import carbon_activity
 from chainflow.thermo.components import Matter
@@ -121,13 +122,7 @@ class ReactorBase(Equipment):
             return self._unheated(feed, pressure, site)
         made = self._made_at(feed.flows, self.level, pressure, matter)
         product = Stream.at(matter, made.flows, self.level, pressure)
-        heated = float(Stream.at(matter, feed.flows, self.level, pressure).enthalpy)
-        preheat = heated - float(feed.enthalpy) if float(feed.total) > 0.0 else 0.0
-        reaction = float(product.enthalpy) - heated
-        needs = [
-            Duty.between("bring feed to temperature", preheat, float(feed.temperature), self.level),
-            Duty("reaction", reaction, self.level, self.level, self.level),
-        ]
+        needs = self._needs(feed, product, site)
         return self._outcome(feed, product, needs, made, site)
 
     def _unheated(self, feed: Stream, pressure: float, site: Site) -> Outcome:
@@ -137,8 +132,19 @@ class ReactorBase(Equipment):
         made = self._made_of(feed, enthalpy, pressure, matter)
         guess = float(feed.temperature) if made.temperature is None else made.temperature
         product = Stream.from_enthalpy(matter, made.flows, enthalpy, pressure, guess)
-        needs = [Duty.between("duty", heat, float(feed.temperature), float(product.temperature))]
+        needs = self._needs(feed, product, site) if heat else []
         return self._outcome(feed, product, needs, made, site)
+
+    def _needs(self, feed: Stream, product: Stream, site: Site) -> list[Duty]:
+        """Heat that brings the feed to the outlet's temperature, and heat of reaction there."""
+        level, pressure = float(product.temperature), float(product.pressure)
+        if float(feed.total) == 0.0:
+            return [Duty("reaction", 0.0, level, level, level)]
+        heated = float(Stream.at(site.matter, feed.flows, level, pressure).enthalpy)
+        preheat = heated - float(feed.enthalpy)
+        purpose = "bring feed to temperature"
+        needs = cooling_duties(purpose, feed, level, pressure, preheat, site)
+        return [*needs, Duty("reaction", float(product.enthalpy) - heated, level, level, level)]
 
     def _made_at(self, flows: Array, level: float, pressure: float, matter: Matter) -> Product:
         """The product at a temperature."""
@@ -214,9 +220,16 @@ class ReactorBase(Equipment):
         feed, product, made = material(feeds, "feed"), outcome.outlets["product"], outcome.inner
         assert isinstance(product, Stream) and isinstance(made, Product)
         known = made.by_feed is not None and not made.unmet and not product.water.any()
-        if not known or float(feed.total) == 0.0 or "heat" in site.outlets | site.inlets:
+        if not known or float(feed.total) == 0.0 or "heat" in site.inlets:
             return {}
         blocks = {"product": self._block(made, product)}
+        if "heat" in site.outlets:
+            given = [d for d in outcome.duties if d.met_by != "own" and d.heat != 0.0]
+            if len(given) != 1 or given[0].purpose != "reaction" or given[0].met_by != "heat":
+                return {}
+            blocks["heat"] = np.zeros((4, len(feed.flows) + 1))
+            blocks["heat"][0] = -blocks["product"][-1]
+            blocks["heat"][0, -1] += 1.0
         if "power" in site.inlets and self.level is not None:
             if any(duty.met_by not in ("power", "own") for duty in outcome.duties):
                 return {}

@@ -24,7 +24,7 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
-from chainflow.equipment.cooling import cooling_duties, wrong_way
+from chainflow.equipment.cooling import add_heat_slopes, cooling_duties, wrong_way
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
 from chainflow.thermo.exergy import Environment
@@ -213,7 +213,9 @@ class Condenser(Equipment):
         gas = Stream.gaseous(matter, gas_flows, level, pressure)
         liquid = _aqueous(matter, water_flows, level, pressure)
         heat = float(gas.enthalpy) + float(liquid.enthalpy) - float(inlet.enthalpy)
-        needs = cooling_duties("cooling and condensing", inlet, level, pressure, heat, site)
+        needs = cooling_duties(
+            "cooling and condensing", inlet, level, pressure, heat, site, self._gases
+        )
         duties, electric, drawn, given = self.settle(needs, site)
         return Outcome(
             {"gas": gas, "liquid": liquid, **given},
@@ -227,8 +229,6 @@ class Condenser(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if site.inlets & {"heat", "power"} or "heat" in site.outlets:
-            return {}
         inlet, matter = material(feeds, "inlet"), site.matter
         gas, liquid = outcome.outlets["gas"], outcome.outlets["liquid"]
         assert isinstance(gas, Stream) and isinstance(liquid, Stream)
@@ -242,12 +242,12 @@ class Condenser(Equipment):
             to_liquid = np.zeros((size, size))
         partial = matter.gas_partial(gas.gas, level, pressure)[0]
         wet = matter.water_partial(level, pressure, WET).enthalpy
-        return {
-            "inlet": {
-                "gas": _with_enthalpy(np.eye(size) - to_liquid, partial),
-                "liquid": _with_enthalpy(to_liquid, wet),
-            }
+        blocks = {
+            "gas": _with_enthalpy(np.eye(size) - to_liquid, partial),
+            "liquid": _with_enthalpy(to_liquid, wet),
         }
+        leaving = blocks["gas"][-1] + blocks["liquid"][-1]
+        return add_heat_slopes(blocks, inlet, leaving, site, outcome, (level, pressure))
 
 
 def _aqueous(matter: Matter, flows: Array, level: float, pressure: float) -> Stream:

@@ -2,22 +2,32 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Mapping
+from dataclasses import dataclass
 from typing import Annotated, Any
 
 import numpy as np
-from pydantic import AfterValidator, WrapValidator
+from pydantic import AfterValidator
 from pydantic_core import PydanticCustomError
 
-from chainflow.basis.quantities import Fraction
+from chainflow.basis.quantities import Limits, QuantityType
 from chainflow.thermo.components import Matter
 
 REST = "rest"
 _ONE = 1e-6  # compositions are written with a few digits
 
 
-def _rest_or_fraction(value: Any, number: Callable[[Any], Any]) -> Any:
-    return REST if value == REST else number(value)
+@dataclass(frozen=True, slots=True)
+class ShareType(QuantityType):
+    """A share from 0 to 1, or the word `rest`."""
+
+    def read(self, given: object) -> object:
+        """Turn text or a number into a share; `rest` stays as it is."""
+        return REST if given == REST else QuantityType.read(self, given)
+
+    def pattern(self) -> str:
+        """Return the regular expression an editor can check."""
+        return f"^rest$|{QuantityType.pattern(self)}"
 
 
 def _adds_up(shares: dict[str, Any]) -> dict[str, Any]:
@@ -41,7 +51,7 @@ def _adds_up(shares: dict[str, Any]) -> dict[str, Any]:
     return shares
 
 
-Share = Annotated[Fraction, WrapValidator(_rest_or_fraction)]
+Share = Annotated[float, ShareType("1", Limits(ge=0, le=1))]
 Shares = Annotated[dict[str, Share], AfterValidator(_adds_up)]
 
 

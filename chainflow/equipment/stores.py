@@ -215,7 +215,8 @@ class Store(Equipment):
 
     def _duty(self, entering: list[Stream], heat: float, site: Site) -> Duty:
         start = self.temperature
-        if site.detail and sum(float(s.total) for s in entering) > 0.0:
+        linked = site.inlets & {"heat", "power"} or "heat" in site.outlets
+        if (site.detail or linked) and sum(float(s.total) for s in entering) > 0.0:
             start = float(joined(entering, site.matter, self.pressure).temperature)
         return Duty.between("to store temperature", heat, start, self.temperature)
 

@@ -26,6 +26,9 @@ if TYPE_CHECKING:
 
 _MOST_LOSSES = 5
 _LABEL = 18  # characters
+_NARROW = 100  # characters; below, only the first columns of the stream table are shown
+_NARROW_COLUMNS = 6
+_TWO_LINES = 130  # characters; below, the two ends of a stream stand below each other
 
 
 def print_answer(solution: Solution, out: TextIO | None = None) -> None:
@@ -123,7 +126,7 @@ def _print_tables(screen: Console, solution: Solution) -> None:
     matter = [stream for stream in solution.streams if isinstance(stream.flow, Stream)]
     energy = [stream for stream in solution.streams if not isinstance(stream.flow, Stream)]
     for title, table in (
-        ("Streams", _stream_table(matter)),
+        ("Streams", _stream_table(matter, screen.width)),
         ("Power, heat and light", _energy_table(energy)),
         ("Holds", _hold_table(solution.holds)),
     ):
@@ -133,34 +136,37 @@ def _print_tables(screen: Console, solution: Solution) -> None:
             screen.print(table)
 
 
-def _table(*columns: str, right: tuple[str, ...] = ()) -> Table:
+def _table(*columns: str, right: tuple[str, ...] = (), whole: tuple[str, ...] = ()) -> Table:
+    """Return an empty table; columns in `whole` are not wrapped."""
     from rich import box
     from rich.table import Table
 
     table = Table(box=box.SIMPLE_HEAD, pad_edge=False, show_edge=False)
     for name in columns:
         justify = "right" if name in right else "left"
-        table.add_column(name, justify=justify, overflow="fold")  # type: ignore[arg-type] # one of its literals
+        table.add_column(name, justify=justify, overflow="fold", no_wrap=name in whole)  # type: ignore[arg-type] # one of its literals
     return table
 
 
-def _stream_table(streams: list[SolvedStream]) -> Table:
-    right = ("tag", "degC", "bar", "mol/s", "kg/h")
-    columns = ("tag", "from -> to", "composition, mol %", "degC", "bar", "mol/s", "kg/h", "phase")
-    table = _table(*columns, right=right)
+def _stream_table(streams: list[SolvedStream], width: int) -> Table:
+    """Return the table of matter; on a narrow screen without mass and phase."""
+    columns = ["tag", "from -> to", "composition, mol %", "degC", "bar", "mol/s", "kg/h", "phase"]
+    shown = columns[: _NARROW_COLUMNS if width < _NARROW else len(columns)]
+    table = _table(*shown, right=("tag", "degC", "bar", "mol/s", "kg/h"), whole=("from -> to",))
     for stream in streams:
         flow = stream.flow
         if isinstance(flow, Stream):
-            table.add_row(
+            cells = [
                 str(stream.tag),
-                _ends(stream),
+                _ends(stream, " ->\n  " if width < _TWO_LINES else " -> "),
                 numbers.composition(flow),
                 numbers.celsius(float(flow.temperature)),
                 numbers.bar(float(flow.pressure)),
                 numbers.flow(float(flow.total)),
                 numbers.flow(3600 * float(flow.mass_flow)),
                 numbers.phases(flow),
-            )
+            ]
+            table.add_row(*cells[: len(shown)])
     return table
 
 
@@ -190,8 +196,8 @@ def _hold_table(holds: tuple[HoldResult, ...]) -> Table:
     return table
 
 
-def _ends(stream: SolvedStream) -> str:
-    return f"{stream.key} -> {', '.join(stream.targets) or 'leaves the plant'}"
+def _ends(stream: SolvedStream, arrow: str = " -> ") -> str:
+    return f"{stream.key}{arrow}{', '.join(stream.targets) or 'leaves the plant'}"
 
 
 def _print_remarks(screen: Console, title: str, remarks: tuple[Remark, ...]) -> None:

@@ -168,11 +168,13 @@ class _Loop:
 
     def _exits(self, *, sure_only: bool) -> set[Spot]:
         """Spots of the loop's equipment from which matter leaves the loop."""
-        found = set()
+        found: set[Spot] = set()
         for spot in self.presence.graph.nodes:
-            name, outlet, species = spot
-            if name in self.members and self._is_exit(name, outlet, sure_only=sure_only):
+            name, outlet, _ = spot
+            if name in self.members and self._is_exit(name, outlet, sure_only=True):
                 found.add(spot)
+        if not sure_only:
+            found = found.union(*(self._surplus_spots(name) for name in self.members))
         for name in self.members:  # a pure store refuses what is not its contents, always
             piece = self.flowsheet.equipment[name]
             if isinstance(piece, Store) and piece.pure:
@@ -189,27 +191,33 @@ class _Loop:
 
     def surplus_stores(self) -> tuple[str, ...]:
         """Stores with draws whose `rest` leaves the loop and may carry something out."""
-        return tuple(
-            name
-            for name in self.members
-            if isinstance(self.flowsheet.equipment[name], Store)
-            and self._draws(name)
-            and self._is_exit(name, "rest", sure_only=False)
-            and self._foreign(name)
-        )
+        return tuple(name for name in self.members if self._surplus_spots(name))
 
-    def _foreign(self, name: str) -> bool:
-        """Whether something foreign can come into a store by another way than its own make-up."""
+    def _surplus_spots(self, name: str) -> set[Spot]:
+        """What a store with draws may let out: only what also comes by another way than its make-up."""
+        piece = self.flowsheet.equipment[name]
+        if not (isinstance(piece, Store) and self._draws(name)):
+            return set()
+        if not self._is_exit(name, "rest", sure_only=False):
+            return set()
+        arriving: set[Spot] = set()
+        for spot in self._foreign(name):
+            arriving |= nx.descendants(self.presence.graph, spot)
+        return {spot for spot in arriving if spot[:2] == (name, "rest")}
+
+    def _foreign(self, name: str) -> set[Spot]:
+        """Where matter comes into the loop by another way than one store's own make-up."""
         own = set()
         for line in self.flowsheet.line_into(name, "make_up"):
             own |= self._upstream(line.source)
-        others = [li for li in self._entering() if li.source not in own]
-        kept = resolved(self.flowsheet.equipment[name].contents)  # type: ignore[attr-defined] # a store
-        return any(
-            s not in kept
-            for li in others
-            for s in self.presence.species.get((li.source, li.outlet), ())
-        )
+        starts = [(li.source, li.outlet) for li in self._entering() if li.source not in own]
+        found = {(*port, s) for port in starts for s in self.presence.species.get(port, ())}
+        for other in self.members:
+            piece = self.flowsheet.equipment[other]
+            if other != name and isinstance(piece, Store) and _makes_up(self.flowsheet, other):
+                kept = resolved(piece.contents)
+                found |= {s for s in self.presence.graph.nodes if s[0] == other and s[2] in kept}
+        return found
 
     def _upstream(self, name: str) -> set[str]:
         found = {name}

@@ -248,19 +248,22 @@ class Matter:
 
     def water_entropy(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return the entropy of liquid water with what is dissolved in it [W/K]."""
+        return float(flows @ self.water_partial_entropies(flows, temperature, pressure))
+
+    def water_partial_entropies(self, flows: Array, temperature: float, pressure: float) -> Array:
+        """Return the partial molar entropies in a liquid [J/(mol K)]; zero for what is absent."""
         total = self._wet(flows, temperature, pressure)
-        entropy = 0.0
+        entropies = np.zeros(len(self.components))
         for place, name in enumerate(self.components if total else ()):
-            amount = float(flows[place])
-            if amount <= 0.0:
+            share = float(flows[place]) / total
+            if share <= 0.0:
                 continue
-            share = amount / total
             if name == "H2O":
-                entropy += amount * (self._liquid.entropy(temperature) - GAS_CONSTANT * log(share))
+                entropies[place] = self._liquid.entropy(temperature) - GAS_CONSTANT * log(share)
             else:
                 pure = self._polynomials[place].entropy(temperature)
-                entropy += amount * (pure + _dissolution_entropy(name, temperature, share))
-        return entropy
+                entropies[place] = pure + _dissolution_entropy(name, temperature, share)
+        return entropies
 
     def water_heat_capacity(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return dH/dT of liquid water with what is dissolved in it [W/K]."""

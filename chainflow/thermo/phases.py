@@ -222,4 +222,25 @@ def phase_slopes(
     return EnthalpySlopes(vapour.enthalpy + condensation @ moved.by_flows, by_temperature)
 
 
-__all__ = ["EnthalpySlopes", "Phases", "find_phases", "phase_slopes", "phases_at"]
+def entropy_slopes(
+    matter: Matter,
+    gas: Array,
+    water: Array,
+    temperature: float,
+    pressure: float,
+    dissolved: tuple[str, ...],
+) -> tuple[Array, float]:
+    """Return dS/dn (components,) [J/(mol K)] and dS/dT [W/K2] of phases in equilibrium."""
+    vapour = matter.gas_partial(gas, temperature, pressure)
+    if not water.any():
+        return vapour.entropy, vapour.heat_capacity / temperature
+    liquid = matter.water_partial_entropies(water, temperature, pressure)
+    moved = split_slopes(matter, gas + water, gas, water, temperature, pressure, dissolved)
+    own = vapour.heat_capacity + matter.water_heat_capacity(water, temperature, pressure)
+    places = list(matter.solubles(dissolved).places)
+    condensation = (liquid - vapour.entropy)[places]
+    by_flows = vapour.entropy + condensation @ moved.by_flows[places]
+    return by_flows, own / temperature + float(condensation @ moved.by_temperature[places])
+
+
+__all__ = ["EnthalpySlopes", "entropy_slopes", "Phases", "find_phases", "phase_slopes", "phases_at"]

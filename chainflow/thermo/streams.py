@@ -15,6 +15,7 @@ import numpy as np
 
 from chainflow.basis.constants import T_REFERENCE
 from chainflow.thermo.components import Array, Matter
+from chainflow.thermo import phases
 from chainflow.thermo.phases import Phases, find_phases, phase_slopes, phases_at
 from chainflow.thermo.validity import without_round_off
 
@@ -283,6 +284,18 @@ def enthalpy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> t
         return by_flows, np.inf
     found = phase_slopes(stream.matter, stream.gas, stream.water, temperature, pressure, dissolved)
     return found.by_flows, found.by_temperature
+
+
+def entropy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tuple[Array, float]:
+    """Return dS/dn (components,) [J/(mol K)] and dS/dT [W/K2] of one stream, as above."""
+    temperature, pressure = float(stream.temperature), float(stream.pressure)
+    if _boils(stream):
+        by_flows = np.zeros(len(stream.flows))
+        by_flows[stream.matter.water] = float(stream.entropy) / float(stream.total)
+        return by_flows, np.inf
+    return phases.entropy_slopes(
+        stream.matter, stream.gas, stream.water, temperature, pressure, dissolved
+    )
 
 
 def temperature_slopes(

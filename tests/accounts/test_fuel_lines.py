@@ -6,8 +6,10 @@ from tests.plants import BOUGHT, CYCLE, ENGINE_INSIDE, HYDROGEN, METHANE, solved
 ONCE = """
 components: [H2, O2, H2O, CO, CO2, CH4]
 equipment:
-  hydrogen: {{kind: supply, composition: {{H2: 1}}, temperature: 25 degC, pressure: 10 bar, flow: 4 mol/s}}
-  carbon:   {{kind: supply, composition: {{CO2: 1}}, temperature: 25 degC, pressure: 10 bar, flow: 1 mol/s}}
+  hydrogen: {{kind: supply, composition: {{H2: 1}}, temperature: 25 degC, pressure: 10 bar,
+           flow: 4 mol/s}}
+  carbon:   {{kind: supply, composition: {{CO2: 1}}, temperature: 25 degC, pressure: 10 bar,
+           flow: 1 mol/s}}
   mix:      {{kind: mixer}}
   reactor:  {{kind: methanation-reactor, temperature: 320 degC}}
   dry:      {{kind: condenser, temperature: 30 degC}}
@@ -105,8 +107,10 @@ def test_a_thin_product_becomes_a_fuel_line_where_it_is_enriched():
     text = """
 components: [H2, H2O, CO2, CH3OH, N2]
 equipment:
-  gas:     {kind: supply, composition: {H2: 3 %, CO2: 7 %, N2: rest}, temperature: 25 degC, pressure: 50 bar, flow: 10 mol/s}
-  reactor: {kind: reactor, reactions: [{equation: CO2 + 3 H2 -> CH3OH + H2O, conversion: {H2: 90 %}}], temperature: 220 degC}
+  gas:     {kind: supply, composition: {H2: 3 %, CO2: 7 %, N2: rest}, temperature: 25 degC,
+           pressure: 50 bar, flow: 10 mol/s}
+  reactor: {kind: reactor, reactions: [{equation: CO2 + 3 H2 -> CH3OH + H2O,
+           conversion: {H2: 90 %}}], temperature: 220 degC}
   sieve:   {kind: separator, recovery: {CH3OH: 95 %}}
   town:    {kind: product}
   sky:     {kind: vent}

@@ -3,6 +3,9 @@ import pytest
 from chainflow.accounts.hazards import cautions, idealisations, stream_cautions
 from tests.plants import CYCLE, METHANE, one_line, solved
 
+HALF = "H2: 50 %, N2: rest"
+GAS = "CO2: 50 %, CH4: rest"
+
 
 def codes(composition, temperature="25 degC", pressure="1 bar", components=""):
     names = [part.split(":")[0].strip() for part in composition.split(",")]
@@ -21,11 +24,11 @@ def codes(composition, temperature="25 degC", pressure="1 bar", components=""):
         ("asphyxiating-contents", ("CO2: 60 %, N2: rest",), ("CO2: 40 %, N2: rest",)),
         ("high-pressure", ("N2: 1", "25 degC", "101 bar"), ("N2: 1", "25 degC", "99 bar")),
         ("hot-hydrogen", ("H2: 1", "250 degC", "4 bar"), ("H2: 1", "200 degC", "4 bar")),
-        ("hot-hydrogen", ("H2: 50 %, N2: rest", "250 degC", "8 bar"), ("H2: 50 %, N2: rest", "250 degC", "6 bar")),
+        ("hot-hydrogen", (HALF, "250 degC", "8 bar"), (HALF, "250 degC", "6 bar")),
         # carbon dioxide boils at 64.3 bar at 25 degC (Span and Wagner 1996)
         ("liquid-expected", ("CO2: 1", "25 degC", "68 bar"), ("CO2: 1", "25 degC", "60 bar")),
         # half CO2 in methane at that partial pressure is a dense gas, no liquid
-        ("liquid-expected", ("CO2: 1", "20 degC", "70 bar"), ("CO2: 50 %, CH4: rest", "25 degC", "140 bar")),
+        ("liquid-expected", ("CO2: 1", "20 degC", "70 bar"), (GAS, "25 degC", "140 bar")),
     ],
 )  # fmt: skip
 def test_a_caution_comes_with_its_cause_and_not_without(code, there, not_there):
@@ -93,7 +96,8 @@ def test_dusting_needs_carbon_and_the_range_of_temperature():
 components: [H2, H2O, CO, CO2, CH4]
 knobs: {hot: 650 degC, rich: 45 %}
 equipment:
-  gas:   {kind: supply, composition: {CO: $rich, H2O: 20 %, H2: rest}, temperature: 300 degC, pressure: 20 bar, flow: 1 mol/s}
+  gas:   {kind: supply, composition: {CO: $rich, H2O: 20 %, H2: rest}, temperature: 300 degC,
+           pressure: 20 bar, flow: 1 mol/s}
   shift: {kind: reactor, equilibrium: [H2, H2O, CO, CO2, CH4], temperature: $hot}
   sky:   {kind: vent}
 lines:

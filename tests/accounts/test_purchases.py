@@ -86,7 +86,8 @@ def test_an_electrolyser_that_calls_without_a_line_buys_its_power():
     text = """
 equipment:
   water: {kind: supply, composition: {H2O: 1}, temperature: 25 degC, pressure: 30 bar}
-  stack: {kind: electrolyser, energy_use: 50 kWh/kg, temperature: 60 degC, pressure: 30 bar, hydrogen: 36 kg/h}
+  stack: {kind: electrolyser, energy_use: 50 kWh/kg, temperature: 60 degC, pressure: 30 bar,
+           hydrogen: 36 kg/h}
   town:  {kind: product}
 lines:
   - water -> stack.water
@@ -99,7 +100,8 @@ lines:
 def test_stated_work_of_a_separator_is_bought_without_a_line():
     text = """
 equipment:
-  gas:   {kind: supply, composition: {CH4: 50 %, CO2: rest}, temperature: 25 degC, pressure: 2 bar, flow: 2 mol/s}
+  gas:   {kind: supply, composition: {CH4: 50 %, CO2: rest}, temperature: 25 degC,
+           pressure: 2 bar, flow: 2 mol/s}
   sieve: {kind: separator, recovery: {CO2: 100 %}, work: 10 kJ/mol}
   town:  {kind: product}
   sky:   {kind: vent}

@@ -56,8 +56,10 @@ def test_moisture_of_air_is_no_top_up():
 components: [H2, O2, N2, H2O]
 equipment:
   water: {kind: supply, composition: {H2O: 1}, temperature: 25 degC, pressure: 30 bar}
-  stack: {kind: electrolyser, energy_use: 50 kWh/kg, temperature: 60 degC, pressure: 30 bar, hydrogen: 1 mol/s}
-  air:   {kind: supply, composition: {N2: 78 %, H2O: 2 %, O2: rest}, temperature: 30 degC, pressure: 1 bar, flow: 100 mol/s}
+  stack: {kind: electrolyser, energy_use: 50 kWh/kg, temperature: 60 degC, pressure: 30 bar,
+           hydrogen: 1 mol/s}
+  air:   {kind: supply, composition: {N2: 78 %, H2O: 2 %, O2: rest}, temperature: 30 degC,
+           pressure: 1 bar, flow: 100 mol/s}
   sky:   {kind: vent}
   town:  {kind: product}
 lines:

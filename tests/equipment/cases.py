@@ -33,6 +33,7 @@ class Case:
     extensive: tuple = ()  # paths of settings that are amounts
     ideal: str = ""  # the declared idealisation that lets it off the second law
     unmet: bool = False  # it has no answer on purpose
+    jumps: tuple = ()  # components whose first trace changes the answer by a step
 
     def run(self, equipment=None, feeds=None, asked=None) -> Outcome:
         """What the equipment does, with some of the case replaced."""
@@ -185,6 +186,7 @@ def _separation(add):
 def _heat(add):
     add("to a temperature", "heater", {"temperature": "500 degC"}, {"inlet": SYNTHESIS})
     add("with power", "heater", {"temperature": "500 degC", "pressure_drop": "0.3 bar"}, {"inlet": SYNTHESIS}, inlets=("power",))
+    add("from below ambient, with power", "heater", {"temperature": "80 degC"}, {"inlet": stream({"N2": 2.0, "H2O": 0.3}, 5.0, 2.0)}, inlets=("power",))
     add("with heat", "heater", {"temperature": "120 degC"}, {"inlet": HYDROGEN}, inlets=("heat",))
     add("by a duty", "heater", {"duty": "40 kW"}, {"inlet": SYNTHESIS}, extensive=(("duty",),))
     add("boils water", "heater", {"temperature": "300 degC"}, {"inlet": WATER})
@@ -214,6 +216,7 @@ def _pressure(add):
     add("stages found", "compressor", {"pressure": "200 bar", "aftercool": "35 degC"}, {"inlet": stream({"CH4": 1.0, "H2": 0.1}, 30.0, 11.0)}, inlets=("power",))
     wet = stream({"CO2": 3.0, "N2": 0.2, "H2O": 0.2}, 45.0, 1.1)
     add("wet gas", "compressor", {"pressure": "30 bar", "stages": 4, "intercool": "30 degC", "aftercool": "30 degC"}, {"inlet": wet}, inlets=("power",), outlets=("condensate",))
+    add("reversible and wet", "compressor", {"pressure": "30 bar", "stages": 4, "intercool": "30 degC", "aftercool": "30 degC", "efficiency": 1, "drive_efficiency": 1}, {"inlet": wet})
     add("heat offered", "compressor", {"pressure": "30 bar", "stages": 3, "aftercool": "40 degC"}, {"inlet": wet}, outlets=("heat",))
     add("liquid arrives", "compressor", {"pressure": "5 bar", "stages": 1}, {"inlet": stream({"N2": 2.0, "H2O": 0.5}, 25.0, 1.0)})
     add("a fan", "compressor", {"pressure": "1.3 bar", "stages": 1, "efficiency": "60 %"}, {"inlet": stream({"CO2": 6.0, "H2O": 0.2}, 60.0, 1.15)})
@@ -237,7 +240,7 @@ def _reactors(add):
     species = ["H2", "CO", "CO2", "H2O", "CH3OH"]
     add("equilibrium", "reactor", {"equilibrium": species, "temperature": "250 degC"}, {"feed": gas}, matter=METHANOL)
     add("adiabatic equilibrium", "reactor", {"equilibrium": species}, {"feed": gas}, matter=METHANOL)
-    hot = stream({"H2": 4.0, "CO2": 1.0, "CH4": 0.1, "H2O": 0.05, "N2": 0.02}, 25.0, 30.0)
+    hot = stream({"H2": 4.0, "CO2": 1.0, "CH4": 0.1, "H2O": 0.003, "N2": 0.02}, 35.0, 30.0)
     add("reverse shift, heat bought", "shift-reactor", {"temperature": "900 degC", "methane": "excluded"}, {"feed": hot})
     add("reverse shift, electric", "shift-reactor", {"temperature": "900 degC"}, {"feed": hot}, inlets=("power",))
     add("away from equilibrium", "shift-reactor", {"temperature": "900 degC", "approach": "20 K"}, {"feed": hot}, inlets=("heat",))
@@ -249,7 +252,7 @@ def _reactors(add):
     add("adiabatic", "methanation-reactor", {"adiabatic": True}, {"feed": stream({"H2": 4.0, "CO2": 1.0, "H2O": 2.0}, 300.0, 20.0)})
     add("away from equilibrium", "methanation-reactor", {"temperature": "320 degC", "approach": "30 K"}, {"feed": SYNTHESIS})
     add("conversion of CO2", "methanation-reactor", {"conversion": "80 %", "temperature": "400 degC"}, {"feed": SYNTHESIS})
-    add("conversion of CO", "methanation-reactor", {"conversion": "80 %"}, {"feed": stream({"H2": 4.0, "CO": 1.0}, 300.0, 20.0)})
+    add("conversion of CO", "methanation-reactor", {"conversion": "80 %"}, {"feed": stream({"H2": 4.0, "CO": 1.0}, 300.0, 20.0)}, jumps=("CO2",))
 
 
 def _combustion(add):
@@ -277,6 +280,8 @@ def _stores(add):
     add("runs short", "store", carbon, {"returns": returned}, {"draw": 5.0})
     add("made up by a line", "store", carbon, {"returns": returned, "make_up": CARBON}, {"draw": 5.0})
     add("nothing returns", "store", carbon, {}, {"draw": 2.0})
+    add("something cold returns", "store", carbon, {"returns": (stream({"CO2": 1.0}, -3.0, 30.0),)}, {"draw": 1.2})
+    add("something cold returns, with power", "store", carbon, {"returns": (stream({"CO2": 1.0}, -3.0, 30.0),)}, {"draw": 1.2}, inlets=("power",))
     add("nothing drawn", "store", carbon, {"returns": returned}, outlets=("rest",))
     add("gives heat", "store", carbon, {"returns": returned}, {"draw": 1.0}, outlets=("heat",))
     water = {"contents": {"H2O": 1}, "temperature": "25 degC", "pressure": "1 bar"}

@@ -59,10 +59,10 @@ def test_elements_are_kept(case):
 def test_energy_is_kept(case):
     outcome = case.run()
     arrived, left = matter_in_and_out(case, outcome)
-    light = sum(case.feeds["light"] for _ in range(1)) if "light" in case.feeds else 0.0
+    light = case.feeds.get("light", 0.0)
     terms = [s.enthalpy for s in arrived] + [-s.enthalpy for s in left]
     terms += [outcome.heat, outcome.power, light]
-    if case.equipment.kind in PASSING:
+    if case.equipment.kind in PASSING and not case.unmet:
         terms += [rate(f) for f in case.arrives(outcome)]
         terms += [rate(f) for port, f in outcome.drawn.items() if port == "shortage"]
         terms += [-rate(f) for f in outcome.outlets.values()]
@@ -117,14 +117,17 @@ IDEAL = [case for case in CASES if case.ideal]
 @named(IDEAL)
 def test_an_idealisation_is_declared_and_owns_up_to_its_work(case):
     """What is let off the second law says so and states the work it saves."""
-    outcome = case.run()
+    outcome, ambient = case.run(), case.site.ambient
     assert [note.code for note in outcome.idealisations] == [case.ideal]
     made, _ = entropy_made(case, outcome)
-    saved = -case.site.ambient * made
+    heat = sum(d.heat * (1.0 - ambient / d.mean) for d in outcome.duties if d.met_by != "power")
+    saved = outcome.power + heat - ambient * made  # exergy out less exergy in
     stated = outcome.results["minimum_work_W"]
     assert stated > 0.0
-    # a store's work is that of ideal mixing, its streams are real gases at 30 bar
-    assert saved <= stated * (1.05 if case.ideal == "pure-store" else 1.0 + 1e-9)
+    if case.ideal == "free-separation":
+        assert stated == pytest.approx(outcome.power + heat - ambient * made, rel=1e-9)
+    else:  # a store states the work of ideal mixing, its streams are real gases at 30 bar
+        assert saved <= 1.1 * stated
 
 
 def test_idealisations_are_few():
@@ -133,7 +136,7 @@ def test_idealisations_are_few():
 
 
 # ------------------------------------------------------------------------- batches and order
-SIZES = np.array([1.0, 3.0, 0.4])
+SIZES = np.array([1.0, 1.3, 0.9])
 
 
 def in_cases(flow):
@@ -386,7 +389,7 @@ def test_no_species_turns_up_where_it_was_not_expected(case):
 
 # ------------------------------------------------------------------------------------- slopes
 ENTHALPY = 1e5  # [J/mol], the size of a molar enthalpy
-STEP = 1e-4  # of a stream's total
+STEP = 2e-5  # of a stream's total
 SLOPES = 2e-6  # central differences: truncation about STEP^2, noise about 1e-12 / STEP
 
 
@@ -416,7 +419,9 @@ def outputs(case, feeds, asked, equipment):
 def _vector(flow):
     if isinstance(flow, Stream):
         return np.append(flow.flows, flow.enthalpy / ENTHALPY)
-    return np.array([rate(flow)])
+    if isinstance(flow, Heat):
+        return np.array([flow.rate, flow.start, flow.end, flow.mean])
+    return np.array([flow])
 
 
 def moved(case, label, place, size, settled):
@@ -461,7 +466,9 @@ def inputs_with_slopes():
     found = []
     for case in CASES:
         outcome = case.run()
-        found += [(case, label) for label in case.equipment.slopes(case.feeds, case.asked, case.site, outcome)]
+        labels = case.equipment.slopes(case.feeds, case.asked, case.site, outcome)
+        given = {*case.feeds, *(f"asked:{port}" for port in case.asked)}
+        found += [(case, label) for label in labels if label.partition("#")[0] in given]
     return found
 
 
@@ -480,7 +487,7 @@ def test_slopes_agree_with_differences(case, label):
         for key, numeric in found.items():
             block = blocks.get(key)
             given = np.zeros(len(numeric)) if block is None else np.asarray(block)[:, place].copy()
-            if len(given) > 1:
+            if key in outcome.outlets and isinstance(outcome.outlets[key], Stream) or key == "state":
                 given[-1] /= ENTHALPY
             scale = max(1.0, np.abs(numeric * unit).max(), _rate_of(case, key, outcome))
             assert given * unit == pytest.approx(numeric * unit, abs=SLOPES * scale), (key, place)
@@ -489,14 +496,16 @@ def test_slopes_agree_with_differences(case, label):
 def _columns(flow, case):
     """Numbers of a flow that are moved: place -> (unit, size of a step's base).
 
-    A component that is absent is moved only if its elements are there already: the first atom of
-    an element changes an equilibrium like the square root or the logarithm of its amount.
+    A component that is absent is moved only if there is gas to be in and its elements are there
+    already: the first atom of an element changes an equilibrium like the square root or the
+    logarithm of its amount, and the first bubble in a liquid is a new phase.
     """
     if not isinstance(flow, Stream):
         return {0: (1.0, abs(float(flow)))}
     atoms = flow.matter.formula
-    there = atoms @ flow.flows > 0.0
+    there = (atoms @ flow.flows > 0.0) & flow.gas.any()
     places = [i for i in range(len(flow.flows)) if flow.flows[i] > 0.0 or there[atoms[:, i] > 0.0].all()]
+    places = [i for i in places if flow.matter.components[i] not in case.jumps]
     columns = {i: (1.0, float(flow.total)) for i in places}
     return columns | {len(flow.flows): (ENTHALPY, float(flow.total) * ENTHALPY)}
 

@@ -1,0 +1,49 @@
+import io
+
+import pytest
+
+from chainflow.equipment.register import kinds
+from chainflow.report.kinds import print_kind, print_kinds
+from chainflow.report.plain import console
+
+
+def printed(kind):
+    out = io.StringIO()
+    print_kind(console(out), kind)
+    return out.getvalue()
+
+
+@pytest.mark.parametrize("name", kinds())
+def test_every_kind_is_printed_in_full(name):
+    kind = kinds()[name]
+    text = printed(kind)
+    assert text.startswith(name)
+    for field in kind.model_fields:
+        assert f"  {field} (" in text
+    for port in kind.ports:
+        assert port.means in text
+    for line in (*kind.formulas, *kind.sources):
+        assert line in text
+
+
+@pytest.mark.parametrize("name", kinds())
+def test_every_setting_says_in_words_what_it_takes(name):
+    text = printed(kinds()[name]).partition("\nSettings\n")[2]
+    for sign in ("typing.", "Annotated", "class '", "NoneType", "<", "measured("):
+        assert sign not in text
+
+
+def test_units_ranges_and_defaults():
+    text = printed(kinds()["compressor"])
+    assert "discharge_limit (default 150 degC)" in text
+    assert "pressure (required): pressure at the outlet, absolute [a pressure in bar" in text
+    assert "drive_efficiency (default 95 %)" in text
+    assert "aftercool (optional)" in text
+
+
+def test_the_list_has_one_line_for_each_kind():
+    out = io.StringIO()
+    print_kinds(console(out), kinds())
+    lines = out.getvalue().splitlines()
+    assert [line.split()[0] for line in lines] == list(kinds())
+    assert all(len(line.split(maxsplit=1)[1]) > 10 for line in lines)

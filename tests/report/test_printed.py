@@ -1,0 +1,112 @@
+import io
+
+import pytest
+
+from chainflow.accounts.hazards import CLOSING_SENTENCE
+from chainflow.report.plain import printable
+from chainflow.report.printed import print_answer
+from tests.plants import BOUGHT, CYCLE, HYDROGEN, METHANE, solved
+
+
+class Terminal(io.StringIO):
+    """A stand-in for a terminal."""
+
+    encoding = "utf-8"
+
+    def isatty(self):
+        return True
+
+
+def printed(text):
+    out = io.StringIO()
+    print_answer(solved(text), out)
+    return out.getvalue()
+
+
+def test_the_short_answer_comes_first():
+    text = printed(METHANE)
+    places = [
+        text.index(word)
+        for word in (
+            "Methane with a recycle",
+            "solved in",
+            "overall efficiency",
+            "light -> power",
+            "water returned",
+            "CO2 returned",
+            "bought",
+            "delivered",
+            "\nStreams",
+            "\nPower, heat and light",
+            "\nIdealisations",
+            "\nCautions",
+            CLOSING_SENTENCE,
+        )
+    ]
+    assert places == sorted(places)
+
+
+def test_the_basis_of_the_file_comes_first():
+    assert "% HHV (" in printed(METHANE).split("overall efficiency")[1].split("\n")[0]
+    assert "% LHV (" in printed(HYDROGEN).split("overall efficiency")[1].split("\n")[0]
+
+
+def test_bought_heat_and_cold_are_named():
+    text = printed(BOUGHT)
+    assert "of heat for warm (heating" in text
+    assert "of cooling for chill (cooling, 25.0 to -20.0 degC)" in text
+    assert "of power for press" in text
+
+
+def test_a_stream_line():
+    (line,) = (
+        row for row in printed(METHANE).splitlines() if "stack.hydrogen -> dryh.inlet" in row
+    )
+    words = line.split()
+    assert "H2" in words
+    assert "60.0" in words
+    assert "12" in words
+    assert words[-1] == "gas"
+
+
+@pytest.mark.parametrize("text", [HYDROGEN, METHANE, CYCLE, BOUGHT])
+def test_no_codes_for_terminals_into_a_pipe_and_nothing_wrapped(text):
+    found = printed(text)
+    assert "\x1b" not in found
+    assert sum("sun.light -> field.light" in row for row in found.splitlines()) <= 1
+    assert all(len(row) < 400 or "," in row for row in found.splitlines())
+
+
+def test_a_terminal_gets_styles_unless_it_wants_none(monkeypatch):
+    monkeypatch.delenv("NO_COLOR", raising=False)
+    monkeypatch.setenv("TERM", "xterm-256color")
+    out = Terminal()
+    print_answer(solved(HYDROGEN), out)
+    assert "\x1b[1m" in out.getvalue()
+    for name, value in (("NO_COLOR", "1"), ("TERM", "dumb")):
+        with monkeypatch.context() as inside:
+            inside.setenv(name, value)
+            out = Terminal()
+            print_answer(solved(HYDROGEN), out)
+            assert "\x1b" not in out.getvalue()
+
+
+def test_an_output_that_knows_ascii_only_gets_ascii():
+    raw = io.BytesIO()
+    out = io.TextIOWrapper(raw, encoding="ascii", errors="strict")
+    text = HYDROGEN.replace("Hydrogen by the river", "W\u00e4rme \u2600")
+    print_answer(solved(text), out)
+    out.flush()
+    assert raw.getvalue().decode("ascii").startswith("W?rme ?")
+
+
+def test_control_characters_of_a_title_are_not_printed_raw():
+    text = HYDROGEN.replace(
+        "title: Hydrogen by the river (invented)", 'title: "red \\e[31m bell \\a \\u202e [bold]x"'
+    )
+    first = printed(text).splitlines()[0]
+    assert first == "red \\x1b[31m bell \\x07 \\u202e [bold]x"
+
+
+def test_lone_surrogates_can_be_printed():
+    assert printable("a\ud800b") == "a\\ud800b"
