@@ -7,6 +7,7 @@ stderr.
 
 from __future__ import annotations
 
+import contextlib
 import functools
 import os
 import sys
@@ -49,8 +50,9 @@ SetOption = Annotated[
 
 def main() -> None:
     """Run the command line and leave with its exit code."""
-    sys.stdout = sys.stdout or open(os.devnull, "w")  # closed by the caller
-    sys.stderr = sys.stderr or open(os.devnull, "w")
+    # None if the caller closed them; open for the whole run
+    sys.stdout = sys.stdout or open(os.devnull, "w")  # noqa: SIM115
+    sys.stderr = sys.stderr or open(os.devnull, "w")  # noqa: SIM115
     try:
         app()
     except KeyboardInterrupt:
@@ -80,7 +82,7 @@ def reported(command: Callable[..., None]) -> Callable[..., None]:
             raise typer.Exit(problem.exit_code) from None
         except OSError as problem:
             _forget_output()
-            _say(f"the answer cannot be written: {problem.strerror or problem}")
+            _say(f"cannot read or write {problem.filename or 'the output'}: {problem.strerror}")
             raise typer.Exit(FileFault.exit_code) from None
         except Exception as problem:  # noqa: BLE001 - the outermost frame: whatever gets here is a bug
             _say_bug(problem)
@@ -290,7 +292,8 @@ def _say_bug(problem: Exception) -> None:
 
 def _forget_output() -> None:
     """Send what is left for stdout nowhere, so that Python's last flush cannot fail."""
-    os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
+    with contextlib.suppress(OSError):  # an output without a file behind it has no last flush
+        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 if __name__ == "__main__":

@@ -39,6 +39,7 @@ from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 TRACE = 1e-4  # mole fraction from which CO or O2 deserves a caution
+_CARBON_FORMS_ABOVE = 573.15  # [K], colder it forms too slowly to matter; common practice, no source
 
 
 class Product(NamedTuple):
@@ -199,12 +200,19 @@ class ReactorBase(Equipment):
                 matter, product.flows, float(product.temperature), float(product.pressure)
             )
             results["carbon_activity"] = activity
-            if activity > 1.0:
+            if activity > 1.0 and float(product.temperature) > _CARBON_FORMS_ABOVE:
                 text = f"carbon activity {activity:.3g} at the product: soot can form; more steam or hydrogen lowers it"
                 cautions.append(Caution("carbon-activity", text))
         results |= _conversions(feed, product)
-        cautions += [*_oxygen(feed), *self._traces(feed, product)]
+        if not self.burns_oxygen:
+            cautions += _oxygen(feed)
+        cautions += self._traces(feed, product)
         return results, tuple(cautions)
+
+    @property
+    def burns_oxygen(self) -> bool:
+        """Whether oxygen is there to react, so that its catalyst stands it."""
+        return False
 
     def _window(self, level: float) -> Iterator[Caution]:
         """Cautions of a reactor outside the window of its catalyst."""

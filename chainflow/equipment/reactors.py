@@ -82,6 +82,10 @@ class Reactor(ReactorBase):
     def equilibrium_species(self, matter: Matter) -> tuple[str, ...] | None:
         return self.equilibrium
 
+    @property
+    def burns_oxygen(self) -> bool:
+        return any(reaction.numbers.get("O2", 0.0) < 0.0 for reaction in self.reactions or ())
+
     def convert(self, flows: Array, matter: Matter) -> Product:
         by_feed, out = np.eye(len(flows)), flows.copy()
         for reaction in self.reactions or ():

@@ -145,7 +145,7 @@ class Separator(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if self.work or self.heat or "heat" in site.outlets:
+        if "heat" in site.outlets or any(duty.met_by == "own" for duty in outcome.duties):
             return {}
         inlet = material(feeds, "inlet")
         by_flow, by_enthalpy = temperature_slopes(inlet)
@@ -157,7 +157,20 @@ class Separator(Equipment):
             partial, capacity = enthalpy_slopes(outlet)
             row = np.append(partial * part + capacity * by_flow, capacity * by_enthalpy)
             block[name] = np.vstack([np.hstack([np.diag(part), np.zeros((len(part), 1))]), row])
-        return {"inlet": block}
+        return {"inlet": block | self._energy_slopes(share, site, outcome)}
+
+    def _energy_slopes(self, share: Array, site: Site, outcome: Outcome) -> dict[str, Array]:
+        """Work and heat asked, in proportion to what is kept."""
+        kept = np.append(share, 0.0)
+        asked: dict[str, Array] = {}
+        by_power = any(d.met_by == "power" and d.heat > 0.0 for d in outcome.duties)
+        if "power" in site.inlets:
+            asked["drawn:power"] = (self.work + self.heat * by_power) * kept[None, :]
+        if "heat" in site.inlets:
+            asked["drawn:heat"] = np.zeros((4, len(kept)))
+            if any(d.met_by == "heat" and d.heat > 0.0 for d in outcome.duties):
+                asked["drawn:heat"][0] = self.heat * kept
+        return asked
 
 
 class Condenser(Equipment):

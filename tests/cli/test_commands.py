@@ -146,6 +146,13 @@ def test_wrong_usage_is_2_and_writes_nothing(run, file, tmp_path, arguments):
     assert not (tmp_path / "a.json").exists()
 
 
+def test_the_flowsheet_itself_is_not_overwritten(run, file):
+    result = run("solve", file, "--json", file.parent / "." / file.name)
+    assert result.exit_code == 2
+    assert "is the flowsheet itself" in result.stderr
+    assert file.read_text() == HYDROGEN
+
+
 def test_no_file_is_2(run):
     assert run("solve").exit_code == 2
 

@@ -44,6 +44,22 @@ def test_a_reader_that_goes_away_is_no_error(file):
     assert (process.returncode, errors) == (0, b"")
 
 
+def test_an_output_that_is_full_is_4(file):
+    with open("/dev/full", "w") as full:
+        result = subprocess.run(
+            [*COMMAND, "solve", str(file)], stdout=full, stderr=subprocess.PIPE, timeout=60
+        )
+    assert result.returncode == 4
+    assert result.stderr == (
+        b"chainflow: cannot read or write the output: No space left on device\n"
+    )
+
+
+def test_a_closed_output_is_no_bug(file):
+    command = " ".join([*COMMAND, "solve", str(file), ">&-", "2>&-"])
+    assert subprocess.run(["sh", "-c", command], timeout=60).returncode == 0
+
+
 def test_a_title_that_the_output_cannot_show(tmp_path):
     path = tmp_path / "plant.yaml"
     path.write_text(HYDROGEN.replace("by the river", "\u00fcber alles \U0001f31e"), "utf-8")

@@ -9,14 +9,20 @@ from dataclasses import replace
 
 import numpy as np
 import pytest
-from tests.equipment.cases import CASES, METHANOL, Case, numbers, stream
+from pydantic import ValidationError
 
-from chainflow.equipment.base import Equipment
 from chainflow.equipment.ports import ANY_NAME, Heat, Role, arriving
 from chainflow.equipment.register import kinds
 from chainflow.thermo.streams import Stream
+from tests.equipment.cases import CASES, numbers
 
-BOUNDARY = ("supply", "product", "vent", "sunlight", "grid")  # what enters or leaves the plant there
+BOUNDARY = (
+    "supply",
+    "product",
+    "vent",
+    "sunlight",
+    "grid",
+)  # what enters or leaves the plant there
 PASSING = ("splitter", "switchboard", "heat-network")  # what arrives only passes
 BALANCE = 1e-12  # relative; round-off of a handful of sums, the solver itself wants 1e-9
 
@@ -157,11 +163,18 @@ def one_case(flow, place):
 
 
 def batched(case):
-    feeds = {port: flow if port in case.called else in_cases(flow) for port, flow in case.feeds.items()}
+    feeds = {
+        port: flow if port in case.called else in_cases(flow) for port, flow in case.feeds.items()
+    }
     return feeds, {port: in_cases(amount) for port, amount in case.asked.items()}
 
 
-@named([case for case in CASES if any(isinstance(f, Stream | float | int) for p in case.feeds for f in arriving(case.feeds, p))])
+def everything(case):
+    """All flows that arrive."""
+    return [flow for port in case.feeds for flow in arriving(case.feeds, port)]
+
+
+@named([case for case in CASES if any(not isinstance(f, Heat) for f in everything(case))])
 def test_a_batch_is_its_cases_one_by_one(case):
     feeds, asked = batched(case)
     together = case.equipment.run(feeds, asked, case.site)
@@ -173,26 +186,34 @@ def test_a_batch_is_its_cases_one_by_one(case):
         for mine, theirs in ((together.outlets, alone.outlets), (together.drawn, alone.drawn)):
             assert mine.keys() == theirs.keys()
             for port, flow in theirs.items():
-                assert numbers(_picked(mine[port], place)) == pytest.approx(numbers(flow), rel=1e-15)
-        assert together.power * np.ones(3) == pytest.approx(together.power)
+                assert numbers(_picked(mine[port], place)) == pytest.approx(
+                    numbers(flow), rel=1e-15
+                )
         assert np.broadcast_to(together.power, 3)[place] == pytest.approx(alone.power, rel=1e-15)
-        heat = sum(np.broadcast_to(d.heat, 3)[place] for d in together.duties if d.met_by != "power")
+        heat = sum(
+            np.broadcast_to(d.heat, 3)[place] for d in together.duties if d.met_by != "power"
+        )
         assert heat == pytest.approx(alone.heat, rel=1e-12)
         for name, value in alone.results.items():
-            assert np.broadcast_to(together.results[name], 3)[place] == pytest.approx(value, rel=1e-15)
+            assert np.broadcast_to(together.results[name], 3)[place] == pytest.approx(
+                value, rel=1e-15
+            )
 
 
 def _picked(flow, place):
     if isinstance(flow, Stream):
         return flow.case(place) if flow.cases else flow
     if isinstance(flow, Heat):
-        return Heat(*(float(np.broadcast_to(x, 3)[place]) for x in (flow.rate, flow.start, flow.end, flow.mean)))
+        parts = (flow.rate, flow.start, flow.end, flow.mean)
+        return Heat(*(float(np.broadcast_to(part, 3)[place]) for part in parts))
     return float(np.broadcast_to(flow, 3)[place])
 
 
-@named([case for case in CASES if any(len(arriving(case.feeds, port)) > 1 for port in case.feeds)])
+@named([case for case in CASES if len(everything(case)) > len(case.feeds)])
 def test_the_order_of_lines_at_an_inlet_is_of_no_account(case):
-    turned = {port: flow[::-1] if isinstance(flow, tuple) else flow for port, flow in case.feeds.items()}
+    turned = {
+        port: flow[::-1] if isinstance(flow, tuple) else flow for port, flow in case.feeds.items()
+    }
     first, second = case.run(), case.run(feeds=turned)
     for one, other in ((first.outlets, second.outlets), (first.drawn, second.drawn)):
         for port in one:
@@ -222,7 +243,9 @@ def with_amount(piece, path, factor):
     name, place, key = path
     parts = list(getattr(piece, name))
     amount = getattr(parts[place], key)
-    parts[place] = parts[place].model_copy(update={key: amount._replace(value=amount.value * factor)})
+    parts[place] = parts[place].model_copy(
+        update={key: amount._replace(value=amount.value * factor)}
+    )
     return piece.model_copy(update={name: tuple(parts)})
 
 
@@ -234,7 +257,9 @@ def test_a_thousand_times_as_much_gives_a_thousand_times_as_much(case):
     small, large = case.run(), case.run(enlarged_settings(case, factor), feeds, asked)
     for one, other in ((small.outlets, large.outlets), (small.drawn, large.drawn)):
         for port, flow in one.items():
-            assert numbers(other[port]) == pytest.approx(numbers(enlarged(flow, factor)), rel=1e-10, abs=1e-9)
+            assert numbers(other[port]) == pytest.approx(
+                numbers(enlarged(flow, factor)), rel=1e-10, abs=1e-9
+            )
     assert large.power == pytest.approx(factor * small.power, rel=1e-10)
     assert [d.purpose for d in large.duties] == [d.purpose for d in small.duties]
     for one, other in zip(small.duties, large.duties, strict=True):
@@ -253,7 +278,8 @@ def test_what_is_handed_in_is_not_changed(case):
         for old, flow in zip(flows, arriving(case.feeds, port), strict=True):
             assert (numbers(flow) == old).all()
             if isinstance(flow, Stream):
-                assert not (flow.gas.flags.writeable or flow.water.flags.writeable)
+                assert not flow.gas.flags.writeable
+                assert not flow.water.flags.writeable
     assert case.asked == asked
     assert case.equipment.model_dump() == settings
 
@@ -262,7 +288,7 @@ def test_what_is_handed_in_is_not_changed(case):
 def test_the_same_question_gets_the_same_answer(case):
     """No memory: nothing that ran in between changes a result."""
     first = case.run()
-    for other in CASES[:: max(1, len(CASES) // 10)]:
+    for other in CASES[::25]:
         other.run()
     second = case.run()
     for port, flow in first.outlets.items():
@@ -316,17 +342,15 @@ def test_detail_changes_no_flow(case):
     assert short.heat == pytest.approx(long.heat, rel=1e-12)
 
 
-@named([case for case in CASES if any(case.equipment.port(p, inlet=False).role is Role.SERVES for p in case.asked)])
+@named([case for case in CASES if case.asked and case.equipment.kind in ("supply", "store")])
 def test_one_mol_of_what_is_served_is_what_leaves(case):
-    """Heat and power have no state; a serving outlet of matter gives its sample times the amount."""
-    if not any(isinstance(case.run().outlets[port], Stream) for port in case.asked):
-        assert case.equipment.kind in ("switchboard", "grid", "heat-network")
-        return
     sample = case.equipment.sample(case.feeds, case.asked, case.site)
     for port, amount in case.asked.items():
         one = sample.get(port, sample.get(ANY_NAME))
         assert one.total == pytest.approx(1.0, rel=1e-14)
-        assert numbers(case.run().outlets[port]) == pytest.approx(numbers(one.scaled(amount)), rel=1e-12)
+        assert numbers(case.run().outlets[port]) == pytest.approx(
+            numbers(one.scaled(amount)), rel=1e-12
+        )
 
 
 # ----------------------------------------------------------------------------- nothing flows
@@ -358,7 +382,8 @@ def test_pressures_are_those_that_were_settled_beforehand(case):
         port: tuple(float(f.pressure) for f in arriving(case.feeds, port) if isinstance(f, Stream))
         for port in case.feeds
     }
-    settled = case.equipment.outlet_pressures({p: levels for p, levels in arriving_at.items() if levels})
+    known = {port: levels for port, levels in arriving_at.items() if levels}
+    settled = case.equipment.outlet_pressures(known)
     for port, flow in case.run().outlets.items():
         if isinstance(flow, Stream):
             level = settled.get(port, settled.get(ANY_NAME))
@@ -453,13 +478,18 @@ def differences(case, label, place, step, settled):
     return {key: (4 * ahead[key] - 3 * base[key] - further[key]) / (2 * step) for key in base}
 
 
-def _value(case, label, place):
+def _input(case, label):
+    """The flow or amount that a label of the slopes stands for."""
     if label.startswith("asked:"):
         return case.asked[label.removeprefix("asked:")]
-    flow = arriving(case.feeds, label.partition("#")[0])[0]
-    if isinstance(flow, Stream) and place < len(flow.flows):
-        return flow.flows[place]
-    return np.inf
+    return arriving(case.feeds, label.partition("#")[0])[0]
+
+
+def _value(case, label, place):
+    flow = _input(case, label)
+    if isinstance(flow, Stream):
+        return flow.flows[place] if place < len(flow.flows) else np.inf
+    return flow
 
 
 def inputs_with_slopes():
@@ -475,19 +505,19 @@ def inputs_with_slopes():
 WITH_SLOPES = inputs_with_slopes()
 
 
-@pytest.mark.parametrize(("case", "label"), WITH_SLOPES, ids=lambda x: x if isinstance(x, str) else x.name)
+@pytest.mark.parametrize(
+    ("case", "label"), WITH_SLOPES, ids=lambda part: part if isinstance(part, str) else part.name
+)
 def test_slopes_agree_with_differences(case, label):
     outcome = case.run()
     settled = case.equipment.settled(outcome)
     blocks = case.equipment.slopes(case.feeds, case.asked, case.site, outcome)[label]
-    flow = case.asked[label[6:]] if label.startswith("asked:") else arriving(case.feeds, label.partition("#")[0])[0]
-    columns = _columns(flow, case)
-    for place, (unit, size) in columns.items():
+    for place, (unit, size) in _columns(_input(case, label), case).items():
         found = differences(case, label, place, STEP * size, settled)
         for key, numeric in found.items():
             block = blocks.get(key)
             given = np.zeros(len(numeric)) if block is None else np.asarray(block)[:, place].copy()
-            if key in outcome.outlets and isinstance(outcome.outlets[key], Stream) or key == "state":
+            if key == "state" or isinstance(outcome.outlets.get(key), Stream):
                 given[-1] /= ENTHALPY
             scale = max(1.0, np.abs(numeric * unit).max(), _rate_of(case, key, outcome))
             assert given * unit == pytest.approx(numeric * unit, abs=SLOPES * scale), (key, place)
@@ -504,9 +534,12 @@ def _columns(flow, case):
         return {0: (1.0, abs(float(flow)))}
     atoms = flow.matter.formula
     there = (atoms @ flow.flows > 0.0) & flow.gas.any()
-    places = [i for i in range(len(flow.flows)) if flow.flows[i] > 0.0 or there[atoms[:, i] > 0.0].all()]
-    places = [i for i in places if flow.matter.components[i] not in case.jumps]
-    columns = {i: (1.0, float(flow.total)) for i in places}
+    columns = {
+        place: (1.0, float(flow.total))
+        for place, name in enumerate(flow.matter.components)
+        if (flow.flows[place] > 0.0 or there[atoms[:, place] > 0.0].all())
+        and name not in case.jumps
+    }
     return columns | {len(flow.flows): (ENTHALPY, float(flow.total) * ENTHALPY)}
 
 
@@ -522,9 +555,22 @@ def test_slopes_are_given_where_they_pay():
     """Equilibrium, mixing, splitting, condensers, stores and power-driven equipment have them."""
     kinds_with = {case.equipment.kind for case, _ in WITH_SLOPES}
     assert kinds_with >= {
-        "mixer", "blend", "splitter", "separator", "condenser", "heater", "cooler", "store",
-        "compressor", "reactor", "shift-reactor", "methanation-reactor", "burner", "electrolyser",
-        "switchboard", "pv-field",
+        "mixer",
+        "blend",
+        "splitter",
+        "separator",
+        "condenser",
+        "heater",
+        "cooler",
+        "store",
+        "compressor",
+        "reactor",
+        "shift-reactor",
+        "methanation-reactor",
+        "burner",
+        "electrolyser",
+        "switchboard",
+        "pv-field",
     }
 
 
@@ -561,10 +607,12 @@ def _outside(limits):
         yield limits.lt
 
 
-@pytest.mark.parametrize(("cls", "name", "outside"), limited_settings(), ids=lambda x: getattr(x, "kind", str(x)))
+@pytest.mark.parametrize(
+    ("cls", "name", "outside"),
+    limited_settings(),
+    ids=lambda part: getattr(part, "kind", str(part)),
+)
 def test_limits_of_settings_are_kept(cls, name, outside):
-    from pydantic import ValidationError
-
     with pytest.raises(ValidationError) as caught:
         cls.model_validate({name: outside})
     mine = [error for error in caught.value.errors() if error["loc"][0] == name]
@@ -583,13 +631,9 @@ def test_settings_are_frozen(case):
             setattr(case.equipment, name, None)
 
 
-def test_a_case_needs_the_matter_it_names():
-    """The guard of this battery: streams of other components than the site's cannot pass."""
-    gas = stream({"H2": 1.0, "CO2": 1.0}, matter=METHANOL)
-    assert all(
-        f.matter is case.site.matter
-        for case in CASES for port in case.feeds for f in arriving(case.feeds, port) if isinstance(f, Stream)
-    )
-    assert gas.matter is METHANOL
-    assert isinstance(CASES[0], Case)
-    assert issubclass(type(CASES[0].equipment), Equipment)
+def test_no_case_mixes_components():
+    """The guard of this battery: a stream of other components than the site's would pass unseen."""
+    for case in CASES:
+        for port in case.feeds:
+            for flow in arriving(case.feeds, port):
+                assert not isinstance(flow, Stream) or flow.matter is case.site.matter

@@ -91,6 +91,17 @@ def test_a_terminal_gets_styles_unless_it_wants_none(monkeypatch):
             assert "\x1b" not in out.getvalue()
 
 
+def test_a_narrow_terminal_keeps_names_whole(monkeypatch):
+    monkeypatch.setenv("COLUMNS", "80")
+    out = Terminal()
+    print_answer(solved(METHANE), out)
+    table = out.getvalue().partition("\nStreams\n")[2].partition("Power, heat")[0]
+    assert "stack.hydrogen ->" in table
+    assert "dryh.inlet" in table
+    assert "kg/h" not in table
+    assert all(len(row) <= 80 for row in table.splitlines())
+
+
 def test_an_output_that_knows_ascii_only_gets_ascii():
     raw = io.BytesIO()
     out = io.TextIOWrapper(raw, encoding="ascii", errors="strict")
