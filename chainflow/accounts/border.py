@@ -1,4 +1,4 @@
-"""Which line carries how much, and what crosses the plant's border? Helpers of the other accounts.
+"""Which line carries how much?
 
 SI throughout. A material outlet has one line, and what a product takes comes from outlets that
 offer, so the flow of such a line is the flow of its outlet.
@@ -6,7 +6,6 @@ offer, so the flow of such a line is the flow of its outlet.
 
 from __future__ import annotations
 
-from chainflow.equipment.base import Equipment
 from chainflow.equipment.ports import Flow, Heat
 from chainflow.flowsheet.network import Line
 from chainflow.solver.solution import Solution, SolvedStream
@@ -35,11 +34,6 @@ def rate_of(flow: Flow) -> float:
     if isinstance(flow, Stream):
         return 0.0
     return flow.rate if isinstance(flow, Heat) else float(flow)
-
-
-def piece_of(solution: Solution, name: str) -> Equipment:
-    """Return the equipment of that name."""
-    return solution.flowsheet.equipment[name]
 
 
 def leaving(solution: Solution, name: str) -> list[SolvedStream]:

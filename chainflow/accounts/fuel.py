@@ -154,10 +154,10 @@ class _Search:
 
     def _fills(self, name: str) -> bool:
         """Whether fuel stays in a store: its rest has no line."""
-        lines = self.flowsheet.line_from(name, "rest")
-        rest = self.solution.outcomes[name].outlets.get("rest")
-        stays = isinstance(self._piece(name), Store) and not lines and isinstance(rest, Stream)
-        return stays and float(rest.total) > 0.0
+        if not isinstance(self._piece(name), Store) or self.flowsheet.line_from(name, "rest"):
+            return False
+        rest = self.solution.outcomes[name].outlets["rest"]
+        return isinstance(rest, Stream) and float(rest.total) > 0.0
 
     def _leaves_making(self, line: Line) -> bool:
         piece = self._piece(line.source)

@@ -36,6 +36,7 @@ from chainflow.thermo.streams import Stream, temperature_slopes
 from chainflow.thermo.water import water_split, water_split_slopes
 
 _MOST_STAGES = 12
+_ROUND_OFF = 1e-12  # of what arrives: less condensate is no state to find a temperature of
 _WET = ("H2O", "CO2")  # what can be in a condensate
 
 
@@ -182,6 +183,8 @@ class Compressor(Equipment):
             if stage.cooled_to is not None and stage.condensate.any():
                 flows = flows + stage.condensate
                 enthalpy += matter.water_enthalpy(stage.condensate, stage.cooled_to, stage.high)
+        if float(flows.sum()) <= _ROUND_OFF * float(inlet.total):  # a gas just at its dew point
+            return Stream.at(matter, flows, self.intercool, low)
         return Stream.from_enthalpy(matter, flows, float(enthalpy), low, self.intercool)
 
     def _stages(self, inlet: Stream, matter: Matter) -> list[Stage]:

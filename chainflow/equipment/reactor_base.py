@@ -39,7 +39,7 @@ from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 TRACE = 1e-4  # mole fraction from which CO or O2 deserves a caution
-_CARBON_FORMS_ABOVE = 573.15  # [K], colder it forms too slowly to matter; common practice, no source
+_CARBON_FORMS_ABOVE = 573.15  # [K], colder it forms too slowly; common practice, no source
 
 
 class Product(NamedTuple):

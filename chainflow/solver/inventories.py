@@ -194,7 +194,7 @@ class _Loop:
         return tuple(name for name in self.members if self._surplus_spots(name))
 
     def _surplus_spots(self, name: str) -> set[Spot]:
-        """What a store with draws may let out: only what also comes by another way than its make-up."""
+        """Spots at `rest` of a store with draws that not only its own make-up can reach."""
         piece = self.flowsheet.equipment[name]
         if not (isinstance(piece, Store) and self._draws(name)):
             return set()

@@ -93,6 +93,7 @@ def test_a_terminal_gets_styles_unless_it_wants_none(monkeypatch):
 
 def test_a_narrow_terminal_keeps_names_whole(monkeypatch):
     monkeypatch.setenv("COLUMNS", "80")
+    monkeypatch.setenv("NO_COLOR", "1")
     out = Terminal()
     print_answer(solved(METHANE), out)
     table = out.getvalue().partition("\nStreams\n")[2].partition("Power, heat")[0]

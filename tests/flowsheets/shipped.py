@@ -1,0 +1,127 @@
+"""The shipped flowsheets for tests: their texts, their solutions, and ways to rewrite them."""
+
+import io
+import random
+from functools import cache
+from pathlib import Path
+from typing import Any
+
+from ruamel.yaml import YAML
+
+from chainflow.flowsheet.building import read_text
+from chainflow.solver.solution import Solution
+from chainflow.solver.solve import solve_flowsheet
+from chainflow.thermo.streams import Stream
+from tests.flowsheets.ranges import RANGES
+
+FOLDER = Path(__file__).parents[2] / "flowsheets"
+NAMES = tuple(RANGES)
+CYCLES = ("methane-cycle", "methane-cycle-direct")
+CLOSED = {"capture": "100 %", "purge": "0 %"}
+
+
+@cache
+def text_of(name: str) -> str:
+    """Return a shipped flowsheet as it stands in its file."""
+    return (FOLDER / f"{name}.yaml").read_text(encoding="utf-8")
+
+
+@cache
+def _solved(text: str, knobs: tuple[tuple[str, str], ...]) -> Solution:
+    return solve_flowsheet(read_text(text, dict(knobs)))
+
+
+def solved_text(text: str, **knobs: str) -> Solution:
+    """Return the solution of a flowsheet text; each is solved once."""
+    return _solved(text, tuple(sorted(knobs.items())))
+
+
+def solved(name: str, **knobs: str) -> Solution:
+    """Return the solution of a shipped flowsheet; each is solved once."""
+    return solved_text(text_of(name), **knobs)
+
+
+def flow(solution: Solution, key: str) -> Stream:
+    """Return the matter that leaves a port."""
+    found = solution.stream(key).flow
+    assert isinstance(found, Stream)
+    return found
+
+
+def rate(solution: Solution, key: str) -> float:
+    """Return the power or light [W] that leaves a port."""
+    found = solution.stream(key).flow
+    assert isinstance(found, float)
+    return found
+
+
+def numbers(solution: Solution) -> dict[str, list[float]]:
+    """Return every stream as numbers: flows, temperature and pressure, or its rate."""
+    found = {}
+    for stream in solution.streams:
+        if isinstance(stream.flow, Stream):
+            level, pressure = float(stream.flow.temperature), float(stream.flow.pressure)
+            found[stream.key] = [*stream.flow.flows.tolist(), level, pressure]
+        else:
+            found[stream.key] = [float(getattr(stream.flow, "rate", stream.flow))]
+    return found
+
+
+def largest_difference(first: dict[str, list[float]], second: dict[str, list[float]]) -> float:
+    """Return the largest difference of flows by stream total, and of other numbers by size."""
+    assert first.keys() == second.keys()
+    worst = 0.0
+    for key, one in first.items():
+        total = sum(one[:-2]) if len(one) > 1 else abs(one[0])
+        sizes = [*[total] * (len(one) - 2), *one[-2:]] if len(one) > 1 else [total]
+        for a, b, size in zip(one, second[key], sizes, strict=True):
+            worst = max(worst, abs(a - b) / size if size else abs(b))
+    return worst
+
+
+# --- other ways to write the same file -------------------------------------------------------
+
+
+def as_data(text: str) -> dict[str, Any]:
+    """Return a flowsheet text as plain data."""
+    return YAML(typ="safe").load(text)
+
+
+def as_text(data: dict[str, Any]) -> str:
+    """Return plain data as a flowsheet text."""
+    out = io.StringIO()
+    yaml = YAML(typ="safe")
+    yaml.width = 10000
+    yaml.sort_base_mapping_type_on_output = False  # keep the order we give
+    yaml.dump(data, out)
+    return out.getvalue()
+
+
+def shuffled(text: str, key: int) -> str:
+    """Return the same flowsheet with equipment, lines, knobs and entries in another order."""
+    draw = random.Random(key)
+    data = as_data(text)
+
+    def mixed(items: Any) -> list[Any]:
+        return draw.sample(list(items), len(items))
+
+    data["equipment"] = dict(mixed(data["equipment"].items()))
+    data["knobs"] = dict(mixed(data["knobs"].items()))
+    data["lines"] = mixed(data["lines"])
+    return as_text(dict(mixed(data.items())))
+
+
+def renamed(text: str) -> tuple[str, dict[str, str]]:
+    """Return the same flowsheet with every piece of equipment renamed, and the new names."""
+    data = as_data(text)
+    names = {old: f"unit-{place}" for place, old in enumerate(reversed(data["equipment"]))}
+
+    def address(word: str) -> str:
+        first, dot, rest = word.strip().partition(".")
+        return names[first] + dot + rest
+
+    data["equipment"] = {names[old]: entry for old, entry in data["equipment"].items()}
+    data["lines"] = [" -> ".join(map(address, line.split("->"))) for line in data["lines"]]
+    for hold in data.get("holds", []):
+        hold["hold"], hold["by"] = address(hold["hold"]), address(hold["by"])
+    return as_text(data), names

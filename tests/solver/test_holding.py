@@ -1,0 +1,97 @@
+"""Holds: one setting moves until one result has its value."""
+
+from __future__ import annotations
+
+import pytest
+from tests.solver.small_plants import hydrogen_plant, methane_loop
+
+from chainflow.basis.faults import NotSolved
+from chainflow.flowsheet.building import read_text
+from chainflow.solver.lookup import value_at
+from chainflow.solver.solve import solve_flowsheet
+
+HOLD = "holds:\n  - {{hold: {hold}, at: {at}, by: {by}, within: [{low}, {high}]}}\n"
+
+
+def hold(**words: str) -> str:
+    return HOLD.format(**words)
+
+
+def test_simple_hold_is_met_in_few_passes() -> None:
+    text = methane_loop(holds=hold(hold="reactor.product.fraction.CH4", at="0.30", by="reactor.temperature", low="250 degC", high="450 degC"))
+    solution = solve_flowsheet(read_text(text))
+    assert solution.passes <= 15
+    assert value_at(solution, "reactor.product.fraction.CH4") == pytest.approx(0.30, rel=1e-10)
+    (result,) = solution.holds
+    assert result.unit == "1" and result.by_unit == "K"
+    # the answer with the setting written into the file is the same
+    again = solve_flowsheet(read_text(methane_loop(), {"reactor.temperature": f"{result.value!r} K"}))
+    assert value_at(again, "reactor.product.fraction.CH4") == pytest.approx(0.30, rel=1e-9)
+
+
+@pytest.mark.parametrize(
+    ("address", "at"),
+    [
+        ("stack.hydrogen.flow.H2", "5 mol/s"),
+        ("stack.hydrogen.mass_flow", "40 kg/h"),
+        ("stack.hydrogen", "40 kg/h"),
+        ("board.rest.rate", "1.2 MW"),
+        ("stack.water.flow", "6 mol/s"),
+        ("stack.duty.power", "1.2 MW"),
+        ("water.top_up", "5 mol/s"),
+    ],
+)
+def test_every_kind_of_address_can_be_held(address: str, at: str) -> None:
+    if address == "stack.hydrogen":
+        address = "stack.hydrogen_kg_s"
+    words = {"hold": address, "at": at, "by": "field.efficiency", "low": "1 %", "high": "60 %"}
+    text = hydrogen_plant(equipment="  town: {kind: product}\n", lines="\n  - stack.hydrogen -> dry -> town\n", holds=hold(**words))
+    solution = solve_flowsheet(read_text(text))
+    (result,) = solution.holds
+    assert result.reached == pytest.approx(result.wanted, rel=1e-9)
+    assert value_at(solution, address) == pytest.approx(result.wanted, rel=1e-9)
+
+
+def test_two_holds_are_met_together() -> None:
+    first = "  - {hold: reactor.product.fraction.CH4, at: 0.30, by: reactor.temperature, within: [250 degC, 450 degC]}\n"
+    second = "  - {hold: stack.hydrogen.flow.H2, at: 5 mol/s, by: field.efficiency, within: [1 %, 60 %]}\n"
+    solution = solve_flowsheet(read_text(methane_loop(holds="holds:\n" + first + second)))
+    assert [h.reached for h in solution.holds] == pytest.approx([0.30, 5.0], rel=1e-9)
+
+
+def test_hold_out_of_reach_names_both_ends() -> None:
+    text = methane_loop(holds=hold(hold="reactor.product.fraction.CH4", at="0.60", by="reactor.temperature", low="250 degC", high="450 degC"))
+    with pytest.raises(NotSolved, match="out of reach") as problem:
+        solve_flowsheet(read_text(text))
+    assert problem.value.code == "hold-out-of-reach"
+    ends = problem.value.details["ends"]
+    assert [round(value - 273.15) for value, _ in ends] == [250, 450]
+    assert all(0.0 < reached < 0.6 for _, reached in ends)
+
+
+def test_hold_that_nothing_feels_is_unable() -> None:
+    text = methane_loop(holds=hold(hold="stack.hydrogen.flow.H2", at="5 mol/s", by="reactor.temperature", low="250 degC", high="450 degC"))
+    with pytest.raises(NotSolved, match="changes nothing there") as problem:
+        solve_flowsheet(read_text(text))
+    assert problem.value.code == "hold-unable"
+
+
+def test_hold_without_flow_is_unable_and_not_out_of_reach() -> None:
+    text = methane_loop(holds=hold(hold="reactor.product.fraction.CH4", at="0.30", by="reactor.temperature", low="250 degC", high="450 degC"))
+    with pytest.raises(NotSolved) as problem:
+        solve_flowsheet(read_text(text, {"sun.irradiance": "0 W/m2"}))
+    assert problem.value.code == "hold-unable"
+
+
+def test_net_of_a_store_can_be_held_at_zero() -> None:
+    equipment = """
+  store: {kind: store, contents: {H2: 1}, temperature: 25 degC, pressure: 15 bar}
+  user:  {kind: supply, composition: {CO2: 1}, temperature: 25 degC, pressure: 15 bar, flow: 2 mol/s}
+  blend: {kind: blend, ratio: {H2: 4, CO2: 1}, let_down: true}
+  town:  {kind: product}
+"""
+    lines = "\n  - stack.hydrogen -> dry -> store.returns\n  - user -> blend.main\n  - store.draw -> blend.trim\n  - blend -> town\n"
+    words = {"hold": "store.net", "at": "0 mol/s", "by": "user.flow", "low": "0.1 mol/s", "high": "20 mol/s"}
+    solution = solve_flowsheet(read_text(hydrogen_plant(equipment=equipment, lines=lines, holds=hold(**words))))
+    assert solution.passes <= 10
+    assert value_at(solution, "store.net") == pytest.approx(0.0, abs=1e-8)
