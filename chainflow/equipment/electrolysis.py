@@ -8,6 +8,7 @@ pressure).  What else is dissolved in the feed water leaves with the oxygen.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
+from functools import cache
 from dataclasses import replace
 from typing import Any, ClassVar, Literal
 
@@ -169,12 +170,12 @@ class Electrolyser(Equipment):
         if self.voltage is not None:
             return 2.0 * FARADAY * self.voltage
         assert self.energy_use is not None
-        return self.energy_use * _HYDROGEN_MASS
+        return self.energy_use * hydrogen_mass()
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         water, matter = material(feeds, "water"), site.matter
         if self.hydrogen is not None:
-            made = self.hydrogen.value / (_HYDROGEN_MASS if self.hydrogen.per == "kg" else 1.0)
+            made = self.hydrogen.value / (hydrogen_mass() if self.hydrogen.per == "kg" else 1.0)
             power = made * self.energy_per_mol / self.rectifier
         else:
             power = max(
@@ -260,7 +261,7 @@ class Electrolyser(Equipment):
         share = made / direct if direct > 0.0 else 0.0
         return {
             "hydrogen_mol_s": made,
-            "hydrogen_kg_s": made * _HYDROGEN_MASS,
+            "hydrogen_kg_s": made * hydrogen_mass(),
             "water_kg_s": water,
             "direct_current_W": direct,
             "voltage_V": self.energy_per_mol / (2.0 * FARADAY),
@@ -319,4 +320,7 @@ def _reacting_share(water: Stream, moisture: float) -> float:
     return pure - (float(water.total) - pure) * moisture
 
 
-_HYDROGEN_MASS = 2.01588e-3  # [kg/mol], IUPAC standard atomic weight of hydrogen 1.00794
+@cache
+def hydrogen_mass() -> float:
+    """Molar mass of hydrogen [kg/mol], the one of every stream."""
+    return float(Matter.of(("H2",)).molar_mass[0])

@@ -11,6 +11,7 @@ from typing import Any, ClassVar
 import numpy as np
 from pydantic import Field
 
+from chainflow.basis.constants import GAS_CONSTANT
 from chainflow.basis.quantities import OpenFraction, Pressure
 from chainflow.equipment.base import (
     Array,
@@ -25,9 +26,10 @@ from chainflow.equipment.base import (
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed, lower_feed
 from chainflow.thermo.components import WATER_MOLAR_VOLUME
+from chainflow.thermo.compression import isentropic_temperature
 from chainflow.thermo.streams import Stream
 
-_ENTROPY_ROUND_OFF = 1e-13
+_ENTROPY_ROUND_OFF = 1e-12
 _MOST_STEPS = 40
 _GAS_IN_PUMP = 1e-3  # mole share of gas from which a pump deserves a caution
 
@@ -166,23 +168,23 @@ def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:
 def isentropic(inlet: Stream, pressure: float) -> Stream:
     """The stream at another pressure with its entropy unchanged, phases in equilibrium.
 
-    Newton on the enthalpy, since ``(dS/dH)_p = 1/T`` holds through phase changes.
+    Newton on the enthalpy, since ``(dS/dH)_p = 1/T`` holds through phase changes; it starts where
+    a gas would end that stays one.
     """
-    entropy = float(inlet.entropy)
-    enthalpy, level = float(inlet.enthalpy), float(inlet.temperature)
-    stream = inlet
+    matter, flows = inlet.matter, inlet.flows
     if float(inlet.total) == 0.0:
         return inlet.at_pressure(pressure)
-    for step in range(_MOST_STEPS):
-        if step == 0:
-            stream = Stream.at(inlet.matter, inlet.flows, level, pressure)
-        else:
-            stream = Stream.from_enthalpy(inlet.matter, inlet.flows, enthalpy, pressure, level)
+    level = float(inlet.temperature)
+    if not inlet.water.any():
+        level = isentropic_temperature(matter, inlet.gas, level, float(inlet.pressure), pressure)
+    entropy = float(inlet.entropy)
+    allowed = _ENTROPY_ROUND_OFF * (abs(entropy) + GAS_CONSTANT * float(inlet.total))
+    stream = Stream.at(matter, flows, level, pressure)
+    for _ in range(_MOST_STEPS):
         missing = entropy - float(stream.entropy)
-        level = float(stream.temperature)
-        change = missing * level
-        limit = 0.3 * level * float(inlet.total) * 80.0
-        enthalpy = float(stream.enthalpy) + max(-limit, min(limit, change))
-        if abs(missing) <= _ENTROPY_ROUND_OFF * abs(entropy) + 1e-12 * float(inlet.total):
+        if abs(missing) <= allowed:
             break
+        level = float(stream.temperature)
+        enthalpy = float(stream.enthalpy) + missing * level
+        stream = Stream.from_enthalpy(matter, flows, enthalpy, pressure, level)
     return stream

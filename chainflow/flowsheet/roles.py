@@ -83,8 +83,9 @@ def assign(
                 called[back] = True
                 queue.append(back)
     lines = []
+    sound = not faults  # a call may be missing only because something else is wrong
     for i, line in enumerate(joined):
-        if not called[i] and line.outlet.role is Role.SERVES:
+        if sound and not called[i] and line.outlet.role is Role.SERVES:
             faults.append(_nobody_sets(line, kinds[i], equipment))
         lines.append(
             Line(

@@ -345,6 +345,9 @@ class _Loop:
         left, sizes, _ = np.linalg.svd(table, full_matrices=True)
         rank = int((sizes > _TOLERANCE * max(1.0, sizes.max(initial=0.0))).sum())
         free = left[:, rank:]
+        inside = np.array([self._column({s: 1.0})[rows] for s in dict.fromkeys(s for _, _, s in self.spots)])
+        held, strength, _ = np.linalg.svd(free.T @ inside.T, full_matrices=False)
+        free = free @ held[:, strength > _TOLERANCE]  # combinations that what is inside has
         if free.shape[1] == 0:
             return None
         combination = _simple(free, elements)

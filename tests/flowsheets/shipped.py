@@ -68,14 +68,21 @@ def numbers(solution: Solution) -> dict[str, list[float]]:
 
 
 def largest_difference(first: dict[str, list[float]], second: dict[str, list[float]]) -> float:
-    """Return the largest difference of flows by stream total, and of other numbers by size."""
+    """Return the largest relative difference of two sets of numbers.
+
+    Flows count by their stream's total, rates by themselves but at least by a thousandth of the
+    plant's largest: a pump's power is a small difference of large enthalpies.
+    """
     assert first.keys() == second.keys()
+    least = 1e-3 * max(abs(one[0]) for one in first.values() if len(one) == 1)
     worst = 0.0
     for key, one in first.items():
-        total = sum(one[:-2]) if len(one) > 1 else abs(one[0])
-        sizes = [*[total] * (len(one) - 2), *one[-2:]] if len(one) > 1 else [total]
-        for a, b, size in zip(one, second[key], sizes, strict=True):
-            worst = max(worst, abs(a - b) / size if size else abs(b))
+        if len(one) == 1:
+            sizes = [max(abs(one[0]), least)]
+        else:
+            sizes = [sum(one[:-2]) or 1.0] * (len(one) - 2) + one[-2:]
+        pairs = zip(one, second[key], sizes, strict=True)
+        worst = max(worst, *(abs(a - b) / size for a, b, size in pairs))
     return worst
 
 

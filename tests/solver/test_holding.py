@@ -70,7 +70,7 @@ def test_hold_out_of_reach_names_both_ends() -> None:
 
 
 def test_hold_that_nothing_feels_is_unable() -> None:
-    text = methane_loop(holds=hold(hold="stack.hydrogen.flow.H2", at="5 mol/s", by="reactor.temperature", low="250 degC", high="450 degC"))
+    text = methane_loop(holds=hold(hold="field.power.rate", at="1 MW", by="reactor.temperature", low="250 degC", high="450 degC"))
     with pytest.raises(NotSolved, match="changes nothing there") as problem:
         solve_flowsheet(read_text(text))
     assert problem.value.code == "hold-unable"

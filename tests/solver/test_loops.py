@@ -140,14 +140,13 @@ def test_a_store_is_solved_at_its_switch(change: float) -> None:
 
 
 def test_short_switchboard_says_by_how_much() -> None:
-    extra = "  big: {kind: compressor, pressure: 900 bar, stages: 1}\n"
-    lines = "\n  - stack.hydrogen -> dry -> big\n  - board.big -> big.power\n"
-    text = hydrogen_plant(equipment=extra + "  heat: {kind: heater, temperature: 1200 degC}\n", lines=lines)
-    text = text.replace("dry -> big\n", "dry -> heat -> big\n").replace("- board.big", "- board.heat -> heat.power\n  - board.big")
-    with pytest.raises(NotSolved, match=r"board is short of") as problem:
-        solved(text, field__efficiency="1 %", big__efficiency="1 %")
+    """A fixed user of 2 MW on a board that gets 1.6 MW: short by 0.4 MW with nothing at rest."""
+    equipment = "  oven: {kind: heater, duty: 2 MW}\n  gas: {kind: supply, composition: {N2: 1}, temperature: 25 degC, pressure: 1 bar, flow: 100 mol/s}\n  town: {kind: product}\n"
+    lines = "\n  - stack.hydrogen -> dry -> town\n  - gas -> oven -> town\n  - board.oven -> oven.power\n"
+    with pytest.raises(NotSolved, match=r"board is short of 400 kW") as problem:
+        solved(hydrogen_plant(equipment=equipment, lines=lines))
     assert problem.value.code == "short-of-power"
-    assert problem.value.details["short_W"] > 0
+    assert problem.value.details["short_W"] == pytest.approx(0.4e6, rel=1e-9)
 
 
 def test_shortage_line_serves_what_is_missing() -> None:
