@@ -177,7 +177,9 @@ def quantity(
 def _shown(given: object) -> str:
     if given is None:
         return "nothing"
-    return shorten(given) if isinstance(given, str) else f"a {type(given).__name__}"
+    kind = type(given).__name__
+    words = {"dict": "a map", "bool": "true or false"}
+    return shorten(given) if isinstance(given, str) else words.get(kind, f"a {kind}")
 
 
 class Amount(NamedTuple):

@@ -21,7 +21,7 @@ from chainflow.equipment.cases import case_count, matter_of, one_case, stack_out
 from chainflow.equipment.heat_needs import Duty, settle
 from chainflow.equipment.outcome import Caution, Outcome, Site
 from chainflow.equipment.ports import Feeds, Flow, Heat, Port, Role, arriving
-from chainflow.equipment.setting_numbers import replaced, unit_of
+from chainflow.equipment.setting_numbers import inside, number_of, replaced, unit_at
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 
@@ -162,8 +162,8 @@ class Equipment(BaseModel):
         """The number at a setting's path, in SI."""
         value: Any = getattr(self, path[0])
         for key in path[1:]:
-            value = value[key]
-        return float(getattr(value, "value", value))
+            value = inside(value, key)
+        return float(number_of(value))
 
     def with_setting(self, path: tuple[str, ...], number: float) -> Self:
         """A copy in which one number is another."""
@@ -176,9 +176,8 @@ class Equipment(BaseModel):
         info = cls.model_fields.get(path[0])
         if info is None:
             return None
-        return unit_of(
-            Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
-        )
+        own = Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
+        return unit_at(own, path[1:])
 
     # --- for subclasses ----------------------------------------------------------------------
 

@@ -28,8 +28,10 @@ from chainflow.equipment.pressures import higher_feed, lower_feed
 from chainflow.thermo.components import WATER_MOLAR_VOLUME
 from chainflow.thermo.compression import isentropic_temperature
 from chainflow.thermo.streams import Stream
+from chainflow.thermo.validity import StateError
 
 _ENTROPY_ROUND_OFF = 1e-12
+_FREEZING = 273.15  # [K]
 _MOST_STEPS = 40
 _GAS_IN_PUMP = 1e-3  # mole share of gas from which a pump deserves a caution
 
@@ -50,7 +52,7 @@ class Valve(Equipment):
 
     def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
         return lower_feed(
-            inlets, self.pressure, "a valve cannot raise pressure: put a pump or compressor instead"
+            inlets, self.pressure, "a valve only lets down, put a pump or compressor instead"
         )
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
@@ -79,7 +81,7 @@ class Expander(Equipment):
     efficiency: OpenFraction = Field(0.80, description="isentropic efficiency")
 
     def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
-        return lower_feed(inlets, self.pressure, "an expander lets down: put a compressor instead")
+        return lower_feed(inlets, self.pressure, "an expander only lets down, put a compressor instead")
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         inlet = material(feeds, "inlet")
@@ -165,6 +167,22 @@ def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:
     return (Caution("gas-in-pump", text),)
 
 
+def _start(inlet: Stream, pressure: float) -> float:
+    """Where a gas would end that stays one; where it cannot, the freezing point of its water.
+
+    From a colder state the steps of `isentropic` never overshoot.
+    """
+    level, matter = float(inlet.temperature), inlet.matter
+    if inlet.water.any():
+        return level
+    try:
+        return isentropic_temperature(matter, inlet.gas, level, float(inlet.pressure), pressure)
+    except StateError:
+        if matter.water is None or inlet.gas[matter.water] == 0.0:
+            raise
+        return _FREEZING
+
+
 def isentropic(inlet: Stream, pressure: float) -> Stream:
     """The stream at another pressure with its entropy unchanged, phases in equilibrium.
 
@@ -174,9 +192,7 @@ def isentropic(inlet: Stream, pressure: float) -> Stream:
     matter, flows = inlet.matter, inlet.flows
     if float(inlet.total) == 0.0:
         return inlet.at_pressure(pressure)
-    level = float(inlet.temperature)
-    if not inlet.water.any():
-        level = isentropic_temperature(matter, inlet.gas, level, float(inlet.pressure), pressure)
+    level = _start(inlet, pressure)
     entropy = float(inlet.entropy)
     allowed = _ENTROPY_ROUND_OFF * (abs(entropy) + GAS_CONSTANT * float(inlet.total))
     stream = Stream.at(matter, flows, level, pressure)

@@ -6,12 +6,22 @@ SI throughout: flows [mol/s], enthalpy [W], pressure [Pa].  All are adiabatic.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from typing import Any, ClassVar
+from typing import Annotated, Any, ClassVar
 
 import numpy as np
-from pydantic import BaseModel, ConfigDict, Field, PositiveFloat, model_validator
+from pydantic import (
+    AllowInfNan,
+    BaseModel,
+    ConfigDict,
+    Field,
+    FiniteFloat,
+    PositiveFloat,
+    field_validator,
+    model_validator,
+)
 from pydantic_core import PydanticCustomError
 
+from chainflow.basis.names import name_trouble
 from chainflow.equipment.base import (
     Array,
     Equipment,
@@ -29,6 +39,7 @@ from chainflow.equipment.shares import Shares, resolved
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 
+PositiveNumber = Annotated[PositiveFloat, AllowInfNan(False)]
 _PRESSURE_SPREAD = 0.10  # inlets may differ by this share of the highest
 
 
@@ -94,9 +105,9 @@ class Module(BaseModel):
 
     model_config = ConfigDict(frozen=True, extra="forbid")
 
-    over: dict[str, float] = Field(description="components and factors above the line")
-    under: dict[str, float] = Field(description="components and factors below the line")
-    value: PositiveFloat = Field(description="value wanted at the outlet")
+    over: dict[str, FiniteFloat] = Field(description="components and factors above the line")
+    under: dict[str, FiniteFloat] = Field(description="components and factors below the line")
+    value: PositiveNumber = Field(description="value wanted at the outlet")
 
 
 class Blend(Equipment):
@@ -117,7 +128,7 @@ class Blend(Equipment):
         "amount = -w.n(main) / w.y(trim), w = over - value * under",
     )
 
-    ratio: dict[str, PositiveFloat] | None = Field(
+    ratio: dict[str, PositiveNumber] | None = Field(
         None, description="two components and their parts, {H2: 4, CO2: 1}"
     )
     module: Module | None = Field(None, description="ratio of sums: over, under, value")
@@ -129,12 +140,12 @@ class Blend(Equipment):
     def _one_ratio(self) -> Blend:
         if (self.ratio is None) == (self.module is None):
             raise PydanticCustomError(
-                "blend", "give one of 'ratio' and 'module', such as ratio: {{H2: 4, CO2: 1}}", {}
+                "blend", "give one of 'ratio' and 'module', such as ratio: {example}", {"example": "{H2: 4, CO2: 1}"}
             )
         if self.ratio is not None and len(self.ratio) != 2:
             raise PydanticCustomError(
                 "blend",
-                "ratio names {count} components, wanted two: one inlet can trim one ratio",
+                "ratio wants two components and names {count}: one inlet can trim one ratio",
                 {"count": len(self.ratio)},
             )
         return self
@@ -168,13 +179,17 @@ class Blend(Equipment):
         brought = float(weights @ trim.flows)
         unmet: dict[str, str] = {}
         if abs(brought) < 1e-9 * np.abs(weights).max():
-            unmet["trim"] = "what 'trim' gets changes nothing in the ratio"
+            unmet["trim"] = (
+                "what is served there changes nothing in the ratio: serve something that holds "
+                "one of its components"
+            )
             amount = 0.0
         else:
             amount = wanted / brought
             if amount < -1e-12 * sum(float(s.total) for s in mains):
                 unmet["trim"] = (
-                    f"overfull: 'main' already holds so much that {-amount:.6g} mol/s would have to be taken out"
+                    f"overfull, 'main' already brings so much of it that {-amount:.6g} mol/s would "
+                    "have to be taken out: feed less of it, or trim with the other component"
                 )
         amount = max(amount, 0.0)
         level = min(float(s.pressure) for s in (*mains, trim))
@@ -213,6 +228,14 @@ class Splitter(Equipment):
     )
 
     shares: Shares = Field(description="share of each outlet, {recycle: 95 %, purge: rest}")
+
+    @field_validator("shares")
+    @classmethod
+    def _names(cls, shares: dict[str, Any]) -> dict[str, Any]:
+        for name in shares:
+            if trouble := name_trouble(name):
+                raise PydanticCustomError("splitter", "{trouble}", {"trouble": trouble})
+        return shares
 
     def port_list(self) -> tuple[Port, ...]:
         means = "its share of the inlet"

@@ -11,11 +11,13 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Literal
 
-from chainflow.basis.names import suggest
+from chainflow.basis.names import shorten, suggest
 from chainflow.equipment.base import Equipment, Outcome
 from chainflow.equipment.ports import Flow, Heat
+from chainflow.equipment.setting_numbers import inside, keys_inside, number_of
 from chainflow.thermo.streams import Stream
 
+_LONGEST = 200  # characters of an address
 PROPERTY_UNITS = {
     "flow": "mol/s",
     "mass_flow": "kg/s",
@@ -77,7 +79,7 @@ def short_name(name: str) -> str:
 
 def parse_setting(address: str, equipment: Mapping[str, Equipment]) -> SettingAddress:
     """Find the number among the settings that an address names."""
-    words = address.split(".")
+    words = _words(address)
     piece = _piece(words, address, equipment)
     fields = type(piece).model_fields
     if len(words) < 2 or words[1] not in fields:
@@ -88,28 +90,32 @@ def parse_setting(address: str, equipment: Mapping[str, Equipment]) -> SettingAd
     path = tuple(words[1:])
     unit = piece.setting_unit(path)
     value: object = getattr(piece, path[0])
-    for key in path[1:]:
-        if not isinstance(value, Mapping) or key not in value:
-            known = list(value) if isinstance(value, Mapping) else []
-            raise AddressError(
-                f"'{address}': there is no '{key}' in {words[0]}.{path[0]}{suggest(key, known)}"
-            )
-        value = value[key]
-    number = getattr(value, "value", value)
+    for place, key in enumerate(path[1:], start=2):
+        known = keys_inside(value)
+        if key not in known:
+            above = ".".join(words[:place])
+            raise AddressError(f"'{address}': there is no '{key}' in {above}{suggest(key, known)}")
+        value = inside(value, key)
+    number = number_of(value)
     if unit is None or isinstance(number, bool) or not isinstance(number, int | float):
-        raise AddressError(
-            f"'{address}' is {number!r} and no number that can be moved"
-            if not isinstance(number, Mapping)
-            else f"'{address}' is a map, name one entry of it: {', '.join(map(str, number))}"
-        )
+        raise AddressError(f"'{address}' {_no_number(number)}")
     return SettingAddress(words[0], path, unit)
+
+
+def _no_number(value: object) -> str:
+    known = keys_inside(value)
+    if known:
+        return f"is no number, name one entry of it: {', '.join(known)}"
+    if value is None:
+        return "is not set: give it a value to start from"
+    return f"is {value!r} and no number that can be moved"
 
 
 def parse_result(
     address: str, equipment: Mapping[str, Equipment], components: tuple[str, ...]
 ) -> ResultAddress:
     """Find the result that an address names."""
-    words = address.split(".")
+    words = _words(address)
     piece = _piece(words, address, equipment)
     if len(words) < 2:
         raise AddressError(
@@ -140,8 +146,16 @@ def parse_result(
     return ResultAddress(words[0], where, words[1], words[2], ".".join(words[3:]), unit)
 
 
+def _words(address: str) -> list[str]:
+    if len(address) > _LONGEST or not address.isprintable():
+        raise AddressError(f"{shorten(address)} is no address, wanted words joined by dots")
+    return address.split(".")
+
+
 def _piece(words: list[str], address: str, equipment: Mapping[str, Equipment]) -> Equipment:
     piece = equipment.get(words[0])
+    if piece is None and words[0] == "plant":
+        raise AddressError(f"'{address}': wanted equipment, one of its ports or a store")
     if piece is None:
         raise AddressError(
             f"'{address}': there is no equipment '{words[0]}'{suggest(words[0], equipment)}"

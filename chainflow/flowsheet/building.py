@@ -20,7 +20,7 @@ from chainflow.equipment.register import kinds
 from chainflow.flowsheet import lines as line_texts
 from chainflow.flowsheet import roles
 from chainflow.flowsheet.holds import HoldReader
-from chainflow.flowsheet.messages import complaints
+from chainflow.flowsheet.messages import bare, complaints
 from chainflow.flowsheet.network import Flowsheet, Line
 from chainflow.flowsheet.overrides import blamed, with_settings
 from chainflow.flowsheet.reading import (
@@ -37,6 +37,10 @@ from chainflow.flowsheet.reading import (
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter, known_components
 
 _TOP = ("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds")
+_REQUIRED = {
+    "equipment": "'equipment:' and below it names with their kind, as in 'town: {kind: product}'",
+    "lines": "'lines:' and below it a list, as in '- stack.hydrogen -> dry'",
+}
 _AMBIENT = 298.15  # [K]
 
 
@@ -109,7 +113,7 @@ class _Builder:
         roles.check_counts(joined, self.faults)
         lines = roles.assign(joined, contents, pieces, self.faults)
         used = self._used(pieces, lines)
-        broken = frozenset(self.all_names) - frozenset(pieces)
+        broken = self._broken(pieces)
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
         self.stop_on_faults()
@@ -134,14 +138,13 @@ class _Builder:
             if key not in _TOP:
                 self.fault(
                     "unknown-key",
-                    f"there is no entry '{shorten(key)}' at the top of a flowsheet{suggest(key, _TOP)}; it has {', '.join(_TOP)}",
+                    f"there is no entry {shorten(key)} at the top of a flowsheet{suggest(key, _TOP)}; it has {', '.join(_TOP)}",
                     place,
                 )
-        for key in ("equipment", "lines"):
+        for key, form in _REQUIRED.items():
             if key not in self.root.entries:
-                self.fault(
-                    "missing-key", f"'{key}' is missing at the top of the file", self.root.place
-                )
+                text = f"'{key}' is missing at the top of the file: write {form}"
+                self.fault("missing-key", text, self.root.place)
 
     def _text(self, key: str) -> Text | None:
         node = self.root.get(key)
@@ -300,12 +303,12 @@ class _Builder:
                     )
                     self.fault(
                         "unknown-component",
-                        f"{name}: {'.'.join(path)}: there is no component {shorten(component)}{hint}",
+                        f"{bare(name)}: {'.'.join(map(bare, path))}: there is no component {shorten(component)}{hint}",
                         self._spot(name, path),
                     )
             if not strange:
                 for path, text in piece.setting_faults(matter):
-                    self.fault("wrong-setting", f"{name}: {text}", self._spot(name, path))
+                    self.fault("wrong-setting", f"{bare(name)}: {text}", self._spot(name, path))
 
     # --- lines -------------------------------------------------------------------------------
 
@@ -318,6 +321,8 @@ class _Builder:
                 "wrong-value", "lines: wanted a list, as in '- stack.hydrogen -> dry'", node.place
             )
             return []
+        if not node.items:
+            self.fault("no-lines", "lines: there is none: write '- from -> to'", node.place)
         joined = []
         for item in node.items:
             if not isinstance(item, Text) or item.value is None:
@@ -328,12 +333,14 @@ class _Builder:
                 )
                 continue
             for joint in line_texts.cut_chain(item.value, item.place, self.faults):
-                if {joint.source, joint.target} & (set(self.all_names) - set(pieces)):
-                    continue  # that equipment has faults of its own
-                found = line_texts.join(joint, pieces, self.faults)
+                found = line_texts.join(joint, pieces, self._broken(pieces), self.faults)
                 if found is not None:
                     joined.append(found)
         return joined
+
+    def _broken(self, pieces: AnyMapping[str, Equipment]) -> frozenset[str]:
+        """Equipment that could not be made."""
+        return frozenset(self.all_names) - frozenset(pieces)
 
     def _required_ports(
         self, pieces: AnyMapping[str, Equipment], joined: list[line_texts.JoinedPorts]

@@ -69,7 +69,7 @@ class HoldReader:
             return None
         for key, (place, _) in item.entries.items():
             if key not in _KEYS:
-                text = f"there is no '{shorten(key)}'{suggest(key, _KEYS)} in a hold"
+                text = f"there is no {shorten(key)}{suggest(key, _KEYS)} in a hold"
                 self._fault("unknown-setting", f"{text}; it has {', '.join(_KEYS)}", place)
         for key in _KEYS:
             if key not in item.entries:
@@ -140,9 +140,8 @@ class HoldReader:
         if low is None or high is None:
             return None
         if not low < high:
-            self._fault(
-                "bad-hold", "within: the first value must be below the second", within.place
-            )
+            text = "within: the first value is not below the second: turn them round"
+            self._fault("bad-hold", text, within.place)
             return None
         return low, high
 

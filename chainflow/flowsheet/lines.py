@@ -10,12 +10,13 @@ from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
 
 from chainflow.basis.faults import Fault, Place
-from chainflow.basis.names import NAME_PATTERN, suggest
+from chainflow.basis.names import NAME_PATTERN, name_trouble, shorten, suggest
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.ports import Port
 
 _END = re.compile(rf"({NAME_PATTERN})(?:\.({NAME_PATTERN}))?")
 _ARROW = "->"
+_EXAMPLE = "stack.hydrogen -> dry"
 
 
 @dataclass(frozen=True, slots=True)
@@ -50,27 +51,42 @@ def cut_chain(text: str, place: Place | None, faults: list[Fault]) -> Iterator[J
     for part in text.split(_ARROW):
         match = _END.fullmatch(part.strip())
         if match is None:
-            found = part.strip() or "nothing"
-            say = f"lines: cannot read '{found}' in '{text}', wanted equipment or equipment.port, as in stack.hydrogen -> dry"
-            faults.append(Fault("bad-line", say).located(place))
+            faults.append(Fault("bad-line", f"lines: {_unreadable(part.strip(), text)}").located(place))
             return
         ends.append((match[1], match[2]))
     if len(ends) < 2:
-        faults.append(
-            Fault("bad-line", f"lines: '{text}' joins nothing, wanted 'from -> to'").located(place)
-        )
+        say = f"lines: {shorten(text)} joins nothing: wanted 'from -> to', as in {_EXAMPLE}"
+        faults.append(Fault("bad-line", say).located(place))
         return
     for number, ((source, outlet), (target, inlet)) in enumerate(zip(ends, ends[1:], strict=False)):
         # a port named in the middle of a chain is where the chain enters
         yield Joint(source, outlet if number == 0 else None, target, inlet, place)
 
 
+def _unreadable(part: str, text: str) -> str:
+    wanted = f"wanted equipment or equipment.port, as in {_EXAMPLE}"
+    if _ARROW not in text:
+        return f"{shorten(text)} has no '{_ARROW}': wanted 'from -> to', as in {_EXAMPLE}"
+    if not part:
+        return f"an end is missing at an arrow of {shorten(text, 80)}: {wanted}"
+    return f"cannot read {shorten(part)} in {shorten(text, 80)}: {wanted}"
+
+
 def join(
-    joint: Joint, equipment: Mapping[str, Equipment], faults: list[Fault]
+    joint: Joint,
+    equipment: Mapping[str, Equipment],
+    broken: frozenset[str],
+    faults: list[Fault],
 ) -> JoinedPorts | None:
-    """Find the two ports of a line; faults say what is not there."""
-    outlet = _find(joint.source, joint.outlet, False, equipment, joint.place, faults)
-    inlet = _find(joint.target, joint.inlet, True, equipment, joint.place, faults)
+    """Find the two ports of a line; faults say what is not there.
+
+    Equipment in `broken` has faults of its own, so that its ports are not known.
+    """
+    outlet = inlet = None
+    if joint.source not in broken:
+        outlet = _find(joint.source, joint.outlet, False, equipment, joint.place, faults)
+    if joint.target not in broken:
+        inlet = _find(joint.target, joint.inlet, True, equipment, joint.place, faults)
     if outlet is None or inlet is None:
         return None
     return JoinedPorts(joint.source, outlet, joint.target, inlet, joint.place)
@@ -92,6 +108,10 @@ def _find(
         return None
     found = piece.main_port(inlet=inlet) if port is None else piece.port(port, inlet=inlet)
     if found is not None:
+        own = port is None or port in [p.name for p in piece.port_list()]
+        trouble = "" if own else name_trouble(found.name)
+        if trouble:
+            faults.append(Fault("bad-name", f"lines: {name}: {trouble}").located(place))
         return found
     known = [p.name for p in piece.port_list() if p.is_inlet == inlet and not p.any_name]
     listed = ", ".join(known) or "none"
@@ -108,6 +128,9 @@ def _find(
             and port in [p.name for p in piece.port_list()]
             else ""
         )
-        say = f"lines: '{name}' ({piece.kind}) has no {side} '{port}'{suggest(port, known)}{turned}; it has {listed}"
+        say = (
+            f"lines: '{name}' ({piece.kind}) has no {side} '{port}'{suggest(port, known)}{turned}; "
+            f"its {side}s: {listed}"
+        )
     faults.append(Fault("unknown-port", say).located(place))
     return None

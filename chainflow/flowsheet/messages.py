@@ -8,7 +8,7 @@ from typing import Any
 
 from pydantic import BaseModel, ValidationError
 
-from chainflow.basis.names import shorten, suggest
+from chainflow.basis.names import LONGEST_NAME, shorten, suggest
 
 _CODES = {
     "extra_forbidden": "unknown-setting",
@@ -42,16 +42,31 @@ def complaints(problem: ValidationError, model: type[BaseModel], name: str) -> I
     for error in problem.errors(include_url=False, include_context=True):
         path = tuple(part for part in error["loc"] if not _is_note(part))
         groups.setdefault(path, []).append(error)
+    misspelt = {_meant(path, model) for path, errors in groups.items() if _unknown(errors)}
     for path, errors in groups.items():
         kind = errors[0]["type"]
-        where = ".".join(str(part) for part in path)
-        text = _sentence(errors, path, model)
-        yield Complaint(
-            _CODES.get(kind, "wrong-setting"),
-            path,
-            f"{name}: {where + ': ' if where and kind not in ('missing', 'extra_forbidden') else ''}{text}",
-            kind == "extra_forbidden",
-        )
+        if kind == "missing" and path in misspelt:
+            continue  # the unknown setting is this one
+        where = ".".join(bare(str(part)) for part in path)
+        named = f"{where}: " if where and kind not in ("missing", "extra_forbidden") else ""
+        text = f"{bare(name)}: {named}{_sentence(errors, path, model)}"
+        yield Complaint(_CODES.get(kind, "wrong-setting"), path, text, _unknown(errors))
+
+
+def bare(word: str) -> str:
+    """A word from a file, safe to print, without quotes."""
+    return shorten(word, LONGEST_NAME)[1:-1]
+
+
+def _unknown(errors: list[Any]) -> bool:
+    return bool(errors[0]["type"] == "extra_forbidden")
+
+
+def _meant(path: tuple[str | int, ...], model: type[BaseModel]) -> tuple[str | int, ...]:
+    """The path of the setting that an unknown one was probably meant to be."""
+    known = _fields(model, path[:-1])
+    hint = suggest(str(path[-1]), known)
+    return next(((*path[:-1], word) for word in known if f"'{word}'" in hint), ())
 
 
 def _is_note(part: str | int) -> bool:
@@ -67,21 +82,27 @@ def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseMo
     if kind == "missing":
         return f"'{path[-1]}' is missing, wanted {_wanted(model, path)}"
     if kind == "extra_forbidden":
-        known = _fields(model, path[:-1])
-        return f"there is no setting '{path[-1]}'{suggest(str(path[-1]), known)}; known here: {', '.join(known) or 'none'}"
+        return _no_such_setting(str(path[-1]), _fields(model, path[:-1]))
     if len(errors) > 1:
         return f"{shorten(str(given))} is not possible, wanted {' or '.join(dict.fromkeys(_expected(e) for e in errors))}"
     if kind == "literal_error":
         return f"{shorten(str(given))} is not possible{suggest(str(given), _choices(error))}, wanted {error['ctx']['expected']}"
-    if (
-        isinstance(given, Mapping)
-        and not kind.startswith(("value_error", "model"))
-        and error["msg"].startswith("Input")
-    ):
-        return f"a map is not possible here, wanted {_expected(error)}"
+    if isinstance(given, Mapping | list) and error["msg"].startswith("Input"):
+        found = "a list" if isinstance(given, list) else "a map"
+        return f"{found} is not possible here, wanted {_expected(error)}"
     if error["msg"].startswith("Input"):
         return f"{shorten(str(given))} is not possible, wanted {_expected(error)}"
     return str(error["msg"])
+
+
+def _no_such_setting(word: str, known: list[str]) -> str:
+    if word[:1].isdigit():
+        return (
+            f"{shorten(word)} stands where the name of a setting is wanted: inside braces a comma "
+            "ends a value, so write numbers with a decimal point"
+        )
+    listed = ", ".join(known) or "none"
+    return f"there is no setting {shorten(word)}{suggest(word, known)}; known here: {listed}"
 
 
 def _choices(error: Any) -> list[str]:

@@ -235,6 +235,11 @@ class _Loop:
 
     def problem(self, *, sure_only: bool) -> tuple[str, str] | None:
         """What is not fixed in this loop: (code, sentence), or None."""
+        if not self.spots:
+            return "nothing-enters", (
+                f"nothing ever enters the loop {self._loop_text()}: link a supply, "
+                "or put a store with a draw into it"
+            )
         exits = self._exits(sure_only=sure_only)
         pinned = self._store_pins()
         elements = [

@@ -134,6 +134,8 @@ class EquipmentStep(Step):
     )  # variable -> getter
     outcome: Outcome | None = None
     _used: tuple[Any, Any, Equipment] | None = None
+    _names: dict[str, list[str]] | None = None  # how the equipment calls what is read
+    _spots: dict[tuple[str, str], Any] = field(default_factory=dict)  # index of each block
 
     def inputs(
         self, values: Mapping[str, Flow]
@@ -192,6 +194,8 @@ class EquipmentStep(Step):
 
     def _labels(self) -> dict[str, list[str]]:
         """How the equipment calls each variable that is read."""
+        if self._names is not None:
+            return self._names
         labels: dict[str, list[str]] = {}
         for port, sources in self.feeds.items():
             for source in sources:
@@ -202,23 +206,35 @@ class EquipmentStep(Step):
         for path, key in self.settings:
             labels.setdefault(key, []).append(f"settings:{'.'.join(path)}")
         labels.pop("", None)
+        self._names = labels
         return labels
 
     def _summed(self, key: str, columns: Sequence[Mapping[str, np.ndarray]]) -> Blocks:
-        read = self.variables[key]
-        places = read.rows(self.matter)
         blocks: Blocks = {}
-        names = {w: port for port, w in self.outlets.items()} | {
-            w: f"drawn:{port}" for port, w in self.drawn.items()
-        }
-        for w, label in names.items():
-            rows = self.variables[w].rows(self.matter)
-            block = np.zeros((len(rows), read.size))
+        for written, label in self._outputs():
+            spot = self._spot(written, key)
+            block: np.ndarray | None = None
             for column in columns:
                 if label in column:
-                    block += column[label][np.ix_(rows, places)]
-            blocks[w, key] = block
+                    part = column[label][spot]
+                    block = part if block is None else block + part
+            if block is not None:
+                blocks[written, key] = block
         return blocks
+
+    def _outputs(self) -> list[tuple[str, str]]:
+        """Each variable that is written, with what the equipment calls it."""
+        drawn = [(w, f"drawn:{port}") for port, w in self.drawn.items()]
+        return [*((w, port) for port, w in self.outlets.items()), *drawn]
+
+    def _spot(self, written: str, read: str) -> Any:
+        """Where a block's numbers stand in the matrix over all components."""
+        spot = self._spots.get((written, read))
+        if spot is None:
+            rows = self.variables[written].rows(self.matter)
+            spot = np.ix_(rows, self.variables[read].rows(self.matter))
+            self._spots[written, read] = spot
+        return spot
 
 
 @dataclass
@@ -301,9 +317,8 @@ class ThroughStateStep(ThroughStep):
         block = slopes[self.main_outlet]
         one = np.append(outlet.flows, outlet.enthalpy) / total
         block = (block - np.outer(one, block[:-1].sum(axis=0))) / total
-        rows = self.variables[self.state].rows(self.matter)
-        columns = self.variables[self.sample_key].rows(self.matter)
-        return {self.sample_key: {(self.state, self.sample_key): block[np.ix_(rows, columns)]}}
+        spot = self._spot(self.state, self.sample_key)
+        return {self.sample_key: {(self.state, self.sample_key): block[spot]}}
 
 
 @dataclass
@@ -349,7 +364,6 @@ class ThroughAmountStep(ThroughStep):
         outcome = self.operate(values)
         factor, total = self._factor(values, outcome)
         by_factor = -factor / total * slopes[self.main_outlet][:-1].sum(axis=0)
-        columns = self.variables[self.sample_key].rows(self.matter)
         blocks: Blocks = {}
         for port, w in (*self.outlets.items(), *((p, k) for p, k in self.drawn.items())):
             inlet = self.drawn.get(port) == w
@@ -362,8 +376,7 @@ class ThroughAmountStep(ThroughStep):
                 block = np.outer(full, by_factor)
                 if label in slopes:
                     block = block + factor * slopes[label]
-            rows = self.variables[w].rows(self.matter)
-            blocks[w, self.sample_key] = block[np.ix_(rows, columns)]
+            blocks[w, self.sample_key] = block[self._spot(w, self.sample_key)]
         return blocks
 
 

@@ -116,7 +116,10 @@ def _level_faults(line: Line, level: float) -> list[Fault]:
     if math.isinf(level):
         say = f"nothing sets the pressure of '{line.start}': give a piece of equipment in this loop a pressure"
     else:
-        say = f"'{line.start}' would be at {level / 1e5:.4g} bar: the pressure drops before it are too large"
+        say = (
+            f"'{line.start}' would be at {level / 1e5:.4g} bar: make the pressure drops before it "
+            "smaller, or start at a higher pressure"
+        )
     return [Fault("pressure", say).located(line.place)]
 
 

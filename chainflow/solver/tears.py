@@ -2,7 +2,8 @@
 
 The graph's nodes are variables, with an edge from each that a step reads to each that it writes.
 Torn variables are a smallest weighted set that leaves no cycle.  Reductions that keep the optimum
-come first; what is left is a set cover with cycles added until none is missed.
+come first; small knots are then searched, large ones are a set cover with cycles added until none is
+missed.
 """
 
 from __future__ import annotations
@@ -11,6 +12,9 @@ from collections.abc import Iterable, Mapping
 
 import networkx as nx
 import numpy as np
+
+_MOST_TRIALS = 400  # of the search; larger knots go to the set cover
+_KEPT = 1e12  # weight of a node that this branch leaves whole
 
 
 def choose_tears(
@@ -28,10 +32,44 @@ def choose_tears(
     tears = [node for node in forced if node in rest]
     rest.remove_nodes_from(tears)
     tears += _reduce(rest, weights)
-    if rest.number_of_nodes():
-        tears += _cover(rest, weights)
+    for part in list(nx.strongly_connected_components(rest)):
+        if len(part) > 1:
+            knot = rest.subgraph([node for node in rest if node in part])
+            tears += _branch(knot, weights) or _cover(knot, weights)
     order = {node: i for i, node in enumerate(graph.nodes)}
     return sorted(tears, key=order.__getitem__)
+
+
+def _branch(graph: nx.DiGraph, weights: Mapping[str, float]) -> list[str]:
+    """Exact search for small knots: one node of a short cycle is torn, whichever is cheapest.
+
+    Returns nothing if the knot needs more than a few hundred trials.
+    """
+    best: list[list[str]] = [[]]
+    least = [float("inf")]
+    trials = [0]
+
+    def search(rest: nx.DiGraph, torn: list[str], kept: frozenset[str]) -> None:
+        trials[0] += 1
+        if trials[0] > _MOST_TRIALS:
+            return
+        costs = {n: _KEPT if n in kept else weights[n] for n in rest}
+        torn = torn + _reduce(rest, costs)
+        spent = sum(_KEPT if n in kept else weights[n] for n in torn)
+        if spent >= least[0]:
+            return
+        cycle = _short_cycle(rest)
+        if not cycle:
+            best[0], least[0] = torn, spent
+            return
+        open_nodes = sorted((n for n in cycle if n not in kept), key=lambda n: weights[n])
+        for number, node in enumerate(open_nodes):
+            without = rest.copy()
+            without.remove_node(node)
+            search(without, [*torn, node], kept | frozenset(open_nodes[:number]))
+
+    search(graph.copy(), [], frozenset())
+    return best[0] if trials[0] <= _MOST_TRIALS else []
 
 
 def _reduce(graph: nx.DiGraph, weights: Mapping[str, float]) -> list[str]:
@@ -74,11 +112,12 @@ def _cover(graph: nx.DiGraph, weights: Mapping[str, float]) -> list[str]:
             rows[row, [place[node] for node in cycle]] = 1.0
         found = milp(
             [weights[node] for node in nodes],
-            integrality=np.ones(len(nodes)),
+            integrality=np.ones(len(nodes), dtype=int),
             bounds=Bounds(0, 1),
             constraints=LinearConstraint(rows, lb=1.0),
             options={"mip_rel_gap": 0.0},
         )
+        assert found.x is not None, "a set cover always has an answer"
         chosen = [node for node in nodes if found.x[place[node]] > 0.5]
         missed = _missed(graph, chosen)
         if not missed:

@@ -147,15 +147,22 @@ class Matter:
         if total == 0.0:
             return 0.0
         gas = self._gas
-        if temperature >= self._one_root:
-            gas.TPX = temperature, pressure, flows
-            return total
-        gas.TPX = 1000.0, 1000.0, flows
         try:
-            gas.TP = temperature, pressure
+            if temperature >= self._one_root:
+                gas.TPX = temperature, pressure, flows
+            else:
+                self._start_thin(flows)
+                gas.TP = temperature, pressure
         except ct.CanteraError as problem:  # its cubic solver fails where two roots meet
             raise StateError(liquefaction(temperature, pressure)) from problem
         return total
+
+    def _start_thin(self, flows: Array) -> None:
+        """Bring the gas to a hot thin state; rarely Cantera's cubic solver fails at one of them."""
+        try:
+            self._gas.TPX = 1000.0, 1000.0, flows
+        except ct.CanteraError:
+            self._gas.TPX = 1500.0, 1e5, flows
 
     def gas_enthalpy(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return the enthalpy of a gas [W]."""
@@ -171,6 +178,15 @@ class Matter:
         """Return dH/dT of a gas at constant pressure [W/K]."""
         total = self._set_gas(flows, temperature, pressure)
         return total * self._gas.cp_mole / 1e3 if total else 0.0
+
+    def gas_enthalpy_and_slope(
+        self, flows: Array, temperature: float, pressure: float
+    ) -> tuple[float, float]:
+        """Return the enthalpy of a gas [W] and dH/dT at constant pressure [W/K]."""
+        total = self._set_gas(flows, temperature, pressure) / 1e3
+        if not total:
+            return 0.0, 0.0
+        return total * self._gas.enthalpy_mole, total * self._gas.cp_mole
 
     def gas_volume(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return the volume flow of a gas [m3/s]."""

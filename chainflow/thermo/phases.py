@@ -137,8 +137,8 @@ def _trial(
     """Return the phases at a temperature and the slope of their enthalpy [W/K]."""
     found = split(matter, flows, temperature, pressure, dissolved)
     if found is None:
-        state = matter.gas_state(flows, temperature, pressure)
-        return Phases(flows, matter.nothing, temperature, state.enthalpy), state.heat_capacity
+        found_gas = matter.gas_enthalpy_and_slope(flows, temperature, pressure)
+        return Phases(flows, matter.nothing, temperature, found_gas[0]), found_gas[1]
     gas, water = found
     vapour = matter.gas_partial(gas, temperature, pressure)
     names = matter.solubles(dissolved).names

@@ -149,6 +149,9 @@ class Stream:
     @property
     def flows(self) -> Array:
         """Flows of all phases together [mol/s], shape (..., components)."""
+        nothing = self.matter.nothing
+        if self.water is nothing and self.liquid is nothing:
+            return self.gas
         return self.gas + self.water + self.liquid
 
     @property
@@ -262,6 +265,8 @@ def _own(flows: Array) -> Array:
 
 
 def _plain(value: Any) -> Value:
+    if isinstance(value, float):  # a number of numpy is one too
+        return float(value)
     return float(value) if np.ndim(value) == 0 else cast(Array, value)
 
 

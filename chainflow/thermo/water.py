@@ -96,6 +96,17 @@ def _condenses(
     return shares > sum(flows)
 
 
+def _surely_dry(
+    amounts: list[float], places: tuple[int, ...], temperature: float, pressure: float
+) -> bool:
+    """Whether the gas is dry even if every other gas dissolved as readily as any can."""
+    if not _LEAST_HENRY_FROM <= temperature <= _LEAST_HENRY_TO:
+        return False
+    wet = amounts[places[0]] * pressure / saturation_pressure(temperature)
+    others = sum(amounts[i] for i in places[1:]) * pressure / _LEAST_HENRY
+    return wet + others < sum(amounts)
+
+
 def water_split(
     matter: "Matter",
     flows: "Array",
@@ -124,6 +135,8 @@ def water_split(
     return split(matter, flows, temperature, pressure, dissolved) or (flows, matter.nothing)
 
 
+_LEAST_HENRY = 1.5e7  # [Pa], below every Henry's constant between the next two temperatures
+_LEAST_HENRY_FROM, _LEAST_HENRY_TO = 260.0, 600.0  # [K]
 _NO_LIQUID = 1e-15  # share of the flow below which condensate is round-off
 
 
@@ -139,6 +152,8 @@ def split(
         return None
     amounts = flows.tolist()
     places, names = matter.solubles(dissolved)
+    if _surely_dry(amounts, places, temperature, pressure):
+        return None
     values = distribution(names, temperature, pressure)
     if not _condenses(matter, amounts, values, dissolved):
         return None
