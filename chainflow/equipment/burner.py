@@ -279,7 +279,8 @@ def _moderated(
     if amount < 0.0:
         unmet = {
             **unmet,
-            "moderator": f"overfull: the flame stays below {level - 273.15:.4g} degC without any moderator",
+            "moderator": f"overfull, the flame stays below {level - 273.15:.4g} degC without any moderator: "
+            "lower 'flue_temperature' or bring less excess",
         }
         amount = 0.0
     drawn = {"oxidiser": base + amount * follows, "moderator": amount}

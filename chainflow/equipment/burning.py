@@ -127,11 +127,16 @@ def oxidiser_needed(
     brings = -float(oxygen.weights @ oxidiser.flows)
     if brings <= 1e-9:
         return 0.0, (
-            {"oxidiser": "what is served at 'oxidiser' brings no oxygen"} if need > 0.0 else {}
+            {"oxidiser": "what is served there brings no oxygen: serve air or oxygen"}
+            if need > 0.0
+            else {}
         )
     amount = need / brings
     scale = float(sum(np.abs(oxygen.weights) @ s.flows for s in given))
     if need < -1e-9 * scale and need < 0.0:
-        text = f"overfull: the other inlets already bring {-amount:.6g} mol/s of oxidiser more than the excess allows"
+        text = (
+            f"overfull, the other inlets already bring {-amount:.6g} mol/s of oxidiser more than "
+            "the excess allows: raise 'excess' or let less oxygen in there"
+        )
         return 0.0, {"oxidiser": text}
     return max(amount, 0.0), {}

@@ -27,7 +27,12 @@ from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed, lower_feed
 from chainflow.thermo.components import WATER_MOLAR_VOLUME
 from chainflow.thermo.compression import isentropic_temperature
-from chainflow.thermo.streams import Stream
+from chainflow.thermo.streams import (
+    Stream,
+    enthalpy_slopes,
+    entropy_slopes,
+    temperature_slopes,
+)
 from chainflow.thermo.validity import StateError
 
 _ENTROPY_ROUND_OFF = 1e-12
@@ -81,7 +86,9 @@ class Expander(Equipment):
     efficiency: OpenFraction = Field(0.80, description="isentropic efficiency")
 
     def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
-        return lower_feed(inlets, self.pressure, "an expander only lets down, put a compressor instead")
+        return lower_feed(
+            inlets, self.pressure, "an expander only lets down, put a compressor instead"
+        )
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         inlet = material(feeds, "inlet")
@@ -94,7 +101,21 @@ class Expander(Equipment):
             self.pressure,
             float(ideal.temperature),
         )
-        return Outcome({"outlet": outlet, "power": work}, power=-work, results={"work_W": work})
+        return Outcome(
+            {"outlet": outlet, "power": work}, power=-work, results={"work_W": work}, inner=ideal
+        )
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        inlet = material(feeds, "inlet")
+        ideal = isentropic_slopes(inlet, outcome.inner)
+        if ideal is None:
+            return {}
+        block = np.eye(len(ideal))
+        work = self.efficiency * (block[-1] - ideal)
+        block[-1] -= work
+        return {"inlet": {"outlet": block, "power": work[None, :]}}
 
 
 class Pump(Equipment):
@@ -120,7 +141,13 @@ class Pump(Equipment):
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         inlet = material(feeds, "inlet")
-        power = self._ideal_work(inlet) / self.efficiency
+        ideal = None if _keeps_volume(inlet) else isentropic(inlet, self.pressure)
+        if ideal is None:
+            power = (
+                self._volume_work(inlet, float(inlet.water[inlet.matter.water])) / self.efficiency
+            )
+        else:
+            power = (float(ideal.enthalpy) - float(inlet.enthalpy)) / self.efficiency
         outlet = Stream.from_enthalpy(
             site.matter,
             inlet.flows,
@@ -134,29 +161,33 @@ class Pump(Equipment):
             power=power,
             results={"work_W": power},
             cautions=_gas_in_pump(inlet),
+            inner=ideal,
         )
 
-    def _ideal_work(self, inlet: Stream) -> float:
-        """Isentropic work [W]; for a liquid that keeps its volume it is volume times pressure."""
-        place = inlet.matter.water
-        if place is None or inlet.gas.any():
-            return float(isentropic(inlet, self.pressure).enthalpy) - float(inlet.enthalpy)
-        volume = WATER_MOLAR_VOLUME * float(inlet.water[place])
-        return volume * (self.pressure - float(inlet.pressure))
+    def _volume_work(self, inlet: Stream, water: float) -> float:
+        """Volume of liquid water times the rise of pressure [W]."""
+        return WATER_MOLAR_VOLUME * water * (self.pressure - float(inlet.pressure))
 
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        inlet, place = material(feeds, "inlet"), site.matter.water
-        if place is None or inlet.gas.any():
-            return {}
-        size = len(site.matter.components)
-        by_water = WATER_MOLAR_VOLUME * (self.pressure - float(inlet.pressure)) / self.efficiency
-        power = np.zeros((1, size + 1))
-        power[0, place] = by_water
-        block = np.eye(size + 1)
-        block[size, place] += by_water
-        return {"inlet": {"outlet": block, "drawn:power": power}}
+        inlet = material(feeds, "inlet")
+        block = np.eye(len(site.matter.components) + 1)
+        if outcome.inner is None:
+            power = np.zeros(len(block))
+            power[site.matter.water] = self._volume_work(inlet, 1.0) / self.efficiency
+        else:
+            ideal = isentropic_slopes(inlet, outcome.inner)
+            if ideal is None:
+                return {}
+            power = (ideal - block[-1]) / self.efficiency
+        block[-1] += power
+        return {"inlet": {"outlet": block, "drawn:power": power[None, :]}}
+
+
+def _keeps_volume(inlet: Stream) -> bool:
+    """Whether all of it is liquid water, whose volume does not change."""
+    return inlet.matter.water is not None and not inlet.gas.any() and bool(inlet.water.any())
 
 
 def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:
@@ -204,3 +235,19 @@ def isentropic(inlet: Stream, pressure: float) -> Stream:
         enthalpy = float(stream.enthalpy) + missing * level
         stream = Stream.from_enthalpy(matter, flows, enthalpy, pressure, level)
     return stream
+
+
+def isentropic_slopes(inlet: Stream, ideal: Stream) -> Array | None:
+    """Slopes of the isentropic outlet's enthalpy by ``[n_1..n_C, H]`` of the inlet.
+
+    None where pure water boils, since there temperature and flows do not fix the state.
+    """
+    by_flow, by_level = enthalpy_slopes(ideal)
+    entropy, entropy_level = entropy_slopes(ideal)
+    before, before_level = entropy_slopes(inlet)
+    to_flow, to_enthalpy = temperature_slopes(inlet)
+    if not np.isfinite([by_level, entropy_level, before_level]).all() or entropy_level == 0.0:
+        return None
+    given = np.append(before + before_level * to_flow, before_level * to_enthalpy)
+    missing = given - np.append(entropy, 0.0)
+    return np.append(by_flow, 0.0) + by_level / entropy_level * missing

@@ -140,7 +140,9 @@ class Blend(Equipment):
     def _one_ratio(self) -> Blend:
         if (self.ratio is None) == (self.module is None):
             raise PydanticCustomError(
-                "blend", "give one of 'ratio' and 'module', such as ratio: {example}", {"example": "{H2: 4, CO2: 1}"}
+                "blend",
+                "give one of 'ratio' and 'module', such as ratio: {example}",
+                {"example": "{H2: 4, CO2: 1}"},
             )
         if self.ratio is not None and len(self.ratio) != 2:
             raise PydanticCustomError(

@@ -58,7 +58,9 @@ def unit_at(annotation: Any, path: tuple[str, ...]) -> str | None:
         model = _model_in(annotation)
         if model is not None and key in model.model_fields:
             info = model.model_fields[key]
-            annotation = Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
+            annotation = (
+                Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
+            )
     return unit_of(annotation)
 
 

@@ -175,14 +175,11 @@ class _Builder:
         node = self._text("ambient")
         if node is None:
             return _AMBIENT
-        return self._quantity("ambient", node, "K", _AMBIENT)
-
-    def _quantity(self, what: str, node: Text, unit: str, default: float) -> float:
         try:
-            return parse(str(node.value), unit)
+            return parse(str(node.value), "K", gt=0.0)
         except QuantityFault as problem:
-            self.fault("wrong-quantity", f"{what}: {problem}", node.place)
-            return default
+            self.fault("wrong-quantity", f"ambient: {problem}", node.place)
+            return _AMBIENT
 
     def _components(self) -> tuple[str, ...] | None:
         node = self.root.get("components")

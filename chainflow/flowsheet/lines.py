@@ -117,6 +117,8 @@ def _find(
     listed = ", ".join(known) or "none"
     if port is None:
         say = f"lines: '{name}' ({piece.kind}) has no main {side}, name one: {listed}"
+        if not known:
+            say = f"lines: '{name}' ({piece.kind}) has no {side}, turn the line round"
         if piece.port("any", inlet=inlet) is not None:
             say += " or a name of your own"
     else:

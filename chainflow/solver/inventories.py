@@ -122,7 +122,7 @@ def _material_loops(flowsheet: Flowsheet) -> list[list[str]]:
     found = [
         sorted(c, key=order.__getitem__)
         for c in nx.strongly_connected_components(graph)
-        if len(c) > 1
+        if len(c) > 1 or any(graph.has_edge(name, name) for name in c)
     ]
     return sorted(found, key=lambda members: order[members[0]])
 
@@ -350,7 +350,9 @@ class _Loop:
         left, sizes, _ = np.linalg.svd(table, full_matrices=True)
         rank = int((sizes > _TOLERANCE * max(1.0, sizes.max(initial=0.0))).sum())
         free = left[:, rank:]
-        inside = np.array([self._column({s: 1.0})[rows] for s in dict.fromkeys(s for _, _, s in self.spots)])
+        inside = np.array(
+            [self._column({s: 1.0})[rows] for s in dict.fromkeys(s for _, _, s in self.spots)]
+        )
         held, strength, _ = np.linalg.svd(free.T @ inside.T, full_matrices=False)
         free = free @ held[:, strength > _TOLERANCE]  # combinations that what is inside has
         if free.shape[1] == 0:

@@ -15,7 +15,7 @@ from chainflow.solver.inventories import Conditional, check_inventories, find_pr
 from chainflow.solver.newton import FLOOR, Closed, Newton, short_of_power
 from chainflow.solver.order import Order, order_steps
 from chainflow.solver.pressures import Pressures, settle_pressures
-from chainflow.solver.program import Program, build_program
+from chainflow.solver.program import build_program
 from chainflow.solver.recycles import drop_free_recycles
 from chainflow.solver.solution import Balance, HoldResult, Solution
 from chainflow.thermo.streams import Stream
