@@ -280,7 +280,7 @@ def _moderated(
         unmet = {
             **unmet,
             "moderator": f"overfull, the flame stays below {level - 273.15:.4g} degC without any moderator: "
-            "lower 'flue_temperature' or bring less excess",
+            "lower 'flue_temperature'",
         }
         amount = 0.0
     drawn = {"oxidiser": base + amount * follows, "moderator": amount}

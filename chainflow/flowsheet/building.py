@@ -283,7 +283,7 @@ class _Builder:
         node = self.root.get("equipment")
         if not isinstance(node, Mapping) or name not in node.entries:
             return None
-        parts = [int(part) if part.isdigit() else part for part in path]
+        parts = [int(part) if part.isdecimal() else part for part in path]
         return place_at(node.entries[name][1], parts)
 
     def _check_components(

@@ -70,6 +70,21 @@ class Flowsheet:
     sha256: str = ""
     path: str = ""
 
+    _at: Mapping[tuple[str, ...], tuple[Line, ...]] = field(init=False, repr=False, compare=False)
+
+    def __post_init__(self) -> None:
+        """Sort the lines once by the equipment and ports they touch."""
+        at: dict[tuple[str, ...], list[Line]] = {}
+        for line in self.lines:
+            for key in (
+                ("into", line.target),
+                ("out of", line.source),
+                ("into", line.target, line.inlet),
+                ("out of", line.source, line.outlet),
+            ):
+                at.setdefault(key, []).append(line)
+        object.__setattr__(self, "_at", {key: tuple(lines) for key, lines in at.items()})
+
     @property
     def matter(self) -> Matter:
         """The matter of the flowsheet's components."""
@@ -77,19 +92,19 @@ class Flowsheet:
 
     def into(self, name: str) -> tuple[Line, ...]:
         """Lines that arrive at a piece of equipment, in file order."""
-        return tuple(line for line in self.lines if line.target == name)
+        return self._at.get(("into", name), ())
 
     def out_of(self, name: str) -> tuple[Line, ...]:
         """Lines that leave a piece of equipment, in file order."""
-        return tuple(line for line in self.lines if line.source == name)
+        return self._at.get(("out of", name), ())
 
     def line_from(self, name: str, outlet: str) -> tuple[Line, ...]:
         """Lines at one outlet."""
-        return tuple(line for line in self.lines if (line.source, line.outlet) == (name, outlet))
+        return self._at.get(("out of", name, outlet), ())
 
     def line_into(self, name: str, inlet: str) -> tuple[Line, ...]:
         """Lines at one inlet."""
-        return tuple(line for line in self.lines if (line.target, line.inlet) == (name, inlet))
+        return self._at.get(("into", name, inlet), ())
 
     def calls_through(self, name: str) -> bool:
         """Whether a call passes through this equipment (its main inlet then asks)."""

@@ -12,6 +12,7 @@ from chainflow.basis.faults import ChainflowError, FlowsheetFault, Place, UsageF
 from chainflow.basis.names import shorten, suggest
 from chainflow.flowsheet.tree import Mapping, Node, Sequence, Text, Tree
 
+_DEEPEST = 8  # words behind the name of the equipment
 _SET = Place(0, 0)  # where a value from the command line stands
 
 
@@ -22,6 +23,8 @@ def with_settings(tree: Tree, overrides: AnyMapping[str, str]) -> Tree:
     known = pieces.entries if isinstance(pieces, Mapping) else {}
     for address, text in overrides.items():
         name, *path = address.split(".")
+        if len(path) > _DEEPEST:
+            raise UsageFault(f"--set {shorten(address)}: no setting lies so deep, name one as in a file")
         if name not in known:
             found = f"there is no equipment {shorten(name)}{suggest(name, known)}"
             raise UsageFault(f"--set {shorten(address)}: {found}")
@@ -34,7 +37,7 @@ def _put(node: Node, path: tuple[str, ...], value: Node) -> Node:
     if not path:
         return value
     key, below = path[0], path[1:]
-    if isinstance(node, Sequence) and key.isdigit() and int(key) < len(node.items):
+    if isinstance(node, Sequence) and key.isdecimal() and int(key) < len(node.items):
         items = list(node.items)
         items[int(key)] = _put(items[int(key)], below, value)
         return Sequence(tuple(items), node.place)

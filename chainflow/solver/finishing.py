@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import heapq
 from collections.abc import Mapping
 
 import networkx as nx
@@ -129,17 +130,23 @@ def flow_order(flowsheet: Flowsheet) -> list[str]:
     graph.add_nodes_from(flowsheet.equipment)
     graph.add_edges_from((line.source, line.target) for line in flowsheet.lines)
     place = {name: i for i, name in enumerate(flowsheet.equipment)}
-    waiting = {name: {p for p in graph.predecessors(name) if p != name} for name in graph}
+    waiting = {name: sum(p != name for p in graph.predecessors(name)) for name in graph}
+    free = [place[name] for name, count in waiting.items() if count == 0]
+    touched: list[int] = []  # entered loops that wait for the rest of their inlets
+    unseen = list(place.values())
+    for heap in (free, touched, unseen):
+        heapq.heapify(heap)
+    names, done = list(flowsheet.equipment), set[int]()
     ordered: list[str] = []
-    while waiting:
-        free = [name for name, before in waiting.items() if not before]
-        touched = [name for name in waiting if any(p in ordered for p in graph.predecessors(name))]
-        name = min(free or touched or list(waiting), key=place.__getitem__)
-        ordered.append(name)
-        del waiting[name]
-        for follower in graph.successors(name):
-            if follower in waiting:
-                waiting[follower].discard(name)
+    while len(ordered) < len(names):
+        number = heapq.heappop(free or touched or unseen)
+        if number in done:
+            continue
+        done.add(number)
+        ordered.append(names[number])
+        for follower in graph.successors(names[number]):
+            waiting[follower] -= follower != names[number]
+            heapq.heappush(free if waiting[follower] == 0 else touched, place[follower])
     return ordered
 
 

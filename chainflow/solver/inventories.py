@@ -312,11 +312,12 @@ class _Loop:
         for element in elements:
             if any(self._holds(s, element) for pin in pins for s in pin):
                 continue
-            graph = self.presence.graph
-            ways_out = [s for s in exits if self._holds(s[2], element)]
-            free = set(ways_out)
-            for spot in ways_out:
-                free |= nx.ancestors(graph, spot)
+            free = {spot for spot in exits if self._holds(spot[2], element)}
+            waiting = list(free)
+            while waiting:  # back from the ways out
+                before = set(self.presence.graph.predecessors(waiting.pop())) - free
+                free |= before
+                waiting += before
             stuck = [s for s in self.spots if self._holds(s[2], element) and s not in free]
             if stuck:
                 return "no-way-out", self._no_way_out(element, stuck)

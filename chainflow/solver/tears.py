@@ -8,12 +8,14 @@ missed.
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping
+from collections.abc import Callable, Collection, Iterable, Mapping
 
 import networkx as nx
 import numpy as np
 
 _MOST_TRIALS = 400  # of the search; larger knots go to the set cover
+_TIE = 0.1  # weights closer than this count as equal where a knot is made smaller
+_LARGEST_EXCHANGE = 100  # nodes of a loop up to which ties are looked at
 _KEPT = 1e12  # weight of a node that this branch leaves whole
 
 
@@ -25,10 +27,11 @@ def choose_tears(
     Parameters
     ----------
     graph : the graph of information.
-    weights : weight of each node, ties already broken.
+    weights : weight of each node; parts below 0.1 only break ties.
     forced : nodes that are torn in any case.
     """
     rest = graph.copy()
+    forced = tuple(forced)
     tears = [node for node in forced if node in rest]
     rest.remove_nodes_from(tears)
     tears += _reduce(rest, weights)
@@ -36,8 +39,47 @@ def choose_tears(
         if len(part) > 1:
             knot = rest.subgraph([node for node in rest if node in part])
             tears += _branch(knot, weights) or _cover(knot, weights)
+    tears = _preferred(graph, tears, weights, frozenset(forced))
     order = {node: i for i, node in enumerate(graph.nodes)}
     return sorted(tears, key=order.__getitem__)
+
+
+def _preferred(
+    graph: nx.DiGraph, tears: list[str], weights: Mapping[str, float], forced: frozenset[str]
+) -> list[str]:
+    """Exchange torn nodes one by one for lighter ones that cut the same cycles."""
+    torn = dict.fromkeys(tears)
+    for node in sorted(tears, key=lambda n: weights[n]):
+        if node in forced:
+            continue
+        others = torn.keys() - {node}
+        ahead = _reached(graph.successors, node, others)
+        members = ahead & _reached(graph.predecessors, node, others)
+        if len(members) > _LARGEST_EXCHANGE:
+            continue
+        knot = graph.subgraph(members).copy()
+        for better in sorted(knot, key=lambda n: weights[n]):
+            if weights[better] >= weights[node]:
+                break
+            rest = knot.subgraph(n for n in knot if n != better)
+            if nx.is_directed_acyclic_graph(rest):
+                del torn[node]
+                torn[better] = None
+                break
+    return list(torn)
+
+
+def _reached(
+    step: Callable[[str], Iterable[str]], start: str, blocked: Collection[str]
+) -> set[str]:
+    """Nodes that can be reached without entering a blocked one."""
+    seen, waiting = {start}, [start]
+    while waiting:
+        for node in step(waiting.pop()):
+            if node not in seen and node not in blocked:
+                seen.add(node)
+                waiting.append(node)
+    return seen
 
 
 def _branch(graph: nx.DiGraph, weights: Mapping[str, float]) -> list[str]:
@@ -87,10 +129,10 @@ def _reduce(graph: nx.DiGraph, weights: Mapping[str, float]) -> list[str]:
             graph.remove_node(node)
         elif not before or not after:
             graph.remove_node(node)
-        elif len(before) == 1 and weights[before[0]] <= weights[node]:
+        elif len(before) == 1 and weights[before[0]] <= weights[node] + _TIE:
             graph.remove_node(node)
             graph.add_edges_from((before[0], target) for target in after)
-        elif len(after) == 1 and weights[after[0]] <= weights[node]:
+        elif len(after) == 1 and weights[after[0]] <= weights[node] + _TIE:
             graph.remove_node(node)
             graph.add_edges_from((source, after[0]) for source in before)
         else:
