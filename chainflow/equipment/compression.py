@@ -149,7 +149,8 @@ class Compressor(Equipment):
             ends = stage.discharge, stage.cooled_to
             if site.detail or "heat" in site.outlets:
                 hot = Stream.gaseous(matter, stage.gas, stage.discharge, stage.high)
-                needs += cooling_duties(purpose, hot, ends[1], stage.high, stage.cooling, site)
+                cold = Stream.at(matter, stage.gas, ends[1], stage.high)
+                needs += cooling_duties(purpose, hot, cold, site)
             else:
                 needs.append(Duty.between(purpose, stage.cooling, *ends))
         return needs

@@ -37,25 +37,24 @@ _SAME = 1e-9  # relative: a mean that is heat over entropy and no limit
 def cooling_duties(
     purpose: str,
     inlet: Stream,
-    level: float,
-    pressure: float,
-    heat: float,
+    outlet: Stream,
     site: Site,
     dissolved: tuple[str, ...] = DISSOLVED,
 ) -> list[Duty]:
-    """Duties that bring `inlet` to the temperature `level` at `pressure`, adding up to `heat`."""
-    start = float(inlet.temperature)
+    """Duties that bring `inlet` to the state of `outlet`, the same flows at another temperature."""
+    start, level, pressure = (
+        float(number) for number in (inlet.temperature, outlet.temperature, outlet.pressure)
+    )
+    heat = float(outlet.enthalpy) - float(inlet.enthalpy)
     linked = bool(site.inlets & {"heat", "power"}) or "heat" in site.outlets
     if not (site.detail or linked) or heat == 0.0 or float(inlet.total) == 0.0:
         return [Duty.between(purpose, heat, start, level)]
     matter, flows = inlet.matter, inlet.flows
     first = inlet.at_pressure(pressure, dissolved)
-    after = float(inlet.enthalpy) + heat
-    last = Stream.from_enthalpy(matter, flows, after, pressure, level, dissolved)
     between = _cuts(first, level, dissolved) if site.detail else []
     if min(start, level) < site.ambient < max(start, level):  # below it heat is another thing
         between = sorted({*between, site.ambient}, reverse=start > level)
-    path = [first, *(Stream.at(matter, flows, t, pressure, dissolved) for t in between), last]
+    path = [first, *(Stream.at(matter, flows, t, pressure, dissolved) for t in between), outlet]
     levels = [start, *between, level]
     return [
         _duty(purpose, path[i], path[i + 1], levels[i], levels[i + 1]) for i in range(len(path) - 1)

@@ -75,10 +75,7 @@ class _Exchanger(Equipment):
                 pressure,
                 float(inlet.temperature),
             )
-        level = float(outlet.temperature)
-        needs = cooling_duties(
-            "cooling" if self.cools else "heating", inlet, level, pressure, heat, site
-        )
+        needs = cooling_duties("cooling" if self.cools else "heating", inlet, outlet, site)
         duties, electric, drawn, given = self.settle(needs, site)
         caution = wrong_way(self.kind, heat, float(inlet.total), cools=self.cools)
         return Outcome(

@@ -109,3 +109,9 @@ def arriving(feeds: Feeds, port: str) -> tuple[Flow, ...]:
     if flow is None:
         return ()
     return flow if isinstance(flow, tuple) else (flow,)
+
+
+def as_number(flow: Flow) -> float:
+    """A flow that is one number: power [W], light [W] or an amount [mol/s]."""
+    assert not isinstance(flow, Stream | Heat)
+    return float(flow)

@@ -141,11 +141,10 @@ class ReactorBase(Equipment):
         level, pressure = float(product.temperature), float(product.pressure)
         if float(feed.total) == 0.0:
             return [Duty("reaction", 0.0, level, level, level)]
-        heated = float(Stream.at(site.matter, feed.flows, level, pressure).enthalpy)
-        preheat = heated - float(feed.enthalpy)
-        purpose = "bring feed to temperature"
-        needs = cooling_duties(purpose, feed, level, pressure, preheat, site)
-        return [*needs, Duty("reaction", float(product.enthalpy) - heated, level, level, level)]
+        heated = Stream.at(site.matter, feed.flows, level, pressure)
+        reaction = float(product.enthalpy) - float(heated.enthalpy)
+        needs = cooling_duties("bring feed to temperature", feed, heated, site)
+        return [*needs, Duty("reaction", reaction, level, level, level)]
 
     def _made_at(self, flows: Array, level: float, pressure: float, matter: Matter) -> Product:
         """The product at a temperature."""

@@ -6,6 +6,7 @@ SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat and work [W].
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
+from dataclasses import replace
 from typing import Any, ClassVar
 
 import numpy as np
@@ -226,9 +227,8 @@ class Condenser(Equipment):
         gas = Stream.gaseous(matter, gas_flows, level, pressure)
         liquid = _aqueous(matter, water_flows, level, pressure)
         heat = float(gas.enthalpy) + float(liquid.enthalpy) - float(inlet.enthalpy)
-        needs = cooling_duties(
-            "cooling and condensing", inlet, level, pressure, heat, site, self._gases
-        )
+        together = replace(gas, water=liquid.water, enthalpy=gas.enthalpy + liquid.enthalpy)
+        needs = cooling_duties("cooling and condensing", inlet, together, site, self._gases)
         duties, electric, drawn, given = self.settle(needs, site)
         return Outcome(
             {"gas": gas, "liquid": liquid, **given},

@@ -7,6 +7,7 @@ Faults are collected over the whole file and raised together.
 from __future__ import annotations
 
 from collections.abc import Mapping as AnyMapping
+from dataclasses import replace
 from pathlib import Path
 from typing import Any
 
@@ -77,11 +78,31 @@ def build_flowsheet(
     overrides = dict(overrides or {})
     knobs = {name: text for name, text in overrides.items() if "." not in name}
     settings = {name: text for name, text in overrides.items() if "." in name}
-    tree = substitute_knobs(with_settings(tree, settings), knobs)
+    changed = tree
     try:
-        return _Builder(tree, path, knobs).flowsheet()
+        changed = _overridden(tree, knobs, settings)
+        return _Builder(changed, path, knobs).flowsheet()
     except FlowsheetFault as problem:
-        raise blamed(problem, tree, knobs) from None
+        fine = bool(overrides) and _is_fine(tree)
+        raise blamed(problem, changed, knobs, file_is_fine=fine) from None
+
+
+def _overridden(tree: Tree, knobs: AnyMapping[str, str], settings: AnyMapping[str, str]) -> Tree:
+    """The tree with its knobs written out and other values at addresses; these may be knobs."""
+    written = substitute_knobs(tree, knobs)
+    changed = with_settings(written, settings)
+    if any("$" in text for text in settings.values()):
+        changed = substitute_knobs(changed, knobs)
+    return replace(changed, remarks=written.remarks)
+
+
+def _is_fine(tree: Tree) -> bool:
+    """Whether the file as it stands has no fault."""
+    try:
+        _Builder(substitute_knobs(tree), "", {}).flowsheet()
+    except FlowsheetFault:
+        return False
+    return True
 
 
 class _Builder:

@@ -51,7 +51,9 @@ def cut_chain(text: str, place: Place | None, faults: list[Fault]) -> Iterator[J
     for part in text.split(_ARROW):
         match = _END.fullmatch(part.strip())
         if match is None:
-            faults.append(Fault("bad-line", f"lines: {_unreadable(part.strip(), text)}").located(place))
+            faults.append(
+                Fault("bad-line", f"lines: {_unreadable(part.strip(), text)}").located(place)
+            )
             return
         ends.append((match[1], match[2]))
     if len(ends) < 2:

@@ -24,7 +24,9 @@ def with_settings(tree: Tree, overrides: AnyMapping[str, str]) -> Tree:
     for address, text in overrides.items():
         name, *path = address.split(".")
         if len(path) > _DEEPEST:
-            raise UsageFault(f"--set {shorten(address)}: no setting lies so deep, name one as in a file")
+            raise UsageFault(
+                f"--set {shorten(address)}: no setting lies so deep, name one as in a file"
+            )
         if name not in known:
             found = f"there is no equipment {shorten(name)}{suggest(name, known)}"
             raise UsageFault(f"--set {shorten(address)}: {found}")
@@ -48,7 +50,11 @@ def _put(node: Node, path: tuple[str, ...], value: Node) -> Node:
 
 
 def blamed(
-    problem: FlowsheetFault, tree: Tree, knobs: AnyMapping[str, str]
+    problem: FlowsheetFault,
+    tree: Tree,
+    knobs: AnyMapping[str, str],
+    *,
+    file_is_fine: bool = False,
 ) -> ChainflowError:
     """The faults of a file, or wrong usage if a value from the command line brought them."""
     mine = [fault.text for fault in problem.faults if fault.line == 0]
@@ -58,6 +64,8 @@ def blamed(
     by_knob = [(places[f.place], f.text) for f in problem.faults if f.place in places]
     if by_knob:
         return UsageFault("; ".join(f"--set {knob}: {text}" for knob, text in by_knob))
+    if file_is_fine:
+        return UsageFault("; ".join(f"--set: {fault.text}" for fault in problem.faults))
     return problem
 
 

@@ -28,7 +28,7 @@ def damped(
     if variable.form == "matter":
         assert isinstance(old, Stream)
         return _damped_stream(variable, old, change, matter)
-    numbers = variable.pack(old, matter)
+    numbers = variable.pack(old)
     wanted = numbers + change
     if hold is not None:
         span = hold.high - hold.low

@@ -58,11 +58,11 @@ def find_presence(flowsheet: Flowsheet) -> Presence:
             if following not in graph:
                 queue.append(following)
             graph.add_edge(spot, following)
-    species: dict[tuple[str, str], set[str]] = {}
+    met: dict[tuple[str, str], set[str]] = {}
     for name, outlet, component in graph.nodes:
-        species.setdefault((name, outlet), set()).add(component)
+        met.setdefault((name, outlet), set()).add(component)
     ordered = {
-        key: tuple(c for c in flowsheet.components if c in found) for key, found in species.items()
+        key: tuple(c for c in flowsheet.components if c in found) for key, found in met.items()
     }
     return Presence(ordered, graph)
 
@@ -337,7 +337,8 @@ class _Loop:
         carried = f" (as {', '.join(species)})" if species != [element] else ""
         return (
             f"{element}{carried}{starts} and has no way out of the loop {self._loop_text()}: "
-            "open a purge (a splitter share that leaves the plant), or take it out of what is bought"
+            "open a purge (a splitter share that leaves the plant), "
+            "or take it out of what is bought"
         )
 
     def _loop_text(self) -> str:
@@ -360,8 +361,8 @@ class _Loop:
             return None
         combination = _simple(free, elements)
         text = (
-            f"nothing fixes how much of {combination} is in the loop {self._loop_text()}: it neither leaves nor is pinned; "
-            "put a store with a draw into the loop, or open a purge"
+            f"nothing fixes how much of {combination} is in the loop {self._loop_text()}: "
+            "it neither leaves nor is pinned; put a store with a draw into the loop, or open a purge"
         )
         return "nothing-pins", text
 
@@ -376,7 +377,7 @@ def _simple(free: np.ndarray, elements: list[str]) -> str:
     scaled = vector / smallest
     if scaled[np.argmax(np.abs(scaled))] < 0:
         scaled = -scaled
-    words = []
+    words: list[str] = []
     for number, element in sorted(zip(scaled, elements, strict=True), key=lambda pair: -pair[0]):
         if abs(number) < 1e-6:
             continue

@@ -85,16 +85,16 @@ class Newton:
 
     def solve(self) -> Closed:
         """Close all loops; NotSolved says why not."""
-        self.constants = self._run(self.order.before, {})
+        self.constants = self.run(self.order.before, {})
         if not self.order.tears:
             self.passes = 1
-            return Closed(self._run(self.order.after, self.constants), 1)
-        closed = self._iterate(self._warm(self._start()))
-        closed.values = self._run(self.order.after, closed.values)
+            return Closed(self.run(self.order.after, self.constants), 1)
+        closed = self._iterate(self.warm(self.start()))
+        closed.values = self.run(self.order.after, closed.values)
         closed.passes = self.passes
         return closed
 
-    def _run(self, steps: list[Step], values: Values) -> Values:
+    def run(self, steps: list[Step], values: Values) -> Values:
         values = dict(values)
         for step in steps:
             try:
@@ -105,7 +105,7 @@ class Newton:
                 ) from problem
         return values
 
-    def _pass(self, torn: Values, *, blocks: Blocks | None = None) -> _State:
+    def evaluate(self, torn: Values, *, blocks: Blocks | None = None) -> _State:
         """Evaluate the loop once, with derivatives if `blocks` is given to be filled."""
         self.passes += 1
         values: Values = {**self.constants, **torn}
@@ -131,11 +131,11 @@ class Newton:
         return _State(torn, values, back, residual)
 
     def _pack(self, key: str, value: Flow) -> np.ndarray:
-        return self.variables[key].pack(value, self.matter)
+        return self.variables[key].pack(value)
 
     # --- the start ---------------------------------------------------------------------------
 
-    def _start(self) -> Values:
+    def start(self) -> Values:
         settings = self.program.settings
         torn: Values = {}
         for key in self.order.tears:
@@ -165,11 +165,11 @@ class Newton:
         ]
         return float(sum(float(power) for power in known))  # type: ignore[arg-type] # power is a number
 
-    def _warm(self, torn: Values) -> Values:
+    def warm(self, torn: Values) -> Values:
         """Pass on until no further torn variable wakes up."""
         awake = -1
         for _ in range(_WARM_PASSES):
-            state = self._pass(torn)
+            state = self.evaluate(torn)
             torn = {key: self._substituted(key, state) for key in torn}
             now = sum(int((self._pack(key, value) > 0.0).sum()) for key, value in torn.items())
             if now <= awake:
@@ -194,8 +194,8 @@ class Newton:
         settled = False
         while self.passes < _MOST_PASSES:
             blocks: Blocks = {}
-            state = self._pass(torn, blocks=blocks)
-            scales = self._scales(state)
+            state = self.evaluate(torn, blocks=blocks)
+            scales = self.scales(state)
             change, aside = self._step(state, blocks, scales)
             error = _largest(change, scales)
             residual = _largest(self._shown_residual(state, aside), scales)
@@ -222,7 +222,7 @@ class Newton:
     def _finish(
         self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]
     ) -> Closed:
-        last = self._pass(self._moved(state.torn, change))
+        last = self.evaluate(self._moved(state.torn, change))
         return Closed({**last.values, **last.torn}, error=error, aside=aside)
 
     def _moved(self, torn: Values, change: np.ndarray) -> Values:
@@ -329,7 +329,7 @@ class Newton:
 
     # --- sizes -------------------------------------------------------------------------------
 
-    def _scales(self, state: _State) -> np.ndarray:
+    def scales(self, state: _State) -> np.ndarray:
         """What counts as large, for every torn number."""
         plant = self._plant_sizes(state.values)
         scales = np.ones(self.size)
@@ -416,7 +416,7 @@ class Newton:
                 continue
             if short + 1 < _SHORT_PASSES:
                 return short + 1
-            at_zero = self._pass({**state.torn, key: 0.0})
+            at_zero = self.evaluate({**state.torn, key: 0.0})
             missing = -float(at_zero.back[key])  # type: ignore[arg-type] # a number
             raise short_of_power(key.split(".")[0], missing)
         return 0
@@ -428,8 +428,8 @@ class Newton:
         for _ in range(_MIXED_PASSES):
             if self.passes >= _MOST_PASSES:
                 break
-            state = self._pass(torn)
-            scales = self._scales(state)
+            state = self.evaluate(torn)
+            scales = self.scales(state)
             points.append(np.concatenate([self._pack(key, torn[key]) for key in self.order.tears]))
             images.append(points[-1] + state.residual)
             points, images = points[-_DEPTH - 1 :], images[-_DEPTH - 1 :]

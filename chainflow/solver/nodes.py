@@ -16,7 +16,7 @@ import numpy as np
 
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.junctions import joined
-from chainflow.equipment.ports import ANY_NAME, Flow, Heat
+from chainflow.equipment.ports import ANY_NAME, Flow, Heat, as_number
 from chainflow.solver.variables import ENTHALPY_SCALE, Variable
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
@@ -36,6 +36,7 @@ class Source:
     amount: Source | None = None  # how much of it, for a called line that is looked at as a whole
 
     def of(self, values: Mapping[str, Flow]) -> Flow:
+        """The flow or amount itself, among the values of a pass."""
         flow = values[self.key] if self.constant is None else self.constant
         if self.amount is None:
             return flow
@@ -66,7 +67,7 @@ class Step:
         """Compute what is written."""
         raise NotImplementedError
 
-    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:  # noqa: ARG002 - for subclasses
         """Blocks by variable read, for those whose derivatives are known."""
         return {}
 
@@ -91,8 +92,8 @@ class Step:
         """One-sided differences by one variable; none for matter that does not flow."""
         variable = self.variables[key]
         value = values[key]
-        base = variable.pack(value, self.matter)
-        start = {w: self.variables[w].pack(written[w], self.matter) for w in self.writes}
+        base = variable.pack(value)
+        start = {w: self.variables[w].pack(written[w]) for w in self.writes}
         found = {(w, key): np.zeros((len(start[w]), variable.size)) for w in self.writes}
         if isinstance(value, Stream) and float(value.total) == 0.0:
             return found
@@ -103,9 +104,7 @@ class Step:
             changed[column] += step
             moved = self.run({**values, key: variable.unpack(changed, self.matter, guess)})
             for w in self.writes:
-                found[w, key][:, column] = (
-                    self.variables[w].pack(moved[w], self.matter) - start[w]
-                ) / step
+                found[w, key][:, column] = (self.variables[w].pack(moved[w]) - start[w]) / step
         return found
 
 
@@ -158,6 +157,7 @@ class EquipmentStep(Step):
         return feeds, asked, piece
 
     def run(self, values: Mapping[str, Flow]) -> Values:
+        """Run the equipment; its outcome is kept for the derivatives."""
         assert self.site is not None
         feeds, asked, piece = self.inputs(values)
         self.runs += 1
@@ -172,12 +172,15 @@ class EquipmentStep(Step):
         return written
 
     def memory(self) -> Any:
+        """The last outcome and what it came from."""
         return self.outcome, self._used
 
     def remember(self, kept: Any) -> None:
+        """Put back an outcome and what it came from."""
         self.outcome, self._used = kept
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        """The slopes that the equipment knows, at its last run."""
         assert self.site is not None and self._used is not None and self.outcome is not None
         if self.results:
             return {}
@@ -244,6 +247,7 @@ class StoreStateStep(EquipmentStep):
     state: str = ""  # the variable written
 
     def run(self, values: Mapping[str, Flow]) -> Values:
+        """Ask the server what one mol of it is."""
         assert self.site is not None
         feeds, asked, piece = self.inputs(values)
         self.runs += 1
@@ -252,8 +256,7 @@ class StoreStateStep(EquipmentStep):
         return {self.state: sample[ANY_NAME]}
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
-        assert self.site is not None and self._used is not None
-        feeds, asked, piece = self._used
+        """The slopes of a store's state, which it calls an outlet."""
         self.outlets = {"state": self.state}
         self.outcome = Outcome({})
         return super().closed_forms(values)
@@ -304,11 +307,13 @@ class ThroughStateStep(ThroughStep):
     state: str = ""
 
     def run(self, values: Mapping[str, Flow]) -> Values:
+        """The main outlet, brought to one mol."""
         outlet = self.outlet(self.operate(values))
         total = float(outlet.total)
         return {self.state: outlet.scaled(1.0 / total) if total > 0.0 else outlet}
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+        """Slopes of one mol of the outlet by one mol of the inlet."""
         slopes = self.sample_slopes() if self.sample_key else None
         if slopes is None:
             return {}
@@ -335,6 +340,7 @@ class ThroughAmountStep(ThroughStep):
         return (wanted / total if total > 0.0 else 0.0), total
 
     def run(self, values: Mapping[str, Flow]) -> Values:
+        """Outlets and amounts for what is asked at the main outlet."""
         outcome = self.operate(values)
         factor, _ = self._factor(values, outcome)
         written: Values = {
@@ -352,7 +358,7 @@ class ThroughAmountStep(ThroughStep):
         if key and isinstance(wanted, float) and wanted != 0.0:
             written = self.run(values)
             known[key] = {
-                (w, key): self.variables[w].pack(written[w], self.matter)[:, None] / wanted
+                (w, key): self.variables[w].pack(written[w])[:, None] / wanted
                 for w in self.writes
             }
         slopes = self.sample_slopes() if self.sample_key else None
@@ -398,6 +404,7 @@ class ResultStep(Step):
     key: str = ""
 
     def run(self, values: Mapping[str, Flow]) -> Values:
+        """Read the number; what is not to be had (nothing flows) counts as zero."""
         assert self.get is not None
         flows = [source.of(values) for source in self.sources]
         streams = [flow for flow in flows if isinstance(flow, Stream)]
@@ -410,10 +417,9 @@ def _times(flow: Flow, factor: float) -> Flow:
     return flow.scaled(factor) if isinstance(flow, Stream | Heat) else flow * factor
 
 
-def _added(amounts: list[Flow]) -> Any:
-    if any(isinstance(a, Heat) for a in amounts):
-        return Heat.total([a for a in amounts if isinstance(a, Heat)])
-    return sum(float(a) for a in amounts)  # type: ignore[arg-type] # amounts are numbers or heat
+def _added(amounts: list[Flow]) -> Heat | float:
+    heats = [a for a in amounts if isinstance(a, Heat)]
+    return Heat.total(heats) if heats else sum(as_number(a) for a in amounts)
 
 
 __all__ = [

@@ -33,7 +33,7 @@ def settle_pressures(flowsheet: Flowsheet) -> Pressures:
         if not changed:
             break
     else:
-        raise FlowsheetFault(_falling(flowsheet, pressures, changed))
+        raise FlowsheetFault(_falling(flowsheet, changed))
     faults = list(_faults(flowsheet, pressures))
     if faults:
         raise FlowsheetFault(faults)
@@ -68,13 +68,13 @@ def _one_round(flowsheet: Flowsheet, pressures: Pressures) -> list[str]:
     return changed
 
 
-def _falling(flowsheet: Flowsheet, pressures: Pressures, changed: list[str]) -> Fault:
+def _falling(flowsheet: Flowsheet, changed: list[str]) -> Fault:
     names = list(dict.fromkeys(changed))
     loop = _loop_among(flowsheet, names)
     place = next((line.place for line in flowsheet.lines if line.source == loop[0]), None)
     say = (
-        f"the loop {' -> '.join([*loop, loop[0]])} loses pressure on every round and nothing raises it again: "
-        "put a compressor or pump into it, or set its pressure drops to zero"
+        f"the loop {' -> '.join([*loop, loop[0]])} loses pressure on every round "
+        "and nothing raises it again: put a compressor or pump into it, or set its pressure drops to zero"
     )
     return Fault("loop-loses-pressure", say).located(place)
 
@@ -114,7 +114,10 @@ def _level_faults(line: Line, level: float) -> list[Fault]:
     if math.isfinite(level) and level > _VACUUM:
         return []
     if math.isinf(level):
-        say = f"nothing sets the pressure of '{line.start}': give a piece of equipment in this loop a pressure"
+        say = (
+            f"nothing sets the pressure of '{line.start}': "
+            "give a piece of equipment in this loop a pressure"
+        )
     else:
         say = (
             f"'{line.start}' would be at {level / 1e5:.4g} bar: make the pressure drops before it "

@@ -16,7 +16,7 @@ from chainflow.flowsheet.network import Flowsheet
 
 @dataclass(frozen=True, slots=True)
 class SolvedStream:
-    """What leaves one outlet port; one entry for each outlet that is linked or carries something."""
+    """What leaves one outlet port: an entry for each outlet that is linked or carries something."""
 
     tag: int  # in flow order, from 1
     source: str

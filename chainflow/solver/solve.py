@@ -37,7 +37,7 @@ class Structure:
 
 def inspect(flowsheet: Flowsheet) -> Structure:
     """The structure of a flowsheet; raises like `solve_flowsheet` for what its structure shows."""
-    prepared = _Prepared(flowsheet)
+    prepared = Prepared(flowsheet)
     return Structure(
         flowsheet,
         prepared.pressures,
@@ -57,11 +57,11 @@ def solve_flowsheet(flowsheet: Flowsheet) -> Solution:
     NotSolved
         If it has no steady state, is short of something, or its loops do not close.
     """
-    return _Prepared(flowsheet).solve()
+    return Prepared(flowsheet).solve()
 
 
-class _Prepared:
-    """Structure of one topology, ready to be solved."""
+class Prepared:
+    """Structure of one topology, ready to be solved; build it once and solve it often."""
 
     def __init__(self, flowsheet: Flowsheet) -> None:
         self.flowsheet = flowsheet
@@ -73,7 +73,7 @@ class _Prepared:
         self.remarks = tuple(drop_free_recycles(flowsheet, self.pressures))
 
     def solve(self) -> Solution:
-        closed = self._close({})
+        closed = self.close()
         self._judge_holds(closed)
         finish = Finish(self.program, closed.values)
         self._judge(finish, closed)
@@ -92,7 +92,9 @@ class _Prepared:
             closed.error,
         )
 
-    def _close(self, fixed: Mapping[str, float]) -> Closed:
+    def close(self, fixed: Mapping[str, float] | None = None) -> Closed:
+        """Close the loops, with some held settings fixed instead of solved."""
+        fixed = fixed or {}
         return Newton(self.program, self.order, dict(fixed)).solve()
 
     # --- holds -------------------------------------------------------------------------------
@@ -130,7 +132,7 @@ class _Prepared:
         there = hold.high if abs(here - hold.low) < abs(here - hold.high) else hold.low
         reached = {here: _number(closed, result)}
         try:
-            reached[there] = _number(self._close({setting: there}), result)
+            reached[there] = _number(self.close({setting: there}), result)
         except NotSolved:
             reached[there] = float("nan")
         ends = " and ".join(

@@ -2,8 +2,8 @@
 
 The graph's nodes are variables, with an edge from each that a step reads to each that it writes.
 Torn variables are a smallest weighted set that leaves no cycle.  Reductions that keep the optimum
-come first; small knots are then searched, large ones are a set cover with cycles added until none is
-missed.
+come first; small knots are then searched, large ones are a set cover with cycles added until none
+is missed.
 """
 
 from __future__ import annotations

@@ -31,6 +31,7 @@ class Variable:
 
     @property
     def size(self) -> int:
+        """How many numbers it is."""
         if self.form == "matter":
             assert self.places is not None
             return len(self.places) + 1
@@ -43,7 +44,7 @@ class Variable:
         assert self.places is not None
         return np.append(self.places, len(matter.components))
 
-    def pack(self, value: Flow, matter: Matter) -> np.ndarray:
+    def pack(self, value: Flow) -> np.ndarray:
         """The value as this variable's numbers."""
         if isinstance(value, Stream):
             flows = value.flows if self.places is None else value.flows[self.places]

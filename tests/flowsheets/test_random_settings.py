@@ -40,7 +40,7 @@ def knobs_of(name):
 
 
 def attempt(name, knobs):
-    """Solve once; return 'solved' or the code of the refusal, and check what must hold of either."""
+    """Solve once, check what must hold, and return 'solved' or the code of the refusal."""
     try:
         solution = solve_flowsheet(read_text(text_of(name), knobs))
     except NotSolved as problem:

@@ -23,7 +23,12 @@ SHARED_LINES = """
 
 
 def methane_loop(
-    *, purge: str = "1 %", inert: str = "0.1 %", recycle: bool = True, holds: str = "", extra: str = ""
+    *,
+    purge: str = "1 %",
+    inert: str = "0.1 %",
+    recycle: bool = True,
+    holds: str = "",
+    extra: str = "",
 ) -> str:
     """Hydrogen and bought CO2 to methane, unconverted gas back, a purge."""
     return f"""
@@ -86,9 +91,27 @@ def chain_of_loops(count: int, *, joined: bool = False) -> str:
         ]
         before = f"s{i}.on"
     if joined:
-        pieces += ["  outer: {kind: splitter, shares: {back: 30 %, on: rest}}", "  first: {kind: mixer}", "  lift: {kind: compressor, pressure: 10 bar, stages: 1}"]
+        pieces += [
+            "  outer: {kind: splitter, shares: {back: 30 %, on: rest}}",
+            "  first: {kind: mixer}",
+            "  lift: {kind: compressor, pressure: 10 bar, stages: 1}",
+        ]
         lines[0] = "  - start -> first"
-        lines += ["  - first -> m0", f"  - {before} -> outer", "  - outer.back -> lift -> first", "  - outer.on -> end"]
+        lines += [
+            "  - first -> m0",
+            f"  - {before} -> outer",
+            "  - outer.back -> lift -> first",
+            "  - outer.on -> end",
+        ]
     else:
         lines.append(f"  - {before} -> end")
-    return "\n".join(["title: Loops (invented)", "components: [H2, CO2, H2O]", "equipment:", *pieces, "lines:", *lines])
+    return "\n".join(
+        [
+            "title: Loops (invented)",
+            "components: [H2, CO2, H2O]",
+            "equipment:",
+            *pieces,
+            "lines:",
+            *lines,
+        ]
+    )

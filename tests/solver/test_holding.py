@@ -18,14 +18,24 @@ def hold(**words: str) -> str:
 
 
 def test_simple_hold_is_met_in_few_passes() -> None:
-    text = methane_loop(holds=hold(hold="reactor.product.fraction.CH4", at="0.30", by="reactor.temperature", low="250 degC", high="450 degC"))
+    text = methane_loop(
+        holds=hold(
+            hold="reactor.product.fraction.CH4",
+            at="0.30",
+            by="reactor.temperature",
+            low="250 degC",
+            high="450 degC",
+        )
+    )
     solution = solve_flowsheet(read_text(text))
     assert solution.passes <= 15
     assert value_at(solution, "reactor.product.fraction.CH4") == pytest.approx(0.30, rel=1e-10)
     (result,) = solution.holds
     assert result.unit == "1" and result.by_unit == "K"
     # the answer with the setting written into the file is the same
-    again = solve_flowsheet(read_text(methane_loop(), {"reactor.temperature": f"{result.value!r} K"}))
+    again = solve_flowsheet(
+        read_text(methane_loop(), {"reactor.temperature": f"{result.value!r} K"})
+    )
     assert value_at(again, "reactor.product.fraction.CH4") == pytest.approx(0.30, rel=1e-9)
 
 
@@ -45,7 +55,11 @@ def test_every_kind_of_address_can_be_held(address: str, at: str) -> None:
     if address == "stack.hydrogen":
         address = "stack.hydrogen_kg_s"
     words = {"hold": address, "at": at, "by": "field.efficiency", "low": "1 %", "high": "60 %"}
-    text = hydrogen_plant(equipment="  town: {kind: product}\n", lines="\n  - stack.hydrogen -> dry -> town\n", holds=hold(**words))
+    text = hydrogen_plant(
+        equipment="  town: {kind: product}\n",
+        lines="\n  - stack.hydrogen -> dry -> town\n",
+        holds=hold(**words),
+    )
     solution = solve_flowsheet(read_text(text))
     (result,) = solution.holds
     assert result.reached == pytest.approx(result.wanted, rel=1e-9)
@@ -60,7 +74,15 @@ def test_two_holds_are_met_together() -> None:
 
 
 def test_hold_out_of_reach_names_both_ends() -> None:
-    text = methane_loop(holds=hold(hold="reactor.product.fraction.CH4", at="0.60", by="reactor.temperature", low="250 degC", high="450 degC"))
+    text = methane_loop(
+        holds=hold(
+            hold="reactor.product.fraction.CH4",
+            at="0.60",
+            by="reactor.temperature",
+            low="250 degC",
+            high="450 degC",
+        )
+    )
     with pytest.raises(NotSolved, match="out of reach") as problem:
         solve_flowsheet(read_text(text))
     assert problem.value.code == "hold-out-of-reach"
@@ -70,14 +92,30 @@ def test_hold_out_of_reach_names_both_ends() -> None:
 
 
 def test_hold_that_nothing_feels_is_unable() -> None:
-    text = methane_loop(holds=hold(hold="field.power.rate", at="1 MW", by="reactor.temperature", low="250 degC", high="450 degC"))
+    text = methane_loop(
+        holds=hold(
+            hold="field.power.rate",
+            at="1 MW",
+            by="reactor.temperature",
+            low="250 degC",
+            high="450 degC",
+        )
+    )
     with pytest.raises(NotSolved, match="changes nothing there") as problem:
         solve_flowsheet(read_text(text))
     assert problem.value.code == "hold-unable"
 
 
 def test_hold_without_flow_is_unable_and_not_out_of_reach() -> None:
-    text = methane_loop(holds=hold(hold="reactor.product.fraction.CH4", at="0.30", by="reactor.temperature", low="250 degC", high="450 degC"))
+    text = methane_loop(
+        holds=hold(
+            hold="reactor.product.fraction.CH4",
+            at="0.30",
+            by="reactor.temperature",
+            low="250 degC",
+            high="450 degC",
+        )
+    )
     with pytest.raises(NotSolved) as problem:
         solve_flowsheet(read_text(text, {"sun.irradiance": "0 W/m2"}))
     assert problem.value.code == "hold-unable"
@@ -91,7 +129,15 @@ def test_net_of_a_store_can_be_held_at_zero() -> None:
   town:  {kind: product}
 """
     lines = "\n  - stack.hydrogen -> dry -> store.returns\n  - user -> blend.main\n  - store.draw -> blend.trim\n  - blend -> town\n"
-    words = {"hold": "store.net", "at": "0 mol/s", "by": "user.flow", "low": "0.1 mol/s", "high": "20 mol/s"}
-    solution = solve_flowsheet(read_text(hydrogen_plant(equipment=equipment, lines=lines, holds=hold(**words))))
+    words = {
+        "hold": "store.net",
+        "at": "0 mol/s",
+        "by": "user.flow",
+        "low": "0.1 mol/s",
+        "high": "20 mol/s",
+    }
+    solution = solve_flowsheet(
+        read_text(hydrogen_plant(equipment=equipment, lines=lines, holds=hold(**words)))
+    )
     assert solution.passes <= 10
     assert value_at(solution, "store.net") == pytest.approx(0.0, abs=1e-8)

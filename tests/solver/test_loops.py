@@ -153,7 +153,9 @@ def test_shortage_line_serves_what_is_missing() -> None:
     """With a grid behind it everybody is served, and the grid gives what the others lack."""
     equipment = "  grid: {kind: grid}\n  press: {kind: compressor, pressure: 300 bar, stages: 3}\n  town: {kind: product}\n"
     lines = "\n  - stack.hydrogen -> dry -> press -> town\n  - board.press -> press.power\n  - grid.power -> board.shortage\n"
-    text = hydrogen_plant(equipment=equipment, lines=lines).replace("- board.rest -> stack.power", "- board.stack -> stack.power")
+    text = hydrogen_plant(equipment=equipment, lines=lines).replace(
+        "- board.rest -> stack.power", "- board.stack -> stack.power"
+    )
     solution = solved(text, stack__hydrogen="200 kg/h")
     bought = value_at(solution, "grid.power.rate")
     asked = sum(value_at(solution, f"board.{name}.rate") for name in ("feed", "stack", "press"))
@@ -161,7 +163,9 @@ def test_shortage_line_serves_what_is_missing() -> None:
 
 
 def test_surplus_with_nowhere_to_go_is_not_solved() -> None:
-    text = hydrogen_plant(equipment="  town: {kind: product}\n", lines="\n  - stack.hydrogen -> dry -> town\n")
+    text = hydrogen_plant(
+        equipment="  town: {kind: product}\n", lines="\n  - stack.hydrogen -> dry -> town\n"
+    )
     text = text.replace("- board.rest -> stack.power", "- board.stack -> stack.power")
     with pytest.raises(NotSolved, match="nowhere to go") as problem:
         solved(text, stack__hydrogen="1 kg/h")

@@ -45,12 +45,16 @@ def weighted_graphs(draw: st.DrawFn) -> tuple[nx.DiGraph, dict[str, float]]:
 
 @given(weighted_graphs())
 @settings(max_examples=150, deadline=None)
-def test_tears_cut_every_cycle_with_the_least_weight(case: tuple[nx.DiGraph, dict[str, float]]) -> None:
+def test_tears_cut_every_cycle_with_the_least_weight(
+    case: tuple[nx.DiGraph, dict[str, float]],
+) -> None:
     graph, weights = case
     tears = choose_tears(graph, weights)
     assert is_cut(graph, tears)
     # the parts of 1e-6 only break ties
-    assert sum(weights[t] for t in tears) == pytest.approx(smallest_weight(graph, weights), abs=1e-4)
+    assert sum(weights[t] for t in tears) == pytest.approx(
+        smallest_weight(graph, weights), abs=1e-4
+    )
 
 
 def test_forced_tears_are_taken_and_not_doubled() -> None:
@@ -80,4 +84,6 @@ def test_search_and_set_cover_agree(case: tuple[nx.DiGraph, dict[str, float]]) -
         patch.setattr(tears_module, "_MOST_TRIALS", 0)  # the search gives up at once
         covered = choose_tears(graph, weights)
     searched = choose_tears(graph, weights)
-    assert sum(weights[t] for t in covered) == pytest.approx(sum(weights[t] for t in searched), abs=1e-4)
+    assert sum(weights[t] for t in covered) == pytest.approx(
+        sum(weights[t] for t in searched), abs=1e-4
+    )

@@ -1,0 +1,101 @@
+"""How fast, as ratios taken in one run; run with ``pytest -m speed -s``.
+
+Times are CPU times of this process (wall times for whole commands); each ratio is the median of
+several, so that a busy machine moves both of its sides.
+"""
+
+from __future__ import annotations
+
+import os
+import statistics
+import subprocess
+import sys
+import time
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+import pytest
+
+from chainflow.flowsheet.building import read_flowsheet, read_text
+from chainflow.solver.newton import Newton
+from chainflow.solver.solve import Prepared
+from tests.solver.small_plants import chain_of_loops, methane_loop
+from tests.speed.recording import recorded, replay, seconds
+
+pytestmark = pytest.mark.speed
+FLOWSHEETS = Path(__file__).parents[2] / "flowsheets"
+RUNS = 7
+
+
+def say(text: str) -> None:
+    """Print past pytest's capture only with -s; the number is the result of these tests."""
+    print(f"\n    {text}", flush=True)
+
+
+def test_solver_time_over_raw_cantera_calls(benchmark: Any) -> None:
+    """Aim 4, not above 6: closing the loops against the same Cantera calls alone."""
+    flowsheet = read_flowsheet(FLOWSHEETS / "methane-cycle.yaml")
+    Prepared(flowsheet).close()  # warm caches
+    prepared = Prepared(flowsheet)
+    with recorded(flowsheet.matter) as log:
+        prepared.close()
+    ratios = []
+    for _ in range(RUNS):
+        prepared = Prepared(flowsheet)
+        ratios.append(seconds(prepared.close) / replay(log))
+    ratio = statistics.median(ratios)
+    say(f"solver over raw Cantera calls: {ratio:.2f} ({len(log)} calls)")
+    benchmark.extra_info["ratio"] = ratio
+    benchmark.pedantic(lambda: Prepared(flowsheet).close(), rounds=3)
+    assert ratio < 6.0
+
+
+def substitution_passes(newton: Newton, most: int = 5000) -> int:
+    """Passes of plain substitution until the torn variables change by less than 1e-10."""
+    newton.constants = newton.run(newton.order.before, {})
+    torn = newton.warm(newton.start())
+    for _ in range(most):
+        state = newton.evaluate(torn)
+        scales = newton.scales(state)
+        if float(np.abs(state.residual / np.maximum(scales, 1e-300)).max()) < 1e-10:
+            return newton.passes
+        torn = {key: state.back[key] for key in torn}
+    return most
+
+
+@pytest.mark.parametrize("purge", ["5 %", "1 %"])
+def test_passes_against_successive_substitution(purge: str) -> None:
+    flowsheet = read_text(methane_loop(purge=purge))
+    prepared = Prepared(flowsheet)
+    newton = prepared.close().passes
+    plain = substitution_passes(Newton(prepared.program, prepared.order))
+    say(f"passes at a purge of {purge}: Newton {newton}, substitution {plain}")
+    assert newton * 5 < plain
+
+
+def test_cost_per_piece_of_equipment_is_flat_from_10_to_1000() -> None:
+    costs = {}
+    for loops in (3, 25, 250):
+        flowsheet = read_text(chain_of_loops(loops, joined=True))
+        prepared = Prepared(flowsheet)
+        costs[len(flowsheet.equipment)] = min(seconds(prepared.close) for _ in range(3)) / len(flowsheet.equipment)
+    few = next(iter(costs.values()))
+    say("cost per piece, relative to the smallest plant: " + ", ".join(f"{n} pieces {c / few:.2f}" for n, c in costs.items()))
+    assert max(costs.values()) < 3.0 * few
+
+
+def wall(command: list[str]) -> float:
+    start = time.perf_counter()
+    subprocess.run(command, check=True, stdout=subprocess.DEVNULL, env={**os.environ, "PYTHONDONTWRITEBYTECODE": ""})
+    return time.perf_counter() - start
+
+
+def test_wall_time_of_solve_over_bare_imports() -> None:
+    """Aim 1.5: the whole command against importing what it stands on."""
+    solve = [sys.executable, "-m", "chainflow", "solve", str(FLOWSHEETS / "methane-cycle.yaml")]
+    bare = [sys.executable, "-c", "import cantera, networkx, numpy, scipy.sparse"]
+    wall(solve)
+    ratios = [wall(solve) / wall(bare) for _ in range(RUNS)]
+    say(f"chainflow solve over bare imports: {statistics.median(ratios):.2f}")
+    assert statistics.median(ratios) < 4.0
