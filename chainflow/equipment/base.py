@@ -20,7 +20,7 @@ from chainflow.basis.faults import NotSolved
 from chainflow.equipment.cases import case_count, matter_of, one_case, stack_outcomes
 from chainflow.equipment.heat_needs import Duty, settle
 from chainflow.equipment.outcome import Caution, Outcome, Site
-from chainflow.equipment.ports import Feeds, Flow, Heat, Port, Role, arriving
+from chainflow.equipment.ports import Feeds, Flow, Heat, Port, Role, arriving, as_number
 from chainflow.equipment.setting_numbers import inside, number_of, replaced, unit_at
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
@@ -110,7 +110,7 @@ class Equipment(BaseModel):
     # --- physics -----------------------------------------------------------------------------
 
     def sample(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> dict[str, Flow]:
-        """What one mol of a serving outlet is (a stream of 1 mol/s), or the level of served heat."""
+        """One mol of a serving outlet (a stream of 1 mol/s), or the level of the heat served."""
         raise TypeError(f"{self.kind} serves nothing")
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
@@ -136,7 +136,7 @@ class Equipment(BaseModel):
         return {}
 
     def settled(self, outcome: Outcome) -> Equipment:
-        """This equipment with its discrete choices (number of stages) fixed as they now are."""
+        """The equipment with its discrete choices (number of stages) fixed as they now are."""
         return self
 
     def run(
@@ -217,7 +217,7 @@ def material(feeds: Feeds, port: str) -> Stream:
 
 def rate(feeds: Feeds, port: str) -> float:
     """The sum [W] of the power, light or heat that arrives at an inlet."""
-    return sum(f.rate if isinstance(f, Heat) else f for f in arriving(feeds, port))  # type: ignore[misc] # streams do not arrive here
+    return sum(f.rate if isinstance(f, Heat) else as_number(f) for f in arriving(feeds, port))
 
 
 __all__ = [

@@ -61,11 +61,13 @@ class Burner(Combustion):
     )
     formulas: ClassVar[tuple[str, ...]] = (
         "O2 of all inlets = (1 + excess) * O2 needed by all combustibles",
-        "equilibrium: minimum of the Gibbs energy of the flowsheet's components at the temperature that closes energy",
+        "equilibrium: minimum of the Gibbs energy of the flowsheet's components "
+        "at the temperature that closes energy",
         "flame_temperature: the same with radicals (O, H, OH, NO, ...)",
     )
     sources: ClassVar[tuple[str, ...]] = (
-        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) as shipped with Cantera",
+        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) "
+        "as shipped with Cantera",
     )
 
     model: Literal["equilibrium", "complete"] = Field(
@@ -92,7 +94,8 @@ class Burner(Combustion):
         if self.model == "complete" and self.requench is not None:
             raise PydanticCustomError(
                 "burner",
-                "'requench' goes with model: equilibrium, complete combustion leaves nothing to requench",
+                "'requench' goes with model: equilibrium, "
+                "complete combustion leaves nothing to requench",
                 {},
             )
         return self
@@ -111,7 +114,7 @@ class Burner(Combustion):
             return set()
         place = matter.index[species]
         shared = ((matter.formula > 0) & (matter.formula[:, [place]] > 0)).any(axis=0)
-        return {name for name, there in zip(matter.components, shared, strict=True) if there}
+        return {matter.components[i] for i in np.flatnonzero(shared)}
 
     def destinations(
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
@@ -186,12 +189,18 @@ class Burner(Combustion):
         results["flame_temperature_K"] = hottest
         cautions = []
         if hottest > 1900.0:
-            text = f"flame at {hottest:.0f} K: above 1900 K refractories and nitrogen oxides need care; more moderator or excess cools it"
+            text = (
+                f"flame at {hottest:.0f} K: above 1900 K refractories and nitrogen oxides need care; "
+                "more moderator or excess cools it"
+            )
             cautions.append(Caution("hot-flame", text))
         left = float(flue.lhv)
         burnt_lhv = float(fire.flows @ site.matter.lhv)
         if burnt_lhv > 0.0 and left > 1e-3 * burnt_lhv:
-            text = f"{100 * left / burnt_lhv:.2g} % of the fuel's LHV is left in the flue as CO and H2 and stays there when it is cooled; 'requench' says down to where it burns out"
+            text = (
+                f"{100 * left / burnt_lhv:.2g} % of the fuel's LHV is left in the flue as CO and H2 "
+                "and stays there when it is cooled; 'requench' says down to where it burns out"
+            )
             cautions.append(Caution("frozen-flue", text))
         return results, tuple(cautions)
 
@@ -277,12 +286,7 @@ def _moderated(
             burner, flows, enthalpy, per_mol, per_enthalpy, level, pressure, matter
         )
     if amount < 0.0:
-        unmet = {
-            **unmet,
-            "moderator": f"overfull, the flame stays below {level - 273.15:.4g} degC without any moderator: "
-            "lower 'flue_temperature'",
-        }
-        amount = 0.0
+        unmet, amount = {**unmet, "moderator": _stays_below(level)}, 0.0
     drawn = {"oxidiser": base + amount * follows, "moderator": amount}
     entering = [given, oxidiser.scaled(drawn["oxidiser"]), moderator.scaled(amount)]
     if amount == 0.0:
@@ -291,6 +295,13 @@ def _moderated(
     total = float(sum(s.enthalpy for s in entering))
     out, _ = burner.flue_of(all_flows, level, pressure, matter)
     return _Fire(all_flows, total, pressure, out, level, dict(drawn), unmet)
+
+
+def _stays_below(level: float) -> str:
+    return (
+        f"overfull, the flame stays below {level - 273.15:.4g} degC without any moderator: "
+        "lower 'flue_temperature'"
+    )
 
 
 def _moderator_needed(
@@ -327,14 +338,14 @@ def _slopes(
     matter = site.matter
     size = len(matter.components)
     weights = np.append(Oxygen.at(burner.excess, matter).weights, 0.0)
-    block = _flue_block(burner, fire, flue, matter)
+    block = _flue_block(burner, fire, matter)
     served = {port: material(feeds, port) for port in fire.drawn}
     one = {port: np.append(s.flows, s.enthalpy) for port, s in served.items()}
     rows = [weights]
     if "moderator" in fire.drawn:
         if fire.drawn["moderator"] <= 0.0:
             return {}
-        out, by_feed = burner.flue_of(fire.flows, fire.adiabatic, fire.pressure, matter)
+        _, by_feed = burner.flue_of(fire.flows, fire.adiabatic, fire.pressure, matter)
         partial = enthalpy_slopes(flue)[0]
         rows.append(np.append(partial @ by_feed, -1.0))  # d(flue enthalpy at T - what enters)
     called = list(fire.drawn)
@@ -352,8 +363,8 @@ def _slopes(
     return slopes
 
 
-def _flue_block(burner: Burner, fire: _Fire, flue: Stream, matter: Matter) -> Array:
-    """d flue / d all that enters, energy closed."""
+def _flue_block(burner: Burner, fire: _Fire, matter: Matter) -> Array:
+    """Slopes of the flue by all that enters, energy closed."""
     size = len(matter.components)
     block = np.zeros((size + 1, size + 1))
     block[size, size] = 1.0

@@ -19,6 +19,7 @@ from chainflow.thermo.streams import Stream
 
 
 def matter_of(feeds: Feeds) -> Matter:
+    """The matter of the streams that arrive; that of no component if none does."""
     for port in feeds:
         for flow in arriving(feeds, port):
             if isinstance(flow, Stream):
@@ -27,6 +28,7 @@ def matter_of(feeds: Feeds) -> Matter:
 
 
 def case_count(*groups: Mapping[str, Any]) -> int | None:
+    """How many cases a batch holds; None if it is one case alone."""
     for group in groups:
         for port in group:
             for flow in arriving(group, port):
@@ -38,6 +40,8 @@ def case_count(*groups: Mapping[str, Any]) -> int | None:
 
 
 def one_case(group: Mapping[str, Any], i: int) -> dict[str, Any]:
+    """One case of a batch; what is the same in all cases stays as it is."""
+
     def one(flow: Any) -> Any:
         if isinstance(flow, Stream) and flow.gas.ndim == 2:
             return flow.case(i)
@@ -51,27 +55,29 @@ def one_case(group: Mapping[str, Any], i: int) -> dict[str, Any]:
     }
 
 
+def _column(numbers: list[Any]) -> Any:
+    """One number a case, in the place of a single number: hence without a type."""
+    return np.array(numbers)
+
+
 def _stack(values: list[Any]) -> Any:
     if isinstance(values[0], Stream):
         return Stream.stack(values)
     if isinstance(values[0], Heat):
-        return Heat(
-            *(
-                np.array([getattr(v, name) for v in values])
-                for name in ("rate", "start", "end", "mean")
-            )
-        )  # type: ignore[arg-type] # a batch of heats holds arrays
-    return np.array(values)
+        names = ("rate", "start", "end", "mean")
+        return Heat(*(_column([getattr(v, name) for v in values]) for name in names))
+    return _column(values)
 
 
 def stack_outcomes(singles: list[Outcome]) -> Outcome:
+    """The outcomes of single cases as one, each of its numbers an array over the cases."""
     first = singles[0]
     return Outcome(
         outlets={k: _stack([s.outlets[k] for s in singles]) for k in first.outlets},
         drawn={k: _stack([s.drawn[k] for s in singles]) for k in first.drawn},
         duties=_stack_duties(singles),
-        power=np.array([s.power for s in singles]),  # type: ignore[arg-type] # one number a case
-        results={k: np.array([s.results.get(k, np.nan) for s in singles]) for k in first.results},  # type: ignore[misc] # one number a case
+        power=_column([s.power for s in singles]),
+        results={k: _column([s.results.get(k, np.nan) for s in singles]) for k in first.results},
         cautions=tuple(dict.fromkeys(c for s in singles for c in s.cautions)),
         idealisations=tuple(dict.fromkeys(c for s in singles for c in s.idealisations)),
         unmet={k: v for s in singles for k, v in s.unmet.items()},
@@ -87,6 +93,6 @@ def _stack_duties(singles: list[Outcome]) -> tuple[Duty, ...]:
             [d for d in s.duties if (d.purpose, d.met_by) == (purpose, met_by)] for s in singles
         ]
         some = next(d[0] for d in mine if d)
-        heat = np.array([sum(d.heat for d in group) for group in mine])
-        stacked.append(replace(some, heat=heat))  # type: ignore[arg-type] # one number a case
+        heat = _column([sum(d.heat for d in group) for group in mine])
+        stacked.append(replace(some, heat=heat))
     return tuple(stacked)

@@ -169,10 +169,16 @@ class Compressor(Equipment):
     def _cautions(self, inlet: Stream, hottest: float) -> tuple[Caution, ...]:
         cautions = []
         if float(inlet.water.sum()) > 1e-9 * float(inlet.total):
-            text = f"{float(inlet.water.sum()):.4g} mol/s of liquid water arrive at the inlet: put a condenser before it; it is knocked out here"
+            text = (
+                f"{float(inlet.water.sum()):.4g} mol/s of liquid water arrive at the inlet: "
+                "put a condenser before it; it is knocked out here"
+            )
             cautions.append(Caution("liquid-at-compressor", text))
         if hottest > self.discharge_limit + 0.01:
-            text = f"a stage discharges at {hottest - 273.15:.4g} degC, above the limit of {self.discharge_limit - 273.15:.4g} degC: use more stages"
+            text = (
+                f"a stage discharges at {hottest - 273.15:.4g} degC, "
+                f"above the limit of {self.discharge_limit - 273.15:.4g} degC: use more stages"
+            )
             cautions.append(Caution("discharge-above-limit", text))
         return tuple(cautions)
 
@@ -255,7 +261,7 @@ class Compressor(Equipment):
         return {"inlet": self._train_slopes(inlet, site.matter, outcome.inner)}
 
     def _train_slopes(self, inlet: Stream, matter: Matter, train: list[Stage]) -> dict[str, Array]:
-        """Chain rule along the stages; every block has a column for each inlet flow and enthalpy."""
+        """Chain rule along the stages; a column for each inlet flow, the last for enthalpy."""
         size = len(inlet.gas)
         by_flow, by_enthalpy = temperature_slopes(inlet)
         level = np.append(by_flow, by_enthalpy)  # d suction temperature
@@ -272,16 +278,11 @@ class Compressor(Equipment):
             work = work + stage_work
             if stage.cooled_to is None:
                 out_enthalpy = enthalpy + stage_work
-                _, _, cp = matter.gas_partial(stage.gas, stage.discharge, stage.high)
-                h_out = matter.gas_partial(stage.gas, stage.discharge, stage.high)[0]
+                h_out, _, cp = matter.gas_partial(stage.gas, stage.discharge, stage.high)
                 level = (out_enthalpy - h_out @ gas) / cp
                 continue
             if stage.condensate.any():
-                dry = stage.gas - stage.condensate
-                share = water_split_slopes(
-                    matter, stage.gas, dry, stage.condensate, stage.cooled_to, stage.high, ("CO2",)
-                )
-                wet = share @ gas
+                wet = _condensing(matter, stage, stage.cooled_to) @ gas
                 partial = matter.water_partial(stage.cooled_to, stage.high, _WET).enthalpy
                 condensate += np.vstack([wet, partial @ wet])
                 gas = gas - wet
@@ -293,6 +294,14 @@ class Compressor(Equipment):
             "condensate": condensate,
             "drawn:power": (work / self.drive_efficiency)[None, :],
         }
+
+
+def _condensing(matter: Matter, stage: Stage, level: float) -> Array:
+    """Slopes of the condensate of a stage by its gas, at the temperature it is cooled to."""
+    dry = stage.gas - stage.condensate
+    return water_split_slopes(
+        matter, stage.gas, dry, stage.condensate, level, stage.high, ("CO2",)
+    )
 
 
 def _gas_temperature(

@@ -123,8 +123,8 @@ def add_heat_slopes(
 ) -> dict[str, dict[str, Array]]:
     """Add what the linked `heat` or `power` port carries to the slopes; {} if it is not known.
 
-    `outlet_row` holds the slopes of the enthalpy that leaves by ``[n_1..n_C, H]`` of the inlet, `at`
-    the temperature [K] and pressure [Pa] of the outlet.
+    `outlet_row` holds the slopes of the enthalpy that leaves by ``[n_1..n_C, H]`` of the inlet,
+    `at` the temperature [K] and pressure [Pa] of the outlet.
     """
     if not (site.inlets & {"heat", "power"} or "heat" in site.outlets):
         return {"inlet": blocks}

@@ -10,7 +10,7 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Mapping
 from functools import cache
 from dataclasses import replace
-from typing import Any, ClassVar, Literal
+from typing import Annotated, Any, ClassVar, Literal
 
 import numpy as np
 from pydantic import Field, model_validator
@@ -18,7 +18,7 @@ from pydantic_core import PydanticCustomError
 
 from chainflow.basis.constants import FARADAY
 from chainflow.basis.quantities import Flow as FlowSetting
-from chainflow.basis.quantities import OpenFraction, Pressure, SpecificEnergy, Temperature, Voltage
+from chainflow.basis.quantities import OpenFraction, Pressure, Temperature, measured
 from chainflow.equipment.base import (
     HEAT_PORTS,
     Array,
@@ -33,7 +33,7 @@ from chainflow.equipment.base import (
     rate,
 )
 from chainflow.equipment.boundary import amounts
-from chainflow.equipment.ports import Feeds
+from chainflow.equipment.ports import Feeds, as_number
 from chainflow.equipment.pressures import lower_feed
 from chainflow.thermo.components import Matter
 from chainflow.thermo.electrochemistry import reversible_voltage
@@ -91,16 +91,19 @@ class Electrolyser(Equipment):
     )
     sources: ClassVar[tuple[str, ...]] = (
         "Faraday constant: CODATA 2018",
-        "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387 (IAPWS-95 auxiliary equation)",
+        "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387 "
+        "(IAPWS-95 auxiliary equation)",
     )
 
     model: Literal["specific-energy", "voltage"] = Field(
         "specific-energy", description="how power becomes hydrogen"
     )
-    energy_use: SpecificEnergy | None = Field(
+    energy_use: Annotated[float, measured("J/kg", gt=0)] | None = Field(
         None, description="direct current at the stack per mass of hydrogen"
     )
-    voltage: Voltage | None = Field(None, description="voltage of one cell (model: voltage)")
+    voltage: Annotated[float, measured("V", gt=0)] | None = Field(
+        None, description="voltage of one cell (model: voltage)"
+    )
     rectifier: OpenFraction = Field(1.0, description="direct current per power drawn")
     temperature: Temperature = Field(description="stack temperature; both gases leave at it")
     pressure: Pressure = Field(description="stack pressure, absolute")
@@ -148,8 +151,8 @@ class Electrolyser(Equipment):
             yield (
                 ("temperature",),
                 (
-                    f"at {self.temperature - 273.15:.4g} degC and {self.pressure / 1e5:.4g} bar the water boils, "
-                    "wanted liquid water: lower the temperature or raise the pressure"
+                    f"at {self.temperature - 273.15:.4g} degC and {self.pressure / 1e5:.4g} bar "
+                    "the water boils, wanted liquid water: lower the temperature or raise the pressure"
                 ),
             )
 
@@ -274,7 +277,10 @@ class Electrolyser(Equipment):
         cell, limit = self.energy_per_mol / (2.0 * FARADAY), reversible_voltage(self.temperature)
         if cell >= limit:
             return ()
-        text = f"{cell:.4g} V per cell is below the reversible voltage {limit:.4g} V: no stack can do that"
+        text = (
+            f"{cell:.4g} V per cell is below the reversible voltage {limit:.4g} V: "
+            "no stack can do that"
+        )
         return (Caution("below-reversible-voltage", text),)
 
     def slopes(
@@ -286,7 +292,7 @@ class Electrolyser(Equipment):
         if self.hydrogen is not None or outcome.power == 0.0:
             return known
         power = outcome.power
-        made = {"drawn:water": np.array([[float(outcome.drawn["water"]) / power]])}  # type: ignore[arg-type] # a number
+        made = {"drawn:water": np.array([[as_number(outcome.drawn["water"]) / power]])}
         for name in ("hydrogen", "oxygen"):
             gas = outcome.outlets[name]
             assert isinstance(gas, Stream)
@@ -297,7 +303,7 @@ class Electrolyser(Equipment):
         """Slopes by what one mol of the feed water is: its amount, and what leaves with oxygen."""
         size, place = len(matter.components), matter.index["H2O"]
         moisture = self._moisture()
-        amount = float(outcome.drawn["water"])  # type: ignore[arg-type] # a number
+        amount = as_number(outcome.drawn["water"])
         share = np.full(size, -moisture)
         share[place] = 1.0
         by_flow = -amount / _reacting_share(water, moisture) * share

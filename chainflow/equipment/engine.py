@@ -28,9 +28,10 @@ from chainflow.thermo.streams import Stream
 
 
 class Engine(Combustion):
-    """Burns fuel completely and gives power at a stated efficiency; the flue leaves at `temperature`.
+    """Burns fuel completely and gives power at a stated efficiency.
 
-    What is neither power nor in the flue is given off at `jacket`.
+    The flue leaves at `temperature`; what is neither power nor in the flue is given off at
+    `jacket`.
     """
 
     kind: ClassVar[str] = "engine"
@@ -82,7 +83,8 @@ class Engine(Combustion):
         cautions = (
             Caution(
                 "engine-too-good",
-                "power and flue carry more than the fuel brings: lower the efficiency or the flue temperature",
+                "power and flue carry more than the fuel brings: "
+                "lower the efficiency or the flue temperature",
             ),
         )
         return Outcome(

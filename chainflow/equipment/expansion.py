@@ -194,7 +194,10 @@ def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:
     share = float(inlet.gas.sum()) / float(inlet.total) if float(inlet.total) > 0.0 else 0.0
     if share <= _GAS_IN_PUMP:
         return ()
-    text = f"{100 * share:.3g} % of what arrives is gas: a pump wants liquid, put a condenser before it or use a compressor"
+    text = (
+        f"{100 * share:.3g} % of what arrives is gas: a pump wants liquid, "
+        "put a condenser before it or use a compressor"
+    )
     return (Caution("gas-in-pump", text),)
 
 

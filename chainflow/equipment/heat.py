@@ -104,21 +104,27 @@ class _Exchanger(Equipment):
 
 
 class Heater(_Exchanger):
-    """Heats a stream to a temperature or by a duty; the need is met by `power`, `heat` or bought."""
+    """Heats a stream to a temperature or by a duty.
+
+    The need is met by `power`, by `heat`, or bought.
+    """
 
     kind: ClassVar[str] = "heater"
     cools: ClassVar[bool] = False
 
 
 class Cooler(_Exchanger):
-    """Cools a stream to a temperature or by a duty; the heat is given to `heat` or to the ambient."""
+    """Cools a stream to a temperature or by a duty.
+
+    The heat is given to `heat` or to the ambient.
+    """
 
     kind: ClassVar[str] = "cooler"
     cools: ClassVar[bool] = True
 
 
 class HeatEngine(Equipment):
-    """Power from heat at a share of Carnot's limit, working on the heat's entropy-mean temperature."""
+    """Power from heat at a share of Carnot's limit, for the heat's entropy-mean temperature."""
 
     kind: ClassVar[str] = "heat-engine"
     family: ClassVar[str] = "heat"
@@ -165,5 +171,8 @@ class HeatEngine(Equipment):
 def _too_cold(carnot: float, heat: Heat, sink: float) -> tuple[Caution, ...]:
     if carnot > 0.0 or heat.rate <= 0.0:
         return ()
-    text = f"heat at {heat.mean - 273.15:.4g} degC is not above the sink at {sink - 273.15:.4g} degC: it gives no power"
+    text = (
+        f"heat at {heat.mean - 273.15:.4g} degC is not above the sink "
+        f"at {sink - 273.15:.4g} degC: it gives no power"
+    )
     return (Caution("heat-too-cold", text),)

@@ -17,7 +17,7 @@ _TEMPERATURE_SLACK = 1e-6  # [K], so that heat at 593.15 K serves a need up to 5
 
 @dataclass(frozen=True, slots=True)
 class Duty:
-    """Heat that goes into (+) or out of (-) a piece of equipment [W], between two temperatures [K]."""
+    """Heat into (+) or out of (-) a piece of equipment [W], between two temperatures [K]."""
 
     purpose: str
     heat: float

@@ -1,4 +1,7 @@
-"""A switchboard for heat: serves each need from heat that is hot enough.  Heat [W], temperature [K]."""
+"""A switchboard for heat: serves each need from heat that is hot enough.
+
+Heat [W], temperature [K].
+"""
 
 from __future__ import annotations
 
@@ -70,6 +73,6 @@ class HeatNetwork(Equipment):
             else "it gets no heat"
         )
         return (
-            f"{missing / 1e3:.6g} kW of the heat asked (up to {hottest - 273.15:.4g} degC) cannot be met: {found}; "
-            "link 'shortage', or meet the need with 'power'"
+            f"{missing / 1e3:.6g} kW of the heat asked (up to {hottest - 273.15:.4g} degC) "
+            f"cannot be met: {found}; link 'shortage', or meet the need with 'power'"
         )

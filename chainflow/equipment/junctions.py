@@ -204,7 +204,7 @@ class Blend(Equipment):
         trim = material(feeds, "trim")
         weights = np.append(self.weights(site.matter), 0.0)
         brought = float(weights[:-1] @ trim.flows)
-        amount = float(outcome.drawn["trim"])  # type: ignore[arg-type] # a number
+        amount = as_number(outcome.drawn["trim"])
         one = np.append(trim.flows, trim.enthalpy)
         active = 1.0 if amount > 0.0 and brought != 0.0 else 0.0
         by_main = -active * weights / (brought or 1.0)  # d amount / d main

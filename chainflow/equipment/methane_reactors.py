@@ -143,7 +143,8 @@ class MethanationReactor(ReactorBase):
         if level > 973.15:
             yield Caution(
                 "above-catalyst-window",
-                f"{level - 273.15:.4g} degC is above the 700 degC that high-temperature nickel catalysts stand",
+                f"{level - 273.15:.4g} degC is above the 700 degC "
+                "that high-temperature nickel catalysts stand",
             )
         elif level > 823.15:
             yield Caution(
@@ -153,7 +154,8 @@ class MethanationReactor(ReactorBase):
         elif level < 473.15:
             yield Caution(
                 "below-catalyst-window",
-                f"{level - 273.15:.4g} degC is below the 200 degC where nickel catalysts start to work",
+                f"{level - 273.15:.4g} degC is below the 200 degC "
+                "where nickel catalysts start to work",
             )
 
     def _traces(self, feed: Stream, product: Stream) -> Iterator[Caution]:

@@ -40,7 +40,7 @@ class Switchboard(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        short = "shortage" in site.inlets and outcome.drawn["shortage"] > 0.0  # type: ignore[operator] # a number
+        short = "shortage" in site.inlets and as_number(outcome.drawn["shortage"]) > 0.0
         one = np.array([[1.0]])
         gain, loss = (
             ({"drawn:shortage": -one}, {"drawn:shortage": one})

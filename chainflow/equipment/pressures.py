@@ -21,10 +21,8 @@ def lower_feed(
     for port, pressures in inlets.items():
         for level in pressures:
             if np.isfinite(level) and level < pressure * (1.0 - _SLACK):
-                yield (
-                    port,
-                    f"'{port}' is at {level / 1e5:.4g} bar, works at {pressure / 1e5:.4g} bar: {mend}",
-                )
+                text = f"'{port}' is at {level / 1e5:.4g} bar, works at {pressure / 1e5:.4g} bar"
+                yield port, f"{text}: {mend}"
 
 
 def higher_feed(
@@ -34,7 +32,8 @@ def higher_feed(
     for port, pressures in inlets.items():
         for level in pressures:
             if np.isfinite(level) and level > pressure * (1.0 + _SLACK):
-                yield (
-                    port,
-                    f"'{port}' is at {level / 1e5:.4g} bar, above the {pressure / 1e5:.4g} bar wanted at the outlet: {mend}",
+                text = (
+                    f"'{port}' is at {level / 1e5:.4g} bar, "
+                    f"above the {pressure / 1e5:.4g} bar wanted at the outlet: {mend}"
                 )
+                yield port, text

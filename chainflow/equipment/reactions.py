@@ -36,7 +36,8 @@ def parse_equation(text: str) -> dict[str, float]:
             match = _TERM.match(term.strip())
             if match is None:
                 raise ValueError(
-                    f"cannot read '{term.strip()}' in '{text}', wanted a number and a component such as 4 H2"
+                    f"cannot read '{term.strip()}' in '{text}', "
+                    "wanted a number and a component such as 4 H2"
                 )
             numbers[match[2]] = numbers.get(match[2], 0.0) + sign * _number(match[1])
     return numbers

@@ -69,7 +69,8 @@ class ReactorBase(Equipment):
         Port("product", "material", Role.OFFERS, main=True, means="what leaves"),
     )
     sources: ClassVar[tuple[str, ...]] = (
-        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) as shipped with Cantera",
+        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) "
+        "as shipped with Cantera",
     )
 
     adiabatic: bool = Field(
@@ -200,7 +201,10 @@ class ReactorBase(Equipment):
             )
             results["carbon_activity"] = activity
             if activity > 1.0 and float(product.temperature) > _CARBON_FORMS_ABOVE:
-                text = f"carbon activity {activity:.3g} at the product: soot can form; more steam or hydrogen lowers it"
+                text = (
+                    f"carbon activity {activity:.3g} at the product: soot can form; "
+                    "more steam or hydrogen lowers it"
+                )
                 cautions.append(Caution("carbon-activity", text))
         results |= _conversions(feed, product)
         if not self.burns_oxygen:
@@ -244,7 +248,7 @@ class ReactorBase(Equipment):
         return {"feed": blocks}
 
     def _block(self, made: Product, product: Stream) -> Array:
-        """d product / d feed."""
+        """Slopes of the product by the feed."""
         assert made.by_feed is not None
         size = len(made.flows)
         block = np.zeros((size + 1, size + 1))
@@ -258,7 +262,7 @@ class ReactorBase(Equipment):
 
 
 def _electric_slope(block: Array, outcome: Outcome) -> Array:
-    """d electric power / d feed: all of the heat need is met by power, or none is left."""
+    """Slopes of the electric power by the feed: it meets the whole heat need, or there is none."""
     if not any(duty.met_by == "power" and duty.heat > 0.0 for duty in outcome.duties):
         return np.zeros((1, block.shape[1]))
     row = block[-1].copy()
@@ -278,6 +282,7 @@ def exchanging(
 
 
 def share_element(first: str, second: str, matter: Matter) -> bool:
+    """Whether two components have an element in common."""
     a, b = matter.formula[:, matter.index[first]], matter.formula[:, matter.index[second]]
     return bool(((a > 0) & (b > 0)).any())
 
@@ -307,6 +312,7 @@ def _oxygen(feed: Stream) -> Iterator[Caution]:
 
 
 def share_of(stream: Stream, name: str) -> float:
+    """Mole fraction of a component, zero if it is not among the components."""
     place = stream.matter.index.get(name)
     total = float(stream.total)
     return float(stream.flows[place]) / total if place is not None and total > 0.0 else 0.0

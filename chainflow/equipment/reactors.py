@@ -1,4 +1,4 @@
-"""The reactor for any reactions: stated conversions or extents, or the equilibrium of named species.
+"""The reactor for any reactions: stated conversions or extents, or equilibrium of named species.
 
 SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat [W].
 """
@@ -107,5 +107,8 @@ class Reactor(ReactorBase):
         short = change < 0.0
         share = float(min(1.0, (flows[short] / -change[short]).min()))
         name = matter.components[worst]
-        text = f"the reactions use {-change[worst]:.6g} mol/s of {name}, the feed has {flows[worst]:.6g}: lower a conversion or extent"
+        text = (
+            f"the reactions use {-change[worst]:.6g} mol/s of {name}, "
+            f"the feed has {flows[worst]:.6g}: lower a conversion or extent"
+        )
         return Product(np.maximum(flows + share * change, 0.0), None, {"feed": text})

@@ -69,7 +69,8 @@ def kinds() -> dict[str, type[Equipment]]:
         cls = point.load()
         if not (isinstance(cls, type) and issubclass(cls, Equipment)):
             raise TypeError(
-                f"entry point {point.name!r} is no kind of equipment: it must be a class derived from Equipment"
+                f"entry point {point.name!r} is no kind of equipment: "
+                "it must be a class derived from Equipment"
             )
         known.setdefault(cls.kind, cls)
     return known

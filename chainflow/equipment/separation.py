@@ -140,7 +140,10 @@ class Separator(Equipment):
         worth = work + heat * max(0.0, 1.0 - site.ambient / self.heat_temperature)
         if worth >= least - 1e-9 * abs(least) or least <= 0.0:
             return ()
-        text = f"separates for {worth / 1e3:.4g} kW of work, the least that any separation takes is {least / 1e3:.4g} kW"
+        text = (
+            f"separates for {worth / 1e3:.4g} kW of work, "
+            f"the least that any separation takes is {least / 1e3:.4g} kW"
+        )
         return (Caution("free-separation", text),)
 
     def slopes(

@@ -189,7 +189,10 @@ class Store(Equipment):
         idealisations: tuple[Caution, ...] = ()
         if self.pure:
             results["minimum_work_W"] = self._minimum_work(turn, outlets, entering)
-            text = f"draws are pure contents at no cost; the separation would take at least {results['minimum_work_W'] / 1e3:.4g} kW"
+            text = (
+                "draws are pure contents at no cost; the separation would take "
+                f"at least {results['minimum_work_W'] / 1e3:.4g} kW"
+            )
             idealisations = (Caution("pure-store", text),)
         if "make_up" not in feeds:
             results["top_up_enthalpy_W"] = turn.made_up * float(

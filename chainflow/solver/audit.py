@@ -11,8 +11,8 @@ from chainflow.equipment.base import Outcome
 from chainflow.equipment.boundary import Product, Supply, Vent
 from chainflow.equipment.ports import Flow, Heat
 from chainflow.equipment.power import Grid
-from chainflow.equipment.stores import Store
 from chainflow.equipment.shares import fractions
+from chainflow.equipment.stores import Store
 from chainflow.equipment.sunlight import Sunlight
 from chainflow.flowsheet.network import Flowsheet
 from chainflow.solver.finishing import Finish, arriving_whole

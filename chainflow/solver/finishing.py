@@ -10,10 +10,11 @@ import networkx as nx
 from chainflow.equipment.base import Equipment, Outcome
 from chainflow.equipment.ports import Feeds, Flow, Heat, Role
 from chainflow.flowsheet.network import Flowsheet, Line
-from chainflow.solver.nodes import EquipmentStep, Source, Values
+from chainflow.solver.nodes import EquipmentStep, Source, Values, outside_the_data
 from chainflow.solver.program import Program, amount_key, site_of
 from chainflow.solver.solution import SolvedStream
 from chainflow.thermo.streams import Stream
+from chainflow.thermo.validity import StateError
 
 
 class Finish:
@@ -56,9 +57,11 @@ class Finish:
         asked = self._asked(name, piece)
         many = {p.name for p in piece.port_list() if p.is_inlet and p.many}
         given = {port: flows if port in many else flows[0] for port, flows in feeds.items()}
-        self.outcomes[name] = piece.operate(
-            given, asked, site_of(self.flowsheet, name, detail=True)
-        )
+        site = site_of(self.flowsheet, name, detail=True)
+        try:
+            self.outcomes[name] = piece.operate(given, asked, site)
+        except StateError as problem:
+            raise outside_the_data(name, problem) from problem
         self.feeds[name] = {
             port: flows if port in many else flows[0] for port, flows in actual.items()
         }

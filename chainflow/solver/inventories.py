@@ -362,7 +362,8 @@ class _Loop:
         combination = _simple(free, elements)
         text = (
             f"nothing fixes how much of {combination} is in the loop {self._loop_text()}: "
-            "it neither leaves nor is pinned; put a store with a draw into the loop, or open a purge"
+            "it neither leaves nor is pinned; "
+            "put a store with a draw into the loop, or open a purge"
         )
         return "nothing-pins", text
 

@@ -29,14 +29,12 @@ class Linear:
         steps: Sequence[Step],
         blocks: Blocks,
         tears: Sequence[str],
-        settings: Sequence[str],
         watched: Sequence[str],
         variables: Mapping[str, Variable],
     ) -> None:
         self.tears, self.watched, self.variables = tears, watched, variables
         self.places = _places(tears, variables)
         self.size = sum(variables[key].size for key in tears)
-        self._settings = set(settings)
         self._many = self.size > _DENSE_UP_TO
         if self._many:
             self._assemble(steps, blocks)

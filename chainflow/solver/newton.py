@@ -12,10 +12,11 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from chainflow.basis.faults import NotSolved
-from chainflow.equipment.ports import Flow
+from chainflow.equipment.ports import Flow, as_number
 from chainflow.solver.damping import damped
+from chainflow.solver.holding import Holding
 from chainflow.solver.linear import Linear, Singular
-from chainflow.solver.nodes import Blocks, EquipmentStep, Step, Values
+from chainflow.solver.nodes import Blocks, EquipmentStep, Step, Values, outside_the_data
 from chainflow.solver.order import Order
 from chainflow.solver.program import Program
 from chainflow.solver.starts import initial_state
@@ -43,9 +44,8 @@ class Closed:
     values: Values
     passes: int = 0
     error: float = 0.0
-    aside: dict[str, str] = field(
-        default_factory=dict
-    )  # holds set aside: setting -> "bound"/"unable"
+    # holds set aside: setting -> "bound" or "unable"
+    aside: dict[str, str] = field(default_factory=dict)
 
 
 @dataclass
@@ -75,11 +75,8 @@ class Newton:
             self.places[key] = slice(at, at + self.variables[key].size)
             at += self.variables[key].size
         self.size = at
-        self.holds = [
-            (hold, setting, result)
-            for hold, setting, result in program.holds
-            if setting not in self.fixed
-        ]
+        solved_for = [parts for parts in program.holds if parts[1] not in self.fixed]
+        self.holding = Holding(solved_for, self.places, self.size)
 
     # --- passes ------------------------------------------------------------------------------
 
@@ -95,14 +92,13 @@ class Newton:
         return closed
 
     def run(self, steps: list[Step], values: Values) -> Values:
+        """The values with what the steps make of them."""
         values = dict(values)
         for step in steps:
             try:
                 values |= step.run(values)
             except StateError as problem:
-                raise NotSolved(
-                    "outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}
-                ) from problem
+                raise outside_the_data(step.name, problem) from problem
         return values
 
     def evaluate(self, torn: Values, *, blocks: Blocks | None = None) -> _State:
@@ -116,9 +112,7 @@ class Newton:
                 if blocks is not None:
                     blocks |= step.blocks(values, written)
             except StateError as problem:
-                raise NotSolved(
-                    "outside-the-data", f"{step.name}: {problem}", {"equipment": step.name}
-                ) from problem
+                raise outside_the_data(step.name, problem) from problem
             for key, value in written.items():
                 if key in torn:
                     back[key] = value
@@ -136,6 +130,7 @@ class Newton:
     # --- the start ---------------------------------------------------------------------------
 
     def start(self) -> Values:
+        """Torn values to begin with: settings as written, stores with their contents, no flow."""
         settings = self.program.settings
         torn: Values = {}
         for key in self.order.tears:
@@ -163,7 +158,7 @@ class Newton:
             for source in step.feeds.get("supply", ())
             if source.key in self.constants
         ]
-        return float(sum(float(power) for power in known))  # type: ignore[arg-type] # power is a number
+        return float(sum(as_number(power) for power in known))
 
     def warm(self, torn: Values) -> Values:
         """Pass on until no further torn variable wakes up."""
@@ -181,8 +176,8 @@ class Newton:
         if key not in state.back:
             return state.torn[key]
         old, new = state.torn[key], state.back[key]
-        if self.variables[key].form == "number" and not float(new) > 0.0:  # type: ignore[arg-type] # a number
-            return 0.05 * float(old)  # type: ignore[arg-type] # a number
+        if self.variables[key].form == "number" and not as_number(new) > 0.0:
+            return 0.05 * as_number(old)
         return new
 
     # --- Newton ------------------------------------------------------------------------------
@@ -190,15 +185,15 @@ class Newton:
     def _iterate(self, torn: Values) -> Closed:
         best, bad, before = np.inf, 0, np.inf
         short = 0
-        closed = Closed({})
         settled = False
         while self.passes < _MOST_PASSES:
             blocks: Blocks = {}
             state = self.evaluate(torn, blocks=blocks)
             scales = self.scales(state)
-            change, aside = self._step(state, blocks, scales)
+            change, aside = self._step(state, blocks)
             error = _largest(change, scales)
-            residual = _largest(self._shown_residual(state, aside), scales)
+            shown = self.holding.shown(state.residual, state.values, aside)
+            residual = _largest(shown, scales)
             if not np.isfinite(error):
                 raise Singular("the step is not finite")
             if error < _SETTLED and not settled:
@@ -217,7 +212,7 @@ class Newton:
                 torn, best, bad = self._mix(torn), np.inf, 0
                 continue
             torn = self._moved(torn, change)
-        raise self._not_converged(state, scales, closed)
+        raise self._not_converged(state, scales)
 
     def _finish(
         self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]
@@ -236,18 +231,10 @@ class Newton:
             for key, value in torn.items()
         }
 
-    def _step(
-        self, state: _State, blocks: Blocks, scales: np.ndarray
-    ) -> tuple[np.ndarray, dict[str, str]]:
+    def _step(self, state: _State, blocks: Blocks) -> tuple[np.ndarray, dict[str, str]]:
         """The Newton change of all torn numbers, and the holds that are set aside this time."""
-        results = [result for _, _, result in self.holds]
         linear = Linear(
-            self.order.loop,
-            blocks,
-            self.order.tears,
-            list(self.program.settings),
-            results,
-            self.variables,
+            self.order.loop, blocks, self.order.tears, self.holding.results, self.variables
         )
         right = state.residual.copy()
         for key in self.program.settings:
@@ -257,75 +244,12 @@ class Newton:
         except Singular:
             raise NotSolved(
                 "undetermined",
-                f"the loop through {self._names()} has no single steady state: something in it is neither fixed nor let out; "
+                f"the loop through {self._names()} has no single steady state: "
+                "something in it is neither fixed nor let out; "
                 "open a purge or put a store with a draw into it",
                 {"tears": self.order.tears},
             ) from None
-        if not self.holds:
-            return change, {}
-        return self._with_holds(linear, state, change, seen)
-
-    def _with_holds(
-        self, linear: Linear, state: _State, change: np.ndarray, seen: np.ndarray
-    ) -> tuple[np.ndarray, dict[str, str]]:
-        """Move the held settings so that all held results are met at once."""
-        responses, effects = [], []
-        for _, setting, _ in self.holds:
-            unit = np.zeros(self.size)
-            unit[self.places[setting]] = 1.0
-            response, effect = linear.solve(unit)
-            responses.append(response)
-            effects.append(effect)
-        table = np.array(effects).T  # d result i / d setting j
-        missing = np.array([h.at - float(state.values[r]) for h, _, r in self.holds]) - seen  # type: ignore[arg-type] # numbers
-        spans = np.array([h.high - h.low for h, _, _ in self.holds])
-        sizes = np.array(
-            [self._hold_size(h.at, float(state.values[r]), h.unit) for h, _, r in self.holds]
-        )  # type: ignore[arg-type] # numbers
-        aside: dict[str, str] = {}
-        active = []
-        for i in range(len(self.holds)):
-            if np.abs(table[i] * spans).max() < 1e-9 * sizes[i]:
-                aside[self.holds[i][1]] = "unable"
-            else:
-                active.append(i)
-        steps = np.zeros(len(self.holds))
-        while active:
-            found, *_ = np.linalg.lstsq(
-                table[np.ix_(active, active)] * spans[active] / sizes[active, None],
-                missing[active] / sizes[active],
-                rcond=1e-12,
-            )
-            steps[:] = 0.0
-            steps[active] = found * spans[active]
-            out = [i for i in active if self._at_bound(i, steps[i], state)]
-            if not out:
-                break
-            aside |= {self.holds[i][1]: "bound" for i in out}
-            active = [i for i in active if i not in out]
-            steps[out] = 0.0
-        for i, step in enumerate(steps):
-            change = change + step * responses[i]
-        return change, aside
-
-    def _hold_size(self, wanted: float, reached: float, unit: str) -> float:
-        return abs(wanted) or abs(reached) or (1.0 if unit == "1" else 1e-3)
-
-    def _at_bound(self, i: int, step: float, state: _State) -> bool:
-        hold, setting, _ = self.holds[i]
-        value = state.torn[setting]
-        assert isinstance(value, float)
-        return (value <= hold.low and step < 0.0) or (value >= hold.high and step > 0.0)
-
-    def _shown_residual(self, state: _State, aside: dict[str, str]) -> np.ndarray:
-        """Residual of the loops, with the misses of active holds in place of their settings."""
-        shown = state.residual.copy()
-        for hold, setting, result in self.holds:
-            if setting not in aside:
-                reached = float(state.values[result])  # type: ignore[arg-type] # a number
-                size = self._hold_size(hold.at, reached, hold.unit)
-                shown[self.places[setting]] = (hold.at - reached) / size * (hold.high - hold.low)
-        return shown
+        return self.holding.step(linear, state.torn, state.values, change, seen)
 
     # --- sizes -------------------------------------------------------------------------------
 
@@ -402,7 +326,8 @@ class Newton:
         if key and sizes[key] > limit:
             raise NotSolved(
                 "grows",
-                f"what is in '{key}' grows without end ({sizes[key]:.3g} mol/s): open a purge or clean the feed",
+                f"what is in '{key}' grows without end ({sizes[key]:.3g} mol/s): "
+                "open a purge or clean the feed",
                 {"stream": key},
             )
 
@@ -411,13 +336,13 @@ class Newton:
         for key in self.order.tears:
             if not self.variables[key].rate:
                 continue
-            wanted = float(state.torn[key]) + float(change[self.places[key]][0])  # type: ignore[arg-type] # a number
+            wanted = as_number(state.torn[key]) + float(change[self.places[key]][0])
             if wanted >= 0.0:
                 continue
             if short + 1 < _SHORT_PASSES:
                 return short + 1
             at_zero = self.evaluate({**state.torn, key: 0.0})
-            missing = -float(at_zero.back[key])  # type: ignore[arg-type] # a number
+            missing = -as_number(at_zero.back[key])
             raise short_of_power(key.split(".")[0], missing)
         return 0
 
@@ -436,7 +361,7 @@ class Newton:
             torn = self._moved(torn, _anderson(points, images, scales) - points[-1])
         return torn
 
-    def _not_converged(self, state: _State, scales: np.ndarray, closed: Closed) -> NotSolved:
+    def _not_converged(self, state: _State, scales: np.ndarray) -> NotSolved:
         worst: list[tuple[float, str]] = []
         for key in self.order.tears:
             part = state.residual[self.places[key]] / scales[self.places[key]]
@@ -444,10 +369,12 @@ class Newton:
         worst.sort(reverse=True)
         listed = ", ".join(f"'{key}' by {size:.2g}" for size, key in worst[:3])
         text = (
-            f"the loop through {self._names()} is not closed after {self.passes} passes; still moving (relative): {listed}. "
-            "Look for an inventory with almost no way out, or for two settings that want different things"
+            f"the loop through {self._names()} is not closed after {self.passes} passes; "
+            f"still moving (relative): {listed}. "
+            "Look for an inventory with almost no way out, "
+            "or for two settings that want different things"
         )
-        return NotSolved("not-converged", text, {"residuals": dict((k, s) for s, k in worst)})
+        return NotSolved("not-converged", text, {"residuals": {key: size for size, key in worst}})
 
 
 def short_of_power(name: str, missing: float) -> NotSolved:

@@ -14,6 +14,7 @@ from typing import Any
 
 import numpy as np
 
+from chainflow.basis.faults import NotSolved
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.junctions import joined
 from chainflow.equipment.ports import ANY_NAME, Flow, Heat, as_number
@@ -77,7 +78,7 @@ class Step:
         kept = self.memory()
         found: Blocks = {}
         for key in self.reads:
-            found |= known[key] if key in known else self._differences(key, values, written)
+            found |= known[key] if key in known else self.differences(key, values, written)
         self.remember(kept)
         return found
 
@@ -88,7 +89,7 @@ class Step:
     def remember(self, kept: Any) -> None:
         """Put back what `memory` gave."""
 
-    def _differences(self, key: str, values: Mapping[str, Flow], written: Values) -> Blocks:
+    def differences(self, key: str, values: Mapping[str, Flow], written: Values) -> Blocks:
         """One-sided differences by one variable; none for matter that does not flow."""
         variable = self.variables[key]
         value = values[key]
@@ -99,7 +100,7 @@ class Step:
             return found
         guess = float(value.temperature) if isinstance(value, Stream) else None
         for column in range(variable.size):
-            step = _step_of(variable, base, column)
+            step = step_of(variable, base, column)
             changed = base.copy()
             changed[column] += step
             moved = self.run({**values, key: variable.unpack(changed, self.matter, guess)})
@@ -108,7 +109,7 @@ class Step:
         return found
 
 
-def _step_of(variable: Variable, base: np.ndarray, column: int) -> float:
+def step_of(variable: Variable, base: np.ndarray, column: int) -> float:
     if variable.form == "matter":
         total = float(base[:-1].sum())
         return _STEP * total * (ENTHALPY_SCALE if column == variable.size - 1 else 1.0)
@@ -179,7 +180,7 @@ class EquipmentStep(Step):
         """Put back an outcome and what it came from."""
         self.outcome, self._used = kept
 
-    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
+    def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:  # noqa: ARG002 - as in Step
         """The slopes that the equipment knows, at its last run."""
         assert self.site is not None and self._used is not None and self.outcome is not None
         if self.results:
@@ -358,8 +359,7 @@ class ThroughAmountStep(ThroughStep):
         if key and isinstance(wanted, float) and wanted != 0.0:
             written = self.run(values)
             known[key] = {
-                (w, key): self.variables[w].pack(written[w])[:, None] / wanted
-                for w in self.writes
+                (w, key): self.variables[w].pack(written[w])[:, None] / wanted for w in self.writes
             }
         slopes = self.sample_slopes() if self.sample_key else None
         if slopes is not None and self.sample_key != key:
@@ -413,6 +413,11 @@ class ResultStep(Step):
         return {self.key: number if np.isfinite(number) else 0.0}
 
 
+def outside_the_data(name: str, problem: StateError) -> NotSolved:
+    """What is said where a piece of equipment meets a state that the data do not describe."""
+    return NotSolved("outside-the-data", f"{name}: {problem}", {"equipment": name})
+
+
 def _times(flow: Flow, factor: float) -> Flow:
     return flow.scaled(factor) if isinstance(flow, Stream | Heat) else flow * factor
 
@@ -432,4 +437,5 @@ __all__ = [
     "ThroughAmountStep",
     "ThroughStateStep",
     "Values",
+    "outside_the_data",
 ]

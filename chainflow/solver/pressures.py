@@ -74,7 +74,8 @@ def _falling(flowsheet: Flowsheet, changed: list[str]) -> Fault:
     place = next((line.place for line in flowsheet.lines if line.source == loop[0]), None)
     say = (
         f"the loop {' -> '.join([*loop, loop[0]])} loses pressure on every round "
-        "and nothing raises it again: put a compressor or pump into it, or set its pressure drops to zero"
+        "and nothing raises it again: put a compressor or pump into it, "
+        "or set its pressure drops to zero"
     )
     return Fault("loop-loses-pressure", say).located(place)
 

@@ -10,6 +10,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
+from chainflow.basis.faults import NotSolved
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.boundary import Supply
 from chainflow.equipment.ports import ANY_NAME, Flow, Role
@@ -26,10 +27,12 @@ from chainflow.solver.nodes import (
     StoreStateStep,
     ThroughAmountStep,
     ThroughStateStep,
+    outside_the_data,
 )
 from chainflow.solver.pressures import Pressures
 from chainflow.solver.variables import Variable
 from chainflow.thermo.streams import Stream
+from chainflow.thermo.validity import StateError
 
 
 @dataclass
@@ -150,12 +153,12 @@ class _Builder:
         port = piece.port(line.outlet, inlet=False)
         if isinstance(piece, Store):
             species = self.presence.species.get((name, line.outlet), ())
-            if piece.pure or len(species) <= 1 and set(species) <= set(piece.contents):
-                contents = piece.model_copy(update={"pure": True}).sample({}, {}, site)[ANY_NAME]
-                return Source(constant=contents)
+            if piece.pure or (len(species) <= 1 and set(species) <= set(piece.contents)):
+                pure = piece.model_copy(update={"pure": True})
+                return Source(constant=_sampled(name, pure, site)[ANY_NAME])
             return Source(self._variable(f"{name}~state", "matter", name, line.outlet))
         if port is not None and port.role is Role.SERVES:
-            return Source(constant=piece.sample({}, {}, site)[line.outlet])
+            return Source(constant=_sampled(name, piece, site)[line.outlet])
         return self._through_state(name, piece, line, site)
 
     def _through_state(self, name: str, piece: Equipment, line: Line, site: Site) -> Source:
@@ -165,10 +168,11 @@ class _Builder:
             return Source(
                 self._variable(f"{name}.{line.outlet}~state", "matter", name, line.outlet)
             )
-        outcome = piece.operate({feeding.inlet: before.constant}, {}, site)
-        outlet = outcome.outlets[line.outlet]
-        assert isinstance(outlet, Stream)
-        return Source(constant=outlet.scaled(1.0 / float(outlet.total)))
+        try:
+            outcome = piece.operate({feeding.inlet: before.constant}, {}, site)
+        except StateError as problem:
+            raise outside_the_data(name, problem) from problem
+        return Source(constant=per_mol(outcome.outlets[line.outlet], line))
 
     # --- steps -------------------------------------------------------------------------------
 
@@ -327,6 +331,26 @@ class _Builder:
             return Source(self._amount(line))
         state = self._state(line)
         return Source(state.key, state.constant, Source(self._amount(line)))
+
+
+def per_mol(flow: Flow, line: Line) -> Stream:
+    """One mol of what a call gets through equipment; NotSolved if nothing comes through."""
+    assert isinstance(flow, Stream)
+    total = float(flow.total)
+    if total == 0.0:
+        text = (
+            f"{line.end} calls for what comes at '{line.start}', but of what is served to "
+            f"{line.source} nothing leaves there: take it from another outlet"
+        )
+        raise NotSolved("no-answer", text, {"equipment": line.source, "port": line.outlet})
+    return flow.scaled(1.0 / total)
+
+
+def _sampled(name: str, piece: Equipment, site: Site) -> dict[str, Flow]:
+    try:
+        return piece.sample({}, {}, site)
+    except StateError as problem:
+        raise outside_the_data(name, problem) from problem
 
 
 def _getter(where: str, name: str) -> Callable[[Outcome], float]:

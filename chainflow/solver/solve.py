@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
-from dataclasses import dataclass
+from collections.abc import Iterator, Mapping
+from contextlib import contextmanager
+from dataclasses import dataclass, replace
 
 from chainflow.basis.faults import Fault, NotSolved
 from chainflow.equipment.ports import Heat
@@ -19,6 +20,7 @@ from chainflow.solver.program import build_program
 from chainflow.solver.recycles import drop_free_recycles
 from chainflow.solver.solution import Balance, HoldResult, Solution
 from chainflow.thermo.streams import Stream
+from chainflow.thermo.validity import StateError
 
 _SOLVED = 1e-9  # largest relative balance error of what is called solved
 _ROUND_OFF = 1e-9
@@ -60,24 +62,48 @@ def solve_flowsheet(flowsheet: Flowsheet) -> Solution:
     return Prepared(flowsheet).solve()
 
 
+def _with_open_holds(flowsheet: Flowsheet) -> Flowsheet:
+    """The flowsheet with every held setting in the middle of its range.
+
+    Structure is judged there: at an end, a share of zero seems to let nothing through.
+    """
+    pieces = dict(flowsheet.equipment)
+    for hold in flowsheet.holds:
+        middle = 0.5 * (hold.low + hold.high)
+        pieces[hold.piece] = pieces[hold.piece].with_setting(hold.path, middle)
+    return replace(flowsheet, equipment=pieces)
+
+
+@contextmanager
+def _states_explained() -> Iterator[None]:
+    """A state outside the data that no step has named is no steady state either."""
+    try:
+        yield
+    except StateError as problem:
+        raise NotSolved("outside-the-data", str(problem)) from problem
+
+
 class Prepared:
     """Structure of one topology, ready to be solved; build it once and solve it often."""
 
     def __init__(self, flowsheet: Flowsheet) -> None:
         self.flowsheet = flowsheet
         self.pressures = settle_pressures(flowsheet)
-        presence = find_presence(flowsheet)
-        self.conditional = check_inventories(flowsheet, presence)
-        self.program = build_program(flowsheet, self.pressures, presence)
+        opened = _with_open_holds(flowsheet)
+        presence = find_presence(opened)
+        self.conditional = check_inventories(opened, presence)
+        with _states_explained():
+            self.program = build_program(flowsheet, self.pressures, presence)
         self.order = order_steps(self.program)
         self.remarks = tuple(drop_free_recycles(flowsheet, self.pressures))
 
     def solve(self) -> Solution:
-        closed = self.close()
-        self._judge_holds(closed)
-        finish = Finish(self.program, closed.values)
-        self._judge(finish, closed)
-        balance = audit(finish)
+        with _states_explained():
+            closed = self.close()
+            self._judge_holds(closed)
+            finish = Finish(self.program, closed.values)
+            self._judge(finish, closed)
+            balance = audit(finish)
         self._refuse_imbalance(balance)
         return Solution(
             self.flowsheet,
@@ -119,7 +145,8 @@ class Prepared:
             if why == "unable":
                 raise NotSolved(
                     "hold-unable",
-                    f"hold {hold.text}: moving {hold.by} changes nothing there (it stays at {_shown(_number(closed, result), hold.unit)}): "
+                    f"hold {hold.text}: moving {hold.by} changes nothing there "
+                    f"(it stays at {_shown(_number(closed, result), hold.unit)}): "
                     "aim at a result that the setting can move, or let something flow",
                     {"hold": hold.text},
                 )
@@ -139,7 +166,10 @@ class Prepared:
             f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}"
             for value in sorted(reached)
         )
-        text = f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is {ends}; widen 'within' or change what is wanted"
+        text = (
+            f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is {ends}; "
+            "widen 'within' or change what is wanted"
+        )
         details = {
             "hold": hold.text,
             "wanted": hold.at,
@@ -179,7 +209,10 @@ class Prepared:
         if rest < -_ROUND_OFF * max(supplied, 1e-300):
             raise short_of_power(name, -rest)
         if rest > _ROUND_OFF * supplied and not self.flowsheet.line_from(name, "rest"):
-            text = f"{name} has {rest / 1e3:.6g} kW left and nowhere to go: link '{name}.rest' to a user, a grid or a vent"
+            text = (
+                f"{name} has {rest / 1e3:.6g} kW left and nowhere to go: "
+                f"link '{name}.rest' to a user, a grid or a vent"
+            )
             raise NotSolved("surplus-power", text, {"switchboard": name, "surplus_W": rest})
 
     def _judge_conditional(self, finish: Finish, conditional: Conditional) -> None:
@@ -198,7 +231,10 @@ class Prepared:
                     key=lambda n: balance.by_equipment[n][what == "energy"],
                     default="the plant",
                 )
-                text = f"{what} balance only to {error:.1e} (wanted {_SOLVED:.0e}), worst at {worst}: please report this flowsheet"
+                text = (
+                    f"{what} balance only to {error:.1e} (wanted {_SOLVED:.0e}), "
+                    f"worst at {worst}: please report this flowsheet"
+                )
                 raise NotSolved("not-balanced", text, {"error": error, "equipment": worst})
 
 

@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from chainflow.equipment.ports import ANY_NAME
 from chainflow.equipment.stores import Store
-from chainflow.solver.program import Program, site_of
+from chainflow.solver.program import Program, per_mol, site_of
 from chainflow.thermo.streams import Stream
 
 
@@ -30,6 +30,5 @@ def initial_state(program: Program, key: str) -> Stream:
     source = program.states[spot]
     before = source.constant if source.constant is not None else initial_state(program, source.key)
     outcome = piece.operate({feeding.inlet: before}, {}, site)
-    stream = outcome.outlets[outlet]
-    assert isinstance(stream, Stream)
-    return stream.scaled(1.0 / float(stream.total))
+    (asking,) = program.flowsheet.line_from(name, outlet)
+    return per_mol(outcome.outlets[outlet], asking)
