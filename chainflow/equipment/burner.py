@@ -61,13 +61,17 @@ class Burner(Combustion):
     )
     formulas: ClassVar[tuple[str, ...]] = (
         "O2 of all inlets = (1 + excess) * O2 needed by all combustibles",
-        "equilibrium: minimum of the Gibbs energy of the flowsheet's components "
-        "at the temperature that closes energy",
+        (
+            "equilibrium: minimum of the Gibbs energy of the flowsheet's components "
+            "at the temperature that closes energy"
+        ),
         "flame_temperature: the same with radicals (O, H, OH, NO, ...)",
     )
     sources: ClassVar[tuple[str, ...]] = (
-        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) "
-        "as shipped with Cantera",
+        (
+            "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) "
+            "as shipped with Cantera"
+        ),
     )
 
     model: Literal["equilibrium", "complete"] = Field(
@@ -190,16 +194,17 @@ class Burner(Combustion):
         cautions = []
         if hottest > 1900.0:
             text = (
-                f"flame at {hottest:.0f} K: above 1900 K refractories and nitrogen oxides need care; "
-                "more moderator or excess cools it"
+                f"flame at {hottest:.0f} K: above 1900 K refractories and nitrogen oxides "
+                "need care; more moderator or excess cools it"
             )
             cautions.append(Caution("hot-flame", text))
         left = float(flue.lhv)
         burnt_lhv = float(fire.flows @ site.matter.lhv)
         if burnt_lhv > 0.0 and left > 1e-3 * burnt_lhv:
             text = (
-                f"{100 * left / burnt_lhv:.2g} % of the fuel's LHV is left in the flue as CO and H2 "
-                "and stays there when it is cooled; 'requench' says down to where it burns out"
+                f"{100 * left / burnt_lhv:.2g} % of the fuel's LHV is left in the flue "
+                "as CO and H2 and stays there when it is cooled; "
+                "'requench' says down to where it burns out"
             )
             cautions.append(Caution("frozen-flue", text))
         return results, tuple(cautions)

@@ -299,9 +299,7 @@ class Compressor(Equipment):
 def _condensing(matter: Matter, stage: Stage, level: float) -> Array:
     """Slopes of the condensate of a stage by its gas, at the temperature it is cooled to."""
     dry = stage.gas - stage.condensate
-    return water_split_slopes(
-        matter, stage.gas, dry, stage.condensate, level, stage.high, ("CO2",)
-    )
+    return water_split_slopes(matter, stage.gas, dry, stage.condensate, level, stage.high, ("CO2",))
 
 
 def _gas_temperature(

@@ -8,8 +8,8 @@ pressure).  What else is dissolved in the feed water leaves with the oxygen.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from functools import cache
 from dataclasses import replace
+from functools import cache
 from typing import Annotated, Any, ClassVar, Literal
 
 import numpy as np
@@ -91,8 +91,10 @@ class Electrolyser(Equipment):
     )
     sources: ClassVar[tuple[str, ...]] = (
         "Faraday constant: CODATA 2018",
-        "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387 "
-        "(IAPWS-95 auxiliary equation)",
+        (
+            "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387 "
+            "(IAPWS-95 auxiliary equation)"
+        ),
     )
 
     model: Literal["specific-energy", "voltage"] = Field(
@@ -152,7 +154,8 @@ class Electrolyser(Equipment):
                 ("temperature",),
                 (
                     f"at {self.temperature - 273.15:.4g} degC and {self.pressure / 1e5:.4g} bar "
-                    "the water boils, wanted liquid water: lower the temperature or raise the pressure"
+                    "the water boils, wanted liquid water: "
+                    "lower the temperature or raise the pressure"
                 ),
             )
 
@@ -181,43 +184,17 @@ class Electrolyser(Equipment):
             made = self.hydrogen.value / (hydrogen_mass() if self.hydrogen.per == "kg" else 1.0)
             power = made * self.energy_per_mol / self.rectifier
         else:
-            power = max(
-                rate(feeds, "power"), 0.0
-            )  # below zero only while a plant that is short is being solved
+            # below zero only while a plant that is short is being solved
+            power = max(rate(feeds, "power"), 0.0)
             made = power * self.rectifier / self.energy_per_mol
         moisture = self._moisture()
         amount, unmet = self._water_needed(made, water, moisture)
         made = 0.0 if unmet else made
         gases = self._gases(made, amount * water.flows, moisture, matter)
-        hot_water = Stream.at(matter, amount * water.flows, self.temperature, self.pressure)
-        direct = power * self.rectifier
-        stack_heat = (
-            float(sum(g.enthalpy for g in gases.values())) - float(hot_water.enthalpy) - direct
-        )
-        level = self.temperature
-        needs = [
-            Duty.between(
-                "water to stack temperature",
-                float(hot_water.enthalpy) - amount * float(water.enthalpy),
-                float(water.temperature),
-                level,
-            ),
-            Duty("stack", stack_heat, level, level, level),
-            Duty(
-                "rectifier loss",
-                -(power - direct),
-                site.ambient,
-                site.ambient,
-                site.ambient,
-                "ambient",
-            ),
-        ]
-        beside = replace(
-            site, inlets=site.inlets - {"power"}
-        )  # `power` feeds the cells, not a heater
-        duties, _, drawn, heat = self.settle(
-            [d for d in needs if d.heat != 0.0 or d.purpose == "stack"], beside
-        )
+        needs = self._needs(amount, water, gases, power, site)
+        # `power` feeds the cells, not a heater
+        beside = replace(site, inlets=site.inlets - {"power"})
+        duties, _, drawn, heat = self.settle(needs, beside)
         drawn |= {"water": amount}
         if self.hydrogen is not None:
             drawn["power"] = power
@@ -226,10 +203,26 @@ class Electrolyser(Equipment):
             drawn,
             duties,
             power=power,
-            results=self._results(made, power, direct, amount * float(water.mass_flow), matter),
+            results=self._results(made, power, amount * float(water.mass_flow), matter),
             cautions=self._cautions() if site.detail else (),
             unmet=unmet,
         )
+
+    def _needs(
+        self, amount: float, water: Stream, gases: Mapping[str, Stream], power: float, site: Site
+    ) -> list[Duty]:
+        """Heat of the feed water, of the stack and of the rectifier; those of nothing left out."""
+        hot = Stream.at(site.matter, amount * water.flows, self.temperature, self.pressure)
+        direct, level = power * self.rectifier, self.temperature
+        warming = float(hot.enthalpy) - amount * float(water.enthalpy)
+        stack = float(sum(g.enthalpy for g in gases.values())) - float(hot.enthalpy) - direct
+        outside = (site.ambient, site.ambient, site.ambient)
+        needs = [
+            Duty.between("water to stack temperature", warming, float(water.temperature), level),
+            Duty("stack", stack, level, level, level),
+            Duty("rectifier loss", -(power - direct), *outside, "ambient"),
+        ]
+        return [d for d in needs if d.heat != 0.0 or d.purpose == "stack"]
 
     def _moisture(self) -> float:
         """Water per mol of dry gas at saturation [-]."""
@@ -246,7 +239,7 @@ class Electrolyser(Equipment):
             return 0.0, {"water": text}
         return made * (1.0 + 1.5 * moisture) / per_mol, {}
 
-    def _gases(self, made: float, fed: Array, moisture: float, matter: Matter) -> dict[str, Any]:
+    def _gases(self, made: float, fed: Array, moisture: float, matter: Matter) -> dict[str, Stream]:
         dissolved = fed.copy()
         dissolved[matter.index["H2O"]] = 0.0
         oxygen = dissolved + amounts({"O2": 0.5 * made}, matter)
@@ -257,9 +250,8 @@ class Electrolyser(Equipment):
             "oxygen": Stream.gaseous(matter, oxygen, self.temperature, self.pressure),
         }
 
-    def _results(
-        self, made: float, power: float, direct: float, water: float, matter: Matter
-    ) -> dict[str, float]:
+    def _results(self, made: float, power: float, water: float, matter: Matter) -> dict[str, float]:
+        direct = power * self.rectifier
         ratio = {"LHV": matter.lhv, "HHV": matter.hhv}
         share = made / direct if direct > 0.0 else 0.0
         return {

@@ -34,7 +34,7 @@ from chainflow.equipment.base import (
     material,
 )
 from chainflow.equipment.boundary import amounts
-from chainflow.equipment.ports import ANY_NAME, Feeds, arriving
+from chainflow.equipment.ports import ANY_NAME, Feeds, arriving, as_number
 from chainflow.equipment.shares import Shares, resolved
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream

@@ -8,7 +8,7 @@ from typing import Any, ClassVar
 import numpy as np
 
 from chainflow.equipment.base import Array, Equipment, Outcome, Port, Role, Site, rate
-from chainflow.equipment.ports import ANY_NAME, Feeds
+from chainflow.equipment.ports import ANY_NAME, Feeds, as_number
 
 
 class Switchboard(Equipment):

@@ -69,8 +69,10 @@ class ReactorBase(Equipment):
         Port("product", "material", Role.OFFERS, main=True, means="what leaves"),
     )
     sources: ClassVar[tuple[str, ...]] = (
-        "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) "
-        "as shipped with Cantera",
+        (
+            "species data: NASA polynomials (McBride, Gordon, Reno, NASA TM-4513, 1993) "
+            "as shipped with Cantera"
+        ),
     )
 
     adiabatic: bool = Field(
@@ -312,7 +314,7 @@ def _oxygen(feed: Stream) -> Iterator[Caution]:
 
 
 def share_of(stream: Stream, name: str) -> float:
-    """Mole fraction of a component, zero if it is not among the components."""
+    """Mole fraction of a component, zero if it is not there."""
     place = stream.matter.index.get(name)
     total = float(stream.total)
     return float(stream.flows[place]) / total if place is not None and total > 0.0 else 0.0

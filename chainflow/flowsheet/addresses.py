@@ -131,7 +131,8 @@ def parse_result(
     if outlet is None and inlet is None:
         ports = [p.name for p in piece.port_list() if not p.any_name]
         raise AddressError(
-            f"'{address}': {words[0]} ({piece.kind}) has no port '{words[1]}'{suggest(words[1], ports)}"
+            f"'{address}': {words[0]} ({piece.kind}) has no port '{words[1]}'"
+            f"{suggest(words[1], ports)}"
         )
     unit = _check_property(words, address, components)
     named_inlet = inlet is not None and any(
@@ -141,7 +142,7 @@ def parse_result(
         p.name == words[1] and not p.is_inlet for p in piece.port_list()
     )
     where: Literal["outlet", "inlet"] = (
-        "inlet" if named_inlet and not named_outlet or outlet is None else "outlet"
+        "inlet" if (named_inlet and not named_outlet) or outlet is None else "outlet"
     )
     return ResultAddress(words[0], where, words[1], words[2], ".".join(words[3:]), unit)
 
@@ -174,7 +175,8 @@ def _own(name: str, result: str, piece: Equipment, address: str) -> ResultAddres
         else "; a port's property has three words, as in stack.hydrogen.flow"
     )
     raise AddressError(
-        f"'{address}': {name} ({piece.kind}) has no result '{result}'{suggest(result, known)}{listed}"
+        f"'{address}': {name} ({piece.kind}) has no result '{result}'"
+        f"{suggest(result, known)}{listed}"
     )
 
 
@@ -182,7 +184,8 @@ def _check_property(words: list[str], address: str, components: tuple[str, ...])
     prop, rest = words[2], words[3:]
     if prop not in PROPERTY_UNITS:
         raise AddressError(
-            f"'{address}': a port has no '{prop}'{suggest(prop, PROPERTY_UNITS)}; it has {', '.join(PROPERTY_UNITS)}"
+            f"'{address}': a port has no '{prop}'{suggest(prop, PROPERTY_UNITS)}; "
+            f"it has {', '.join(PROPERTY_UNITS)}"
         )
     names = ".".join(rest).split("/") if rest else []
     for name in names:
@@ -207,9 +210,8 @@ def property_of(flow: Flow, prop: str, argument: str) -> float:
         return flow.rate if isinstance(flow, Heat) else float(flow)
     if prop == "temperature" and isinstance(flow, Heat):
         return flow.mean
-    raise AddressError(
-        f"this port carries {'heat' if isinstance(flow, Heat) else 'power or light'}: it has 'rate', not '{prop}'"
-    )
+    carried = "heat" if isinstance(flow, Heat) else "power or light"
+    raise AddressError(f"this port carries {carried}: it has 'rate', not '{prop}'")
 
 
 def _of_stream(stream: Stream, prop: str, argument: str) -> float:

@@ -159,7 +159,8 @@ class _Builder:
             if key not in _TOP:
                 self.fault(
                     "unknown-key",
-                    f"there is no entry {shorten(key)} at the top of a flowsheet{suggest(key, _TOP)}; it has {', '.join(_TOP)}",
+                    f"there is no entry {shorten(key)} at the top of a flowsheet"
+                    f"{suggest(key, _TOP)}; it has {', '.join(_TOP)}",
                     place,
                 )
         for key, form in _REQUIRED.items():
@@ -220,7 +221,8 @@ class _Builder:
             if name not in known:
                 self.fault(
                     "unknown-component",
-                    f"components: there is no component {shorten(str(name))}{suggest(str(name), known)}; known: {', '.join(known)}",
+                    f"components: there is no component {shorten(str(name))}"
+                    f"{suggest(str(name), known)}; known: {', '.join(known)}",
                     item.place,
                 )
             elif name in names:
@@ -281,11 +283,17 @@ class _Builder:
         if word not in known:
             self.fault(
                 "unknown-kind",
-                f"{shorten(name)}: there is no kind {shorten(str(word))}{suggest(str(word), known)}; 'chainflow kinds' lists them",
+                f"{shorten(name)}: there is no kind {shorten(str(word))}"
+                f"{suggest(str(word), known)}; 'chainflow kinds' lists them",
                 kind.place,
             )
             return None
-        cls = known[str(word)]
+        return self._made(name, known[str(word)], place, entry)
+
+    def _made(
+        self, name: str, cls: type[Equipment], place: Place, entry: Mapping
+    ) -> Equipment | None:
+        """Equipment of a known kind, or None with what is wrong among the faults."""
         settings: dict[str, Any] = plain(entry)
         del settings["kind"]
         try:
@@ -321,7 +329,8 @@ class _Builder:
                     )
                     self.fault(
                         "unknown-component",
-                        f"{bare(name)}: {'.'.join(map(bare, path))}: there is no component {shorten(component)}{hint}",
+                        f"{bare(name)}: {'.'.join(map(bare, path))}: "
+                        f"there is no component {shorten(component)}{hint}",
                         self._spot(name, path),
                     )
             if not strange:
@@ -384,13 +393,15 @@ class _Builder:
                 if port.is_inlet:
                     self.fault(
                         "missing-line",
-                        f"{name}: no line arrives at '{name}.{port.name}' ({port.means}): write '- ... -> {name}.{port.name}' under lines",
+                        f"{name}: no line arrives at '{name}.{port.name}' ({port.means}): "
+                        f"write '- ... -> {name}.{port.name}' under lines",
                         self._spot(name, ()),
                     )
                 else:
                     self.remark(
                         "unlinked-outlet",
-                        f"{name}: '{name}.{port.name}' is not linked, what comes there leaves the plant",
+                        f"{name}: '{name}.{port.name}' is not linked, "
+                        "what comes there leaves the plant",
                         self._spot(name, ()),
                     )
 

@@ -8,6 +8,8 @@ from __future__ import annotations
 
 from collections.abc import Mapping as AnyMapping
 
+from pydantic import ValidationError
+
 from chainflow.basis.faults import Fault, Place
 from chainflow.basis.names import shorten, suggest
 from chainflow.basis.quantities import QuantityFault, parse
@@ -19,6 +21,7 @@ from chainflow.flowsheet.addresses import (
     parse_result,
     parse_setting,
 )
+from chainflow.flowsheet.messages import complaints
 from chainflow.flowsheet.network import Hold
 from chainflow.flowsheet.tree import Mapping, Node, Sequence, Text, place_at
 
@@ -84,7 +87,7 @@ class HoldReader:
         if result is None or setting is None:
             return None
         at = self._value("at", item.get("at"), result.unit)
-        ends = self._ends(item, setting.unit)
+        ends = self._ends(item, setting)
         if at is None or ends is None:
             return None
         return Hold(
@@ -130,27 +133,41 @@ class HoldReader:
             return None
         return setting
 
-    def _ends(self, item: Mapping, unit: str) -> tuple[float, float] | None:
+    def _ends(self, item: Mapping, setting: SettingAddress) -> tuple[float, float] | None:
         within = item.get("within")
         if not isinstance(within, Sequence) or len(within.items) != 2:
             text = "within: wanted two values, as in [250 degC, 450 degC]"
             self._fault("bad-hold", text, within.place if within is not None else item.place)
             return None
-        low, high = (self._value("within", node, unit) for node in within.items)
+        low, high = (self._value("within", node, setting.unit) for node in within.items)
         if low is None or high is None:
             return None
+        for end, node in ((low, within.items[0]), (high, within.items[1])):
+            if trouble := self._trouble_at(end, setting):
+                self._fault("bad-hold", f"within: at this end {trouble}", node.place)
+                return None
         if not low < high:
             text = "within: the first value is not below the second: turn them round"
             self._fault("bad-hold", text, within.place)
             return None
         return low, high
 
+    def _trouble_at(self, end: float, setting: SettingAddress) -> str:
+        """What is wrong with the equipment whose setting is at an end of its range."""
+        piece = self.pieces[setting.piece].with_setting(setting.path, end)
+        given = {name: getattr(piece, name) for name in type(piece).model_fields}
+        try:
+            type(piece).model_validate(given)
+        except ValidationError as problem:
+            return next(complaints(problem, type(piece), setting.piece)).text
+        return ""
+
     def _value(self, key: str, node: Node | None, unit: str) -> float | None:
         if not isinstance(node, Text) or node.value is None:
             self._fault("bad-hold", f"{key}: wanted a value", node.place if node else None)
             return None
         try:
-            return parse(node.value, unit)
+            return parse(node.value, unit, gt=0.0 if unit == "K" else None)
         except QuantityFault as problem:
             self._fault("wrong-quantity", f"{key}: {problem}", node.place)
             return None

@@ -8,6 +8,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass
+from itertools import pairwise
 
 from chainflow.basis.faults import Fault, Place
 from chainflow.basis.names import NAME_PATTERN, name_trouble, shorten, suggest
@@ -42,6 +43,7 @@ class JoinedPorts:
 
     @property
     def text(self) -> str:
+        """The line with both ports written out."""
         return f"{self.source}.{self.outlet.name} -> {self.target}.{self.inlet.name}"
 
 
@@ -60,7 +62,7 @@ def cut_chain(text: str, place: Place | None, faults: list[Fault]) -> Iterator[J
         say = f"lines: {shorten(text)} joins nothing: wanted 'from -> to', as in {_EXAMPLE}"
         faults.append(Fault("bad-line", say).located(place))
         return
-    for number, ((source, outlet), (target, inlet)) in enumerate(zip(ends, ends[1:], strict=False)):
+    for number, ((source, outlet), (target, inlet)) in enumerate(pairwise(ends)):
         # a port named in the middle of a chain is where the chain enters
         yield Joint(source, outlet if number == 0 else None, target, inlet, place)
 
@@ -103,7 +105,6 @@ def _find(
     faults: list[Fault],
 ) -> Port | None:
     piece = equipment.get(name)
-    side = "inlet" if inlet else "outlet"
     if piece is None:
         say = f"lines: there is no equipment '{name}'{suggest(name, equipment)}"
         faults.append(Fault("unknown-equipment", say).located(place))
@@ -115,26 +116,21 @@ def _find(
         if trouble:
             faults.append(Fault("bad-name", f"lines: {name}: {trouble}").located(place))
         return found
+    say = f"lines: '{name}' ({piece.kind}) {_not_there(piece, port, inlet)}"
+    faults.append(Fault("unknown-port", say).located(place))
+    return None
+
+
+def _not_there(piece: Equipment, port: str | None, inlet: bool) -> str:
+    """What is said of a port that a piece of equipment does not have."""
+    side, other_side = ("inlet", "outlet") if inlet else ("outlet", "inlet")
     known = [p.name for p in piece.port_list() if p.is_inlet == inlet and not p.any_name]
     listed = ", ".join(known) or "none"
     if port is None:
-        say = f"lines: '{name}' ({piece.kind}) has no main {side}, name one: {listed}"
-        if not known:
-            say = f"lines: '{name}' ({piece.kind}) has no {side}, turn the line round"
-        if piece.port("any", inlet=inlet) is not None:
-            say += " or a name of your own"
-    else:
-        other = piece.port(port, inlet=not inlet)
-        turned = (
-            f"; '{port}' is an {'outlet' if inlet else 'inlet'}"
-            if other is not None
-            and not other.any_name
-            and port in [p.name for p in piece.port_list()]
-            else ""
-        )
-        say = (
-            f"lines: '{name}' ({piece.kind}) has no {side} '{port}'{suggest(port, known)}{turned}; "
-            f"its {side}s: {listed}"
-        )
-    faults.append(Fault("unknown-port", say).located(place))
-    return None
+        say = f"main {side}, name one: {listed}" if known else f"{side}, turn the line round"
+        own = " or a name of your own" if piece.port("any", inlet=inlet) else ""
+        return f"has no {say}{own}"
+    other = piece.port(port, inlet=not inlet)
+    named = port in [p.name for p in piece.port_list()]
+    turned = f"; '{port}' is an {other_side}" if other and not other.any_name and named else ""
+    return f"has no {side} '{port}'{suggest(port, known)}{turned}; its {side}s: {listed}"

@@ -84,9 +84,11 @@ def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseMo
     if kind == "extra_forbidden":
         return _no_such_setting(str(path[-1]), _fields(model, path[:-1]))
     if len(errors) > 1:
-        return f"{shorten(str(given))} is not possible, wanted {' or '.join(dict.fromkeys(_expected(e) for e in errors))}"
+        wanted = " or ".join(dict.fromkeys(_expected(e) for e in errors))
+        return f"{shorten(str(given))} is not possible, wanted {wanted}"
     if kind == "literal_error":
-        return f"{shorten(str(given))} is not possible{suggest(str(given), _choices(error))}, wanted {error['ctx']['expected']}"
+        hint = suggest(str(given), _choices(error))
+        return f"{shorten(str(given))} is not possible{hint}, wanted {error['ctx']['expected']}"
     if isinstance(given, Mapping | list) and error["msg"].startswith("Input"):
         found = "a list" if isinstance(given, list) else "a map"
         return f"{found} is not possible here, wanted {_expected(error)}"

@@ -5,7 +5,8 @@ A value that does not fit is wrong usage, not a fault of the file.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping as AnyMapping
+from collections.abc import Iterator
+from collections.abc import Mapping as AnyMapping
 from dataclasses import replace
 
 from chainflow.basis.faults import ChainflowError, FlowsheetFault, Place, UsageFault

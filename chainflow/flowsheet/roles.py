@@ -55,10 +55,16 @@ def check_counts(joined: Sequence[JoinedPorts], faults: list[Fault]) -> None:
         start, end = (line.source, line.outlet.name), (line.target, line.inlet.name)
         shared = line.outlet.role is Role.SERVES and line.outlet.content not in _ONE_LINE
         if start in starts and not shared:
-            say = f"lines: two lines leave '{start[0]}.{start[1]}' (the other goes to {starts[start].target}): put a splitter between"
+            say = (
+                f"lines: two lines leave '{start[0]}.{start[1]}' "
+                f"(the other goes to {starts[start].target}): put a splitter between"
+            )
             faults.append(Fault("two-lines-from-outlet", say).located(line.place))
         if end in ends and not line.inlet.many:
-            say = f"lines: two lines enter '{end[0]}.{end[1]}' (the other comes from {ends[end].source}): put a mixer before it"
+            say = (
+                f"lines: two lines enter '{end[0]}.{end[1]}' "
+                f"(the other comes from {ends[end].source}): put a mixer before it"
+            )
             faults.append(Fault("two-lines-into-inlet", say).located(line.place))
         starts.setdefault(start, line)
         ends.setdefault(end, line)
@@ -71,6 +77,24 @@ def assign(
     faults: list[Fault],
 ) -> list[Line]:
     """Decide for each line whether it is called, and refuse ends that do not agree."""
+    called = _called(joined, kinds, equipment, faults)
+    lines = []
+    sound = not faults  # a call may be missing only because something else is wrong
+    for i, line in enumerate(joined):
+        if sound and not called[i] and line.outlet.role is Role.SERVES:
+            faults.append(_nobody_sets(line, equipment))
+        start, end = (line.source, line.outlet.name), (line.target, line.inlet.name)
+        lines.append(Line(i, *start, *end, kinds[i], called[i], line.place))
+    return lines
+
+
+def _called(
+    joined: Sequence[JoinedPorts],
+    kinds: Sequence[str],
+    equipment: Mapping[str, Equipment],
+    faults: list[Fault],
+) -> list[bool]:
+    """Whether each line is called, followed back from the inlets that call."""
     called = [line.inlet.role is Role.CALLS for line in joined]
     into: dict[str, list[int]] = {}
     for i, line in enumerate(joined):
@@ -82,24 +106,7 @@ def assign(
             if not called[back]:
                 called[back] = True
                 queue.append(back)
-    lines = []
-    sound = not faults  # a call may be missing only because something else is wrong
-    for i, line in enumerate(joined):
-        if sound and not called[i] and line.outlet.role is Role.SERVES:
-            faults.append(_nobody_sets(line, kinds[i], equipment))
-        lines.append(
-            Line(
-                i,
-                line.source,
-                line.outlet.name,
-                line.target,
-                line.inlet.name,
-                kinds[i],
-                called[i],
-                line.place,
-            )
-        )
-    return lines
+    return called
 
 
 def _call_passes(
@@ -120,7 +127,10 @@ def _call_passes(
         faults.append(_offers_to_call(line, content))
         return []
     if not piece.passes_calls:
-        say = f"lines: the call of '{line.target}.{line.inlet.name}' cannot pass through '{line.source}': its duty is fixed, give it a temperature"
+        say = (
+            f"lines: the call of '{line.target}.{line.inlet.name}' cannot pass through "
+            f"'{line.source}': its duty is fixed, give it a temperature"
+        )
         faults.append(Fault("call-cannot-pass", say).located(line.place))
         return []
     assert main_in is not None
@@ -133,11 +143,14 @@ def _offers_to_call(line: JoinedPorts, content: str) -> Fault:
         "power": "put a switchboard between and take the power from one of its named outlets",
         "heat": "put a heat-network between and take the heat from one of its named outlets",
     }.get(content, "put something that serves between")
-    say = f"lines: '{line.text}': the sender offers what it has, the receiver calls for what it needs; {between}"
+    say = (
+        f"lines: '{line.text}': the sender offers what it has, "
+        f"the receiver calls for what it needs; {between}"
+    )
     return Fault("offers-calls", say).located(line.place)
 
 
-def _nobody_sets(line: JoinedPorts, content: str, equipment: Mapping[str, Equipment]) -> Fault:
+def _nobody_sets(line: JoinedPorts, equipment: Mapping[str, Equipment]) -> Fault:
     kind = equipment[line.source].kind
     mend = {
         "supply": f"give 'flow:' to '{line.source}'",

@@ -5,7 +5,7 @@ An editor that knows it completes kinds and settings and marks what does not fit
 
 from __future__ import annotations
 
-from typing import Any
+from typing import Any, get_args
 
 from pydantic.json_schema import GenerateJsonSchema
 
@@ -93,7 +93,7 @@ def _or_knob(schema: dict[str, Any]) -> dict[str, Any]:
 
 def _quantity(unit: str, means: str) -> dict[str, Any]:
     """A quantity as the ready type describes it."""
-    (marker,) = Temperature.__metadata__  # type: ignore[attr-defined] # an Annotated type
+    _, marker = get_args(Temperature)
     return {**marker.__get_pydantic_json_schema__(None, None), "x-unit": unit, "description": means}
 
 

@@ -69,6 +69,7 @@ class Newton:
         self.fixed = fixed or {}  # settings kept at a value instead of being solved
         self.passes = 0
         self.constants: Values = {}
+        self.at_first: dict[str, float] | None = None  # plant sizes when Newton begins
         self.places: dict[str, slice] = {}
         at = 0
         for key in order.tears:
@@ -315,13 +316,10 @@ class Newton:
 
     def _refuse_growth(self, state: _State) -> None:
         sizes = {k: float(v.total) for k, v in state.values.items() if isinstance(v, Stream)}
-        fed = max(
-            (float(v.total) for v in self.constants.values() if isinstance(v, Stream)), default=0.0
-        )
-        power = max(
-            (abs(float(v)) for v in self.constants.values() if isinstance(v, float)), default=0.0
-        )
-        limit = _GROWN * max(fed, power / ENTHALPY_SCALE, 1e-9)
+        if self.at_first is None:  # a hold may move all that enters: then nothing is constant
+            self.at_first = self._plant_sizes({**self.constants, **state.values})
+        power = self.at_first["power"] / ENTHALPY_SCALE
+        limit = _GROWN * max(self.at_first["material"], power, 1e-9)
         key = max(sizes, key=sizes.__getitem__, default="")
         if key and sizes[key] > limit:
             raise NotSolved(

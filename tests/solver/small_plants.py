@@ -35,7 +35,11 @@ def methane_loop(
 title: Methane loop (invented)
 components: [H2, O2, N2, H2O, CO, CO2, CH4]
 equipment:{SHARED}
-  bought:  {{kind: supply, composition: {{N2: {inert}, CO2: rest}}, temperature: 25 degC, pressure: 20 bar}}
+  bought:
+    kind: supply
+    composition: {{N2: {inert}, CO2: rest}}
+    temperature: 25 degC
+    pressure: 20 bar
   blend:   {{kind: blend, ratio: {{H2: 4, CO2: 1}}, let_down: true}}
   reactor: {{kind: methanation-reactor, temperature: 320 degC}}
   knock:   {{kind: condenser, temperature: 30 degC, pressure_drop: 0.5 bar}}
@@ -68,11 +72,19 @@ lines:{SHARED_LINES}{lines}
 """
 
 
+OUTER_LOOP = [
+    "  outer: {kind: splitter, shares: {back: 30 %, on: rest}}",
+    "  first: {kind: mixer}",
+    "  lift: {kind: compressor, pressure: 10 bar, stages: 1}",
+]
+OUTER_LINES = ["  - outer.back -> lift -> first", "  - outer.on -> end"]
+
+
 def chain_of_loops(count: int, *, joined: bool = False) -> str:
     """Many mixers with a recycle each, one after the other; with an outer recycle if joined."""
     pieces = [
-        "  start: {kind: supply, composition: {H2: 3, CO2: rest}, temperature: 25 degC, "
-        "pressure: 10 bar, flow: 10 mol/s}".replace("H2: 3", "H2: 75 %"),
+        "  start: {kind: supply, composition: {H2: 75 %, CO2: rest}, temperature: 25 degC, "
+        "pressure: 10 bar, flow: 10 mol/s}",
         "  end: {kind: product}",
     ]
     lines = []
@@ -91,27 +103,10 @@ def chain_of_loops(count: int, *, joined: bool = False) -> str:
         ]
         before = f"s{i}.on"
     if joined:
-        pieces += [
-            "  outer: {kind: splitter, shares: {back: 30 %, on: rest}}",
-            "  first: {kind: mixer}",
-            "  lift: {kind: compressor, pressure: 10 bar, stages: 1}",
-        ]
+        pieces += OUTER_LOOP
         lines[0] = "  - start -> first"
-        lines += [
-            "  - first -> m0",
-            f"  - {before} -> outer",
-            "  - outer.back -> lift -> first",
-            "  - outer.on -> end",
-        ]
+        lines += ["  - first -> m0", f"  - {before} -> outer", *OUTER_LINES]
     else:
         lines.append(f"  - {before} -> end")
-    return "\n".join(
-        [
-            "title: Loops (invented)",
-            "components: [H2, CO2, H2O]",
-            "equipment:",
-            *pieces,
-            "lines:",
-            *lines,
-        ]
-    )
+    head = ["title: Loops (invented)", "components: [H2, CO2, H2O]"]
+    return "\n".join([*head, "equipment:", *pieces, "lines:", *lines])

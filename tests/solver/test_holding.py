@@ -3,12 +3,12 @@
 from __future__ import annotations
 
 import pytest
-from tests.solver.small_plants import hydrogen_plant, methane_loop
 
 from chainflow.basis.faults import NotSolved
 from chainflow.flowsheet.building import read_text
 from chainflow.solver.lookup import value_at
 from chainflow.solver.solve import solve_flowsheet
+from tests.solver.small_plants import hydrogen_plant, methane_loop
 
 HOLD = "holds:\n  - {{hold: {hold}, at: {at}, by: {by}, within: [{low}, {high}]}}\n"
 
@@ -31,7 +31,7 @@ def test_simple_hold_is_met_in_few_passes() -> None:
     assert solution.passes <= 15
     assert value_at(solution, "reactor.product.fraction.CH4") == pytest.approx(0.30, rel=1e-10)
     (result,) = solution.holds
-    assert result.unit == "1" and result.by_unit == "K"
+    assert (result.unit, result.by_unit) == ("1", "K")
     # the answer with the setting written into the file is the same
     again = solve_flowsheet(
         read_text(methane_loop(), {"reactor.temperature": f"{result.value!r} K"})
@@ -67,9 +67,15 @@ def test_every_kind_of_address_can_be_held(address: str, at: str) -> None:
 
 
 def test_two_holds_are_met_together() -> None:
-    first = "  - {hold: reactor.product.fraction.CH4, at: 0.30, by: reactor.temperature, within: [250 degC, 450 degC]}\n"
-    second = "  - {hold: stack.hydrogen.flow.H2, at: 5 mol/s, by: field.efficiency, within: [1 %, 60 %]}\n"
-    solution = solve_flowsheet(read_text(methane_loop(holds="holds:\n" + first + second)))
+    holds = """
+holds:
+  - hold: reactor.product.fraction.CH4
+    at: 0.30
+    by: reactor.temperature
+    within: [250 degC, 450 degC]
+  - {hold: stack.hydrogen.flow.H2, at: 5 mol/s, by: field.efficiency, within: [1 %, 60 %]}
+"""
+    solution = solve_flowsheet(read_text(methane_loop(holds=holds)))
     assert [h.reached for h in solution.holds] == pytest.approx([0.30, 5.0], rel=1e-9)
 
 
@@ -124,11 +130,21 @@ def test_hold_without_flow_is_unable_and_not_out_of_reach() -> None:
 def test_net_of_a_store_can_be_held_at_zero() -> None:
     equipment = """
   store: {kind: store, contents: {H2: 1}, temperature: 25 degC, pressure: 15 bar}
-  user:  {kind: supply, composition: {CO2: 1}, temperature: 25 degC, pressure: 15 bar, flow: 2 mol/s}
+  user:
+    kind: supply
+    composition: {CO2: 1}
+    temperature: 25 degC
+    pressure: 15 bar
+    flow: 2 mol/s
   blend: {kind: blend, ratio: {H2: 4, CO2: 1}, let_down: true}
   town:  {kind: product}
 """
-    lines = "\n  - stack.hydrogen -> dry -> store.returns\n  - user -> blend.main\n  - store.draw -> blend.trim\n  - blend -> town\n"
+    lines = """
+  - stack.hydrogen -> dry -> store.returns
+  - user -> blend.main
+  - store.draw -> blend.trim
+  - blend -> town
+"""
     words = {
         "hold": "store.net",
         "at": "0 mol/s",

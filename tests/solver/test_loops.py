@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import numpy as np
 import pytest
-from tests.solver.small_plants import chain_of_loops, hydrogen_plant, methane_loop
 
 from chainflow.basis.faults import NotSolved
 from chainflow.flowsheet.building import read_text
@@ -13,6 +12,7 @@ from chainflow.solver.lookup import value_at
 from chainflow.solver.solution import Solution
 from chainflow.solver.solve import inspect, solve_flowsheet
 from chainflow.thermo.streams import Stream
+from tests.solver.small_plants import chain_of_loops, hydrogen_plant, methane_loop
 
 
 def solved(text: str, **settings: str) -> Solution:
@@ -47,7 +47,10 @@ equipment:
   fresh: {kind: supply, composition: {CO: 1}, temperature: 25 degC, pressure: 20 bar, flow: 1 mol/s}
   other: {kind: supply, composition: {H2: 1}, temperature: 25 degC, pressure: 20 bar}
   mix:   {kind: blend, ratio: {H2: 2, CO: 1}}
-  bed:   {kind: reactor, reactions: [{equation: CO + 2 H2 -> CH3OH, conversion: {CO: 80 %}}], temperature: 250 degC}
+  bed:
+    kind: reactor
+    reactions: [{equation: CO + 2 H2 -> CH3OH, conversion: {CO: 80 %}}]
+    temperature: 250 degC
   sieve: {kind: separator, recovery: {CH3OH: 100 %}}
   split: {kind: splitter, shares: {purge: 5 %, back: rest}}
   out:   {kind: product}
@@ -113,7 +116,12 @@ lines: [a -> m, m -> s, s.back -> m, s.on -> p]
 
 ENGINE = """
   store:  {kind: store, contents: {H2: 1}, temperature: 25 degC, pressure: 15 bar}
-  user:   {kind: supply, composition: {CO2: 1}, temperature: 25 degC, pressure: 15 bar, flow: 2 mol/s}
+  user:
+    kind: supply
+    composition: {CO2: 1}
+    temperature: 25 degC
+    pressure: 15 bar
+    flow: 2 mol/s
   blend:  {kind: blend, ratio: {H2: 4, CO2: 1}, let_down: true}
   town:   {kind: product}
 """
@@ -141,8 +149,21 @@ def test_a_store_is_solved_at_its_switch(change: float) -> None:
 
 def test_short_switchboard_says_by_how_much() -> None:
     """A fixed user of 2 MW on a board that gets 1.6 MW: short by 0.4 MW with nothing at rest."""
-    equipment = "  oven: {kind: heater, duty: 2 MW}\n  gas: {kind: supply, composition: {N2: 1}, temperature: 25 degC, pressure: 1 bar, flow: 100 mol/s}\n  town: {kind: product}\n"
-    lines = "\n  - stack.hydrogen -> dry -> town\n  - gas -> oven -> town\n  - board.oven -> oven.power\n"
+    equipment = """
+  oven: {kind: heater, duty: 2 MW}
+  gas:
+    kind: supply
+    composition: {N2: 1}
+    temperature: 25 degC
+    pressure: 1 bar
+    flow: 100 mol/s
+  town: {kind: product}
+"""
+    lines = """
+  - stack.hydrogen -> dry -> town
+  - gas -> oven -> town
+  - board.oven -> oven.power
+"""
     with pytest.raises(NotSolved, match=r"board is short of 400 kW") as problem:
         solved(hydrogen_plant(equipment=equipment, lines=lines))
     assert problem.value.code == "short-of-power"
@@ -151,8 +172,16 @@ def test_short_switchboard_says_by_how_much() -> None:
 
 def test_shortage_line_serves_what_is_missing() -> None:
     """With a grid behind it everybody is served, and the grid gives what the others lack."""
-    equipment = "  grid: {kind: grid}\n  press: {kind: compressor, pressure: 300 bar, stages: 3}\n  town: {kind: product}\n"
-    lines = "\n  - stack.hydrogen -> dry -> press -> town\n  - board.press -> press.power\n  - grid.power -> board.shortage\n"
+    equipment = """
+  grid: {kind: grid}
+  press: {kind: compressor, pressure: 300 bar, stages: 3}
+  town: {kind: product}
+"""
+    lines = """
+  - stack.hydrogen -> dry -> press -> town
+  - board.press -> press.power
+  - grid.power -> board.shortage
+"""
     text = hydrogen_plant(equipment=equipment, lines=lines).replace(
         "- board.rest -> stack.power", "- board.stack -> stack.power"
     )

@@ -18,7 +18,7 @@ from tests.solver.small_plants import methane_loop
 
 SHIPPED = sorted((Path(__file__).parents[2] / "flowsheets").glob("*.yaml"))
 ROUND_OFF = 1e-6
-FORWARD = 2e-4  # one-sided differences with a step of 1e-6 of a curved function, relative
+AGREES = 1e-4  # with a step of 1e-6, relative
 
 
 def differences(step: Step, key: str, values: Values, written: Values, sign: float) -> Blocks:
@@ -59,19 +59,21 @@ def compared(flowsheet: Flowsheet) -> list[tuple[str, str, str, float]]:
             sides = [differences(step, key, values, written, sign) for sign in (1.0, -1.0)]
             for name, _ in sides[0]:
                 closed = blocks.get((name, key), np.zeros_like(sides[0][name, key]))
-                errors = [column_errors(closed, side[name, key]) for side in sides]
-                found.append((step.name, name, key, float(np.minimum(*errors).max(initial=0.0))))
+                ways = [side[name, key] for side in sides]
+                ways.append(0.5 * (ways[0] + ways[1]))  # central where there is no kink
+                errors = np.min([column_errors(closed, way) for way in ways], axis=0)
+                found.append((step.name, name, key, float(errors.max(initial=0.0))))
     return found
 
 
 @pytest.mark.parametrize("path", SHIPPED, ids=lambda p: p.stem)
 def test_closed_forms_of_shipped_flowsheets_agree_with_differences(path: Path) -> None:
     worst = max(compared(read_flowsheet(path)), key=lambda row: row[-1])
-    assert worst[-1] < FORWARD, worst
+    assert worst[-1] < AGREES, worst
 
 
 def test_closed_forms_of_a_small_loop_agree_with_differences() -> None:
     rows = compared(read_text(methane_loop()))
     assert len(rows) > 20  # not vacuous
     worst = max(rows, key=lambda row: row[-1])
-    assert worst[-1] < FORWARD, worst
+    assert worst[-1] < AGREES, worst

@@ -10,7 +10,7 @@ from typing import Any
 import numpy as np
 
 from chainflow.thermo.components import Matter
-from chainflow.thermo.reactants import Reactants, reactants_of
+from chainflow.thermo.reactants import Reactants
 
 
 class RecordingPhase:
@@ -81,4 +81,4 @@ def seconds(work: Callable[[], Any]) -> float:
     return time.process_time() - start
 
 
-__all__ = ["recorded", "reactants_of", "replay", "seconds"]
+__all__ = ["recorded", "replay", "seconds"]

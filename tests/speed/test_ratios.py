@@ -79,15 +79,18 @@ def test_cost_per_piece_of_equipment_is_flat_from_10_to_1000() -> None:
     for loops in (3, 25, 250):
         flowsheet = read_text(chain_of_loops(loops, joined=True))
         prepared = Prepared(flowsheet)
-        costs[len(flowsheet.equipment)] = min(seconds(prepared.close) for _ in range(3)) / len(flowsheet.equipment)
+        pieces = len(flowsheet.equipment)
+        costs[pieces] = min(seconds(prepared.close) for _ in range(3)) / pieces
     few = next(iter(costs.values()))
-    say("cost per piece, relative to the smallest plant: " + ", ".join(f"{n} pieces {c / few:.2f}" for n, c in costs.items()))
+    found = ", ".join(f"{pieces} pieces {cost / few:.2f}" for pieces, cost in costs.items())
+    say(f"cost per piece, relative to the smallest plant: {found}")
     assert max(costs.values()) < 3.0 * few
 
 
 def wall(command: list[str]) -> float:
     start = time.perf_counter()
-    subprocess.run(command, check=True, stdout=subprocess.DEVNULL, env={**os.environ, "PYTHONDONTWRITEBYTECODE": ""})
+    environment = {**os.environ, "PYTHONDONTWRITEBYTECODE": ""}
+    subprocess.run(command, check=True, stdout=subprocess.DEVNULL, env=environment)
     return time.perf_counter() - start
 
 
