@@ -13,9 +13,9 @@ CODE = r"[a-z]+(?:-[a-z]+)*"
 def constants(node: ast.AST) -> Iterator[str]:
     """Yield the texts in an expression that look like codes."""
     for part in ast.walk(node):
-        if isinstance(part, ast.Constant) and isinstance(part.value, str):
-            if re.fullmatch(CODE, part.value):
-                yield part.value
+        value = getattr(part, "value", None) if isinstance(part, ast.Constant) else None
+        if isinstance(value, str) and re.fullmatch(CODE, value):
+            yield value
 
 
 def direct(node: ast.AST) -> Iterator[str]:

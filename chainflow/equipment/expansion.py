@@ -6,6 +6,7 @@ SI throughout: flows [mol/s], temperature [K], pressure [Pa], power [W].
 from __future__ import annotations
 
 from collections.abc import Iterator, Mapping
+from dataclasses import replace
 from typing import Any, ClassVar
 
 import numpy as np
@@ -61,7 +62,27 @@ class Valve(Equipment):
         )
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
-        return Outcome({"outlet": material(feeds, "inlet").at_pressure(self.pressure)})
+        inlet = material(feeds, "inlet")
+        try:
+            return Outcome({"outlet": inlet.at_pressure(self.pressure)})
+        except StateError:
+            if not site.detail:  # on the way to a solution the coldest state will do
+                return Outcome({"outlet": self._coldest(inlet)})
+            raise StateError(self._too_cold(inlet)) from None
+
+    def _coldest(self, inlet: Stream) -> Stream:
+        """The outlet at the coldest temperature of the data, its enthalpy kept."""
+        lowest = inlet.matter.temperature_range[0]
+        cold = Stream.gaseous(inlet.matter, inlet.flows, lowest, self.pressure)
+        return replace(cold, enthalpy=inlet.enthalpy)
+
+    def _too_cold(self, inlet: Stream) -> str:
+        levels = f"{float(inlet.pressure) / 1e5:.4g} bar to {self.pressure / 1e5:.4g} bar"
+        return (
+            f"letting this stream down from {levels} cools it below "
+            f"{inlet.matter.temperature_range[0]:g} K, where parts of it freeze: heat it before, "
+            "or let it down in steps with heating between"
+        )
 
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome

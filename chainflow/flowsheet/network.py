@@ -10,7 +10,6 @@ from dataclasses import dataclass, field
 
 from chainflow.basis.faults import Fault, Place
 from chainflow.equipment.base import Equipment
-from chainflow.equipment.ports import Role
 from chainflow.thermo.components import Matter
 
 
@@ -114,4 +113,4 @@ class Flowsheet:
         )
 
 
-__all__ = ["Flowsheet", "Hold", "Line", "Role"]
+__all__ = ["Flowsheet", "Hold", "Line"]

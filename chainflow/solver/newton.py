@@ -34,6 +34,7 @@ _STALLED = 6  # passes without halving the residual
 _MIXED_PASSES, _DEPTH = 15, 5
 _WARM_PASSES = 10
 _SHORT_PASSES = 5
+_MOST_HALVINGS = 4
 _GROWN = 1e8
 
 
@@ -186,17 +187,21 @@ class Newton:
     def _iterate(self, torn: Values) -> Closed:
         best, bad, before = np.inf, 0, np.inf
         short = 0
-        settled = False
+        settled = mixed = False
+        come_from: tuple[Values, np.ndarray] | None = None
         while self.passes < _MOST_PASSES:
-            blocks: Blocks = {}
-            state = self.evaluate(torn, blocks=blocks)
-            scales = self.scales(state)
-            change, aside = self._step(state, blocks)
+            state, blocks = self._evaluate_near(torn, come_from)
+            torn, scales = state.torn, self.scales(state)
+            step = self._step(state, blocks)
+            if step is None and not mixed:  # perhaps only singular here
+                torn, mixed, come_from = self._mix(torn), True, None
+                continue
+            if step is None:
+                raise self._undetermined()
+            change, aside = step
             error = _largest(change, scales)
             shown = self.holding.shown(state.residual, state.values, aside)
             residual = _largest(shown, scales)
-            if not np.isfinite(error):
-                raise Singular("the step is not finite")
             if error < _SETTLED and not settled:
                 settled = self._settle()
                 if settled:
@@ -210,10 +215,26 @@ class Newton:
             short = self._short_so_far(short, state, change)
             best, bad = (residual, 0) if residual < 0.5 * best else (best, bad + 1)
             if bad >= _STALLED:
-                torn, best, bad = self._mix(torn), np.inf, 0
+                torn, best, bad, come_from = self._mix(torn), np.inf, 0, None
                 continue
+            come_from = (torn, change)
             torn = self._moved(torn, change)
         raise self._not_converged(state, scales)
+
+    def _evaluate_near(
+        self, torn: Values, come_from: tuple[Values, np.ndarray] | None
+    ) -> tuple[_State, Blocks]:
+        """Evaluate with derivatives; a step that leaves the data is halved a few times."""
+        for halving in range(1, _MOST_HALVINGS + 2):
+            blocks: Blocks = {}
+            try:
+                return self.evaluate(torn, blocks=blocks), blocks
+            except NotSolved:
+                if come_from is None or halving > _MOST_HALVINGS:
+                    raise
+                before, change = come_from
+                torn = self._moved(before, 0.5**halving * change)
+        raise AssertionError("the loop above returns or raises")
 
     def _finish(
         self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]
@@ -232,25 +253,33 @@ class Newton:
             for key, value in torn.items()
         }
 
-    def _step(self, state: _State, blocks: Blocks) -> tuple[np.ndarray, dict[str, str]]:
-        """The Newton change of all torn numbers, and the holds that are set aside this time."""
-        linear = Linear(
-            self.order.loop, blocks, self.order.tears, self.holding.results, self.variables
-        )
+    def _step(
+        self, state: _State, blocks: Blocks
+    ) -> tuple[np.ndarray, dict[str, str]] | None:
+        """The Newton change of all torn numbers, and the holds that are set aside this time.
+
+        None where the equations of the loop are singular.
+        """
         right = state.residual.copy()
         for key in self.program.settings:
             right[self.places[key]] = 0.0
         try:
+            linear = Linear(
+                self.order.loop, blocks, self.order.tears, self.holding.results, self.variables
+            )
             change, seen = linear.solve(right)
+            step = self.holding.step(linear, state.torn, state.values, change, seen)
         except Singular:
-            raise NotSolved(
-                "undetermined",
-                f"the loop through {self._names()} has no single steady state: "
-                "something in it is neither fixed nor let out; "
-                "open a purge or put a store with a draw into it",
-                {"tears": self.order.tears},
-            ) from None
-        return self.holding.step(linear, state.torn, state.values, change, seen)
+            return None
+        return step if np.isfinite(step[0]).all() else None
+
+    def _undetermined(self) -> NotSolved:
+        text = (
+            f"the loop through {self._names()} has no single steady state: "
+            "something in it is neither fixed nor let out; "
+            "open a purge or put a store with a draw into it"
+        )
+        return NotSolved("undetermined", text, {"tears": self.order.tears})
 
     # --- sizes -------------------------------------------------------------------------------
 

@@ -431,7 +431,6 @@ __all__ = [
     "EquipmentStep",
     "ResultStep",
     "Source",
-    "StateError",
     "Step",
     "StoreStateStep",
     "ThroughAmountStep",

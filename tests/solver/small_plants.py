@@ -83,8 +83,10 @@ OUTER_LINES = ["  - outer.back -> lift -> first", "  - outer.on -> end"]
 def chain_of_loops(count: int, *, joined: bool = False) -> str:
     """Many mixers with a recycle each, one after the other; with an outer recycle if joined."""
     pieces = [
-        "  start: {kind: supply, composition: {H2: 75 %, CO2: rest}, temperature: 25 degC, "
-        "pressure: 10 bar, flow: 10 mol/s}",
+        (
+            "  start: {kind: supply, composition: {H2: 75 %, CO2: rest}, temperature: 25 degC, "
+            "pressure: 10 bar, flow: 10 mol/s}"
+        ),
         "  end: {kind: product}",
     ]
     lines = []

@@ -37,7 +37,12 @@ def test_the_combination_that_the_stoichiometry_ties_is_named() -> None:
     text = """
 components: [H2, H2O, CO, CO2, CH4]
 equipment:
-  gas:     {kind: supply, composition: {H2: 80 %, CO2: rest}, temperature: 25 degC, pressure: 20 bar, flow: 1 mol/s}
+  gas:
+    kind: supply
+    composition: {H2: 80 %, CO2: rest}
+    temperature: 25 degC
+    pressure: 20 bar
+    flow: 1 mol/s
   mix:     {kind: mixer}
   bed:     {kind: methanation-reactor, temperature: 320 degC}
   sieve:   {kind: separator, recovery: {CH4: 97 %, H2O: 99 %}}
@@ -110,9 +115,19 @@ def test_zero_shares_carry_nothing() -> None:
 TRAPPED_IN_STORE = """
 components: [H2, N2, CO2]
 equipment:
-  gas:   {{kind: supply, composition: {{H2: 90 %, N2: rest}}, temperature: 25 degC, pressure: 20 bar, flow: {flow}}}
+  gas:
+    kind: supply
+    composition: {{H2: 90 %, N2: rest}}
+    temperature: 25 degC
+    pressure: 20 bar
+    flow: {flow}
   keep:  {{kind: store, contents: {{H2: 1}}, temperature: 25 degC, pressure: 10 bar}}
-  other: {{kind: supply, composition: {{CO2: 1}}, temperature: 25 degC, pressure: 10 bar, flow: 1 mol/s}}
+  other:
+    kind: supply
+    composition: {{CO2: 1}}
+    temperature: 25 degC
+    pressure: 10 bar
+    flow: 1 mol/s
   mix:   {{kind: blend, ratio: {{H2: 4, CO2: 1}}}}
   sieve: {{kind: separator, recovery: {{CO2: 100 %, H2: 50 %}}}}
   lift:  {{kind: compressor, pressure: 10.1 bar, stages: 1}}

@@ -54,11 +54,11 @@ def recorded(matter: Matter) -> Iterator[list[tuple[Any, str, str, Any]]]:
         finally:
             self._alone, self._diluted = alone, diluted
 
-    Reactants.balance = balance  # type: ignore[method-assign]
+    Reactants.balance = balance  # type: ignore[method-assign] # put back below
     try:
         yield log
     finally:
-        matter._gas, Reactants.balance = kept, original  # type: ignore[method-assign]
+        matter._gas, Reactants.balance = kept, original  # type: ignore[method-assign] # as it was
 
 
 def replay(log: list[tuple[Any, str, str, Any]]) -> float:
