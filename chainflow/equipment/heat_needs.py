@@ -92,7 +92,7 @@ def settle(
     none = Heat(0.0, level, level, level)
     return Settled(
         duties=tuple(done + asked + leaving),
-        power=sum(d.heat for d in asked if d.met_by == "power"),
+        power=float(sum(d.heat for d in asked if d.met_by == "power")),
         heat=(Heat.total(called) if called else none) if "heat" in inlets else None,
         offered=(Heat.total(offered) if offered else none) if "heat" in outlets else None,
     )

@@ -24,6 +24,7 @@ from chainflow.thermo.validity import StateError
 
 _SOLVED = 1e-9  # largest relative balance error of what is called solved
 _ROUND_OFF = 1e-9
+_NEVER_CLOSED = ("not-converged", "grows", "undetermined")
 
 
 @dataclass(frozen=True)
@@ -99,7 +100,7 @@ class Prepared:
 
     def solve(self) -> Solution:
         with _states_explained():
-            closed = self.close()
+            closed = self._closed()
             self._judge_holds(closed)
             finish = Finish(self.program, closed.values)
             self._judge(finish, closed)
@@ -117,6 +118,17 @@ class Prepared:
             (*self.flowsheet.remarks, *self.remarks),
             closed.error,
         )
+
+    def _closed(self) -> Closed:
+        """The loops closed; an inventory that needs a store's surplus and never gets it is named."""
+        try:
+            return self.close()
+        except NotSolved as problem:
+            if problem.code not in _NEVER_CLOSED or not self.conditional:
+                raise
+            first = self.conditional[0]
+            stores = {"stores": list(first.stores)}
+            raise NotSolved(first.code, first.text, stores) from problem
 
     def close(self, fixed: Mapping[str, float] | None = None) -> Closed:
         """Close the loops, with some held settings fixed instead of solved."""
