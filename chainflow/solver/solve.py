@@ -120,7 +120,7 @@ class Prepared:
         )
 
     def _closed(self) -> Closed:
-        """The loops closed; an inventory that needs a store's surplus and never gets it is named."""
+        """Close the loops; name an inventory that needs a store's surplus and never gets it."""
         try:
             return self.close()
         except NotSolved as problem:

@@ -14,8 +14,8 @@ from typing import TYPE_CHECKING, Any, cast
 import numpy as np
 
 from chainflow.basis.constants import T_REFERENCE
-from chainflow.thermo.components import Array, Matter
 from chainflow.thermo import phases
+from chainflow.thermo.components import Array, Matter
 from chainflow.thermo.phases import Phases, find_phases, phase_slopes, phases_at
 from chainflow.thermo.validity import without_round_off
 

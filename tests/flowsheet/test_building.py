@@ -1,6 +1,7 @@
 """From words to a checked flowsheet: what is taken over, what is remarked, what `--set` changes."""
 
 import hashlib
+import re
 
 import pytest
 
@@ -19,8 +20,11 @@ knobs:
   share: 99 %
   cold: 300 degC
 equipment:
-  gas: {kind: supply, composition: {H2: 80 %, CO2: rest}, temperature: 25 degC, pressure: 12 bar, flow: 100 kg/h}
-  more: {kind: supply, composition: $carbon, temperature: 25 degC, pressure: 12 bar, flow: 0.5 Nm3/h}
+  gas:
+    {kind: supply, composition: {H2: 80 %, CO2: rest}, temperature: 25 degC,
+     pressure: 12 bar, flow: 100 kg/h}
+  more:
+    {kind: supply, composition: $carbon, temperature: 25 degC, pressure: 12 bar, flow: 0.5 Nm3/h}
   mix: {kind: mixer}
   reactor: {kind: methanation-reactor, temperature: $hot}
   dry: {kind: condenser, temperature: 30 degC, pressure_drop: 0.5 bar}
@@ -29,7 +33,10 @@ lines:
   - gas -> mix -> reactor -> dry -> town
   - more -> mix
 holds:
-  - {hold: reactor.product.fraction.CH4, at: 60 %, by: reactor.temperature, within: [250 degC, 450 degC]}
+  - hold: reactor.product.fraction.CH4
+    at: 60 %
+    by: reactor.temperature
+    within: [250 degC, 450 degC]
 """
 
 
@@ -117,7 +124,7 @@ def test_trains_need_not_be_joined():
 def test_the_order_of_the_file_is_the_order_of_the_flowsheet():
     head, rest = METHANE.split("equipment:\n")
     pieces, tail = rest.split("lines:\n")
-    turned = "".join(pieces.splitlines(keepends=True)[::-1])
+    turned = "".join(re.split(r"(?m)^(?=  [a-z])", pieces)[::-1])
     sheet = read_text(f"{head}equipment:\n{turned}lines:\n{tail}")
     assert list(sheet.equipment) == ["town", "dry", "reactor", "mix", "more", "gas"]
 
@@ -132,7 +139,7 @@ def test_a_file_and_its_text_are_one(tmp_path):
 
 
 def test_a_file_that_is_not_there(tmp_path):
-    with pytest.raises(FileFault, match="cannot read .*nothing.yaml.*: No such file"):
+    with pytest.raises(FileFault, match=r"cannot read .*nothing\.yaml.*: No such file"):
         read_flowsheet(tmp_path / "nothing.yaml")
     with pytest.raises(FileFault, match="Is a directory"):
         read_flowsheet(tmp_path)

@@ -22,7 +22,8 @@ PLANTS = (
 knobs: {hot: 320 degC}
 components: [H2, N2, H2O, CO, CO2, CH4]
 equipment:
-  gas: {kind: supply, composition: {H2: 80 %, CO2: rest}, temperature: 25 degC, pressure: 12 bar, flow: 5 mol/s}
+  gas: {kind: supply, composition: {H2: 80 %, CO2: rest},
+        temperature: 25 degC, pressure: 12 bar, flow: 5 mol/s}
   mix: {kind: mixer}
   reactor: {kind: methanation-reactor, temperature: $hot}
   dry: {kind: condenser, temperature: 30 degC}
@@ -56,7 +57,8 @@ lines:
     """\
 components: [H2, O2, N2, H2O, CO, CO2, CH4]
 equipment:
-  fuel: {kind: supply, composition: {CH4: 1}, temperature: 25 degC, pressure: 1.2 bar, flow: 1 mol/s}
+  fuel: {kind: supply, composition: {CH4: 1}, temperature: 25 degC, pressure: 1.2 bar,
+         flow: 1 mol/s}
   air: {kind: supply, composition: {N2: 79 %, O2: rest}, temperature: 25 degC, pressure: 1.2 bar}
   fire: {kind: burner, excess: 10 %}
   boiler: {kind: cooler, temperature: 150 degC}
@@ -186,7 +188,7 @@ def spoilt(draw):
     return text
 
 
-@settings(max_examples=150)
+@settings(max_examples=120)
 @given(spoilt())
 def test_a_spoilt_word(text):
     check(answer(text))
@@ -203,7 +205,7 @@ def other_numbers(draw):
     return text
 
 
-@settings(max_examples=120)
+@settings(max_examples=100)
 @given(other_numbers())
 def test_other_numbers(text):
     check(answer(text))
@@ -236,7 +238,7 @@ def test_any_text_is_refused(text):
     assert answer(text) == "fault"
 
 
-@settings(max_examples=150)
+@settings(max_examples=120)
 @given(
     st.sampled_from(
         [

@@ -8,6 +8,7 @@ from chainflow.flowsheet.building import read_text
 from chainflow.flowsheet.lines import cut_chain
 
 GAS = "{kind: supply, composition: {H2: 80 %, CO2: rest}, temperature: 25 degC, pressure: 12 bar"
+STACK = "{kind: electrolyser, energy_use: 52 kWh/kg, temperature: 60 degC, pressure: 30 bar"
 PIECES = f"""
 equipment:
   sun: {{kind: sunlight, irradiance: 850 W/m2, aperture: 600 m2}}
@@ -23,8 +24,8 @@ equipment:
   warm: {{kind: heater, temperature: 80 degC}}
   press: {{kind: compressor, pressure: 30 bar}}
   dry: {{kind: condenser, temperature: 30 degC}}
-  stack: {{kind: electrolyser, energy_use: 52 kWh/kg, temperature: 60 degC, pressure: 30 bar}}
-  wanted: {{kind: electrolyser, energy_use: 52 kWh/kg, hydrogen: 1 kg/h, temperature: 60 degC, pressure: 30 bar}}
+  stack: {STACK}}}
+  wanted: {STACK}, hydrogen: 1 kg/h}}
   grid: {{kind: grid}}
   hot: {{kind: cooler, temperature: 100 degC}}
   web: {{kind: heat-network}}

@@ -1,31 +1,33 @@
 """Plants joined at random: solved and balanced, or refused with a named reason.
 
 Every required inlet gets a line, so that most of them get past the reader and the pressure pass.
-They make no sense as plants; that is the point.
+All pressures are the same, or few would.  They make no sense as plants; that is the point.
 """
 
 from hypothesis import given, settings
 from hypothesis import strategies as st
+
 from tests.flowsheet.test_fuzz import answer, check
 
 GAS = "temperature: 25 degC, pressure: 12 bar"
+FRESH = "{H2: 75 %, CO2: 24 %, N2: rest}"
 PIECES = {
-    "gas": f"{{kind: supply, composition: {{H2: 75 %, CO2: 24 %, N2: rest}}, {GAS}, flow: 5 mol/s}}",
+    "gas": f"{{kind: supply, composition: {FRESH}, flow: 5 mol/s, {GAS}}}",
     "wet": f"{{kind: supply, composition: {{H2O: 1}}, {GAS}}}",
     "air": f"{{kind: supply, composition: {{N2: 79 %, O2: rest}}, {GAS}}}",
     "mix": "{kind: mixer, let_down: true}",
     "split": "{kind: splitter, shares: {a: 30 %, b: rest}}",
     "tank": f"{{kind: store, contents: {{CO2: 1}}, {GAS}}}",
     "well": f"{{kind: store, contents: {{H2O: 1}}, {GAS}}}",
-    "pure": "{kind: store, contents: {CO2: 1}, temperature: 25 degC, pressure: 2 bar, pure: true}",
+    "pure": f"{{kind: store, contents: {{CO2: 1}}, pure: true, {GAS}}}",
     "blend": "{kind: blend, ratio: {H2: 4, CO2: 1}, let_down: true}",
     "react": "{kind: methanation-reactor, temperature: 320 degC}",
     "shift": "{kind: shift-reactor, temperature: 900 degC}",
     "dry": "{kind: condenser, temperature: 30 degC}",
     "press": "{kind: compressor, pressure: 12 bar}",
-    "feed": "{kind: pump, pressure: 30 bar}",
-    "valve": "{kind: valve, pressure: 2 bar}",
-    "expand": "{kind: expander, pressure: 2 bar}",
+    "feed": "{kind: pump, pressure: 12 bar}",
+    "valve": "{kind: valve, pressure: 12 bar}",
+    "expand": "{kind: expander, pressure: 12 bar}",
     "warm": "{kind: heater, temperature: 90 degC}",
     "cool": "{kind: cooler, temperature: 40 degC}",
     "sieve": "{kind: separator, recovery: {CH4: 90 %}}",
@@ -117,7 +119,7 @@ def _heat(random, names):
     yield from (f"web.for-{name} -> {name}.heat" for name in NEEDS_HEAT if name in names)
 
 
-@settings(max_examples=150)
+@settings(max_examples=100)
 @given(st.randoms(use_true_random=False))
 def test_any_net_is_solved_or_refused_for_a_reason(random):
     check(answer(joined(random)))

@@ -1,0 +1,60 @@
+"""Feeds as they come in a plant, for the cases of every kind.  SI inside, degC and bar here."""
+
+import numpy as np
+
+from chainflow.equipment.ports import Heat
+from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
+from chainflow.thermo.streams import Stream
+
+MATTER = Matter.of(DEFAULT_COMPONENTS)
+METHANOL = Matter.of(("H2", "N2", "H2O", "CO", "CO2", "CH3OH"))
+AMMONIA = Matter.of(("H2", "O2", "N2", "H2O", "NH3"))
+
+
+def stream(amounts, celsius=25.0, bar=1.0, matter=MATTER):
+    """A stream of components [mol/s] at a temperature [degC] and pressure [bar]."""
+    return Stream.at(matter, matter.vector(amounts), celsius + 273.15, bar * 1e5)
+
+
+def partly_boiled():
+    """Water at 5 bar of which half has boiled off."""
+    flows = MATTER.vector({"H2O": 2.0})
+    ends = [stream({"H2O": 2.0}, celsius, 5.0).enthalpy for celsius in (150.0, 153.0)]
+    return Stream.from_enthalpy(MATTER, flows, sum(ends) / 2, 5e5)
+
+
+WATER = stream({"H2O": 1.0}, bar=30.0)
+OXYGEN = stream({"O2": 0.98, "H2O": 0.02}, 40.0, 1.2)
+AIR = stream({"N2": 0.772, "O2": 0.207, "Ar": 0.009, "CO2": 0.0004, "H2O": 0.0116}, 25.0, 1.2)
+CARBON = stream({"CO2": 0.99, "N2": 0.01}, 25.0, 30.0)
+HYDROGEN = stream({"H2": 4.0, "H2O": 0.02}, 60.0, 30.0)
+FUEL = stream({"CH4": 0.9, "H2": 0.3, "CO2": 0.1, "N2": 0.01}, 20.0, 1.2)
+MODERATOR = stream({"CO2": 6.0, "H2O": 0.3, "O2": 0.05, "N2": 0.02}, 45.0, 1.2)
+SYNTHESIS = stream(
+    {"H2": 4.0, "CO2": 1.0, "CO": 0.2, "CH4": 0.3, "H2O": 0.1, "N2": 0.02}, 220.0, 12.0
+)
+PRODUCT = stream({"CH4": 1.0, "H2O": 2.0, "H2": 0.2, "CO2": 0.05, "N2": 0.02}, 320.0, 12.0)
+FLUE = stream({"CO2": 6.5, "H2O": 3.0, "O2": 0.1, "CO": 0.01, "N2": 0.05}, 1400.0, 1.2)
+HOT = Heat(8e4, 900.0, 500.0, 680.0)
+WARM = Heat(3e4, 420.0, 350.0, 384.0)
+
+
+def numbers(flow):
+    """A flow as numbers: flows, enthalpy, temperature and pressure; heat; or W."""
+    if isinstance(flow, Stream):
+        return np.concatenate([flow.flows, [flow.enthalpy, flow.temperature, flow.pressure]])
+    if isinstance(flow, Heat):
+        return np.array([flow.rate, flow.start, flow.end, flow.mean])
+    return np.array([float(flow)])
+
+
+def rate(flow):
+    """What heat, power or light carries [W]; matter carries none of them."""
+    return flow.rate if isinstance(flow, Heat) else 0.0 if isinstance(flow, Stream) else flow
+
+
+def enlarged(flow, factor):
+    """The same flow in another amount."""
+    if isinstance(flow, tuple):
+        return tuple(enlarged(part, factor) for part in flow)
+    return flow.scaled(factor) if isinstance(flow, Stream | Heat) else flow * factor

@@ -1,0 +1,115 @@
+"""Heat over temperature: where a path is cut, and the entropy that goes with each part."""
+
+import numpy as np
+import pytest
+
+from chainflow.equipment.base import Site
+from chainflow.equipment.cooling import cooling_duties
+from chainflow.equipment.separation import Condenser
+from chainflow.thermo.streams import Stream
+from chainflow.thermo.water import saturation_temperature
+from tests.equipment.feeds import FLUE, MATTER, PRODUCT, SYNTHESIS, WATER, stream
+
+SITE = Site(MATTER, ambient=200.0)  # so cold that nothing is cut at the ambient
+
+
+def at(inlet, celsius, pressure=None):
+    return Stream.at(MATTER, inlet.flows, celsius + 273.15, pressure or inlet.pressure)
+
+
+def duties(inlet, celsius, site=SITE):
+    return cooling_duties("heat", inlet, at(inlet, celsius), site)
+
+
+@pytest.mark.parametrize(
+    ("inlet", "celsius"),
+    [
+        (SYNTHESIS, 500.0),
+        (FLUE, 150.0),
+        (FLUE, 30.0),
+        (PRODUCT, 25.0),
+        (WATER, 300.0),
+        (WATER, 80.0),
+    ],
+)
+def test_the_parts_make_up_the_whole(inlet, celsius):
+    found, outlet = duties(inlet, celsius), at(inlet, celsius)
+    assert sum(d.heat for d in found) == pytest.approx(outlet.enthalpy - inlet.enthalpy, rel=1e-12)
+    entropy = sum(d.heat / d.mean for d in found)
+    assert entropy == pytest.approx(outlet.entropy - inlet.entropy, rel=1e-9)
+    assert found[0].start == inlet.temperature
+    assert found[-1].end == pytest.approx(celsius + 273.15)
+    assert [d.end for d in found[:-1]] == [d.start for d in found[1:]]
+
+
+def test_a_gas_that_stays_one_is_one_part():
+    assert len(duties(SYNTHESIS, 500.0)) == 1
+    assert len(duties(FLUE, 150.0)) == 1
+
+
+def test_a_wet_gas_is_cut_at_its_dew_point():
+    found = duties(FLUE, 30.0)
+    steam = FLUE.fraction("H2O") * FLUE.pressure
+    # without dissolved gas the dew point is the boiling point at the partial pressure
+    assert found[0].end == pytest.approx(saturation_temperature(steam), abs=0.05)
+    assert len(found) == 7
+    per_kelvin = [d.heat / (d.end - d.start) for d in found]
+    assert per_kelvin[1] > 3 * per_kelvin[0]  # condensing begins with a jump
+    assert per_kelvin[1:] == sorted(per_kelvin[1:], reverse=True)
+
+
+def test_boiling_water_takes_its_heat_at_one_temperature():
+    heating, boiling, superheating = duties(WATER, 300.0)
+    level = saturation_temperature(WATER.pressure)
+    assert boiling.start == pytest.approx(level, rel=1e-8)
+    assert boiling.end == pytest.approx(level, rel=1e-8)
+    assert boiling.heat > 3e4  # 32 kJ/mol at 30 bar
+    assert boiling.mean == pytest.approx(level, rel=0.01)  # two data sets
+    assert heating.heat > superheating.heat > 0.0
+
+
+def test_condensing_is_boiling_backwards():
+    steam = Stream.at(MATTER, WATER.flows, 573.15, WATER.pressure)
+    down, up = duties(steam, 25.0), duties(WATER, 300.0)
+    assert [d.heat for d in down] == pytest.approx([-d.heat for d in up[::-1]], rel=1e-9)
+    assert [d.mean for d in down] == pytest.approx([d.mean for d in up[::-1]], rel=1e-9)
+
+
+def test_the_path_is_cut_at_the_ambient():
+    cold = stream({"N2": 1.0}, 5.0, 2.0)
+    below, above = duties(cold, 60.0, Site(MATTER))
+    assert below.end == above.start == 298.15
+
+
+def test_without_a_line_and_without_detail_it_is_one_plain_duty():
+    plain = Site(MATTER, detail=False)
+    (only,) = duties(FLUE, 30.0, plain)
+    assert only.heat == pytest.approx(at(FLUE, 30.0).enthalpy - FLUE.enthalpy)
+
+
+def test_nothing_to_do_is_no_heat():
+    nothing = FLUE.scaled(0.0)
+    for inlet, celsius in ((nothing, 30.0), (FLUE, 1400.0)):
+        assert sum(d.heat for d in duties(inlet, celsius)) == pytest.approx(0.0, abs=1e-6)
+
+
+def test_a_condenser_that_keeps_its_carbon_dioxide_books_it_so():
+    """The gas that does not dissolve does not in the path of the heat either."""
+    for dissolved in (True, False):
+        condenser = Condenser.model_validate({"temperature": "40 degC", "dissolved": dissolved})
+        outcome = condenser.operate({"inlet": FLUE}, {}, SITE)
+        leaving = sum(outcome.outlets[name].entropy for name in ("gas", "liquid"))
+        with_heat = sum(d.heat / d.mean for d in outcome.duties)
+        assert with_heat == pytest.approx(leaving - FLUE.entropy, rel=1e-9)
+
+
+def test_the_mean_is_that_of_a_reversible_engine():
+    """Many small engines along the path give the power of one at the mean temperature."""
+    (whole,) = duties(FLUE, 150.0)
+    steps = np.linspace(FLUE.temperature, 423.15, 2001)
+    path = [Stream.at(MATTER, FLUE.flows, t, FLUE.pressure).enthalpy for t in steps]
+    middle = 0.5 * (steps[1:] + steps[:-1])
+    small = sum(
+        (a - b) * (1.0 - 298.15 / t) for a, b, t in zip(path, path[1:], middle, strict=False)
+    )
+    assert -whole.heat * (1.0 - 298.15 / whole.mean) == pytest.approx(small, rel=1e-6)
