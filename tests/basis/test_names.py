@@ -12,9 +12,10 @@ def test_names_that_are_taken(word):
     assert is_name(word)
 
 
-@pytest.mark.parametrize(
-    "word", ["", "Stack", "2nd", "-a", "_a", "a.b", "a b", "é", "a\n", "a$", "x" * 65, *sorted(RESERVED)]
-)
+ODD = ["", "Stack", "2nd", "-a", "_a", "a.b", "a b", "é", "a\n", "a$", "x" * 65]
+
+
+@pytest.mark.parametrize("word", [*ODD, *sorted(RESERVED)])
 def test_names_that_are_refused_with_a_reason(word):
     assert not is_name(word)
     assert name_trouble(word)
