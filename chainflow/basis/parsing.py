@@ -14,6 +14,7 @@ from chainflow.basis.names import shorten, suggest
 from chainflow.basis.units import SYMBOLS, Unit, UnitFault, noun, resolve, usual_unit
 
 LONGEST_QUANTITY: Final = 100
+SMALLEST: Final = 1e-100  # magnitude; products of smaller shares lose digits to underflow
 """Longest text that is read as a quantity, in characters."""
 
 NUMBER_PATTERN: Final = r"[+-]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+-]?[0-9]{1,3})?"
@@ -189,9 +190,11 @@ def _tail(rest: str) -> str:
 
 
 def finite(value: float, text: str) -> float:
-    """Hand a finite number through; raise QuantityFault for any other."""
+    """Hand a number through that can be reckoned with; raise QuantityFault for any other."""
     if not math.isfinite(value):
         raise QuantityFault(f"{shorten(text)} is too large to be a number")
+    if 0.0 < abs(value) < SMALLEST:
+        raise QuantityFault(f"{shorten(text)} is too close to zero to mean anything: write 0")
     return value
 
 
