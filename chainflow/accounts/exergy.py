@@ -36,6 +36,7 @@ def destroyed_in(solution: Solution, name: str) -> float:
         return 0.0
     outcome = solution.outcomes[name]
     entering = outcome.power + _bought_heat(solution, name) + _fed(solution, name)
+    entering += sum(float(stream.exergy()) for stream in outcome.taken)
     if isinstance(piece, Store) and not solution.flowsheet.line_into(name, "make_up"):
         entering += float(topped_up(solution, name, piece).exergy())
     return entering - _sent(solution, name)

@@ -15,7 +15,7 @@ from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, Mixture, gas_mi
 from chainflow.basis.constants import ICE_POINT
 from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.densities import liquefying
-from chainflow.thermo.species import component_species
+from chainflow.thermo.species import species_of
 from chainflow.thermo.streams import Stream
 
 CLOSING_SENTENCE = (
@@ -184,7 +184,9 @@ def _hot_hydrogen(stream: Stream) -> Finding | None:
 
 def _liquid_expected(stream: Stream) -> Finding | None:
     level, pressure, shares = float(stream.temperature), float(stream.pressure), _shares(stream)
-    names = liquefying(stream.matter, stream.gas, level, pressure)
+    oil = stream.matter.oil  # what can condense as oil has done so already
+    found = liquefying(stream.matter, stream.gas, level, pressure)
+    names = [name for name in found if oil is None or name not in oil.names]
     sure = [name for name in names if shares[name] >= NEARLY_PURE or _far_below(name, level)]
     if not sure:
         return None
@@ -193,7 +195,7 @@ def _liquid_expected(stream: Stream) -> Finding | None:
 
 
 def _far_below(name: str, level: float) -> bool:
-    critical = component_species()[name].input_data["critical-parameters"]
+    critical = species_of(name).input_data["critical-parameters"]
     return bool(level < WELL_BELOW_CRITICAL * critical["critical-temperature"])
 
 

@@ -32,6 +32,7 @@ class PlantAccount:
     sold: Deliveries
     efficiency: Efficiency
     returned: dict[str, float | None]
+    from_air: tuple[tuple[str, Stream], ...] = ()
 
     def as_data(self) -> dict[str, Any]:
         """Return everything as plain data; names end in their unit."""
@@ -44,6 +45,7 @@ class PlantAccount:
                 "cold_W": self.bought.cold_total,
                 "material": by_species(self.bought.material.items()),
             },
+            "from_air": by_species(self.from_air),
             "sold": {
                 "power_W": self.sold.power_total,
                 "heat_W": self.sold.heat_total,
@@ -70,6 +72,9 @@ def plant_account(solution: Solution) -> PlantAccount:
         sold=sold,
         efficiency=efficiency(solution, bought, sold),
         returned={name: returned(solution, species) for name, species in RETURNED.items()},
+        from_air=tuple(
+            (name, stream) for name, found in solution.outcomes.items() for stream in found.taken
+        ),
     )
 
 

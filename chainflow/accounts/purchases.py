@@ -16,7 +16,6 @@ from chainflow.equipment.boundary import Supply
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Heat, Role
 from chainflow.equipment.power import Grid
-from chainflow.equipment.shares import fractions
 from chainflow.equipment.stores import Store
 from chainflow.solver.solution import Solution
 from chainflow.thermo.streams import Stream
@@ -113,5 +112,4 @@ def topped_up(solution: Solution, name: str, store: Store) -> Stream:
     """Return what a store without a `make_up` line gets from outside."""
     matter = solution.flowsheet.matter
     amount = solution.outcomes[name].results.get("top_up_mol_s", 0.0)
-    flows = amount * fractions(store.contents, matter)
-    return Stream.at(matter, flows, store.temperature, store.pressure)
+    return store.bought(matter).scaled(amount)

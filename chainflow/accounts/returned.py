@@ -59,6 +59,8 @@ def _fresh(solution: Solution, substance: str) -> Iterator[Stream]:
             bought = solution.outcomes[name].outlets["outlet"]
             if isinstance(bought, Stream) and float(bought.fraction(substance)) > _MOSTLY:
                 yield bought
+        elif not _feeds_store(solution.flowsheet, name):
+            yield from solution.outcomes[name].taken  # out of the air, through no store
 
 
 def _feeds_store(flowsheet: Flowsheet, name: str) -> bool:

@@ -37,7 +37,8 @@ def format_quantity(value: float, unit: str, *, digits: int = 4, difference: boo
     value : float
         SI value; a value that is not finite gives "-".
     unit : str
-        Any unit of what it is; only its dimension counts ("Pa" prints as bar).
+        Any unit of what it is; only its dimension counts ("Pa" prints as bar), except that energy
+        per volume ("J/m3") is not taken for the pressure it has the dimension of.
     digits : int
         Significant digits; zeros at the end are dropped.
     difference : bool
@@ -46,7 +47,10 @@ def format_quantity(value: float, unit: str, *, digits: int = 4, difference: boo
     if not math.isfinite(value):
         return "-"
     wanted = resolve(unit)
-    chosen = _scaled(value, si_unit(wanted.exponents), difference)
+    if unit.endswith("J/m3"):
+        chosen = resolve("MJ/m3")
+    else:
+        chosen = _scaled(value, si_unit(wanted.exponents), difference)
     return f"{_significant(chosen.from_si(value), digits)} {chosen.text}".removesuffix(" 1")
 
 

@@ -82,6 +82,7 @@ _PREFIXES: Final = MappingProxyType(
     }
 )
 _ICE = Fraction("273.15")
+_GPU = 1 / (10**8 * Fraction("1333.22387415") * Fraction(NORMAL_MOLAR_VOLUME))
 
 # symbol, prefixes it is used with, powers of (kg, m, s, A, K, mol, rad), size, zero point [K]
 _ROWS: Final[tuple[tuple[str, str, Exponents, Fraction, Fraction], ...]] = tuple(
@@ -120,6 +121,8 @@ _ROWS: Final[tuple[tuple[str, str, Exponents, Fraction, Fraction], ...]] = tuple
         ("ohm", "umkM", (1, 2, -3, -2, 0, 0, 0), 1, 0),
         ("S", "um", (-1, -2, 3, 2, 0, 0, 0), 1, 0),
         ("%", "", _NONE, "0.01", 0),
+        # permeance: 1e-6 cm3(0 degC, 1 atm) / (cm2 s cmHg); 1 cmHg = 1333.22387415 Pa
+        ("GPU", "", (-1, -1, 1, 0, 0, 1, 0), _GPU, 0),
         ("permille", "", _NONE, "0.001", 0),
         ("ppm", "", _NONE, Fraction(1, 10**6), 0),
         ("ppb", "", _NONE, Fraction(1, 10**9), 0),
@@ -158,6 +161,7 @@ _NAMED: Final = (
     ("kg/s", "a mass flow", "kg/h"),
     ("m3/s", "a volume flow", "m3/h"),
     ("A/m2", "a current density", "A/cm2"),
+    ("mol/(m2*s*Pa)", "a permeance", "GPU"),
     ("ohm*m2", "an area resistance", "ohm*cm2"),
     ("J/(mol*K)", "a molar heat capacity", "J/(mol*K)"),
 )

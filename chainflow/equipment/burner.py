@@ -6,14 +6,14 @@ SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat [W].
 from __future__ import annotations
 
 from collections.abc import Iterable, Mapping
-from dataclasses import dataclass
-from typing import Any, ClassVar, Literal
+from dataclasses import dataclass, replace
+from typing import Annotated, Any, ClassVar, Literal
 
 import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
-from chainflow.basis.quantities import Temperature
+from chainflow.basis.quantities import OpenFraction, Temperature, measured
 from chainflow.equipment.base import (
     HEAT_PORTS,
     Array,
@@ -27,11 +27,13 @@ from chainflow.equipment.base import (
     material,
 )
 from chainflow.equipment.burning import Combustion, Oxygen, burnt, oxidiser_needed
+from chainflow.equipment.flue import flue_results, nitric_oxide
 from chainflow.equipment.junctions import joined
+from chainflow.equipment.oxidisers import Oxidiser, enriched
 from chainflow.equipment.ports import Feeds, arriving
 from chainflow.thermo.components import Matter
 from chainflow.thermo.equilibrium import Equilibrium, equilibrate, equilibrate_adiabatic
-from chainflow.thermo.flames import flame_temperature
+from chainflow.thermo.flames import flame_state
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 _MOST_STEPS = 60
@@ -41,10 +43,21 @@ class Burner(Combustion):
     """Burns fuel with the oxidiser it asks for; adiabatic unless a temperature is given.
 
     `flue_temperature` makes it ask at `moderator` for what keeps the flame at that temperature.
+    `enrichment` makes it ask at `oxygen` for what brings the oxidiser to that share of O2;
+    `air_leak` makes it ask at `leak` for the false air that a furnace below ambient pressure
+    draws in, and its oxygen counts towards `excess`.
+
+    `upper_NO_fraction` is the equilibrium at the flame temperature, wet: an upper indication and
+    no emission figure.  `dew_point_K` is that of water in the flue.
     """
 
     kind: ClassVar[str] = "burner"
-    gives: ClassVar[tuple[str, ...]] = ("adiabatic_temperature_K", "flame_temperature_K")
+    gives: ClassVar[tuple[str, ...]] = (
+        "adiabatic_temperature_K",
+        "flame_temperature_K",
+        "dew_point_K",
+        "upper_NO_fraction",
+    )
     ports: ClassVar[tuple[Port, ...]] = (
         Port("fuel", "material", Role.TAKES, many=True, main=True, means="what burns"),
         Port("oxidiser", "material", Role.CALLS, means="air or oxygen"),
@@ -56,6 +69,20 @@ class Burner(Combustion):
             optional=True,
             means="what keeps the flame cooler",
         ),
+        Port(
+            "oxygen",
+            "material",
+            Role.CALLS,
+            optional=True,
+            means="oxygen that enriches the oxidiser (with `enrichment`)",
+        ),
+        Port(
+            "leak",
+            "material",
+            Role.CALLS,
+            optional=True,
+            means="air that leaks in (with `air_leak`)",
+        ),
         HEAT_PORTS[2],
         Port("flue", "material", Role.OFFERS, main=True, means="the flue gas"),
     )
@@ -65,7 +92,9 @@ class Burner(Combustion):
             "equilibrium: minimum of the Gibbs energy of the flowsheet's components "
             "at the temperature that closes energy"
         ),
-        "flame_temperature: the same with radicals (O, H, OH, NO, ...)",
+        "flame_temperature, upper_NO_fraction: the same with radicals (O, H, OH, NO, ...)",
+        "leak = air_leak * (fuel + oxidiser + moderator), in mol",
+        "dew point: p_sat(T) = y_H2O p",
     )
     sources: ClassVar[tuple[str, ...]] = (
         (
@@ -86,6 +115,13 @@ class Burner(Combustion):
     requench: Temperature | None = Field(
         None, description="temperature down to which equilibrium holds when the flue is cooled"
     )
+    enrichment: OpenFraction | None = Field(
+        None, description="mole fraction of O2 to which oxygen enriches the oxidiser, 30 %"
+    )
+    air_leak: Annotated[float, measured("1", ge=0, le=1)] = Field(
+        0.0,
+        description="air that leaks in, mol per mol of all else that enters",
+    )
 
     @model_validator(mode="after")
     def _one_temperature(self) -> Burner:
@@ -105,12 +141,15 @@ class Burner(Combustion):
         return self
 
     def port_list(self) -> tuple[Port, ...]:
-        if self.flue_temperature is None:
-            return self.ports
-        called = Port(
+        moderator = Port(
             "moderator", "material", Role.CALLS, means="what keeps the flame at `flue_temperature`"
         )
-        return tuple(called if port.name == "moderator" else port for port in self.ports)
+        called = {"oxygen": self.enrichment is not None, "leak": self.air_leak > 0.0}
+        ports = [port for port in self.ports if called.get(port.name, True)]
+        ports = [replace(p, optional=False) if p.name in called else p for p in ports]
+        if self.flue_temperature is not None:
+            ports = [moderator if port.name == "moderator" else port for port in ports]
+        return tuple(ports)
 
     def _left_in_flue(self, species: str, matter: Matter) -> set[str]:
         """At flame temperature everything of the same elements is there in traces."""
@@ -147,16 +186,31 @@ class Burner(Combustion):
         )
 
     def _fire(self, feeds: Feeds, site: Site) -> _Fire:
-        inlets = self._inlets(feeds)
-        oxygen = Oxygen.at(self.excess, site.matter)
-        (oxidiser,) = inlets["oxidiser"]
+        inlets, mixed = self._inlets(feeds), self._oxidiser(feeds)
+        oxygen, oxidiser = Oxygen.at(self.excess, site.matter), mixed.with_leak(mixed.stream)
+        fuel = [mixed.with_leak(stream) for stream in inlets["fuel"]]
+        moderator = [mixed.with_leak(stream) for stream in inlets["moderator"]]
+        given = sum(float(stream.total) for stream in inlets["fuel"])
         if self.flue_temperature is not None:
-            (moderator,) = inlets["moderator"]
-            return _moderated(self, inlets["fuel"], oxidiser, moderator, oxygen, site)
-        given = [*inlets["fuel"], *inlets["moderator"]]
-        amount, unmet = oxidiser_needed(oxygen, given, oxidiser)
-        entering = [*given, oxidiser.scaled(amount)]
-        return _Fire.of(self, entering, {"oxidiser": amount}, unmet, site)
+            fire = _moderated(self, fuel, oxidiser, moderator[0], oxygen, site)
+        else:
+            given += sum(float(stream.total) for stream in inlets["moderator"])
+            amount, unmet = oxidiser_needed(oxygen, [*fuel, *moderator], oxidiser)
+            entering = [*fuel, *moderator, oxidiser.scaled(amount)]
+            fire = _Fire.of(self, entering, {"oxidiser": amount}, unmet, site)
+        if not (self.enrichment or self.air_leak):
+            return fire
+        unmet = fire.unmet | ({"oxygen": mixed.why} if mixed.why else {})
+        return replace(fire, drawn=mixed.called(fire.drawn, given), unmet=unmet)
+
+    def _oxidiser(self, feeds: Feeds) -> Oxidiser:
+        """What is served as oxidiser, enriched if wanted, with what leaks in beside it."""
+        found = Oxidiser(material(feeds, "oxidiser"))
+        if self.enrichment is not None:
+            found = enriched(found.stream, material(feeds, "oxygen"), self.enrichment)
+        if self.air_leak > 0.0:
+            found = replace(found, leak=self.air_leak, air=material(feeds, "leak"))
+        return found
 
     def flue_of(
         self, flows: Array, level: float, pressure: float, matter: Matter
@@ -189,8 +243,10 @@ class Burner(Combustion):
         results = {"adiabatic_temperature_K": fire.adiabatic}
         if not fire.flows.any():
             return results, ()
-        hottest = flame_temperature(site.matter, fire.flows, fire.enthalpy, fire.pressure)
+        hottest, flame = flame_state(site.matter, fire.flows, fire.enthalpy, fire.pressure)
         results["flame_temperature_K"] = hottest
+        results["upper_NO_fraction"] = nitric_oxide(flame)
+        results |= flue_results(flue)
         cautions = []
         if hottest > 1900.0:
             text = (
@@ -213,6 +269,8 @@ class Burner(Combustion):
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
         if self.temperature is not None or self.requench is not None or outcome.unmet:
+            return {}
+        if self.enrichment is not None or self.air_leak > 0.0:
             return {}
         fire, flue = outcome.inner, outcome.outlets["flue"]
         if (

@@ -80,6 +80,9 @@ def stack_outcomes(singles: list[Outcome]) -> Outcome:
         results={k: _column([s.results.get(k, np.nan) for s in singles]) for k in first.results},
         cautions=tuple(dict.fromkeys(c for s in singles for c in s.cautions)),
         idealisations=tuple(dict.fromkeys(c for s in singles for c in s.idealisations)),
+        taken=tuple(
+            Stream.stack(list(parts)) for parts in zip(*(s.taken for s in singles), strict=True)
+        ),
         unmet={k: v for s in singles for k, v in s.unmet.items()},
     )
 

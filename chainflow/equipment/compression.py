@@ -1,8 +1,9 @@
 """Compression of real gases in intercooled stages.
 
 SI throughout: flows [mol/s], temperature [K], pressure [Pa], power and heat [W].  Each stage is
-isentropic with an efficiency, on Redlich-Kwong properties; stages have equal pressure ratios;
-water that condenses in the coolers is knocked out before the next stage.
+isentropic with an efficiency, or polytropic with one, on Redlich-Kwong properties; stages have
+equal pressure ratios, or those that take the least work; water that condenses in the coolers is
+knocked out before the next stage.
 """
 
 from __future__ import annotations
@@ -29,15 +30,20 @@ from chainflow.equipment.base import (
 )
 from chainflow.equipment.cooling import cooling_duties
 from chainflow.equipment.ports import Feeds
+from chainflow.equipment.pressure_split import least_work_pressures
 from chainflow.equipment.pressures import higher_feed
+from chainflow.equipment.separation import phase_blocks
 from chainflow.thermo.components import Matter
 from chainflow.thermo.compression import isentropic_temperature
+from chainflow.thermo.phases import split_at
+from chainflow.thermo.polytropic import polytropic_temperature
 from chainflow.thermo.streams import Stream, temperature_slopes
-from chainflow.thermo.water import water_split, water_split_slopes
+from chainflow.thermo.three_phases import Split
 
 _MOST_STAGES = 12
 _ROUND_OFF = 1e-12  # of what arrives: less condensate is no state to find a temperature of
-_WET = ("H2O", "CO2")  # what can be in a condensate
+_WET = ("H2O", "CO2")  # what can be in a condensate beside hydrocarbons
+_DISSOLVED = ("CO2",)
 
 
 @dataclass(frozen=True, slots=True)
@@ -53,7 +59,13 @@ class Stage:
     work: float  # [W], to the gas
     cooled_to: float | None  # [K]
     cooling: float  # [W], negative
-    condensate: Array  # [mol/s], water phase
+    water: Array  # [mol/s], knocked out with what is dissolved in it
+    oil: Array  # [mol/s], hydrocarbons knocked out
+
+    @property
+    def condensate(self) -> Array:
+        """All that is knocked out [mol/s]."""
+        return self.water + self.oil
 
 
 class Compressor(Equipment):
@@ -62,7 +74,14 @@ class Compressor(Equipment):
     kind: ClassVar[str] = "compressor"
     family: ClassVar[str] = "compression"
     through: ClassVar[bool] = True
-    gives: ClassVar[tuple[str, ...]] = ("stages", "work_W", "discharge_K", "specific_work_J_kg")
+    gives: ClassVar[tuple[str, ...]] = (
+        "stages",
+        "work_W",
+        "discharge_K",
+        "specific_work_J_kg",
+        "cooling_W",
+        "knocked_out_mol_s",
+    )
     ports: ClassVar[tuple[Port, ...]] = (
         Port("inlet", "material", Role.TAKES, main=True, means="the gas"),
         Port("power", "power", Role.CALLS, optional=True, means="electric power of the drive"),
@@ -77,8 +96,9 @@ class Compressor(Equipment):
         ),
     )
     formulas: ClassVar[tuple[str, ...]] = (
-        "stage ratio = (p_out / p_in)^(1 / stages)",
+        "stage ratio = (p_out / p_in)^(1 / stages), or those of least work",
         "work = (h(s_in, p_out) - h_in) / efficiency, real gas",
+        "polytropic: dh = v dp / polytropic_efficiency along the path, real gas",
         "power = work / drive_efficiency",
     )
     sources: ClassVar[tuple[str, ...]] = (
@@ -97,6 +117,12 @@ class Compressor(Equipment):
         None, description="temperature at the outlet (default: not cooled)"
     )
     efficiency: OpenFraction = Field(0.75, description="isentropic efficiency of each stage")
+    polytropic_efficiency: OpenFraction | None = Field(
+        None, description="polytropic efficiency of each stage, instead of `efficiency`"
+    )
+    split: Literal["equal-ratio", "least-work"] = Field(
+        "equal-ratio", description="how the pressure rise is split between the stages"
+    )
     drive_efficiency: OpenFraction = Field(0.95, description="shaft power per electric power")
     discharge_limit: Temperature = Field(423.15, description="highest discharge temperature wanted")
 
@@ -106,7 +132,8 @@ class Compressor(Equipment):
     def destinations(
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
     ) -> Iterable[tuple[str, str]]:
-        return [(o, species) for o in outlets if o == "outlet" or species in ("H2O", "CO2")]
+        wet = species in _WET or (matter.oil is not None and species in matter.oil.names)
+        return [(o, species) for o in outlets if o == "outlet" or wet]
 
     def outlet_pressures(self, inlets: Mapping[str, tuple[float, ...]]) -> dict[str, float]:
         return {"outlet": self.pressure, "condensate": min(inlets.get("inlet", (self.pressure,)))}
@@ -164,14 +191,18 @@ class Compressor(Equipment):
             "work_W": work,
             "discharge_K": hottest,
             "specific_work_J_kg": work / mass if mass > 0.0 else 0.0,
+            "cooling_W": sum(stage.cooling for stage in stages),
+            "knocked_out_mol_s": sum(float(stage.condensate.sum()) for stage in stages),
         }
 
     def _cautions(self, inlet: Stream, hottest: float) -> tuple[Caution, ...]:
         cautions = []
-        if float(inlet.water.sum()) > 1e-9 * float(inlet.total):
+        liquid = float(inlet.water.sum()) + float(inlet.liquid.sum())
+        if liquid > 1e-9 * float(inlet.total):
+            what = "water" if float(inlet.water.sum()) == liquid else "water and oil"
             text = (
-                f"{float(inlet.water.sum()):.4g} mol/s of liquid water arrive at the inlet: "
-                "put a condenser before it; it is knocked out here"
+                f"{liquid:.4g} mol/s of liquid {what} arrive at the inlet: put a condenser before "
+                "it; it is knocked out here"
             )
             cautions.append(Caution("liquid-at-compressor", text))
         if hottest > self.discharge_limit + 0.01:
@@ -186,10 +217,12 @@ class Compressor(Equipment):
         low = float(inlet.pressure)
         flows = inlet.water + inlet.liquid
         enthalpy = matter.water_enthalpy(inlet.water, float(inlet.temperature), low)
+        enthalpy += matter.oil_enthalpy(inlet.liquid, float(inlet.temperature), low)
         for stage in stages:
             if stage.cooled_to is not None and stage.condensate.any():
                 flows = flows + stage.condensate
-                enthalpy += matter.water_enthalpy(stage.condensate, stage.cooled_to, stage.high)
+                enthalpy += matter.water_enthalpy(stage.water, stage.cooled_to, stage.high)
+                enthalpy += matter.oil_enthalpy(stage.oil, stage.cooled_to, stage.high)
         if float(flows.sum()) <= _ROUND_OFF * float(inlet.total):  # a gas just at its dew point
             return Stream.at(matter, flows, self.intercool, low)
         return Stream.from_enthalpy(matter, flows, float(enthalpy), low, self.intercool)
@@ -205,17 +238,28 @@ class Compressor(Equipment):
         return train
 
     def _train(self, inlet: Stream, matter: Matter, count: int) -> list[Stage]:
-        low, gas, suction = float(inlet.pressure), inlet.gas, float(inlet.temperature)
-        ratio = (self.pressure / low) ** (1.0 / count)
+        gas, suction = inlet.gas, float(inlet.temperature)
+        low, *rises = self._pressures(inlet, matter, count)
         train = []
-        for number in range(count):
-            high = self.pressure if number == count - 1 else low * ratio
+        for number, high in enumerate(rises):
             cool = self.aftercool if number == count - 1 else self.intercool
             stage = self._stage(matter, gas, suction, low, high, cool)
             train.append(stage)
             gas, low = gas - stage.condensate, high
             suction = stage.discharge if stage.cooled_to is None else stage.cooled_to
         return train
+
+    def _pressures(self, inlet: Stream, matter: Matter, count: int) -> list[float]:
+        """All pressures from the inlet to the outlet."""
+        low = float(inlet.pressure)
+        if self.split == "least-work":
+            suctions = [float(inlet.temperature), *[self.intercool] * (count - 1)]
+            return least_work_pressures(matter, inlet.gas, suctions, low, self.pressure)
+        ratio = (self.pressure / low) ** (1.0 / count)
+        levels = [low]
+        for _ in range(count - 1):
+            levels.append(levels[-1] * ratio)
+        return [*levels, self.pressure]
 
     def _stage(
         self,
@@ -228,24 +272,30 @@ class Compressor(Equipment):
     ) -> Stage:
         nothing = np.zeros_like(gas)
         if not gas.any():
-            return Stage(gas, suction, low, high, suction, suction, 0.0, cool, 0.0, nothing)
+            return Stage(
+                gas, suction, low, high, suction, suction, 0.0, cool, 0.0, nothing, nothing
+            )
         ideal = isentropic_temperature(matter, gas, suction, low, high)
         before = matter.gas_enthalpy(gas, suction, low)
-        work = (matter.gas_enthalpy(gas, ideal, high) - before) / self.efficiency
-        discharge = _gas_temperature(matter, gas, before + work, high, ideal)
+        isentropic = matter.gas_enthalpy(gas, ideal, high) - before
+        if self.polytropic_efficiency is None:
+            work = isentropic / self.efficiency
+            discharge = _gas_temperature(matter, gas, before + work, high, ideal)
+        else:
+            discharge = polytropic_temperature(
+                matter, gas, suction, low, high, self.polytropic_efficiency
+            )
+            work = matter.gas_enthalpy(gas, discharge, high) - before
         if cool is None or cool >= discharge:
-            return Stage(gas, suction, low, high, ideal, discharge, work, None, 0.0, nothing)
-        dry, wet = (
-            water_split(matter, gas, cool, high, ("CO2",))
-            if matter.water is not None
-            else (gas, nothing)
-        )
-        after = matter.gas_enthalpy(dry, cool, high) + (
-            matter.water_enthalpy(wet, cool, high) if wet.any() else 0.0
-        )
-        return Stage(
-            gas, suction, low, high, ideal, discharge, work, cool, after - before - work, wet
-        )
+            none = (None, 0.0, nothing, nothing)
+            return Stage(gas, suction, low, high, ideal, discharge, work, *none)
+        found = split_at(matter, gas, cool, high, _DISSOLVED)
+        dry, water, oil = found or (gas, nothing, nothing)
+        after = matter.gas_enthalpy(dry, cool, high)
+        after += matter.water_enthalpy(water, cool, high) if water.any() else 0.0
+        after += matter.oil_enthalpy(oil, cool, high)
+        heat = after - before - work
+        return Stage(gas, suction, low, high, ideal, discharge, work, cool, heat, water, oil)
 
     def settled(self, outcome: Outcome) -> Equipment:
         if self.stages != "auto":
@@ -256,7 +306,11 @@ class Compressor(Equipment):
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
         inlet = material(feeds, "inlet")
-        if inlet.water.any() or float(inlet.total) == 0.0 or "heat" in site.outlets:
+        if inlet.water.any() or inlet.liquid.any():
+            return {}
+        if float(inlet.total) == 0.0 or "heat" in site.outlets:
+            return {}
+        if self.polytropic_efficiency is not None or self.split != "equal-ratio":
             return {}
         return {"inlet": self._train_slopes(inlet, site.matter, outcome.inner)}
 
@@ -282,10 +336,11 @@ class Compressor(Equipment):
                 level = (out_enthalpy - h_out @ gas) / cp
                 continue
             if stage.condensate.any():
-                wet = _condensing(matter, stage, stage.cooled_to) @ gas
-                partial = matter.water_partial(stage.cooled_to, stage.high, _WET).enthalpy
-                condensate += np.vstack([wet, partial @ wet])
-                gas = gas - wet
+                parts = Split(stage.gas - stage.condensate, stage.water, stage.oil)
+                blocks = phase_blocks(matter, parts, stage.cooled_to, stage.high, _DISSOLVED)
+                knocked_out = (blocks["water"] + blocks["oil"])[:, :size] @ gas
+                condensate += knocked_out
+                gas = gas - knocked_out[:size]
             level = np.zeros(size + 1)
             dry = stage.gas - stage.condensate
             out_enthalpy = matter.gas_partial(dry, stage.cooled_to, stage.high)[0] @ gas
@@ -294,12 +349,6 @@ class Compressor(Equipment):
             "condensate": condensate,
             "drawn:power": (work / self.drive_efficiency)[None, :],
         }
-
-
-def _condensing(matter: Matter, stage: Stage, level: float) -> Array:
-    """Slopes of the condensate of a stage by its gas, at the temperature it is cooled to."""
-    dry = stage.gas - stage.condensate
-    return water_split_slopes(matter, stage.gas, dry, stage.condensate, level, stage.high, ("CO2",))
 
 
 def _gas_temperature(

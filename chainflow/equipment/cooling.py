@@ -2,8 +2,8 @@
 
 SI throughout: heat [W], temperature [K], pressure [Pa].  The heat is that of a reversible path at
 the outlet's pressure: every duty carries its exact enthalpy and its entropy-mean temperature.
-Where water condenses or boils on the way the heat is not spread evenly over the temperatures, so
-the path is cut where that begins and into even steps from there on.
+Where water or oil condenses or boils on the way the heat is not spread evenly over the
+temperatures, so the path is cut where that begins and into even steps from there on.
 """
 
 from __future__ import annotations
@@ -16,6 +16,7 @@ import numpy as np
 from chainflow.equipment.base import Array, Caution, Outcome, Site
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import mean_temperature
+from chainflow.thermo.phases import any_liquid
 from chainflow.thermo.streams import (
     DISSOLVED,
     Stream,
@@ -23,7 +24,7 @@ from chainflow.thermo.streams import (
     entropy_slopes,
     temperature_slopes,
 )
-from chainflow.thermo.water import condenses, saturation_temperature
+from chainflow.thermo.water import saturation_temperature
 
 _STEPS = 6  # even steps in temperature where part of the stream is liquid water
 _HALVINGS = 24  # of the temperatures between which water begins to condense
@@ -79,14 +80,15 @@ def _cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[float
     matter, flows = first.matter, first.flows
 
     def wet(temperature: float) -> bool:
-        return condenses(matter, flows, temperature, pressure, dissolved)
+        return any_liquid(matter, flows, temperature, pressure, dissolved)
 
-    wet_start, wet_end = wet(start) or bool(first.water.any()), wet(level)
+    condensed = bool(first.water.any() or first.liquid.any())
+    wet_start, wet_end = wet(start) or condensed, wet(level)
     if not wet_start and not wet_end:
         return []
     if wet_start and wet_end:
         return _inside(start, level, _STEPS)
-    if float(flows[matter.water]) == float(first.total):
+    if matter.water is not None and float(flows[matter.water]) == float(first.total):
         return _around_boiling(start, level, saturation_temperature(pressure))
     dew = _dew_point(wet, *((start, level) if wet_start else (level, start)))
     if wet_start:
@@ -102,7 +104,7 @@ def _around_boiling(start: float, level: float, boiling: float) -> list[float]:
 
 
 def _dew_point(wet: Callable[[float], bool], low: float, high: float) -> float:
-    """The temperature between `low` (wet) and `high` (dry) at which water begins to condense."""
+    """The temperature between `low` (wet) and `high` (dry) at which condensing begins."""
     for _ in range(_HALVINGS):
         middle = 0.5 * (low + high)
         low, high = (middle, high) if wet(middle) else (low, middle)

@@ -1,28 +1,33 @@
-"""Electrolysis of liquid water: how much hydrogen, oxygen, moisture and heat a stack gives.
+"""Electrolysis: how much hydrogen, oxygen, moisture and heat a stack gives, and at which voltage.
 
-SI throughout: power [W], flows [mol/s], temperature [K], pressure [Pa], voltage [V].  Both gases
-leave saturated with water at the stack's temperature and pressure (ideal gas, IAPWS saturation
-pressure).  What else is dissolved in the feed water leaves with the oxygen.
+SI throughout: power [W], flows [mol/s], temperature [K], pressure [Pa], voltage [V]. The models of
+the cells are in `chainflow.equipment.cells`, their published numbers in
+`chainflow.equipment.published`; this module is the kind: settings, sizing, balance, results.
 """
 
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from dataclasses import replace
-from functools import cache
+from dataclasses import dataclass, replace
 from typing import Annotated, Any, ClassVar, Literal
 
-import numpy as np
 from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from chainflow.basis.constants import FARADAY
+from chainflow.basis.quantities import (
+    Area,
+    CurrentDensity,
+    Fraction,
+    OpenFraction,
+    Pressure,
+    Temperature,
+    measured,
+)
 from chainflow.basis.quantities import Flow as FlowSetting
-from chainflow.basis.quantities import OpenFraction, Pressure, Temperature, measured
 from chainflow.equipment.base import (
     HEAT_PORTS,
     Array,
-    Caution,
     Duty,
     Equipment,
     Outcome,
@@ -32,19 +37,55 @@ from chainflow.equipment.base import (
     material,
     rate,
 )
-from chainflow.equipment.boundary import amounts
-from chainflow.equipment.ports import Feeds, as_number
+from chainflow.equipment.cells import solid_oxide, stack_report
+from chainflow.equipment.cells.alkaline import AlkalineCell
+from chainflow.equipment.cells.gases import LiquidFed, Made, SteamFed, hydrogen_mass
+from chainflow.equipment.cells.losses import LOSS_RESULTS, Curve
+from chainflow.equipment.cells.measured import MeasuredCurve, MeasuredCurves
+from chainflow.equipment.cells.pem import PemCell
+from chainflow.equipment.cells.sizing import ConstantCurve, Sizing, Working
+from chainflow.equipment.cells.solid_oxide import SolidOxideCell
+from chainflow.equipment.cells.stack_formulas import FORMULAS, SOURCES
+from chainflow.equipment.cells.stack_settings import (
+    MODELS,
+    missing_components,
+    sizing_trouble,
+    temperature_trouble,
+    with_cell,
+    wrong_for_model,
+)
+from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import lower_feed
+from chainflow.equipment.reactor_base import exchanging
 from chainflow.thermo.components import Matter
 from chainflow.thermo.electrochemistry import reversible_voltage
 from chainflow.thermo.streams import Stream
-from chainflow.thermo.water import saturation_pressure
+
+_ROUND_OFF = 1e-14  # relative
+_SWEEP = Port(
+    "sweep",
+    "material",
+    Role.CALLS,
+    optional=True,
+    means="gas that carries the oxygen away (model solid-oxide); without it pure oxygen leaves",
+)
+
+
+@dataclass(frozen=True, slots=True)
+class _Stack:
+    """The cells in their state and what is fed to them."""
+
+    curve: Curve
+    gases: LiquidFed | SteamFed | None
+    unmet: dict[str, str]
 
 
 class Electrolyser(Equipment):
-    """Splits water with direct current: H2O -> H2 + 1/2 O2.
+    """Splits water (or, hot, steam and CO2) with direct current: H2O -> H2 + 1/2 O2.
 
-    It takes the power that arrives, or, with `hydrogen` set, calls for the power it needs.
+    It takes the power that arrives, or, with `hydrogen` or both `cell_area` and `current_density`
+    set, calls for the power it needs. With an area known (`cell_area`, or `rating` with
+    `current_density`), a part load moves along the curve of the cells.
     """
 
     kind: ClassVar[str] = "electrolyser"
@@ -56,8 +97,27 @@ class Electrolyser(Equipment):
         "water_kg_s",
         "direct_current_W",
         "voltage_V",
+        *LOSS_RESULTS,
+        "thermoneutral_V",
+        "current_A",
+        "current_density_A_m2",
+        "cell_area_m2",
+        "load",
+        "stack_energy_use_J_kg",
+        "fence_energy_use_J_kg",
         "stack_efficiency_LHV",
         "stack_efficiency_HHV",
+        "fence_efficiency_LHV",
+        "fence_efficiency_HHV",
+        "water_use",
+        "faraday_efficiency",
+        "hydrogen_in_oxygen",
+        "stack_heat_W",
+        "cooling_W",
+        "rectifier_loss_W",
+        "auxiliaries_W",
+        "conversion_per_pass",
+        "carbon_activity",
     )
     ports: ClassVar[tuple[Port, ...]] = (
         Port(
@@ -66,39 +126,38 @@ class Electrolyser(Equipment):
             Role.TAKES,
             main=True,
             many=True,
-            means="alternating or direct current before the rectifier",
+            means="alternating or direct current before the rectifier, auxiliaries included",
         ),
         Port(
             "water",
             "material",
             Role.CALLS,
-            means="water for the reaction and for the moisture of both gases",
+            means="water for the reaction and for the moisture of both gases; "
+            "steam, CO2 or both for model solid-oxide",
+        ),
+        _SWEEP,
+        Port(
+            "hydrogen",
+            "material",
+            Role.OFFERS,
+            main=True,
+            means="hydrogen, saturated with water; hot with the steam left (solid-oxide)",
         ),
         Port(
-            "hydrogen", "material", Role.OFFERS, main=True, means="hydrogen, saturated with water"
-        ),
-        Port(
-            "oxygen", "material", Role.OFFERS, optional=True, means="oxygen, saturated with water"
+            "oxygen",
+            "material",
+            Role.OFFERS,
+            optional=True,
+            means="oxygen, saturated with water; with the sweep gas (solid-oxide)",
         ),
         HEAT_PORTS[1],
         HEAT_PORTS[2],
     )
-    formulas: ClassVar[tuple[str, ...]] = (
-        "direct current = rectifier * power",
-        "specific-energy: hydrogen = direct current / energy_use (per mass of hydrogen)",
-        "voltage: hydrogen = direct current / (2 F voltage), Faraday efficiency 1",
-        "moisture of a dry gas flow n: n * r / (1 - r), r = saturation pressure / pressure",
-    )
-    sources: ClassVar[tuple[str, ...]] = (
-        "Faraday constant: CODATA 2018",
-        (
-            "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387 "
-            "(IAPWS-95 auxiliary equation)"
-        ),
-    )
+    formulas: ClassVar[tuple[str, ...]] = FORMULAS
+    sources: ClassVar[tuple[str, ...]] = SOURCES
 
-    model: Literal["specific-energy", "voltage"] = Field(
-        "specific-energy", description="how power becomes hydrogen"
+    model: Literal["specific-energy", "voltage", "pem", "alkaline", "solid-oxide", "measured"] = (
+        Field("specific-energy", description="how power becomes hydrogen")
     )
     energy_use: Annotated[float, measured("J/kg", gt=0)] | None = Field(
         None, description="direct current at the stack per mass of hydrogen"
@@ -106,32 +165,65 @@ class Electrolyser(Equipment):
     voltage: Annotated[float, measured("V", gt=0)] | None = Field(
         None, description="voltage of one cell (model: voltage)"
     )
-    rectifier: OpenFraction = Field(1.0, description="direct current per power drawn")
+    pem: PemCell | None = Field(None, description="numbers of the cells (model: pem)")
+    alkaline: AlkalineCell | None = Field(
+        None, description="numbers of the cells (model: alkaline)"
+    )
+    solid_oxide: SolidOxideCell | None = Field(
+        None, description="numbers of the cells (model: solid-oxide)"
+    )
+    curve: MeasuredCurves | None = Field(
+        None,
+        description="CSV file beside the flowsheet with units in its headings, or maps with lists "
+        "'current_density', 'voltage' and a 'temperature' (model: measured)",
+    )
+    faraday_efficiency: OpenFraction | None = Field(
+        None, description="hydrogen per hydrogen that the current could make (model: measured; 1)"
+    )
+    rectifier: OpenFraction = Field(1.0, description="direct current per power drawn by it")
+    auxiliaries: Annotated[float, measured("1", ge=0, le=2)] = Field(
+        0.0, description="power of pumps, cooling and controls per direct current"
+    )
     temperature: Temperature = Field(description="stack temperature; both gases leave at it")
     pressure: Pressure = Field(description="stack pressure, absolute")
     hydrogen: FlowSetting | None = Field(
-        None, description="dry hydrogen wanted; the stack then calls for power"
+        None, description="dry hydrogen wanted at the outlet; the stack then calls for power"
+    )
+    current_density: CurrentDensity | None = Field(
+        None, description="at which the cells work; with 'rating' the one at full load"
+    )
+    cell_area: Area | None = Field(None, description="active area of all cells together")
+    rating: Annotated[float, measured("W", gt=0)] | None = Field(
+        None, description="power drawn at full load"
+    )
+    minimum_load: Fraction | None = Field(
+        None, description="least power drawn, as a share of 'rating'"
     )
 
+    @model_validator(mode="before")
+    @classmethod
+    def _with_cell(cls, given: Any) -> Any:
+        return with_cell(given)
+
     @model_validator(mode="after")
-    def _one_model(self) -> Electrolyser:
-        wanted, other = (
-            ("energy_use", "voltage")
-            if self.model == "specific-energy"
-            else ("voltage", "energy_use")
-        )
-        if getattr(self, wanted) is None or getattr(self, other) is not None:
-            example = "energy_use: 52 kWh/kg" if wanted == "energy_use" else "voltage: 1.9 V"
-            raise PydanticCustomError(
-                "electrolyser",
-                "model {model} wants '{wanted}' and not '{other}'; write {example}",
-                {"model": self.model, "wanted": wanted, "other": other, "example": example},
-            )
+    def _fits(self) -> Electrolyser:
+        trouble = wrong_for_model(self) or sizing_trouble(self)
+        if trouble:
+            raise PydanticCustomError("electrolyser", "{text}", {"text": trouble})
         return self
 
+    # --- structure ---------------------------------------------------------------------------
+
+    @property
+    def calls_for_power(self) -> bool:
+        """Whether the settings say how much is made."""
+        both = self.cell_area is not None and self.current_density is not None
+        return self.hydrogen is not None or both
+
     def port_list(self) -> tuple[Port, ...]:
-        if self.hydrogen is None:
-            return self.ports
+        ports = tuple(p for p in self.ports if p is not _SWEEP or self.model == "solid-oxide")
+        if not self.calls_for_power:
+            return ports
         called = Port(
             "power",
             "power",
@@ -140,185 +232,201 @@ class Electrolyser(Equipment):
             main=True,
             means="power for the hydrogen wanted",
         )
-        return (called, *self.ports[1:])
+        return (called, *ports[1:])
 
     def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
-        missing = [name for name in ("H2", "O2", "H2O") if name not in matter.index]
+        missing = missing_components(self.model, matter)
         if missing:
-            yield ("kind",), f"electrolysis needs {', '.join(missing)} among the components"
-        if (
-            self.temperature > 473.15
-            or saturation_pressure(self.temperature) >= 0.95 * self.pressure
-        ):
-            yield (
-                ("temperature",),
-                (
-                    f"at {self.temperature - 273.15:.4g} degC and {self.pressure / 1e5:.4g} bar "
-                    "the water boils, wanted liquid water: "
-                    "lower the temperature or raise the pressure"
-                ),
-            )
+            yield ("kind",), missing
+        trouble = temperature_trouble(self)
+        if trouble:
+            yield ("temperature",), trouble
 
     def destinations(
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
     ) -> Iterable[tuple[str, str]]:
+        if self.model == "solid-oxide":
+            return self._hot_destinations(inlet, species, outlets, matter)
         if species == "H2O":
             made = [("hydrogen", "H2"), ("hydrogen", "H2O"), ("oxygen", "O2"), ("oxygen", "H2O")]
+            made += [("oxygen", "H2")] if MODELS[self.model].leaks else []
             return [pair for pair in made if pair[0] in outlets]
         return [("oxygen", species)] if "oxygen" in outlets else []
 
-    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
-        return lower_feed(inlets, self.pressure)
+    def _hot_destinations(
+        self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
+    ) -> list[tuple[str, str]]:
+        if inlet == "sweep":
+            return [("oxygen", species)] if "oxygen" in outlets else []
+        found: list[tuple[str, str]] = []
+        if "hydrogen" in outlets:
+            found += exchanging(species, solid_oxide.SPECIES, ("hydrogen",), matter)
+        if "oxygen" in outlets and species in ("H2O", "CO2"):
+            found.append(("oxygen", "O2"))
+        return found
 
     @property
-    def energy_per_mol(self) -> float:
-        """Direct current per mol of hydrogen [J/mol]."""
-        if self.voltage is not None:
-            return 2.0 * FARADAY * self.voltage
-        assert self.energy_use is not None
-        return self.energy_use * hydrogen_mass()
+    def _oxygen_pressure(self) -> float:
+        return (self.pem.oxygen_pressure if self.pem else None) or self.pressure
+
+    def outlet_pressures(self, inlets: Mapping[str, tuple[float, ...]]) -> dict[str, float]:
+        return {"hydrogen": self.pressure, "oxygen": self._oxygen_pressure}
+
+    def pressure_faults(self, inlets: Mapping[str, tuple[float, ...]]) -> Iterator[tuple[str, str]]:
+        return lower_feed(inlets, self._oxygen_pressure)
+
+    # --- physics -----------------------------------------------------------------------------
+
+    @property
+    def drawn(self) -> float:
+        """Power drawn per direct current."""
+        return 1.0 / self.rectifier + self.auxiliaries
+
+    def _sizing(self, density: float | None = None) -> Sizing:
+        known = self.current_density if density is None else density
+        return Sizing(self.drawn, known, self.cell_area, self.rating)
+
+    def _stack(self, feeds: Feeds, site: Site) -> _Stack:
+        if self.solid_oxide is not None:
+            return self._hot_stack(self.solid_oxide, feeds, site)
+        gases = LiquidFed(
+            material(feeds, "water"),
+            site.matter,
+            self.temperature,
+            self.pressure,
+            self._oxygen_pressure,
+        )
+        return _Stack(self._liquid_curve(), gases, {"water": gases.unmet} if gases.unmet else {})
+
+    def _liquid_curve(self) -> Curve:
+        if self.pem is not None:
+            return self.pem.curve(self.temperature, self.pressure)
+        if self.alkaline is not None:
+            return self.alkaline.curve(self.temperature, self.pressure)
+        if self.curve is not None:
+            net = self.faraday_efficiency or 1.0
+            return MeasuredCurve.at(self.curve, self.temperature, self.pressure, net)
+        constant = self.voltage
+        if constant is None:
+            assert self.energy_use is not None
+            constant = self.energy_use * hydrogen_mass() / (2.0 * FARADAY)
+        return ConstantCurve(reversible_voltage(self.temperature), constant)
+
+    def _hot_stack(self, cell: SolidOxideCell, feeds: Feeds, site: Site) -> _Stack:
+        feed, matter = material(feeds, "water"), site.matter
+        sweep = material(feeds, "sweep") if "sweep" in feeds else None
+        found = solid_oxide.converted(cell, feed.flows, matter, self.temperature, self.pressure)
+        if found is None:
+            text = "what is served at 'water' holds too little H2O or CO2 to be electrolysed"
+            return _Stack(ConstantCurve(1.0, 1.0), None, {"water": text})
+        entry = cell.entry or self.temperature
+        gases = SteamFed(
+            feed, sweep, found, cell.sweep_ratio, matter, entry, self.temperature, self.pressure
+        )
+        share = float(sweep.fraction("O2")) if sweep is not None else 1.0
+        ratio = cell.sweep_ratio if sweep is not None else 0.0
+        pressures = solid_oxide.oxygen_pressure(share, ratio, self.pressure)
+        along = solid_oxide.along(
+            cell, found.gas, found.oxygen_along, pressures, self.temperature, 1.0
+        )
+        return _Stack(solid_oxide.SolidOxideCurve(along, gases.net), gases, {})
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
-        water, matter = material(feeds, "water"), site.matter
-        if self.hydrogen is not None:
-            made = self.hydrogen.value / (hydrogen_mass() if self.hydrogen.per == "kg" else 1.0)
-            power = made * self.energy_per_mol / self.rectifier
-        else:
-            # below zero only while a plant that is short is being solved
-            power = max(rate(feeds, "power"), 0.0)
-            made = power * self.rectifier / self.energy_per_mol
-        moisture = self._moisture()
-        amount, unmet = self._water_needed(made, water, moisture)
-        made = 0.0 if unmet else made
-        gases = self._gases(made, amount * water.flows, moisture, matter)
-        needs = self._needs(amount, water, gases, power, site)
-        # `power` feeds the cells, not a heater
-        beside = replace(site, inlets=site.inlets - {"power"})
-        duties, _, drawn, heat = self.settle(needs, beside)
-        drawn |= {"water": amount}
-        if self.hydrogen is not None:
-            drawn["power"] = power
+        stack = self._stack(feeds, site)
+        if stack.gases is None:
+            return self._idle(feeds, stack.unmet, site)
+        sizing = self._sizing(self._neutral_density(stack, site))
+        at = self._working(sizing, stack.curve, feeds)
+        made = stack.gases.made(at.gross, at.share, site)
+        heat = _without_round_off(made.leaving, -made.heated, -at.direct)
+        power = at.direct * self.drawn
+        duties, drawn, given = self._settled(at, made, heat, site)
+        results, cautions = (
+            stack_report.report(self, stack, at, made, heat, feeds, site)
+            if site.detail
+            else ({}, ())
+        )
         return Outcome(
-            {**gases, **heat},
-            drawn,
+            {**made.gases, **given},
+            drawn | ({"power": power} if self.calls_for_power else {}),
             duties,
             power=power,
-            results=self._results(made, power, amount * float(water.mass_flow), matter),
-            cautions=self._cautions() if site.detail else (),
-            unmet=unmet,
+            results=results,
+            cautions=cautions,
+            unmet=stack.unmet,
+            inner=(stack, sizing, at, made),
         )
 
-    def _needs(
-        self, amount: float, water: Stream, gases: Mapping[str, Stream], power: float, site: Site
-    ) -> list[Duty]:
-        """Heat of the feed water, of the stack and of the rectifier; those of nothing left out."""
-        hot = Stream.at(site.matter, amount * water.flows, self.temperature, self.pressure)
-        direct, level = power * self.rectifier, self.temperature
-        warming = float(hot.enthalpy) - amount * float(water.enthalpy)
-        stack = float(sum(g.enthalpy for g in gases.values())) - float(hot.enthalpy) - direct
-        outside = (site.ambient, site.ambient, site.ambient)
+    def _idle(self, feeds: Feeds, unmet: dict[str, str], site: Site) -> Outcome:
+        """Nothing is made of a feed that cannot be used."""
+        power = 0.0 if self.calls_for_power else max(rate(feeds, "power"), 0.0)
+        level = self.temperature
+        nothing = Stream.empty(site.matter, level, self.pressure)
+        lost = Duty("stack", -power, level, level, level, "ambient")
+        drawn: dict[str, Any] = {"water": 0.0}
+        drawn |= {"power": 0.0} if self.calls_for_power else {}
+        drawn |= {"sweep": 0.0} if "sweep" in feeds else {}
+        gases = {"hydrogen": nothing, "oxygen": nothing}
+        return Outcome(dict(gases), drawn, (lost,), power=power, unmet=unmet)
+
+    def _neutral_density(self, stack: _Stack, site: Site) -> float | None:
+        """Current density at which a solid-oxide stack neither takes nor gives heat [A/m2]."""
+        if self.solid_oxide is None or not self.solid_oxide.thermoneutral:
+            return None
+        assert isinstance(stack.gases, SteamFed)
+        assert isinstance(stack.curve, solid_oxide.SolidOxideCurve)
+        one = stack.gases.made(1.0, stack.curve.share(0.0), replace(site, detail=False))
+        return stack.curve.cell.density((one.leaving - one.heated) / (2.0 * FARADAY))
+
+    def _working(self, sizing: Sizing, curve: Curve, feeds: Feeds) -> Working:
+        if self.hydrogen is not None:
+            per = hydrogen_mass() if self.hydrogen.per == "kg" else 1.0
+            return sizing.by_hydrogen(curve, self.hydrogen.value / per)
+        if self.calls_for_power:
+            return sizing.as_given(curve)
+        # below zero only while a plant that is short is being solved
+        return sizing.by_power(curve, max(rate(feeds, "power"), 0.0))
+
+    def _settled(
+        self, at: Working, made: Made, heat: float, site: Site
+    ) -> tuple[tuple[Duty, ...], dict[str, Any], dict[str, Any]]:
+        """Duties, what is asked for and the heat given off."""
+        level, around = self.temperature, site.ambient
+        entry = (self.solid_oxide.entry if self.solid_oxide else None) or level
+        losses = (
+            ("rectifier loss", at.direct * (1.0 / self.rectifier - 1.0)),
+            ("auxiliaries", at.direct * self.auxiliaries),
+        )
         needs = [
-            Duty.between("water to stack temperature", warming, float(water.temperature), level),
-            Duty("stack", stack, level, level, level),
-            Duty("rectifier loss", -(power - direct), *outside, "ambient"),
+            *made.heating,
+            Duty.between("stack", heat, entry, level),
+            *(Duty(name, -loss, around, around, around, "ambient") for name, loss in losses),
         ]
-        return [d for d in needs if d.heat != 0.0 or d.purpose == "stack"]
-
-    def _moisture(self) -> float:
-        """Water per mol of dry gas at saturation [-]."""
-        share = saturation_pressure(self.temperature) / self.pressure
-        return share / (1.0 - share)
-
-    def _water_needed(
-        self, made: float, water: Stream, moisture: float
-    ) -> tuple[float, dict[str, str]]:
-        """Feed water [mol/s] for reaction and moisture; what is dissolved takes moisture along."""
-        per_mol = _reacting_share(water, moisture)
-        if per_mol <= 0.0:
-            text = "what is served at 'water' holds too little H2O to be electrolysed"
-            return 0.0, {"water": text}
-        return made * (1.0 + 1.5 * moisture) / per_mol, {}
-
-    def _gases(self, made: float, fed: Array, moisture: float, matter: Matter) -> dict[str, Stream]:
-        dissolved = fed.copy()
-        dissolved[matter.index["H2O"]] = 0.0
-        oxygen = dissolved + amounts({"O2": 0.5 * made}, matter)
-        oxygen[matter.index["H2O"]] = float(oxygen.sum()) * moisture
-        hydrogen = amounts({"H2": made, "H2O": made * moisture}, matter)
-        return {
-            "hydrogen": Stream.gaseous(matter, hydrogen, self.temperature, self.pressure),
-            "oxygen": Stream.gaseous(matter, oxygen, self.temperature, self.pressure),
-        }
-
-    def _results(self, made: float, power: float, water: float, matter: Matter) -> dict[str, float]:
-        direct = power * self.rectifier
-        ratio = {"LHV": matter.lhv, "HHV": matter.hhv}
-        share = made / direct if direct > 0.0 else 0.0
-        return {
-            "hydrogen_mol_s": made,
-            "hydrogen_kg_s": made * hydrogen_mass(),
-            "water_kg_s": water,
-            "direct_current_W": direct,
-            "voltage_V": self.energy_per_mol / (2.0 * FARADAY),
-        } | {
-            f"stack_efficiency_{name}": share * float(value[matter.index["H2"]])
-            for name, value in ratio.items()
-        }
-
-    def _cautions(self) -> tuple[Caution, ...]:
-        cell, limit = self.energy_per_mol / (2.0 * FARADAY), reversible_voltage(self.temperature)
-        if cell >= limit:
-            return ()
-        text = (
-            f"{cell:.4g} V per cell is below the reversible voltage {limit:.4g} V: "
-            "no stack can do that"
-        )
-        return (Caution("below-reversible-voltage", text),)
+        # `power` feeds the cells, not a heater
+        beside = replace(site, inlets=site.inlets - {"power"})
+        kept = [d for d in needs if d.heat != 0.0 or d.purpose == "stack"]
+        duties, _, drawn, given = self.settle(kept, beside)
+        return duties, drawn | made.drawn, given
 
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
         if outcome.unmet or site.inlets & {"heat"} or "heat" in site.outlets:
             return {}
-        known = {"water": self._by_water(material(feeds, "water"), outcome, site.matter)}
-        if self.hydrogen is not None or outcome.power == 0.0:
+        stack, sizing, at, made = outcome.inner
+        by_water = None if sizing.follows_curve and self.solid_oxide else stack.gases.by_water(made)
+        known = {} if by_water is None else {"water": by_water}
+        if self.calls_for_power:
             return known
-        power = outcome.power
-        made = {"drawn:water": np.array([[as_number(outcome.drawn["water"]) / power]])}
-        for name in ("hydrogen", "oxygen"):
-            gas = outcome.outlets[name]
-            assert isinstance(gas, Stream)
-            made[name] = np.append(gas.flows, gas.enthalpy)[:, None] / power
-        return known | {"power": made}
-
-    def _by_water(self, water: Stream, outcome: Outcome, matter: Matter) -> dict[str, Array]:
-        """Slopes by what one mol of the feed water is: its amount, and what leaves with oxygen."""
-        size, place = len(matter.components), matter.index["H2O"]
-        moisture = self._moisture()
-        amount = as_number(outcome.drawn["water"])
-        share = np.full(size, -moisture)
-        share[place] = 1.0
-        by_flow = -amount / _reacting_share(water, moisture) * share
-        oxygen = outcome.outlets["oxygen"]
-        assert isinstance(oxygen, Stream)
-        block = amount * np.eye(size) + np.outer(water.flows, by_flow)
-        block[place] = 0.0
-        block[place] = moisture * block.sum(axis=0)
-        partial = matter.gas_partial(oxygen.gas, self.temperature, self.pressure).enthalpy
-        none = np.zeros((size + 1, 1))
-        return {
-            "drawn:water": np.append(by_flow, 0.0)[None, :],
-            "oxygen": np.hstack([np.vstack([block, partial @ block]), none]),
-        }
+        found = sizing.slopes(stack.curve, at)
+        if found is None:
+            return known
+        growth, change = found
+        by_power = stack.gases.by_power(made, growth / at.gross, change)
+        return known if by_power is None else known | {"power": by_power}
 
 
-def _reacting_share(water: Stream, moisture: float) -> float:
-    """Water per mol of feed that is left when what is dissolved has taken its moisture along."""
-    pure = float(water.flow("H2O"))
-    return pure - (float(water.total) - pure) * moisture
-
-
-@cache
-def hydrogen_mass() -> float:
-    """Molar mass of hydrogen [kg/mol], the one of every stream."""
-    return float(Matter.of(("H2",)).molar_mass[0])
+def _without_round_off(*terms: float) -> float:
+    """Return a sum, or zero where it is nothing but the round-off of its terms."""
+    total = sum(terms)
+    return total if abs(total) > _ROUND_OFF * sum(abs(term) for term in terms) else 0.0

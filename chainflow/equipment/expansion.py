@@ -26,7 +26,7 @@ from chainflow.equipment.base import (
 )
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed, lower_feed
-from chainflow.thermo.components import WATER_MOLAR_VOLUME
+from chainflow.thermo.components import WATER_MOLAR_VOLUME, Matter
 from chainflow.thermo.compression import isentropic_temperature
 from chainflow.thermo.streams import (
     Stream,
@@ -164,9 +164,8 @@ class Pump(Equipment):
         inlet = material(feeds, "inlet")
         ideal = None if _keeps_volume(inlet) else isentropic(inlet, self.pressure)
         if ideal is None:
-            power = (
-                self._volume_work(inlet, float(inlet.water[inlet.matter.water])) / self.efficiency
-            )
+            volume = float(_liquid_volumes(inlet.matter) @ inlet.flows)
+            power = self._volume_work(inlet, volume) / self.efficiency
         else:
             power = (float(ideal.enthalpy) - float(inlet.enthalpy)) / self.efficiency
         outlet = Stream.from_enthalpy(
@@ -185,9 +184,9 @@ class Pump(Equipment):
             inner=ideal,
         )
 
-    def _volume_work(self, inlet: Stream, water: float) -> float:
-        """Volume of liquid water times the rise of pressure [W]."""
-        return WATER_MOLAR_VOLUME * water * (self.pressure - float(inlet.pressure))
+    def _volume_work(self, inlet: Stream, volume: float) -> float:
+        """Volume of liquid [m3/s] times the rise of pressure [W]."""
+        return volume * (self.pressure - float(inlet.pressure))
 
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
@@ -195,8 +194,8 @@ class Pump(Equipment):
         inlet = material(feeds, "inlet")
         block = np.eye(len(site.matter.components) + 1)
         if outcome.inner is None:
-            power = np.zeros(len(block))
-            power[site.matter.water] = self._volume_work(inlet, 1.0) / self.efficiency
+            rise = self._volume_work(inlet, 1.0) / self.efficiency
+            power = np.append(_liquid_volumes(site.matter) * rise, 0.0)
         else:
             ideal = isentropic_slopes(inlet, outcome.inner)
             if ideal is None:
@@ -207,8 +206,20 @@ class Pump(Equipment):
 
 
 def _keeps_volume(inlet: Stream) -> bool:
-    """Whether all of it is liquid water, whose volume does not change."""
-    return inlet.matter.water is not None and not inlet.gas.any() and bool(inlet.water.any())
+    """Whether all of it is liquid water or oil, whose volume does not change."""
+    oil = inlet.matter.oil
+    some_oil = oil is not None and inlet.liquid[oil.places].any()
+    return not inlet.gas.any() and bool(inlet.water.any() or some_oil)
+
+
+def _liquid_volumes(matter: Matter) -> Array:
+    """Volumes in a liquid [m3/mol]; what is dissolved in water takes no room."""
+    volumes = np.zeros(len(matter.components))
+    if matter.water is not None:
+        volumes[matter.water] = WATER_MOLAR_VOLUME
+    if matter.oil is not None:
+        volumes[matter.oil.places] = matter.oil.volume
+    return volumes
 
 
 def _gas_in_pump(inlet: Stream) -> tuple[Caution, ...]:
@@ -228,7 +239,7 @@ def _start(inlet: Stream, pressure: float) -> float:
     From a colder state the steps of `isentropic` never overshoot.
     """
     level, matter = float(inlet.temperature), inlet.matter
-    if inlet.water.any():
+    if inlet.water.any() or inlet.liquid.any():
         return level
     try:
         return isentropic_temperature(matter, inlet.gas, level, float(inlet.pressure), pressure)

@@ -11,6 +11,7 @@ from typing import Any
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Flow, Heat
 from chainflow.thermo.components import Matter
+from chainflow.thermo.streams import Stream
 
 
 @dataclass(frozen=True, slots=True)
@@ -46,6 +47,7 @@ class Outcome:
     results: dict[str, float] = field(default_factory=dict)
     cautions: tuple[Caution, ...] = ()
     idealisations: tuple[Caution, ...] = ()
+    taken: tuple[Stream, ...] = ()  # matter that no line brings: CO2 out of the air
     unmet: dict[str, str] = field(default_factory=dict)  # port -> why its amount has no answer
     inner: Any = None  # what `slopes` may use again, of no meaning outside
 

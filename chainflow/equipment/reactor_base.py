@@ -31,6 +31,7 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
+from chainflow.equipment.carbon_margin import CARBON_FORMS_ABOVE
 from chainflow.equipment.cooling import cooling_duties
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.carbon import carbon_activity
@@ -39,7 +40,6 @@ from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 TRACE = 1e-4  # mole fraction from which CO or O2 deserves a caution
-_CARBON_FORMS_ABOVE = 573.15  # [K], colder it forms too slowly; common practice, no source
 
 
 class Product(NamedTuple):
@@ -57,6 +57,7 @@ class ReactorBase(Equipment):
 
     family: ClassVar[str] = "reactors"
     makes: ClassVar[bool] = True
+    followed: ClassVar[tuple[str, ...]] = ("CO2", "CO")  # whose conversion is reported
     gives: ClassVar[tuple[str, ...]] = (
         "outlet_temperature_K",
         "carbon_activity",
@@ -120,8 +121,11 @@ class ReactorBase(Equipment):
         raise NotImplementedError
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
-        feed, matter = material(feeds, "feed"), site.matter
-        pressure = float(feed.pressure) - self.pressure_drop
+        return self.react(material(feeds, "feed"), site)
+
+    def react(self, feed: Stream, site: Site) -> Outcome:
+        """Do the work on all that enters, as one stream."""
+        matter, pressure = site.matter, float(feed.pressure) - self.pressure_drop
         if self.level is None:
             return self._unheated(feed, pressure, site)
         made = self._made_at(feed.flows, self.level, pressure, matter)
@@ -197,22 +201,27 @@ class ReactorBase(Equipment):
         matter = site.matter
         results = {"outlet_temperature_K": float(product.temperature)}
         cautions = list(self._window(float(product.temperature)))
-        if "C" in matter.elements and _carbon(product):
+        if "C" in matter.elements and holds_carbon(product):
             activity = carbon_activity(
                 matter, product.flows, float(product.temperature), float(product.pressure)
             )
             results["carbon_activity"] = activity
-            if activity > 1.0 and float(product.temperature) > _CARBON_FORMS_ABOVE:
+            if activity > self.carbon_limit and float(product.temperature) > CARBON_FORMS_ABOVE:
                 text = (
                     f"carbon activity {activity:.3g} at the product: soot can form; "
                     "more steam or hydrogen lowers it"
                 )
                 cautions.append(Caution("carbon-activity", text))
-        results |= _conversions(feed, product)
+        results |= conversions(feed.flows, product.flows, matter, self.followed)
         if not self.burns_oxygen:
             cautions += _oxygen(feed)
         cautions += self._traces(feed, product)
         return results, tuple(cautions)
+
+    @property
+    def carbon_limit(self) -> float:
+        """The carbon activity above which there is a caution."""
+        return 1.0
 
     @property
     def burns_oxygen(self) -> bool:
@@ -230,8 +239,15 @@ class ReactorBase(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        feed, product, made = material(feeds, "feed"), outcome.outlets["product"], outcome.inner
-        assert isinstance(product, Stream) and isinstance(made, Product)
+        made = outcome.inner
+        assert isinstance(made, Product)
+        blocks = self.blocks(material(feeds, "feed"), made, site, outcome)
+        return {"feed": blocks} if blocks else {}
+
+    def blocks(self, feed: Stream, made: Product, site: Site, outcome: Outcome) -> dict[str, Array]:
+        """Slopes by all that enters; {} if they are not known."""
+        product = outcome.outlets["product"]
+        assert isinstance(product, Stream)
         known = made.by_feed is not None and not made.unmet and not product.water.any()
         if not known or float(feed.total) == 0.0 or "heat" in site.inlets:
             return {}
@@ -247,7 +263,7 @@ class ReactorBase(Equipment):
             if any(duty.met_by not in ("power", "own") for duty in outcome.duties):
                 return {}
             blocks["drawn:power"] = _electric_slope(blocks["product"], outcome)
-        return {"feed": blocks}
+        return blocks
 
     def _block(self, made: Product, product: Stream) -> Array:
         """Slopes of the product by the feed."""
@@ -289,17 +305,21 @@ def share_element(first: str, second: str, matter: Matter) -> bool:
     return bool(((a > 0) & (b > 0)).any())
 
 
-def _carbon(stream: Stream) -> bool:
+def holds_carbon(stream: Stream) -> bool:
+    """Whether any component with carbon flows."""
     row = stream.matter.formula[stream.matter.elements.index("C")]
     return bool((row @ stream.flows) > 0.0)
 
 
-def _conversions(feed: Stream, product: Stream) -> dict[str, float]:
-    results = {}
-    for name in ("CO2", "CO"):
-        place = feed.matter.index.get(name)
-        if place is not None and feed.flows[place] > 1e-9 * float(feed.total):
-            results[f"conversion_{name}"] = 1.0 - float(product.flows[place] / feed.flows[place])
+def conversions(
+    entering: Array, leaving: Array, matter: Matter, names: Iterable[str]
+) -> dict[str, float]:
+    """Share of each named component that reacted, where there was any."""
+    total, results = float(entering.sum()), {}
+    for name in names:
+        place = matter.index.get(name)
+        if place is not None and entering[place] > 1e-9 * total:
+            results[f"conversion_{name}"] = 1.0 - float(leaving[place] / entering[place])
     return results
 
 

@@ -1,4 +1,4 @@
-"""Parting streams: an ideal separator by stated recoveries, and a condenser for water.
+"""Parting streams: an ideal separator by stated recoveries, and a condenser for water and oil.
 
 SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat and work [W].
 """
@@ -29,8 +29,10 @@ from chainflow.equipment.cooling import add_heat_slopes, cooling_duties, wrong_w
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
 from chainflow.thermo.exergy import Environment
+from chainflow.thermo.phases import split_at
 from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
-from chainflow.thermo.water import water_split, water_split_slopes
+from chainflow.thermo.three_phases import Split, liquid_slopes
+from chainflow.thermo.water import water_split_slopes
 
 WET = ("H2O", "CO2")  # what can be in a condensate
 
@@ -181,7 +183,8 @@ class Condenser(Equipment):
     """Cools a gas to a temperature and takes out the water that condenses.
 
     The gas leaves saturated (Raoult with the IAPWS saturation pressure); CO2 dissolves in the
-    condensate by Henry's law unless `dissolved: false`.
+    condensate by Henry's law unless `dissolved: false`.  Hydrocarbons condense too if long ones
+    are among the components; water and oil then leave together, a `flash-drum` parts them.
     """
 
     kind: ClassVar[str] = "condenser"
@@ -196,6 +199,7 @@ class Condenser(Equipment):
     )
     formulas: ClassVar[tuple[str, ...]] = (
         "y_H2O p = x_H2O p_sat(T); y_CO2 p = x_CO2 k_H(T); Rachford-Rice over the two phases",
+        "hydrocarbons: y_i p = x_i p_i(T) in an oil that does not mix with the water",
     )
     sources: ClassVar[tuple[str, ...]] = (
         "saturation pressure: Wagner and Pruss, J. Phys. Chem. Ref. Data 31 (2002) 387",
@@ -207,8 +211,8 @@ class Condenser(Equipment):
     dissolved: bool = Field(True, description="CO2 dissolves in the condensate")
 
     def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
-        if matter.water is None:
-            yield ("kind",), "a condenser needs H2O among the components"
+        if matter.water is None and matter.oil is None:
+            yield ("kind",), "a condenser needs H2O or a long hydrocarbon among the components"
 
     def material_outlets(self) -> tuple[str, ...]:
         return ("gas", "liquid")
@@ -217,6 +221,7 @@ class Condenser(Equipment):
         self, inlet: str, species: str, outlets: Iterable[str], matter: Matter
     ) -> Iterable[tuple[str, str]]:
         wet = species == "H2O" or (species == "CO2" and self.dissolved)
+        wet = wet or (matter.oil is not None and species in matter.oil.names)
         return [(o, species) for o in outlets if o == "gas" or wet]
 
     @property
@@ -226,11 +231,13 @@ class Condenser(Equipment):
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         inlet, matter = material(feeds, "inlet"), site.matter
         pressure, level = float(inlet.pressure) - self.pressure_drop, self.temperature
-        gas_flows, water_flows = water_split(matter, inlet.flows, level, pressure, self._gases)
-        gas = Stream.gaseous(matter, gas_flows, level, pressure)
-        liquid = _aqueous(matter, water_flows, level, pressure)
+        found = split_at(matter, inlet.flows, level, pressure, self._gases)
+        phases = found or Split(inlet.flows, matter.nothing, matter.nothing)
+        gas = Stream.gaseous(matter, phases.gas, level, pressure)
+        liquid = condensate(matter, phases.water, phases.oil, level, pressure)
         heat = float(gas.enthalpy) + float(liquid.enthalpy) - float(inlet.enthalpy)
-        together = replace(gas, water=liquid.water, enthalpy=gas.enthalpy + liquid.enthalpy)
+        enthalpy = float(gas.enthalpy) + float(liquid.enthalpy)
+        together = replace(gas, water=liquid.water, liquid=liquid.liquid, enthalpy=enthalpy)
         needs = cooling_duties("cooling and condensing", inlet, together, site, self._gases)
         duties, electric, drawn, given = self.settle(needs, site)
         return Outcome(
@@ -249,28 +256,46 @@ class Condenser(Equipment):
         gas, liquid = outcome.outlets["gas"], outcome.outlets["liquid"]
         assert isinstance(gas, Stream) and isinstance(liquid, Stream)
         level, pressure = self.temperature, float(gas.pressure)
-        size = len(matter.components)
-        if float(liquid.total) > 0.0:
-            to_liquid = water_split_slopes(
-                matter, inlet.flows, gas.gas, liquid.water, level, pressure, self._gases
-            )
-        else:
-            to_liquid = np.zeros((size, size))
-        partial = matter.gas_partial(gas.gas, level, pressure)[0]
-        wet = matter.water_partial(level, pressure, WET).enthalpy
-        blocks = {
-            "gas": _with_enthalpy(np.eye(size) - to_liquid, partial),
-            "liquid": _with_enthalpy(to_liquid, wet),
-        }
+        parts = phase_blocks(
+            matter, Split(gas.gas, liquid.water, liquid.liquid), level, pressure, self._gases
+        )
+        blocks = {"gas": parts["gas"], "liquid": parts["water"] + parts["oil"]}
         leaving = blocks["gas"][-1] + blocks["liquid"][-1]
         return add_heat_slopes(blocks, inlet, leaving, site, outcome, (level, pressure))
 
 
-def _aqueous(matter: Matter, flows: Array, level: float, pressure: float) -> Stream:
-    """Liquid water with what is dissolved in it, as it leaves the vapour it was in touch with."""
-    nothing = np.zeros_like(flows)
-    enthalpy = matter.water_enthalpy(flows, level, pressure)
-    return Stream(matter, nothing, flows, nothing, level, pressure, enthalpy)
+def condensate(matter: Matter, water: Array, oil: Array, level: float, pressure: float) -> Stream:
+    """Water with what is dissolved in it, and oil, as they leave the vapour they touched."""
+    enthalpy = matter.water_enthalpy(water, level, pressure)
+    enthalpy += matter.oil_enthalpy(oil, level, pressure)
+    for flows in (water, oil):
+        flows.setflags(write=False)
+    return Stream(matter, matter.nothing, water, oil, level, pressure, enthalpy)
+
+
+def phase_blocks(
+    matter: Matter, phases: Split, level: float, pressure: float, dissolved: tuple[str, ...]
+) -> dict[str, Array]:
+    """Slopes of gas, water and oil that leave apart, by ``[n_1..n_C, H]`` of what enters."""
+    size = len(matter.components)
+    none = np.zeros((size, size))
+    to_water, to_oil, oil = none, none, matter.nothing
+    if phases.oil.any():
+        assert matter.oil is not None
+        moved = liquid_slopes(matter, phases, level, pressure, dissolved)
+        to_water, to_oil = moved.water_by_flows, moved.oil_by_flows
+        oil = matter.oil.enthalpies(level, pressure)
+    elif phases.water.any():
+        to_water = water_split_slopes(
+            matter, phases.gas + phases.water, phases.gas, phases.water, level, pressure, dissolved
+        )
+    gas = matter.gas_partial(phases.gas, level, pressure)[0]
+    wet = matter.water_partial(level, pressure, WET).enthalpy if to_water.any() else gas
+    return {
+        "gas": _with_enthalpy(np.eye(size) - to_water - to_oil, gas),
+        "water": _with_enthalpy(to_water, wet),
+        "oil": _with_enthalpy(to_oil, oil),
+    }
 
 
 def _with_enthalpy(block: Array, partial: Array) -> Array:

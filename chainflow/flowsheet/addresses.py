@@ -29,14 +29,24 @@ PROPERTY_UNITS = {
     "rate": "W",
 }
 _WITH_COMPONENT = ("fraction", "dry_fraction")
-_RESULT_UNITS = {
+_RESULT_UNITS = {  # the first end that fits counts: longer ones stand before what they end in
     "_mol_s": "mol/s",
     "_kg_s": "kg/s",
     "_J_kg": "J/kg",
     "_J_mol": "J/mol",
+    "_J_m3": "J/m3",
+    "_mol_m2_s": "mol/(m2*s)",
+    "_m3_s": "m3/s",
+    "_kg_m3": "kg/m3",
+    "_kg": "kg",
+    "_m3": "m3",
+    "_W_K": "W/K",
     "_Pa": "Pa",
     "_K": "K",
     "_W": "W",
+    "_A_m2": "A/m2",
+    "_m2": "m2",
+    "_A": "A",
     "_V": "V",
 }
 

@@ -35,7 +35,12 @@ from chainflow.flowsheet.reading import (
     read_tree,
     substitute_knobs,
 )
-from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter, known_components
+from chainflow.thermo.components import (
+    DEFAULT_COMPONENTS,
+    Matter,
+    known_components,
+    known_in_words,
+)
 
 _TOP = ("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds")
 _REQUIRED = {
@@ -83,7 +88,7 @@ def build_flowsheet(
         changed = _overridden(tree, knobs, settings)
         return _Builder(changed, path, knobs).flowsheet()
     except FlowsheetFault as problem:
-        fine = bool(overrides) and _is_fine(tree)
+        fine = bool(overrides) and _is_fine(tree, path)
         raise blamed(problem, changed, knobs, file_is_fine=fine) from None
 
 
@@ -96,10 +101,10 @@ def _overridden(tree: Tree, knobs: AnyMapping[str, str], settings: AnyMapping[st
     return replace(changed, remarks=written.remarks)
 
 
-def _is_fine(tree: Tree) -> bool:
+def _is_fine(tree: Tree, path: str) -> bool:
     """Whether the file as it stands has no fault."""
     try:
-        _Builder(substitute_knobs(tree), "", {}).flowsheet()
+        _Builder(substitute_knobs(tree), path, {}).flowsheet()
     except FlowsheetFault:
         return False
     return True
@@ -110,6 +115,7 @@ class _Builder:
 
     def __init__(self, tree: Tree, path: str, knobs: AnyMapping[str, str]) -> None:
         self.tree, self.root, self.path = tree, tree.root, path
+        self.folder = str(Path(path).parent) if path else ""  # files that settings name are here
         self.overrides = knobs
         self.faults: list[Fault] = []
         self.remarks: list[Fault] = list(tree.remarks)
@@ -222,7 +228,7 @@ class _Builder:
                 self.fault(
                     "unknown-component",
                     f"components: there is no component {shorten(str(name))}"
-                    f"{suggest(str(name), known)}; known: {', '.join(known)}",
+                    f"{suggest(str(name), known)}; known: {known_in_words()}",
                     item.place,
                 )
             elif name in names:
@@ -297,7 +303,7 @@ class _Builder:
         settings: dict[str, Any] = plain(entry)
         del settings["kind"]
         try:
-            return cls.model_validate(settings)
+            return cls.model_validate(settings, context={"folder": self.folder})
         except ValidationError as problem:
             for complaint in complaints(problem, cls, name):
                 spot = (

@@ -154,6 +154,7 @@ def _nobody_sets(line: JoinedPorts, equipment: Mapping[str, Equipment]) -> Fault
     kind = equipment[line.source].kind
     mend = {
         "supply": f"give 'flow:' to '{line.source}'",
+        "air-capture": f"give 'flow:' to '{line.source}'",
         "store": f"take '{line.source}.rest', or let the receiver ask for its amount",
         "switchboard": f"take '{line.source}.rest', or let the receiver ask for its amount",
         "heat-network": f"take '{line.source}.rest', or let the receiver ask for its amount",

@@ -12,6 +12,7 @@ import typing
 from collections.abc import Iterator
 from typing import TYPE_CHECKING, Annotated, Any
 
+from pydantic import BaseModel
 from pydantic.fields import FieldInfo
 from pydantic_core import PydanticUndefined
 
@@ -22,6 +23,8 @@ from chainflow.equipment.ports import Port
 if TYPE_CHECKING:
     from rich.console import Console
 
+_UNIONS = (typing.Union, types.UnionType)
+_MANY = 5  # settings of a map that are not named on its own line too
 _WHO = {
     "offers": "the amount is what leaves here",
     "serves": "the receiver asks for the amount",
@@ -89,11 +92,30 @@ def _traits(port: Port) -> tuple[tuple[str, bool], ...]:
 
 
 def setting_lines(kind: type[Equipment]) -> Iterator[str]:
-    """Yield one line for each setting: name, default, what it means, what it takes."""
-    for name, field in kind.model_fields.items():
+    """Yield one line for each setting: name, default, what it means, what it takes.
+
+    The settings of a map stand below it, with its name in front as in an address.
+    """
+    yield from _lines_of(kind, "")
+
+
+def _lines_of(model: type[BaseModel], above: str) -> Iterator[str]:
+    for name, field in model.model_fields.items():
         takes = " or ".join(dict.fromkeys(_takes(_full_type(field))))
         means = f": {field.description}" if field.description else ""
-        yield f"{name} ({_default(field)}){means} [{takes}]"
+        yield f"{above}{name} ({_default(field)}){means} [{takes}]"
+        inner = _map_of(field.annotation)
+        if inner is not None:
+            yield from _lines_of(inner, f"{above}{name}.")
+
+
+def _map_of(annotation: Any) -> type[BaseModel] | None:
+    """Return the model of a setting that is one map, not of a list of them."""
+    parts = typing.get_args(annotation) if typing.get_origin(annotation) in _UNIONS else ()
+    for part in parts or (annotation,):
+        if isinstance(part, type) and issubclass(part, BaseModel):
+            return part
+    return None
 
 
 def _full_type(field: FieldInfo) -> Any:
@@ -110,7 +132,7 @@ def _takes(annotation: Any) -> Iterator[str]:
         yield marker.described()
     elif origin is Annotated:
         yield from _takes(annotation.__origin__)
-    elif origin in (typing.Union, types.UnionType):
+    elif origin in _UNIONS:
         for part in typing.get_args(annotation):
             yield from _takes(part)
     elif origin is typing.Literal:
@@ -137,7 +159,7 @@ def _plain_type(annotation: Any) -> str:
     fields = getattr(annotation, "model_fields", None)
     if fields is None:
         return str(getattr(annotation, "__name__", annotation))
-    return "a map of " + ", ".join(fields)
+    return "a map of " + ", ".join(fields) if len(fields) < _MANY else "a map, see below"
 
 
 def _default(field: FieldInfo) -> str:

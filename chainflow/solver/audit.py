@@ -11,7 +11,6 @@ from chainflow.equipment.base import Outcome
 from chainflow.equipment.boundary import Product, Supply, Vent
 from chainflow.equipment.ports import Flow, Heat
 from chainflow.equipment.power import Grid
-from chainflow.equipment.shares import fractions
 from chainflow.equipment.stores import Store
 from chainflow.equipment.sunlight import Sunlight
 from chainflow.flowsheet.network import Flowsheet
@@ -52,13 +51,12 @@ def _top_up(finish: Finish, name: str) -> Stream | None:
     piece = finish.flowsheet.equipment[name]
     if not isinstance(piece, Store) or finish.flowsheet.line_into(name, "make_up"):
         return None
-    matter = finish.flowsheet.matter
-    one = Stream.at(matter, fractions(piece.contents, matter), piece.temperature, piece.pressure)
+    one = piece.bought(finish.flowsheet.matter)
     return one.scaled(finish.outcomes[name].results["top_up_mol_s"])
 
 
 def _inflows(finish: Finish, name: str) -> list[Flow]:
-    flows = arriving_whole(finish.feeds, name)
+    flows = [*arriving_whole(finish.feeds, name), *finish.outcomes[name].taken]
     extra = _top_up(finish, name)
     return [*flows, extra] if extra is not None else flows
 
@@ -145,6 +143,7 @@ def _crossing(finish: Finish) -> list[tuple[float, Flow]]:
             found += [(1.0, flow) for flow in finish.outcomes[name].outlets.values()]
         if isinstance(piece, Product | Vent | Grid):
             found += [(-1.0, flow) for flow in arriving_whole(finish.feeds, name)]
+        found += [(1.0, flow) for flow in finish.outcomes[name].taken]
         extra = _top_up(finish, name)
         if extra is not None:
             found.append((1.0, extra))

@@ -6,7 +6,8 @@ temperature [K], pressure [Pa], and give extensive values [W], [W/K], [m3/s]. Ze
 One enthalpy function serves every gas at every pressure: ideal mixture plus Redlich-Kwong
 departure (Redlich and Kwong, Chem. Rev. 44 (1949) 233), always on the largest root of the cubic,
 the vapour. Enthalpies carry formation enthalpies (elements at 298.15 K are zero); entropies are
-absolute, at 1 bar. Liquid water is incompressible with Raoult's and Henry's laws for its contents.
+absolute, at 1 bar. Liquid water is incompressible with Raoult's and Henry's laws for its contents;
+liquid hydrocarbons are an ideal solution (`chainflow.thermo.oil`).
 """
 
 from collections.abc import Sequence
@@ -21,13 +22,23 @@ import numpy.typing as npt
 from chainflow.basis.constants import GAS_CONSTANT, P_REFERENCE, T_REFERENCE
 from chainflow.basis.names import suggest
 from chainflow.thermo import water as wet
+from chainflow.thermo.chains import (
+    LONGEST_ALKANE,
+    LONGEST_ALKENE,
+    WAX,
+    alkane,
+    alkene,
+    hydrocarbons,
+)
+from chainflow.thermo.oil import Oil
 from chainflow.thermo.species import (
     HIGHEST_TEMPERATURE,
     LOWEST_TEMPERATURE,
     Polynomial,
-    component_species,
     gas_phase,
     polynomial,
+    small_species,
+    species_of,
 )
 from chainflow.thermo.validity import StateError, require_amounts, require_state
 
@@ -40,7 +51,17 @@ WATER_MOLAR_VOLUME = 18.01528e-3 / 997.05  # [m3/mol], density 997.05 kg/m3 at 2
 
 def known_components() -> tuple[str, ...]:
     """Return the names of all components that a file may use."""
-    return tuple(component_species())
+    return (*small_species(), *hydrocarbons())
+
+
+def known_in_words() -> str:
+    """Return the same as a list for messages, the long chains by their ends."""
+    chains = (
+        f"{alkane(5)} to {alkane(LONGEST_ALKANE)}",
+        f"{alkene(4)} to {alkene(LONGEST_ALKENE)}",
+        WAX,
+    )
+    return ", ".join((*small_species(), *chains))
 
 
 class GasState(NamedTuple):
@@ -78,6 +99,7 @@ class Matter:
     lhv, hhv : arrays, shape (components,) [J/mol]
         At 298.15 K as gases, nitrogen burning to N2; zero for all that does not take up oxygen.
     water, carbon_dioxide : place, or None if absent
+    oil : the liquid hydrocarbons, or None if no long hydrocarbon is among the components
     temperature_range : (lowest, highest) [K] of the gas data
     """
 
@@ -85,15 +107,15 @@ class Matter:
 
     def __init__(self, components: tuple[str, ...]) -> None:
         _require_components(components)
-        species = component_species()
         self.components = components
         self.index = {name: place for place, name in enumerate(components)}
         self.water = self.index.get("H2O")
         self.carbon_dioxide = self.index.get("CO2")
-        used = [species[name].composition for name in components]
+        species = [species_of(name) for name in components]
+        used = [s.composition for s in species]
         self.elements = tuple(e for e in ELEMENT_ORDER if any(e in atoms for atoms in used))
         self.formula = _fixed([[atoms.get(e, 0.0) for atoms in used] for e in self.elements])
-        self.molar_mass = _fixed([species[name].molecular_weight / 1e3 for name in components])
+        self.molar_mass = _fixed([s.molecular_weight / 1e3 for s in species])
         self.lhv = _fixed(
             [_heating_value(atoms, name) for atoms, name in zip(used, components, strict=True)]
         )
@@ -102,7 +124,8 @@ class Matter:
         self._polynomials = tuple(polynomial(name) for name in components)
         self._liquid = polynomial("H2O(L)")
         self._gas = gas_phase(components, "Redlich-Kwong")
-        critical = [species[name].input_data["critical-parameters"] for name in components]
+        self.oil = Oil.of(components)
+        critical = [s.input_data["critical-parameters"] for s in species]
         # above this no root but the vapour exists for any component, so no reset is needed
         self._one_root = max(c["critical-temperature"] for c in critical) + 50.0
         self._solubles: dict[tuple[str, ...], wet.Solubles] = {}
@@ -187,6 +210,16 @@ class Matter:
         if not total:
             return 0.0, 0.0
         return total * self._gas.enthalpy_mole, total * self._gas.cp_mole
+
+    def gas_expansion(
+        self, flows: Array, temperature: float, pressure: float
+    ) -> tuple[float, float, float]:
+        """Return volume [m3/s], thermal expansion (dV/dT)/V [1/K] and heat capacity [W/K]."""
+        total = self._set_gas(flows, temperature, pressure) / 1e3
+        if not total:
+            return 0.0, 0.0, 0.0
+        gas = self._gas
+        return total * gas.volume_mole, gas.thermal_expansion_coeff, total * gas.cp_mole
 
     def gas_volume(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return the volume flow of a gas [m3/s]."""
@@ -295,6 +328,18 @@ class Matter:
                 capacity += amount * (pure + _dissolution_heat_capacity(name, temperature))
         return capacity
 
+    def oil_enthalpy(self, flows: Array, temperature: float, pressure: float) -> float:
+        """Return the enthalpy of liquid hydrocarbons [W]."""
+        if self.oil is None or not flows.any():
+            return 0.0
+        return float(flows @ self.oil.enthalpies(temperature, pressure))
+
+    def oil_entropy(self, flows: Array, temperature: float) -> float:
+        """Return the entropy of liquid hydrocarbons [W/K], mixing included."""
+        if self.oil is None or not flows.any():
+            return 0.0
+        return float(flows @ self.oil.partial_entropies(flows, temperature))
+
     def _wet(self, flows: Array, temperature: float, pressure: float) -> float:
         """Check the state of a liquid and return its total flow [mol/s]."""
         require_state(temperature, pressure)
@@ -327,7 +372,8 @@ def liquefaction(temperature: float, pressure: float) -> str:
     """Return the sentence for a gas that has no vapour root."""
     return (
         f"at {temperature:.5g} K and {pressure:g} Pa the gas would partly liquefy, and only water "
-        "may condense here: raise the temperature or lower the pressure"
+        "and hydrocarbons of five carbon atoms and more may condense here: raise the temperature "
+        "or lower the pressure"
     )
 
 
@@ -344,7 +390,7 @@ def _require_components(components: tuple[str, ...]) -> None:
         if name not in known:
             raise ValueError(
                 f"{name!r} is not a known component{suggest(name, known)}; "
-                f"known: {', '.join(known)}"
+                f"known: {known_in_words()}"
             )
         if name in components[:place]:
             raise ValueError(f"the component {name!r} is named twice: name it once")

@@ -14,7 +14,7 @@ import cantera as ct
 import numpy as np
 
 from chainflow.thermo.components import Array, Matter
-from chainflow.thermo.species import component_species
+from chainflow.thermo.species import LOWEST_TEMPERATURE, species_of
 from chainflow.thermo.validity import StateError, require_amounts, require_state
 
 PURE_FLUIDS = {
@@ -43,6 +43,7 @@ def pure_density(name: str, temperature: float, pressure: float) -> float:
             f"{fluid.min_temp:g} to {fluid.max_temp:g} K and a pressure above zero"
         )
     try:
+        reset(fluid)
         fluid.TP = temperature, pressure
     except ct.CanteraError as problem:
         raise StateError(
@@ -50,6 +51,11 @@ def pure_density(name: str, temperature: float, pressure: float) -> float:
             "has no answer there; change temperature or pressure a little"
         ) from problem
     return float(fluid.density)
+
+
+def reset(fluid: Any) -> None:
+    """Bring a pure fluid to a warm thin state, so that what follows does not depend on the past."""
+    fluid.TD = 1.5 * fluid.critical_temperature, 0.1 * fluid.critical_density
 
 
 @cache
@@ -67,7 +73,7 @@ def liquefying(
     a little earlier.
     """
     total = require_amounts(flows, matter.components)
-    if total == 0.0:
+    if total == 0.0 or temperature < LOWEST_TEMPERATURE:  # colder gases have a reference equation
         return ()
     found = []
     for name, flow in zip(matter.components, flows.tolist(), strict=True):
@@ -85,7 +91,7 @@ def vapour_pressure(name: str, temperature: float) -> float:
     light hydrocarbons between 0.1 bar and the critical point; too low for methanol (by a third at
     280 K) and ammonia (4 % at 220 K), which errs towards the caution.
     """
-    data = component_species()[name].input_data["critical-parameters"]
+    data = species_of(name).input_data["critical-parameters"]
     ratio = temperature / data["critical-temperature"]
     if ratio >= 1.0:
         return float("inf")

@@ -17,7 +17,7 @@ from chainflow.basis.names import suggest
 from chainflow.thermo.components import Array, Matter
 from chainflow.thermo.reactants import TRACE, Reactants, convertible, reactants_of
 from chainflow.thermo.search import Bracket
-from chainflow.thermo.species import component_species, polynomial
+from chainflow.thermo.species import polynomial, species_of
 from chainflow.thermo.validity import StateError, require_state, without_round_off
 
 START_TEMPERATURE = 900.0  # [K], where a search begins without a guess
@@ -210,8 +210,7 @@ def _select(
         if name not in components:
             raise ValueError(f"{name!r} cannot react: not a component{suggest(name, components)}")
     there = {element for element, is_there in zip(elements, present, strict=True) if is_there}
-    known = component_species()
-    possible = [n for n in components if n in species and set(known[n].composition) <= there]
+    possible = [n for n in components if n in species and set(species_of(n).composition) <= there]
     names = convertible(tuple(possible))
     reacting = np.array([i for i, n in enumerate(components) if n in names], dtype=int)
     passing = np.array([i for i, n in enumerate(components) if n not in names], dtype=int)

@@ -13,7 +13,7 @@ import numpy as np
 from chainflow.thermo.components import Array, Matter
 from chainflow.thermo.reactants import TRACE, convertible, reactants_of
 from chainflow.thermo.search import Bracket
-from chainflow.thermo.species import flame_species, polynomial
+from chainflow.thermo.species import polynomial, species_of
 from chainflow.thermo.validity import StateError, require_state, without_round_off
 
 FLAME_GASES = (
@@ -113,6 +113,5 @@ def _possible(matter: Matter, flows: Array, fed: tuple[str, ...]) -> tuple[str, 
         for element, amount in zip(matter.elements, held, strict=True)
         if amount > TRACE * held.sum()
     }
-    known = flame_species()
     names = dict.fromkeys((*FLAME_GASES, *fed))
-    return tuple(name for name in names if set(known[name].composition) <= present)
+    return tuple(name for name in names if set(species_of(name).composition) <= present)

@@ -13,7 +13,7 @@ import numpy as np
 
 from chainflow.basis.constants import ATMOSPHERE, GAS_CONSTANT, STANDARD_TEMPERATURE, T_REFERENCE
 from chainflow.thermo.components import Array, Matter, oxygen_demand
-from chainflow.thermo.species import component_species, polynomial
+from chainflow.thermo.species import polynomial, species_of
 from chainflow.thermo.validity import StateError, require_amounts
 
 # dry air by mole: ISO 6976:2016 (trace gases counted as argon), from memory
@@ -99,10 +99,9 @@ def _combustion(matter: Matter, temperature: float) -> tuple[Array, Array]:
         polynomial(name).enthalpy(temperature) for name in ("O2", "CO2", "H2O", "N2")
     )
     own = matter.ideal_enthalpies(temperature)
-    species = component_species()
     lower, water = np.zeros(len(own)), np.zeros(len(own))
     for place, name in enumerate(matter.components):
-        atoms = species[name].composition
+        atoms = species_of(name).composition
         demand = oxygen_demand(atoms)
         if demand <= 0.0:
             continue

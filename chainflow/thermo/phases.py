@@ -1,8 +1,9 @@
 """Which phases does a flow form, and at which temperature does it have a given enthalpy?
 
 One case at a time: flows (components,) [mol/s], temperature [K], pressure [Pa], enthalpy [W].
-The enthalpy of gas and liquid water in equilibrium rises steadily with temperature, so a search
-inside a bracket always ends; where it jumps (pure water boils), the split is set by the enthalpy.
+The enthalpy of gas, water and oil in equilibrium rises steadily with temperature, so a search
+inside a bracket always ends; where it jumps (one component boils alone), the split is set by the
+enthalpy. Oil is looked for only if there are long hydrocarbons among the components.
 """
 
 from math import isfinite
@@ -14,7 +15,14 @@ from chainflow.basis.constants import GAS_CONSTANT
 from chainflow.thermo.components import Array, Matter, liquefaction
 from chainflow.thermo.search import NARROWEST, Bracket
 from chainflow.thermo.species import HIGHEST_TEMPERATURE, LOWEST_TEMPERATURE
-from chainflow.thermo.validity import StateError, require_amounts, require_state
+from chainflow.thermo.three_phases import (
+    Split,
+    liquid_slopes,
+    liquids_by_temperature,
+    oil_forms,
+    three_phase_split,
+)
+from chainflow.thermo.validity import StateError, require_amounts, require_state, some
 from chainflow.thermo.water import (
     CRITICAL_PRESSURE,
     CRITICAL_TEMPERATURE,
@@ -26,14 +34,17 @@ from chainflow.thermo.water import (
     split_slopes,
 )
 
+_SAME_TEMPERATURE = 1e-6  # [K]
+ROUND_OFF = 3e-14  # of an enthalpy with oil in it
 LAST_STEP = 2e-6  # [K]: after a Newton step below this the next error is below round-off
 
 
 class Phases(NamedTuple):
-    """Flows of gas and liquid water [mol/s], their temperature [K] and enthalpy [W]."""
+    """Flows of gas, liquid water and oil [mol/s], their temperature [K] and enthalpy [W]."""
 
     gas: Array
     water: Array
+    oil: Array
     temperature: float
     enthalpy: float
 
@@ -54,14 +65,42 @@ def phases_at(
 ) -> Phases:
     """Return what flows form at a temperature and pressure."""
     require_state(temperature, pressure)
-    found = split(matter, flows, temperature, pressure, dissolved)
+    found = split_at(matter, flows, temperature, pressure, dissolved)
     if found is None:
         enthalpy = matter.gas_enthalpy(flows, temperature, pressure)
-        return Phases(flows, matter.nothing, temperature, enthalpy)
-    gas, water = found
+        return Phases(flows, matter.nothing, matter.nothing, temperature, enthalpy)
+    gas, water, oil = found
     enthalpy = matter.gas_enthalpy(gas, temperature, pressure)
     enthalpy += matter.water_enthalpy(water, temperature, pressure)
-    return Phases(gas, water, temperature, enthalpy)
+    enthalpy += matter.oil_enthalpy(oil, temperature, pressure)
+    return Phases(gas, water, oil, temperature, enthalpy)
+
+
+def split_at(
+    matter: Matter,
+    flows: Array,
+    temperature: float,
+    pressure: float,
+    dissolved: tuple[str, ...],
+) -> Split | None:
+    """Return gas, water and oil of checked flows, or None if all is gas."""
+    if matter.oil is not None:
+        return three_phase_split(matter, flows, temperature, pressure, dissolved)
+    found = split(matter, flows, temperature, pressure, dissolved)
+    return None if found is None else Split(*found, matter.nothing)
+
+
+def any_liquid(
+    matter: Matter,
+    flows: Array,
+    temperature: float,
+    pressure: float,
+    dissolved: tuple[str, ...] = ("CO2",),
+) -> bool:
+    """Return whether any water or oil condenses from flows at a temperature and pressure."""
+    if condenses(matter, flows, temperature, pressure, dissolved):
+        return True
+    return oil_forms(matter, flows, temperature, pressure)
 
 
 def find_phases(
@@ -77,7 +116,7 @@ def find_phases(
     require_state(guess, pressure)
     total = require_amounts(flows, matter.components)
     if total == 0.0:
-        return Phases(flows, matter.nothing, guess, 0.0)
+        return Phases(flows, matter.nothing, matter.nothing, guess, 0.0)
     if not isfinite(enthalpy):
         raise StateError(f"enthalpy is {enthalpy} W, wanted a finite number")
     if matter.water is not None and flows[matter.water] == total:
@@ -98,7 +137,7 @@ def _boiling_water(matter: Matter, flows: Array, enthalpy: float, pressure: floa
     if not liquid <= enthalpy <= steam:
         return None
     share = (enthalpy - liquid) / (steam - liquid)
-    return Phases(flows * share, flows * (1.0 - share), temperature, enthalpy)
+    return Phases(flows * share, flows * (1.0 - share), matter.nothing, temperature, enthalpy)
 
 
 def _search(
@@ -110,21 +149,31 @@ def _search(
     dissolved: tuple[str, ...],
 ) -> Phases:
     bracket, temperature = Bracket(), guess
+    ends: dict[bool, Phases] = {}  # the nearest trials below and above the answer
     for _ in range(200):
         trial, capacity = _trial(matter, flows, temperature, pressure, dissolved)
         excess = trial.enthalpy - enthalpy
-        if excess == 0.0:
-            return trial
+        if excess == 0.0 or (some(trial.oil) and _met(trial, flows, enthalpy)):
+            return trial._replace(enthalpy=enthalpy)
         if bracket.outside(temperature, excess):
             raise _no_such_enthalpy(flows, enthalpy, pressure)
+        ends[excess > 0.0] = trial
         step = -excess / capacity
         small = abs(step) < LAST_STEP
         if small and (better := _last_step(matter, trial, step, pressure, enthalpy, dissolved)):
             return better
         if bracket.empty or (small and abs(step) < NARROWEST):
-            return _close_by_boiling(matter, trial, pressure, enthalpy)
+            break
         temperature = bracket.next_trial(temperature, excess, step)
+    if some(trial.oil) or any(some(end.oil) for end in ends.values()):
+        return _between(ends, trial, flows, enthalpy, pressure)
     return _close_by_boiling(matter, trial, pressure, enthalpy)
+
+
+def _met(trial: Phases, flows: Array, enthalpy: float) -> bool:
+    """Return whether a trial has the enthalpy to round-off."""
+    scale = abs(enthalpy) + GAS_CONSTANT * trial.temperature * float(flows.sum())
+    return abs(trial.enthalpy - enthalpy) <= ROUND_OFF * scale
 
 
 def _trial(
@@ -135,11 +184,14 @@ def _trial(
     dissolved: tuple[str, ...],
 ) -> tuple[Phases, float]:
     """Return the phases at a temperature and the slope of their enthalpy [W/K]."""
-    found = split(matter, flows, temperature, pressure, dissolved)
+    found = split_at(matter, flows, temperature, pressure, dissolved)
+    nothing = matter.nothing
     if found is None:
         found_gas = matter.gas_enthalpy_and_slope(flows, temperature, pressure)
-        return Phases(flows, matter.nothing, temperature, found_gas[0]), found_gas[1]
-    gas, water = found
+        return Phases(flows, nothing, nothing, temperature, found_gas[0]), found_gas[1]
+    gas, water, oil = found
+    if some(oil):
+        return _trial_with_oil(matter, found, temperature, pressure, dissolved)
     vapour = matter.gas_partial(gas, temperature, pressure)
     names = matter.solubles(dissolved).names
     liquid = matter.water_partial(temperature, pressure, names).enthalpy
@@ -147,7 +199,55 @@ def _trial(
     capacity = vapour.heat_capacity + matter.water_heat_capacity(water, temperature, pressure)
     moved = split_by_temperature(matter, flows, water, temperature, pressure, dissolved)
     capacity += float((liquid - vapour.enthalpy) @ moved)
-    return Phases(gas, water, temperature, enthalpy), capacity
+    return Phases(gas, water, nothing, temperature, enthalpy), capacity
+
+
+class _Enthalpies(NamedTuple):
+    """Partial molar enthalpies [J/mol] of three phases, and their heat capacity together [W/K]."""
+
+    gas: Array
+    water: Array
+    oil: Array
+    heat_capacity: float
+
+
+def _enthalpies(
+    matter: Matter, found: Split, temperature: float, pressure: float, dissolved: tuple[str, ...]
+) -> _Enthalpies:
+    assert matter.oil is not None
+    vapour = matter.gas_partial(found.gas, temperature, pressure)
+    oil = matter.oil.enthalpies(temperature, pressure)
+    own = vapour.heat_capacity + float(found.oil @ matter.oil.heat_capacities(temperature))
+    water = matter.nothing
+    if some(found.water):
+        names = matter.solubles(dissolved).names
+        water = matter.water_partial(temperature, pressure, names).enthalpy
+        own += matter.water_heat_capacity(found.water, temperature, pressure)
+    return _Enthalpies(vapour.enthalpy, water, oil, own)
+
+
+def _trial_with_oil(
+    matter: Matter, found: Split, temperature: float, pressure: float, dissolved: tuple[str, ...]
+) -> tuple[Phases, float]:
+    h = _enthalpies(matter, found, temperature, pressure, dissolved)
+    enthalpy = float(found.gas @ h.gas + found.water @ h.water + found.oil @ h.oil)
+    water, oil = liquids_by_temperature(matter, found, temperature, pressure, dissolved)
+    moved = float((h.water - h.gas) @ water + (h.oil - h.gas) @ oil)
+    return Phases(*found, temperature, enthalpy), h.heat_capacity + moved
+
+
+def _slopes_with_oil(
+    matter: Matter, found: Split, temperature: float, pressure: float, dissolved: tuple[str, ...]
+) -> EnthalpySlopes:
+    """Return the slopes of the enthalpy of gas, oil and perhaps water in equilibrium."""
+    h = _enthalpies(matter, found, temperature, pressure, dissolved)
+    moved = liquid_slopes(matter, found, temperature, pressure, dissolved)
+    by_flows = h.gas + (h.oil - h.gas) @ moved.oil_by_flows
+    by_temperature = float((h.oil - h.gas) @ moved.oil_by_temperature)
+    if some(found.water):
+        by_flows += (h.water - h.gas) @ moved.water_by_flows
+        by_temperature += float((h.water - h.gas) @ moved.water_by_temperature)
+    return EnthalpySlopes(by_flows, h.heat_capacity + by_temperature)
 
 
 def _last_step(
@@ -160,11 +260,36 @@ def _last_step(
 ) -> Phases | None:
     """Return a gas moved by the last small step, or None if it is wet before or after it."""
     temperature = trial.temperature + step
-    if trial.water.any() or not LOWEST_TEMPERATURE <= temperature <= HIGHEST_TEMPERATURE:
+    if some(trial.water) or some(trial.oil):
         return None
-    if condenses(matter, trial.gas, temperature, pressure, dissolved):
+    if not LOWEST_TEMPERATURE <= temperature <= HIGHEST_TEMPERATURE:
         return None
-    return Phases(trial.gas, trial.water, temperature, enthalpy)
+    if any_liquid(matter, trial.gas, temperature, pressure, dissolved):
+        return None
+    return Phases(trial.gas, trial.water, trial.oil, temperature, enthalpy)
+
+
+def _between(
+    ends: dict[bool, Phases], trial: Phases, flows: Array, enthalpy: float, pressure: float
+) -> Phases:
+    """Meet the enthalpy between two trials at one temperature, to round-off or a boiling.
+
+    All states at one temperature and pressure are in equilibrium with each other, so anything in
+    between is one too.
+    """
+    nearest = list(ends.values())
+    apart = abs(nearest[0].temperature - nearest[-1].temperature)
+    if len(nearest) < 2 or apart > _SAME_TEMPERATURE:
+        scale = abs(enthalpy) + GAS_CONSTANT * trial.temperature * float(flows.sum())
+        if abs(trial.enthalpy - enthalpy) > 1e-10 * scale:
+            raise StateError(liquefaction(trial.temperature, pressure))
+        return trial._replace(enthalpy=enthalpy)
+    below, above = ends[False], ends[True]
+    share = (enthalpy - below.enthalpy) / (above.enthalpy - below.enthalpy)
+    water = below.water + share * (above.water - below.water)
+    oil = below.oil + share * (above.oil - below.oil)
+    gas = (flows - water - oil).clip(0.0)
+    return Phases(gas, water, oil, below.temperature, enthalpy)
 
 
 def _close_by_boiling(matter: Matter, trial: Phases, pressure: float, enthalpy: float) -> Phases:
@@ -173,7 +298,7 @@ def _close_by_boiling(matter: Matter, trial: Phases, pressure: float, enthalpy: 
     For a temperature found to round-off this moves a trace; where the enthalpy jumps because
     water boils it is the boiling itself. Any other jump is a gas that would liquefy.
     """
-    gas, water, temperature, found = trial
+    gas, water, oil, temperature, found = trial
     missing, place = enthalpy - found, matter.water
     wet = temperature <= CRITICAL_TEMPERATURE + 1e-6
     if place is not None and wet and float(gas[place] + water[place]) > 0.0:
@@ -188,7 +313,7 @@ def _close_by_boiling(matter: Matter, trial: Phases, pressure: float, enthalpy: 
     scale = abs(enthalpy) + GAS_CONSTANT * temperature * float((gas + water).sum())
     if abs(missing) > 1e-10 * scale:
         raise StateError(liquefaction(temperature, pressure))
-    return Phases(gas, water, temperature, enthalpy)
+    return Phases(gas, water, oil, temperature, enthalpy)
 
 
 def _no_such_enthalpy(flows: Array, enthalpy: float, pressure: float) -> StateError:
@@ -203,15 +328,17 @@ def _no_such_enthalpy(flows: Array, enthalpy: float, pressure: float) -> StateEr
 
 def phase_slopes(
     matter: Matter,
-    gas: Array,
-    water: Array,
+    found: Split,
     temperature: float,
     pressure: float,
     dissolved: tuple[str, ...],
 ) -> EnthalpySlopes:
     """Return the slopes of the enthalpy of phases that stay in equilibrium."""
+    gas, water, oil = found
+    if some(oil):
+        return _slopes_with_oil(matter, found, temperature, pressure, dissolved)
     vapour = matter.gas_partial(gas, temperature, pressure)
-    if not water.any():
+    if not some(water):
         return EnthalpySlopes(vapour.enthalpy, vapour.heat_capacity)
     names = matter.solubles(dissolved).names
     liquid = matter.water_partial(temperature, pressure, names).enthalpy
@@ -224,15 +351,17 @@ def phase_slopes(
 
 def entropy_slopes(
     matter: Matter,
-    gas: Array,
-    water: Array,
+    found: Split,
     temperature: float,
     pressure: float,
     dissolved: tuple[str, ...],
 ) -> tuple[Array, float]:
     """Return dS/dn (components,) [J/(mol K)] and dS/dT [W/K2] of phases in equilibrium."""
+    gas, water, oil = found
+    if some(oil):
+        return _entropy_slopes_with_oil(matter, found, temperature, pressure, dissolved)
     vapour = matter.gas_partial(gas, temperature, pressure)
-    if not water.any():
+    if not some(water):
         return vapour.entropy, vapour.heat_capacity / temperature
     liquid = matter.water_partial_entropies(water, temperature, pressure)
     moved = split_slopes(matter, gas + water, gas, water, temperature, pressure, dissolved)
@@ -243,4 +372,34 @@ def entropy_slopes(
     return by_flows, own / temperature + float(condensation @ moved.by_temperature[places])
 
 
-__all__ = ["EnthalpySlopes", "entropy_slopes", "Phases", "find_phases", "phase_slopes", "phases_at"]
+def _entropy_slopes_with_oil(
+    matter: Matter, found: Split, temperature: float, pressure: float, dissolved: tuple[str, ...]
+) -> tuple[Array, float]:
+    assert matter.oil is not None
+    vapour = matter.gas_partial(found.gas, temperature, pressure)
+    moved = liquid_slopes(matter, found, temperature, pressure, dissolved)
+    own = vapour.heat_capacity + float(found.oil @ matter.oil.heat_capacities(temperature))
+    gain = matter.oil.partial_entropies(found.oil, temperature) - vapour.entropy
+    gain = np.where(found.oil > 0.0, gain, 0.0)
+    by_flows = vapour.entropy + gain @ moved.oil_by_flows
+    by_temperature = float(gain @ moved.oil_by_temperature)
+    if some(found.water):
+        own += matter.water_heat_capacity(found.water, temperature, pressure)
+        wet = matter.water_partial_entropies(found.water, temperature, pressure)
+        gain = np.where(found.water > 0.0, wet - vapour.entropy, 0.0)
+        by_flows += gain @ moved.water_by_flows
+        by_temperature += float(gain @ moved.water_by_temperature)
+    return by_flows, own / temperature + by_temperature
+
+
+__all__ = [
+    "Split",
+    "any_liquid",
+    "split_at",
+    "EnthalpySlopes",
+    "entropy_slopes",
+    "Phases",
+    "find_phases",
+    "phase_slopes",
+    "phases_at",
+]

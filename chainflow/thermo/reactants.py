@@ -14,7 +14,7 @@ import numpy as np
 
 from chainflow.basis.constants import GAS_CONSTANT
 from chainflow.thermo.components import Array
-from chainflow.thermo.species import flame_species, gas_phase
+from chainflow.thermo.species import gas_phase, species_of
 from chainflow.thermo.validity import StateError
 
 TOLERANCE = 1e-12  # of Cantera's solver; below 1e-13 it falls through to a worse one
@@ -128,8 +128,7 @@ def reactants_of(names: tuple[str, ...]) -> Reactants:
 
 def element_matrix(names: tuple[str, ...]) -> Array:
     """Return atoms per molecule, shape (elements, species), elements in alphabetical order."""
-    known = flame_species()
-    used = [known[name].composition for name in names]
+    used = [species_of(name).composition for name in names]
     elements = sorted({element for atoms in used for element in atoms})
     return np.array([[atoms.get(element, 0.0) for atoms in used] for element in elements])
 

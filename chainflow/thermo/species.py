@@ -1,8 +1,9 @@
 """Where do the data of a substance come from?
 
-From ``species.yaml`` beside this module (sources in its header), read once per process. Lists of
-Cantera species are handed out for building phases, and NASA polynomials as plain Python for the
-few scalar properties that need no phase. Reference pressure of everything: 1 bar.
+From ``species.yaml`` beside this module and ``hydrocarbons.yaml`` (sources in their headers), each
+read once per process when it is first needed. Lists of Cantera species are handed out for building
+phases, and NASA polynomials as plain Python for the few scalar properties that need no phase.
+Reference pressure of everything: 1 bar.
 """
 
 from dataclasses import dataclass
@@ -14,16 +15,30 @@ from typing import Any
 import cantera as ct
 
 from chainflow.basis.constants import GAS_CONSTANT
+from chainflow.thermo.chains import HYDROCARBONS
 
 DATA_FILE = Path(__file__).with_name("species.yaml")
+HYDROCARBON_FILE = Path(__file__).with_name("hydrocarbons.yaml")
 LOWEST_TEMPERATURE = 200.0  # [K], lower end of the gas polynomials
 HIGHEST_TEMPERATURE = 6000.0  # [K], upper end of the gas polynomials
 
 
 @cache
 def component_species() -> dict[str, Any]:
-    """Return the species that a flowsheet may name."""
+    """Return the species that a flowsheet may name, long hydrocarbons last."""
+    return {**small_species(), **hydrocarbon_species()}
+
+
+@cache
+def small_species() -> dict[str, Any]:
+    """Return the species of up to four carbon atoms that a flowsheet may name."""
     return _read("components")
+
+
+@cache
+def hydrocarbon_species() -> dict[str, Any]:
+    """Return the n-alkanes from C5, the 1-alkenes from C4 and the wax."""
+    return _read("components", HYDROCARBON_FILE)
 
 
 @cache
@@ -32,21 +47,28 @@ def flame_species() -> dict[str, Any]:
     return {**component_species(), **_read("radicals")}
 
 
+def species_of(name: str) -> Any:
+    """Return one species, component or radical; the long hydrocarbons are read only if needed."""
+    found = small_species().get(name)
+    if found is None and name in HYDROCARBONS:
+        found = hydrocarbon_species()[name]
+    return flame_species()[name] if found is None else found
+
+
 @cache
 def condensed_species() -> dict[str, Any]:
     """Return liquid water ``H2O(L)`` and graphite ``C(gr)``."""
     return _read("condensed")
 
 
-def _read(section: str) -> dict[str, Any]:
-    found = ct.Species.list_from_file(str(DATA_FILE), section)
+def _read(section: str, file: Path = DATA_FILE) -> dict[str, Any]:
+    found = ct.Species.list_from_file(str(file), section)
     return {species.name: species for species in found}
 
 
 def gas_phase(names: tuple[str, ...], model: str = "ideal-gas") -> Any:
     """Return a new Cantera phase of the named gases; `model` as Cantera spells it."""
-    known = flame_species()
-    return ct.Solution(thermo=model, species=[known[name] for name in names])
+    return ct.Solution(thermo=model, species=[species_of(name) for name in names])
 
 
 @dataclass(frozen=True, slots=True)
@@ -92,7 +114,7 @@ class Polynomial:
 @cache
 def polynomial(name: str) -> Polynomial:
     """Return the polynomial of a gas, of ``H2O(L)`` or of ``C(gr)``."""
-    species = (condensed_species() if name.endswith(")") else flame_species())[name]
+    species = condensed_species()[name] if name.endswith(")") else species_of(name)
     data = species.input_data["thermo"]
     ranges, rows = data["temperature-ranges"], data["data"]
     low, high = tuple(rows[0]), tuple(rows[-1])

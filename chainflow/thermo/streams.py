@@ -3,8 +3,9 @@
 A `Stream` is immutable and holds molar flows per phase [mol/s], temperature [K], pressure [Pa] and
 the enthalpy flow [W] (formation enthalpies included). The last axis is components, axes before it
 are cases. Enthalpy is stored because a boiling stream is not fixed by temperature and pressure.
-Phases: gas, and liquid water with what Henry's law dissolves in it; `liquid` (hydrocarbons,
-liquefied gases) is zero until a flash for them exists.
+Phases: gas, liquid water with what Henry's law dissolves in it, and `liquid`, the oil: an ideal
+solution of hydrocarbons (`chainflow.thermo.three_phases`). One pure component may also be a
+liquefied gas, or colder than the gas data (`chainflow.thermo.liquefied`).
 """
 
 from collections.abc import Sequence
@@ -14,10 +15,11 @@ from typing import TYPE_CHECKING, Any, cast
 import numpy as np
 
 from chainflow.basis.constants import T_REFERENCE
-from chainflow.thermo import phases
+from chainflow.thermo import liquefied, phases
 from chainflow.thermo.components import Array, Matter
-from chainflow.thermo.phases import Phases, find_phases, phase_slopes, phases_at
-from chainflow.thermo.validity import without_round_off
+from chainflow.thermo.phases import Phases, Split, find_phases, phase_slopes, phases_at
+from chainflow.thermo.species import LOWEST_TEMPERATURE
+from chainflow.thermo.validity import StateError, some, without_round_off
 
 if TYPE_CHECKING:
     from chainflow.thermo.exergy import Environment
@@ -33,7 +35,7 @@ class Stream:
     matter: Matter
     gas: Array  # (..., components) [mol/s]
     water: Array  # (..., components) [mol/s], liquid water and what is dissolved in it
-    liquid: Array  # (..., components) [mol/s]
+    liquid: Array  # (..., components) [mol/s], hydrocarbons
     temperature: Value  # (...) [K]
     pressure: Value  # (...) [Pa]
     enthalpy: Value  # (...) [W]
@@ -58,8 +60,26 @@ class Stream:
             return cast(Stream, make(flows, temperature, pressure))
         temperature, pressure = float(temperature), float(pressure)
         clean = without_round_off(flows, matter.components)
+        if temperature < LOWEST_TEMPERATURE:
+            cold = _cold_at(matter, clean, temperature, pressure)
+            if cold is not None:
+                return cls._of(matter, cold, pressure)
         found = phases_at(matter, clean, temperature, pressure, dissolved)
         return cls._of(matter, found, pressure)
+
+    @classmethod
+    def liquefied(
+        cls, matter: Matter, flows: Array, temperature: float, pressure: float
+    ) -> "Stream":
+        """Return one pure component as a liquefied gas (see `chainflow.thermo.liquefied`)."""
+        clean = without_round_off(_own(flows), matter.components)
+        cold = _cold_at(matter, clean, temperature, pressure)
+        if cold is None:
+            raise StateError(
+                "a liquefied gas has to be one pure component of "
+                f"{', '.join(liquefied.LIQUEFIABLE)}: separate the others before"
+            )
+        return cls._of(matter, cold, pressure)
 
     @classmethod
     def gaseous(cls, matter: Matter, flows: Array, temperature: Value, pressure: Value) -> "Stream":
@@ -71,7 +91,8 @@ class Stream:
         temperature, pressure = float(temperature), float(pressure)
         clean = without_round_off(flows, matter.components)
         enthalpy = matter.gas_enthalpy(clean, temperature, pressure)
-        return cls._of(matter, Phases(clean, matter.nothing, temperature, enthalpy), pressure)
+        nothing = matter.nothing
+        return cls._of(matter, Phases(clean, nothing, nothing, temperature, enthalpy), pressure)
 
     @classmethod
     def from_enthalpy(
@@ -100,6 +121,11 @@ class Stream:
         pressure = float(pressure)
         clean = without_round_off(flows, matter.components)
         start = T_REFERENCE if guess is None else float(guess)
+        cold = liquefied.cold_by_enthalpy(matter, clean, float(enthalpy), pressure)
+        if cold is not None:
+            return cls._of(matter, Phases(*liquefied.cold_flows(matter, clean, cold)), pressure)
+        if start < LOWEST_TEMPERATURE and not some(clean):
+            return cls.empty(matter, start, pressure)
         found = find_phases(matter, clean, float(enthalpy), pressure, start, dissolved)
         return cls._of(matter, found, pressure)
 
@@ -109,14 +135,15 @@ class Stream:
     ) -> "Stream":
         """Return a stream without flow."""
         nothing = matter.nothing
-        return cls._of(matter, Phases(nothing, nothing, temperature, 0.0), pressure)
+        return cls._of(matter, Phases(nothing, nothing, nothing, temperature, 0.0), pressure)
 
     @classmethod
     def _of(cls, matter: Matter, phases: Phases, pressure: float) -> "Stream":
-        gas, water, temperature, enthalpy = phases
+        gas, water, liquid, temperature, enthalpy = phases
         gas.setflags(write=False)
         water.setflags(write=False)
-        return cls(matter, gas, water, matter.nothing, temperature, pressure, enthalpy)
+        liquid.setflags(write=False)
+        return cls(matter, gas, water, liquid, temperature, pressure, enthalpy)
 
     @classmethod
     def stack(cls, streams: Sequence["Stream"]) -> "Stream":
@@ -157,7 +184,8 @@ class Stream:
     @property
     def total(self) -> Value:
         """Flow of all phases together [mol/s]."""
-        return _plain(self.flows.sum(axis=-1))
+        flows = self.flows
+        return sum(flows.tolist()) if flows.ndim == 1 else _plain(flows.sum(axis=-1))
 
     @property
     def phase_totals(self) -> dict[str, Value]:
@@ -172,13 +200,23 @@ class Stream:
 
     @property
     def lhv(self) -> Value:
-        """Lower heating value of the combustibles at 25 degC [W]."""
-        return _plain(self.flows @ self.matter.lhv)
+        """Lower heating value of the combustibles at 25 degC [W].
+
+        What is in the oil burns from the liquid: its heat of vaporisation is taken off.
+        """
+        return _plain(self.flows @ self.matter.lhv - self._vaporisation)
 
     @property
     def hhv(self) -> Value:
-        """Upper heating value of the combustibles at 25 degC [W]."""
-        return _plain(self.flows @ self.matter.hhv)
+        """Upper heating value of the combustibles at 25 degC [W], the oil as a liquid."""
+        return _plain(self.flows @ self.matter.hhv - self._vaporisation)
+
+    @property
+    def _vaporisation(self) -> Value:
+        """Heat that would vaporise the oil at 25 degC [W]."""
+        if self.matter.oil is None or self.liquid is self.matter.nothing:
+            return 0.0
+        return _plain(self.liquid @ self.matter.oil.vaporisation)
 
     def flow(self, name: str) -> Value:
         """Return the flow of one component in all phases [mol/s]; zero if it is not in use."""
@@ -201,8 +239,12 @@ class Stream:
 
     def _entropy_of_one(self) -> float:
         temperature, pressure = float(self.temperature), float(self.pressure)
+        if _is_cold(self):
+            enthalpy = float(self.enthalpy)
+            return liquefied.cold_entropy(self.matter, self.flows, enthalpy, pressure)
         entropy = self.matter.gas_entropy(self.gas, temperature, pressure)
-        return entropy + self.matter.water_entropy(self.water, temperature, pressure)
+        entropy += self.matter.water_entropy(self.water, temperature, pressure)
+        return entropy + self.matter.oil_entropy(self.liquid, temperature)
 
     @property
     def volume_flow(self) -> Value:
@@ -279,28 +321,74 @@ def _ratio(part: Value, whole: Value) -> Value:
 def enthalpy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tuple[Array, float]:
     """Return dH/dn (components,) [J/mol] and dH/dT [W/K] of one stream, phases in equilibrium.
 
-    The first at constant temperature and pressure, the second at constant flows. Pure boiling
-    water has no such slopes: dH/dT is infinite and dH/dn is the mean enthalpy per mol.
+    The first at constant temperature and pressure, the second at constant flows. What boils alone
+    (as many phases as components) has no such slopes: dH/dT is infinite and dH/dn is the mean
+    enthalpy per mol.
     """
     temperature, pressure = float(stream.temperature), float(stream.pressure)
+    if _is_cold(stream):
+        return _cold_slopes(stream)[:2]
     if _boils(stream):
-        by_flows = stream.matter.water_partial(temperature, pressure).enthalpy.copy()
-        by_flows[stream.matter.water] = float(stream.enthalpy) / float(stream.total)
-        return by_flows, np.inf
-    found = phase_slopes(stream.matter, stream.gas, stream.water, temperature, pressure, dissolved)
+        return _boiling_slopes(stream), np.inf
+    found = phase_slopes(stream.matter, _split_of(stream), temperature, pressure, dissolved)
     return found.by_flows, found.by_temperature
+
+
+def _cold_at(matter: Matter, flows: Array, temperature: float, pressure: float) -> Phases | None:
+    """Return a pure flow below the gas data or as a liquid; None for mixtures."""
+    name = liquefied.only_component(matter, flows)
+    if name is not None:
+        state = liquefied.cold_at(name, temperature, pressure)
+        return Phases(*liquefied.cold_flows(matter, flows, state))
+    nothing = matter.nothing
+    return None if some(flows) else Phases(flows, nothing, nothing, temperature, 0.0)
+
+
+def _is_cold(stream: Stream) -> bool:
+    """Return whether the stream is a gas below the data, or a liquefied gas."""
+    if float(stream.temperature) < LOWEST_TEMPERATURE:
+        return True
+    if stream.liquid is stream.matter.nothing or not some(stream.liquid):
+        return False
+    return liquefied.only_component(stream.matter, stream.liquid) is not None
+
+
+def _cold_slopes(stream: Stream) -> liquefied.ColdSlopes:
+    return liquefied.cold_slopes(
+        stream.matter, stream.flows, float(stream.enthalpy), float(stream.pressure)
+    )
+
+
+def _split_of(stream: Stream) -> Split:
+    return Split(stream.gas, stream.water, stream.liquid)
+
+
+def _boiling_slopes(stream: Stream) -> Array:
+    """Return the enthalpy per mol of each component over the phases it is in [J/mol]."""
+    matter, level, pressure = stream.matter, float(stream.temperature), float(stream.pressure)
+    if not some(stream.liquid):
+        by_flows = matter.water_partial(level, pressure).enthalpy.copy()
+        by_flows[matter.water] = float(stream.enthalpy) / float(stream.total)
+        return by_flows
+    assert matter.oil is not None
+    vapour = matter.gas_partial(stream.gas, level, pressure).enthalpy
+    held = stream.gas * vapour + stream.liquid * matter.oil.enthalpies(level, pressure)
+    if some(stream.water):
+        held = held + stream.water * matter.water_partial(level, pressure).enthalpy
+    return np.divide(held, stream.flows, out=vapour, where=stream.flows > 0.0)
 
 
 def entropy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tuple[Array, float]:
     """Return dS/dn (components,) [J/(mol K)] and dS/dT [W/K2] of one stream, as above."""
     temperature, pressure = float(stream.temperature), float(stream.pressure)
+    if _is_cold(stream):
+        return _cold_slopes(stream)[2:]
     if _boils(stream):
         by_flows = np.zeros(len(stream.flows))
-        by_flows[stream.matter.water] = float(stream.entropy) / float(stream.total)
+        if not some(stream.liquid):
+            by_flows[stream.matter.water] = float(stream.entropy) / float(stream.total)
         return by_flows, np.inf
-    return phases.entropy_slopes(
-        stream.matter, stream.gas, stream.water, temperature, pressure, dissolved
-    )
+    return phases.entropy_slopes(stream.matter, _split_of(stream), temperature, pressure, dissolved)
 
 
 def temperature_slopes(
@@ -317,7 +405,11 @@ def temperature_slopes(
 
 
 def _boils(stream: Stream) -> bool:
-    """Return whether the stream is pure water in both phases."""
+    """Return whether the stream has as many phases as components, as pure boiling water."""
+    if some(stream.liquid):
+        parts = (stream.gas, stream.water, stream.liquid)
+        count = sum(bool(some(part)) for part in parts)
+        return bool(np.count_nonzero(stream.flows) < count)
     place = stream.matter.water
     if place is None or not stream.water[place] > 0.0 or not stream.gas[place] > 0.0:
         return False

@@ -35,6 +35,11 @@ def require_state(temperature: float, pressure: float) -> None:
         raise StateError(f"pressure is {pressure:g} Pa, wanted a finite value above zero")
 
 
+def some(flows: "Array") -> bool:
+    """Return whether any of a few flows is not zero; quicker than asking the array."""
+    return any(flows.tolist())
+
+
 def require_amounts(amounts: "Array", names: Sequence[str]) -> float:
     """Return the total of one set of amounts [mol/s], or raise `StateError`.
 

@@ -263,7 +263,7 @@ def split_slopes(
     by_flows[at, :] = np.outer(give, reach - 1.0 / gas_total)
     by_flows[at, at] += share
     by_temperature, by_pressure = np.zeros(size), np.zeros(size)
-    by_temperature[at] = _moved(give.tolist(), both, _log_slopes(names, temperature))
+    by_temperature[at] = _moved(give.tolist(), both, log_slopes(names, temperature))
     by_pressure[at] = _moved(give.tolist(), both, [-1.0 / pressure] * len(places))
     return SplitSlopes(by_flows, by_temperature, by_pressure)
 
@@ -289,7 +289,7 @@ def split_by_temperature(
         share = liquid_total / (liquid_total + value * gas_total)
         give.append(float(flows[i]) * share * (1.0 - share))
     both = 1.0 / gas_total + 1.0 / liquid_total
-    for i, change in zip(places, _moved(give, both, _log_slopes(names, temperature)), strict=True):
+    for i, change in zip(places, _moved(give, both, log_slopes(names, temperature)), strict=True):
         moved[i] = change
     return moved
 
@@ -301,6 +301,7 @@ def _moved(give: list[float], both: float, change: list[float]) -> list[float]:
     return [-g * (fed_back + c) for g, c in zip(give, change, strict=True)]
 
 
-def _log_slopes(names: tuple[str, ...], temperature: float) -> list[float]:
+def log_slopes(names: tuple[str, ...], temperature: float) -> list[float]:
+    """Return d ln K / dT of water (first) and of the dissolved gases [1/K]."""
     slopes = [log_saturation_pressure(temperature).first]
     return slopes + [log_henry_constant(name, temperature).first for name in names[1:]]

@@ -358,6 +358,11 @@ def test_a_difference_is_printed_in_kelvin():
     assert format_quantity(10.0, "K", difference=True) == "10 K"
 
 
+def test_energy_per_volume_is_not_printed_as_a_pressure():
+    assert format_quantity(50.72e6, "J/m3") == "50.72 MJ/m3"
+    assert format_quantity(50.72e6, "Pa") == "507.2 bar"
+
+
 def test_digits_are_significant_digits():
     assert format_quantity(27.0463, "mol/s", digits=3) == "27 mol/s"
     assert format_quantity(1234567.0, "mol/s", digits=3) == "1230000 mol/s"

@@ -12,7 +12,7 @@ from hypothesis import strategies as st
 from chainflow.basis.constants import NORMAL_MOLAR_VOLUME, STANDARD_MOLAR_VOLUME
 from chainflow.basis.units import BASE_UNITS, SYMBOLS, UnitFault, convert, dimension_of, resolve
 
-OURS_ALONE = {"Nm3", "kNm3", "Sm3", "kSm3", "kt", "Mt", "permille", "ppb"}
+OURS_ALONE = {"Nm3", "kNm3", "Sm3", "kSm3", "kt", "Mt", "permille", "ppb", "GPU"}
 PINT_NAMES = {"%": "percent", "permille": "permille"}
 
 
@@ -45,6 +45,8 @@ def test_every_symbol_of_the_table_agrees_with_pint(symbol, registry):
         ("Mt", 1e9, "kg"),
         ("permille", 1e-3, "1"),
         ("ppb", 1e-9, "1"),
+        # 1e-6 cm3 at 0 degC and 1 atm, per cm2, s and cmHg
+        ("GPU", 1e-8 / (NORMAL_MOLAR_VOLUME * 1333.22387415), "mol/(m2*s*Pa)"),
     ],
 )
 def test_symbols_that_pint_reads_otherwise_or_not_at_all(symbol, size, si):

@@ -8,7 +8,6 @@ from dataclasses import dataclass, field
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.ports import Flow, Role, arriving
 from chainflow.equipment.register import kinds
-from chainflow.equipment.shares import fractions
 from chainflow.equipment.stores import Store
 from chainflow.thermo.streams import Stream
 from tests.equipment.feeds import MATTER
@@ -54,12 +53,13 @@ class Case:
         return [*flows, *self.bought(outcome)]
 
     def bought(self, outcome):
-        """What a store without make-up gets from outside."""
+        """What is taken out of the surroundings, or what a store without make-up gets."""
+        if outcome.taken:
+            return list(outcome.taken)
         piece = self.equipment
         if not isinstance(piece, Store) or "make_up" in self.feeds:
             return []
-        shares = fractions(piece.contents, self.site.matter)
-        one = Stream.at(self.site.matter, shares, piece.temperature, piece.pressure)
+        one = piece.bought(self.site.matter)
         return [one.scaled(outcome.results["top_up_mol_s"])]
 
 

@@ -7,6 +7,12 @@ import pytest
 
 from tests.equipment import cases_of_chemistry, cases_of_flows, cases_of_heat
 from tests.equipment.case import Collector
+from tests.equipment.cases_electrolysis import electrolysing
+from tests.equipment.cases_exchanging import exchanging
+from tests.equipment.cases_keeping import keeping
+from tests.equipment.cases_liquid_fuels import liquid_fuels
+from tests.equipment.cases_making_fuel import making_fuel
+from tests.equipment.cases_separating import separating
 
 _PARTS = (
     cases_of_flows.boundary,
@@ -19,6 +25,12 @@ _PARTS = (
     cases_of_chemistry.reactors,
     cases_of_chemistry.combustion,
     cases_of_chemistry.stores,
+    electrolysing,
+    making_fuel,
+    separating,
+    exchanging,
+    keeping,
+    liquid_fuels,
 )
 
 

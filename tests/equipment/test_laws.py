@@ -9,7 +9,7 @@ from collections import Counter
 import numpy as np
 import pytest
 
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import Heat, Role
 from chainflow.equipment.register import kinds
 from chainflow.thermo.streams import Stream
 from tests.equipment.cases import CASES, named
@@ -65,8 +65,9 @@ def test_duties_and_lines_say_the_same(case):
     by_line = [duty for duty in outcome.duties if duty.met_by == "heat"]
     given = outcome.outlets.get("heat")
     asked = outcome.drawn.get("heat")
-    if case.equipment.kind == "heat-engine":
-        given, asked = None, Heat.total(case.feeds["heat"])
+    taken = case.equipment.port("heat", inlet=True)
+    if taken is not None and taken.role is Role.TAKES and "heat" in case.feeds:
+        asked = Heat.total(case.feeds["heat"])
     for line, sign in ((given, -1.0), (asked, 1.0)):
         mine = [duty for duty in by_line if sign * duty.heat > 0.0]
         wanted = line.rate if isinstance(line, Heat) and case.equipment.kind not in PASSING else 0.0

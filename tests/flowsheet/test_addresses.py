@@ -226,16 +226,50 @@ def test_what_is_said_of_a_wrong_result(address, says):
     assert says in str(caught.value)
 
 
+def test_a_compound_unit_is_not_taken_for_its_last_part():
+    names = ("conductance_W_K", "flux_mol_m2_s", "density_kg_m3", "water_m3_s", "work_J_kg")
+    units = ["W/K", "mol/(m2*s)", "kg/m3", "m3/s", "J/kg"]
+    assert [unit_of_result(name) for name in names] == units
+
+
+# results that are plain numbers though their first word does not say so
+NUMBERS_ALONE = (
+    "stage_cut",
+    "purity",
+    "recovery",
+    "para_share",
+    "share_liquid",
+    "working_share",
+    "share_lost_per_day",
+)
+
+
 @pytest.mark.parametrize("cls", kinds().values(), ids=lambda cls: cls.kind)
 def test_own_results_end_in_their_unit(cls):
     for name in cls.gives:
-        assert unit_of_result(name) != "1" or name.split("_")[0] in (
+        alone = name in NUMBERS_ALONE or name.split("_")[0] in (
             "stages",
             "stack",
+            "fence",
+            "load",
+            "faraday",
+            "hydrogen",
+            "water",
             "carbon",
             "conversion",
             "efficiency",
-        ), name
+            "growth",
+            "purity",
+            "recovery",
+            "share",
+            "stage",
+            "usage",
+            "bed",
+            "dry",
+            "relative",
+            "upper",
+        )
+        assert unit_of_result(name) != "1" or alone, name
         assert name.startswith(short_name(name))
 
 

@@ -32,6 +32,7 @@ EXPECTED_CAUTIONS = {
     "flammable-contents",
     "high-pressure",
     "hot-hydrogen",
+    "metal-dusting",  # wherever gas with CO is cooled from a shift's heat: alloys and quick cooling
     "oxygen-enriched",
     "toxic-contents",
 }

@@ -41,6 +41,13 @@ def test_units_ranges_and_defaults():
     assert "aftercool (optional)" in text
 
 
+def test_settings_of_a_map_stand_below_it_by_their_address():
+    text = printed(kinds()["electrolyser"])
+    assert "pem (optional): numbers of the cells (model: pem) [a map, see below]" in text
+    assert "  pem.thickness (default 127 um): membrane thickness [a length in m" in text
+    assert "  solid_oxide.conversion (default 70 %): " in text
+
+
 def test_the_list_has_one_line_for_each_kind():
     out = io.StringIO()
     print_kinds(console(out), kinds())
