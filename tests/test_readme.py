@@ -94,7 +94,7 @@ def test_the_two_commands_do_their_whole_setup():
         assert command.startswith("python3 -m venv .venv && .venv/bin/pip install ")
         assert len(command.splitlines()) == 1
     assert run.strip().endswith("chainflow solve flowsheets/methane-cycle.yaml")
-    assert tests.strip().endswith("python -m pytest -q")
+    assert tests.strip().endswith("python -m pytest -q -n auto")
     assert "sudo apt-get install -y python3-venv" in README
 
 

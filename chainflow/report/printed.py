@@ -6,7 +6,7 @@ engineering units.
 
 from __future__ import annotations
 
-from collections.abc import Iterator, Mapping
+from collections.abc import Iterable, Iterator, Mapping
 from typing import TYPE_CHECKING, TextIO
 
 from chainflow.accounts.exergy import exergy_destroyed
@@ -14,6 +14,7 @@ from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, ideal
 from chainflow.accounts.plant import PlantAccount, plant_account
 from chainflow.accounts.worth import BASES
 from chainflow.basis.formatting import format_quantity
+from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Heat
 from chainflow.report import numbers
 from chainflow.report.plain import console, encoding_of, printable
@@ -25,6 +26,7 @@ if TYPE_CHECKING:
     from rich.table import Table
 
 _MOST_LOSSES = 5
+_ROUND_OFF = 1e-9  # of the largest stream: what is bought below it is how far the loops close
 _LABEL = 18  # characters
 _NARROW = 100  # characters; below, only the first columns of the stream table are shown
 _NARROW_COLUMNS = 6
@@ -66,7 +68,10 @@ def _short_answer(solution: Solution) -> Iterator[str]:
     for name, share in account.returned.items():
         yield _line(f"{name} returned", numbers.percent(share, 4))
     yield _line("sunlight", numbers.energy(account.sunlight))
-    yield from _listed("bought", _bought(account))
+    largest = max(
+        (float(s.flow.total) for s in solution.streams if isinstance(s.flow, Stream)), default=0.0
+    )
+    yield from _listed("bought", _bought(account, _ROUND_OFF * largest))
     yield from _listed("delivered", _delivered(account))
     yield _line("exergy lost in", _losses(solution))
 
@@ -82,18 +87,30 @@ def _listed(label: str, entries: Iterator[str]) -> Iterator[str]:
         yield _line(label if place == 0 else "", entry)
 
 
-def _bought(account: PlantAccount) -> Iterator[str]:
+def _bought(account: PlantAccount, nothing: float) -> Iterator[str]:
+    """What is bought; matter up to `nothing` [mol/s] is round-off of a closed loop."""
     bought = account.bought
     for name, power in bought.power.items():
         yield f"{numbers.energy(power)} of power for {name}"
-    for name, duty in bought.heat:
-        span = f"{numbers.celsius(duty.start)} to {numbers.celsius(duty.end)} degC"
-        yield f"{numbers.energy(duty.heat)} of heat for {name} ({duty.purpose}, {span})"
-    for name, duty in bought.cold:
-        span = f"{numbers.celsius(duty.start)} to {numbers.celsius(duty.end)} degC"
-        yield f"{numbers.energy(-duty.heat)} of cooling for {name} ({duty.purpose}, {span})"
+    yield from _heats("heat", bought.heat)
+    yield from _heats("cooling", bought.cold)
     for name, stream in bought.material.items():
-        yield f"{_amount(stream)} at {name}: {_shares(stream)}"
+        if float(stream.total) > nothing:
+            yield f"{_amount(stream)} at {name}: {_shares(stream)}"
+
+
+def _heats(what: str, parts: Iterable[tuple[str, Duty]]) -> Iterator[str]:
+    """One line for each purpose, however many segments its heat comes in."""
+    groups: dict[tuple[str, str], list[Duty]] = {}
+    for name, duty in parts:
+        groups.setdefault((name, duty.purpose), []).append(duty)
+    for (name, purpose), duties in groups.items():
+        heat = sum(duty.heat for duty in duties)
+        coldest, hottest = min(d.coldest for d in duties), max(d.hottest for d in duties)
+        ends = (coldest, hottest) if heat > 0.0 else (hottest, coldest)
+        span = " to ".join(numbers.celsius(end) for end in ends) + " degC"
+        heat = abs(heat)
+        yield f"{numbers.energy(heat)} of {what} for {name} ({purpose}, {span})"
 
 
 def _delivered(account: PlantAccount) -> Iterator[str]:
@@ -103,6 +120,8 @@ def _delivered(account: PlantAccount) -> Iterator[str]:
     for name, heat in sold.heat:
         yield f"{numbers.energy(heat.rate)} of heat to {name}"
     for name, stream in sold.material:
+        if float(stream.total) == 0.0:
+            continue
         value = f", {numbers.energy(float(stream.lhv))} LHV" if float(stream.lhv) > 0.0 else ""
         yield f"{_amount(stream)} to {name}: {_shares(stream)}{value}"
 

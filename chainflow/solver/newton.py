@@ -253,9 +253,7 @@ class Newton:
             for key, value in torn.items()
         }
 
-    def _step(
-        self, state: _State, blocks: Blocks
-    ) -> tuple[np.ndarray, dict[str, str]] | None:
+    def _step(self, state: _State, blocks: Blocks) -> tuple[np.ndarray, dict[str, str]] | None:
         """The Newton change of all torn numbers, and the holds that are set aside this time.
 
         None where the equations of the loop are singular.
