@@ -74,7 +74,7 @@ def test_the_closed_form_for_liquid_water():
 
 
 # ------------------------------------------------------------------------------------------- PEM
-def test_nafion_conductivity():
+def test_membrane_conductivity():
     """Springer, Zawodzinski, Gottesfeld, J. Electrochem. Soc. 138 (1991) 2334 (r + C), S/cm."""
     for water_content, values in ((22, (0.1100, 0.1604, 0.1989)), (14, (0.0688, 0.1003, 0.1244))):
         for celsius, printed in zip((30, 60, 80), values, strict=True):
@@ -93,7 +93,7 @@ def test_membrane_resistance(thickness, water_content, printed):
 
 
 def test_pem_curves_of_the_restated_numbers():
-    """V at 80 degC and gases at 1 bar each (C of r): set han-2015 with Nafion 117 and no contact,
+    """V at 80 degC and gases at 1 bar each (C of r): set han-2015 with 178 um and no contact,
     and no transport loss, and with 127 um, 0.02 ohm cm2 and 6 A/cm2."""
     free = {"contact_resistance": 0.0, "limiting_current": 1e12}
     bare = PemCell(thickness=178e-6, **free).curve(353.15, 1e5)
@@ -117,7 +117,7 @@ def test_pem_curves_of_the_restated_numbers():
 
 
 def test_a_good_laboratory_cell():
-    """Bernt, Gasteiger, J. Electrochem. Soc. 163 (2016) F3179, Nafion 212, 80 degC, ambient (M):
+    """Bernt, Gasteiger, J. Electrochem. Soc. 163 (2016) F3179, 51 um, 80 degC, ambient (M):
     1.57 V at 1 A/cm2 (30 mV), below 2.0 V at 6 A/cm2."""
     curve = PemCell(set="bernt-2016").curve(353.15, 1e5)
     assert curve.voltage(1e4) == pytest.approx(1.57, abs=0.03)
@@ -197,7 +197,7 @@ def test_hydrogen_in_oxygen_at_30_bar_and_80_degc(thickness, values):
 
 
 def test_faraday_efficiency_of_a_thick_membrane_at_30_bar():
-    """1 - 2F N/i, Nafion 117, 80 degC: 0.983 at 1, 0.967 at 0.5 A/cm2 (C)."""
+    """1 - 2F N/i, 178 um membrane, 80 degC: 0.983 at 1, 0.967 at 0.5 A/cm2 (C)."""
     curve = PemCell(thickness=178e-6).curve(353.15, 30e5)
     assert curve.share(1e4).net == pytest.approx(0.983, abs=1e-3)
     assert curve.share(5e3).net == pytest.approx(0.967, abs=1e-3)

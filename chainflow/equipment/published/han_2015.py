@@ -17,7 +17,7 @@ NUMBERS = {
     "cathode_exchange_current": 1.5e3,  # [A/m2] at 25 degC: 150 x 1e-3 A/cm2
     "cathode_activation_energy": 4.3e3,  # [J/mol]
     "cathode_transfer": 1.0,
-    "thickness": 127e-6,  # [m], Nafion 115 dry (M)
+    "thickness": 127e-6,  # [m], perfluorosulfonic acid, dry (M)
     "water_content": 22.0,  # [mol/mol] (M)
     "contact_resistance": 2e-6,  # [ohm m2], 0.02 ohm cm2 (M)
     "limiting_current": 6e4,  # [A/m2], 6 A/cm2 (M)

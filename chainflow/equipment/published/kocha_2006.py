@@ -1,4 +1,4 @@
-"""How fast does hydrogen pass a wet Nafion membrane?
+"""How fast does hydrogen pass a wet perfluorosulfonic-acid membrane?
 
 Kocha, Yang, Yi, Characterization of gas crossover in PEM fuel cells, AIChE J. 52 (2006) 1916.
 Certainty M, cross-checked: 13 % above the 2.95e-14 mol/(m s Pa) that Trinke et al., ECS Trans.

@@ -17,7 +17,7 @@ NUMBERS = {
     "activation_energy": 67e3,  # [J/mol]
     "oxygen_order": 0.54,
     "transfer": 1.0,
-    "thickness": 25e-6,  # [m], Nafion 211 dry
+    "thickness": 25e-6,  # [m], perfluorosulfonic acid, dry
     "water_content": 14.0,  # over saturated vapour
     "contact_resistance": 2e-6,  # [ohm m2]
     "limiting_current": 2e4,  # [A/m2]

@@ -1,4 +1,4 @@
-"""How well does a wet Nafion membrane conduct protons?
+"""How well does a wet perfluorosulfonic-acid membrane conduct protons?
 
 Springer, Zawodzinski, Gottesfeld, Polymer electrolyte fuel cell model, J. Electrochem. Soc. 138
 (1991) 2334, equation 23. Certainty r + C: restated by many, evaluated here. Good for a water
