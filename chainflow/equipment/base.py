@@ -121,7 +121,7 @@ class Equipment(BaseModel):
         feeds : flows at the inlets; a *called* inlet gets one mol/s of what its server gives.
         asked : amounts asked at serving outlets [mol/s or W; `Heat` for served heat].
         """
-        raise NotImplementedError
+        raise NotImplementedError  # every kind gives its own
 
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome

@@ -74,7 +74,7 @@ class _Capture(Equipment):
 
     @property
     def _set(self) -> CaptureFigures:
-        raise NotImplementedError
+        raise NotImplementedError  # either kind of capture gives its own
 
     def setting_faults(self, matter: Matter) -> Iterator[tuple[tuple[str, ...], str]]:
         if matter.carbon_dioxide is None:

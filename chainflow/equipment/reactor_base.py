@@ -109,7 +109,7 @@ class ReactorBase(Equipment):
 
     def equilibrium_species(self, matter: Matter) -> tuple[str, ...] | None:
         """The species that come to equilibrium, or None if conversions are stated."""
-        raise NotImplementedError
+        raise NotImplementedError  # every reactor gives its own
 
     @property
     def shift_of_temperature(self) -> float:
@@ -118,7 +118,7 @@ class ReactorBase(Equipment):
 
     def convert(self, flows: Array, matter: Matter) -> Product:
         """The product of stated conversions."""
-        raise NotImplementedError
+        raise NotImplementedError  # every reactor gives its own
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         return self.react(material(feeds, "feed"), site)

@@ -22,7 +22,7 @@ def print_check(structure: Structure, out: TextIO | None = None) -> None:
     """Print lines with who sets their amounts, then the loops and where they are cut."""
     flowsheet = structure.flowsheet
     screen = console(out)
-    encoding = encoding_of(screen.file)  # type: ignore[arg-type] # rich types it as IO[str]
+    encoding = encoding_of(screen.file)
     screen.print(printable(flowsheet.title or "untitled", encoding), style="bold")
     counts = f"{len(flowsheet.equipment)} pieces of equipment, {len(flowsheet.lines)} lines"
     screen.print(f"{counts}, {len(flowsheet.holds)} holds: no faults\n")

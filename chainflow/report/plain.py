@@ -7,7 +7,7 @@ encoding does not know become question marks.
 from __future__ import annotations
 
 import sys
-from typing import TYPE_CHECKING, TextIO
+from typing import IO, TYPE_CHECKING, TextIO
 
 if TYPE_CHECKING:
     from rich.console import Console
@@ -24,7 +24,7 @@ def printable(text: str, encoding: str = "utf-8") -> str:
     return shown.encode(encoding, "replace").decode(encoding)
 
 
-def encoding_of(out: TextIO) -> str:
+def encoding_of(out: IO[str]) -> str:
     """Return the encoding of an output that is known to Python; UTF-8 if it names none."""
     name = getattr(out, "encoding", None) or "utf-8"
     try:

@@ -7,7 +7,7 @@ engineering units.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from typing import TYPE_CHECKING, TextIO
+from typing import TYPE_CHECKING, Literal, TextIO
 
 from chainflow.accounts.exergy import exergy_destroyed
 from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
@@ -36,7 +36,7 @@ _TWO_LINES = 130  # characters; below, the two ends of a stream stand below each
 def print_answer(solution: Solution, out: TextIO | None = None) -> None:
     """Print the whole answer."""
     screen = console(out)
-    encoding = encoding_of(screen.file)  # type: ignore[arg-type] # rich types it as IO[str]
+    encoding = encoding_of(screen.file)
     screen.print(printable(solution.flowsheet.title or "untitled", encoding), style="bold")
     for line in _short_answer(solution):
         screen.print(line, soft_wrap=True)
@@ -143,7 +143,7 @@ def _losses(solution: Solution) -> str:
 
 def _print_tables(screen: Console, solution: Solution) -> None:
     matter = [stream for stream in solution.streams if isinstance(stream.flow, Stream)]
-    energy = [stream for stream in solution.streams if not isinstance(stream.flow, Stream)]
+    energy = [(s, s.flow) for s in solution.streams if not isinstance(s.flow, Stream)]
     for title, table in (
         ("Streams", _stream_table(matter, screen.width)),
         ("Power, heat and light", _energy_table(energy)),
@@ -162,8 +162,8 @@ def _table(*columns: str, right: tuple[str, ...] = (), whole: tuple[str, ...] = 
 
     table = Table(box=box.SIMPLE_HEAD, pad_edge=False, show_edge=False)
     for name in columns:
-        justify = "right" if name in right else "left"
-        table.add_column(name, justify=justify, overflow="fold", no_wrap=name in whole)  # type: ignore[arg-type] # one of its literals
+        justify: Literal["left", "right"] = "right" if name in right else "left"
+        table.add_column(name, justify=justify, overflow="fold", no_wrap=name in whole)
     return table
 
 
@@ -189,15 +189,14 @@ def _stream_table(streams: list[SolvedStream], width: int) -> Table:
     return table
 
 
-def _energy_table(streams: list[SolvedStream]) -> Table:
+def _energy_table(streams: list[tuple[SolvedStream, Heat | float]]) -> Table:
     table = _table("tag", "from -> to", "content", "rate", "degC", right=("tag", "rate"))
-    for stream in streams:
-        flow = stream.flow
+    for stream, flow in streams:
         if isinstance(flow, Heat):
             span = f"{numbers.celsius(flow.start)} to {numbers.celsius(flow.end)}"
             row = (numbers.energy(flow.rate), span)
         else:
-            row = (numbers.energy(float(flow)), "")  # type: ignore[arg-type] # no matter here
+            row = (numbers.energy(flow), "")
         table.add_row(str(stream.tag), _ends(stream), stream.content, *row)
     return table
 

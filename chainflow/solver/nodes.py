@@ -66,7 +66,7 @@ class Step:
 
     def run(self, values: Mapping[str, Flow]) -> Values:
         """Compute what is written."""
-        raise NotImplementedError
+        raise NotImplementedError  # every step gives its own
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:  # noqa: ARG002 - for subclasses
         """Blocks by variable read, for those whose derivatives are known."""

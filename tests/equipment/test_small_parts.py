@@ -180,7 +180,7 @@ class _Point:
 
 
 def test_a_kind_needs_no_more_than_its_ports_and_its_verb():
-    with pytest.raises(NotImplementedError):
+    with pytest.raises(NotImplementedError):  # the base names the verb; every kind gives its own
         Equipment().operate({}, {}, None)
     with pytest.raises(TypeError, match="vent serves nothing"):
         Vent().sample({}, {}, None)

@@ -125,15 +125,16 @@ def test_carbon_dioxide_let_down_from_60_to_30_bar(celsius):
     assert outcome.outlets["outlet"].temperature == pytest.approx(published, abs=3.0)
 
 
-def test_hydrogen_warms_when_it_is_let_down():
+def test_pin_of_the_warming_of_hydrogen_that_is_let_down():
     # CoolProp 8.0.0 (Leachman): 350 to 30 bar from 25 degC, 12.8 K; the attraction of
-    # Redlich-Kwong falls with T^-1/2 only, which makes hydrogen's effect some 13 % too large
+    # Redlich-Kwong falls with T^-1/2 only.  A pin: its effect is 13.3 % larger, by our own code
     enthalpy = CoolProp.PropsSI("Hmass", "T", WARM, "P", 350e5, "Hydrogen")
     published = CoolProp.PropsSI("T", "Hmass", enthalpy, "P", 30e5, "Hydrogen")
     valve = Valve.model_validate({"pressure": "30 bar"})
     outlet = valve.operate({"inlet": gas("H2", 350)}, {}, Site(MATTER)).outlets["outlet"]
     assert published > WARM
-    assert outlet.temperature - WARM == pytest.approx(published - WARM, rel=0.15)
+    departure = (outlet.temperature - WARM) / (published - WARM) - 1.0
+    assert departure == pytest.approx(0.133, abs=2e-3)
 
 
 def test_power_of_an_expander():

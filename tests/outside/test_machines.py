@@ -29,7 +29,6 @@ def stream(amounts, kelvin=298.15, bar=1.0):
         ("H2", 30, 200, 2, 1.04),
         ("H2", 30, 350, 3, 1.35),
         ("H2", 20, 500, 4, 1.79),
-        ("H2", 30, 875, 4, 1.98),
         ("CO2", 1, 30, 3, 0.078),
         ("CO2", 1, 60, 4, 0.091),
         ("CH4", 1, 16, 3, 0.176),
@@ -37,12 +36,19 @@ def stream(amounts, kelvin=298.15, bar=1.0):
     ],
 )
 def test_work_of_intercooled_trains(name, low, high, stages, published):
-    # CoolProp 8.0.0, isentropic 75 %, 25 degC before every stage, equal ratios; [kWh/kg], 1 %;
-    # Redlich-Kwong is known to be 0.7 % above it for hydrogen to 700 bar and 1.0 % to 1000 bar
+    # CoolProp 8.0.0, isentropic 75 %, 25 degC before every stage, equal ratios; [kWh/kg], 1 %
     piece = Compressor(pressure=high * 1e5, stages=stages, intercool=298.15, efficiency=0.75)
     results = piece.run({"inlet": stream({name: 1.0}, bar=low)}).results
-    tolerance = 0.012 if high > 700 else 0.01
-    assert results["specific_work_J_kg"] / 3.6e6 == pytest.approx(published, rel=tolerance)
+    assert results["specific_work_J_kg"] / 3.6e6 == pytest.approx(published, rel=0.01)
+
+
+def test_pin_of_the_departure_at_875_bar():
+    # CoolProp 8.0.0: hydrogen 30 to 875 bar, 4 stages, 75 %: 1.98 kWh/kg, printed with 1 %, which
+    # the gas model misses.  A pin: what it is above, by our own code
+    piece = Compressor(pressure=875e5, stages=4, intercool=298.15, efficiency=0.75)
+    results = piece.run({"inlet": stream({"H2": 1.0}, bar=30)}).results
+    departure = results["specific_work_J_kg"] / 3.6e6 / 1.98 - 1.0
+    assert departure == pytest.approx(0.0105, abs=2e-4)
 
 
 def test_methane_in_four_stages():
@@ -85,20 +91,28 @@ def test_polytropic_and_isentropic_efficiency_of_an_ideal_gas(ratio):
     assert ideal / work == pytest.approx((ratio**k - 1) / (ratio ** (k / 0.8) - 1), rel=1e-3)
 
 
-@pytest.mark.parametrize(
-    ("bar", "tolerance"), [(1.01325, 5e-3), (5, 0.011), (10, 0.017), (40, 0.036)]
-)
-def test_heat_of_raising_steam(bar, tolerance):
-    # IAPWS-IF97 by iapws 1.5.5: saturated steam from water at 25 degC.  Redlich-Kwong lets steam
-    # attract itself too little: saturated steam holds 1.0 % too much at 5 bar, 1.5 % at 10 bar and
-    # 3.5 % at 40 bar, and gives it back where it condenses; superheated by 150 K it is right
+def steam_departure(bar):
+    """Heat of raising saturated steam from water at 25 degC, over that of IAPWS-IF97 (iapws)."""
     heat = Heat(1e6, 600.0, 600.0, 600.0)
     water = stream({"H2O": 1.0}, bar=bar)
     outcome = Boiler(pressure=bar * 1e5).run({"heat": (heat,), "water": water})
     own = 1e6 / outcome.results["steam_kg_s"] / 1e3
     steam, feed = IAPWS97(P=bar / 10, x=1), IAPWS97(T=298.15, P=bar / 10)
-    assert own == pytest.approx(steam.h - feed.h, rel=tolerance)
     assert outcome.results["saturation_K"] == pytest.approx(steam.T, abs=0.02)
+    return own / (steam.h - feed.h) - 1.0
+
+
+def test_heat_of_raising_steam():
+    # IAPWS-IF97 by iapws 1.5.5: saturated steam at 1 atm from water at 25 degC, 0.5 %
+    assert steam_departure(1.01325) == pytest.approx(0.0, abs=5e-3)
+
+
+@pytest.mark.parametrize(("bar", "pin"), [(5, 0.0096), (10, 0.0146), (40, 0.0345)])
+def test_pin_of_the_departure_of_steam_under_pressure(bar, pin):
+    # IAPWS-IF97 by iapws 1.5.5; wanted is 0.5 %, which the gas model misses: Redlich-Kwong lets
+    # steam attract itself too little.  Pins: what it is above, by our own code; it gives that back
+    # where the steam condenses, and superheated by 150 K it is right
+    assert steam_departure(bar) == pytest.approx(pin, abs=2e-4)
 
 
 def test_heat_of_superheated_steam():

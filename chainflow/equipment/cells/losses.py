@@ -96,7 +96,7 @@ class VoltageCurve:
 
     def losses(self, density: float) -> Losses:
         """The voltage by its parts."""
-        raise NotImplementedError
+        raise NotImplementedError  # every cell gives its own
 
     def voltage(self, density: float) -> float:
         """The voltage [V]."""
