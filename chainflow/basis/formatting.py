@@ -51,7 +51,7 @@ def format_quantity(value: float, unit: str, *, digits: int = 4, difference: boo
         chosen = resolve("MJ/m3")
     else:
         chosen = _scaled(value, si_unit(wanted.exponents), difference)
-    return f"{_significant(chosen.from_si(value), digits)} {chosen.text}".removesuffix(" 1")
+    return f"{format_number(chosen.from_si(value), digits)} {chosen.text}".removesuffix(" 1")
 
 
 def _scaled(value: float, si: str, difference: bool) -> Unit:
@@ -64,7 +64,7 @@ def _scaled(value: float, si: str, difference: bool) -> Unit:
     return resolve(candidates[-1] if value else usual_unit(resolve(si).exponents))
 
 
-def _significant(number: float, digits: int) -> str:
+def format_number(number: float, digits: int = 4) -> str:
     """Round to significant digits, drop zeros at the end, keep exponents for extremes only."""
     rounded = float(f"{number:.{digits - 1}e}")
     if rounded == 0.0:

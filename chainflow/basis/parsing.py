@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from typing import Final
 
 from chainflow.basis.names import shorten, suggest
-from chainflow.basis.units import SYMBOLS, Unit, UnitFault, noun, resolve, usual_unit
+from chainflow.basis.units import SYMBOLS, Unit, UnitFault, is_named, noun, resolve, usual_unit
 
 LONGEST_QUANTITY: Final = 100
 SMALLEST: Final = 1e-100  # magnitude; products of smaller shares lose digits to underflow
@@ -151,6 +151,8 @@ def wanted_words(wanted: Unit) -> str:
     """Say what is wanted: "a pressure in bar or another such unit"."""
     if not any(wanted.exponents):
         return "a share, as '21 %' or 0.21"
+    if not is_named(wanted.exponents):
+        return f"a value in {wanted.text} or another such unit"
     usual = usual_unit(wanted.exponents)
     name = noun(wanted.exponents)
     return name if usual in name else f"{name} in {usual} or another such unit"

@@ -16,7 +16,7 @@ from typing import Annotated, Any, Literal, NamedTuple
 
 from pydantic_core import PydanticCustomError, core_schema
 
-from chainflow.basis.formatting import format_quantity
+from chainflow.basis.formatting import format_number, format_quantity
 from chainflow.basis.names import shorten
 from chainflow.basis.parsing import (
     LONGEST_QUANTITY,
@@ -31,7 +31,16 @@ from chainflow.basis.parsing import (
     read_number,
     wanted_words,
 )
-from chainflow.basis.units import Unit, UnitFault, convert, dimension_of, noun, resolve
+from chainflow.basis.units import (
+    Unit,
+    UnitFault,
+    convert,
+    dimension_of,
+    is_named,
+    noun,
+    resolve,
+    usual_unit,
+)
 
 __all__ = [
     "Amount",
@@ -103,17 +112,40 @@ class QuantityType:
         check_range(value, self.limits, unit, plain_number(value, self.unit))
         return value
 
+    @property
+    def is_factor(self) -> bool:
+        """Whether it is a plain number that may be above one, so that per cent would mislead."""
+        above_one = self.limits.lt is None and (self.limits.le is None or self.limits.le > 1.0)
+        return above_one and not any(resolve(self.unit).exponents)
+
     def means(self) -> str:
         """Say what is wanted, with the range: "a pressure in bar or another such unit"."""
         unit = resolve(self.unit)
         if self.difference:
             return "a temperature difference in K"
-        return wanted_words(unit)
+        return "a number" if self.is_factor else wanted_words(unit)
+
+    def shown(self, value: float) -> str:
+        """Return a value [SI] as text for people: "30 bar", "22", "0.016 m2/A"."""
+        unit = resolve(self.unit)
+        if self.is_factor:
+            return format_number(value)
+        if not any(unit.exponents) or is_named(unit.exponents):
+            return format_quantity(value, self.unit, difference=self.difference)
+        return f"{format_number(value)} {self.unit}"
 
     def described(self) -> str:
         """Return one line for help and schema: what is wanted and its range."""
-        limits = self.limits.words(resolve(self.unit))
+        limits = self.limits.words(self._usual())
         return f"{self.means()}; {limits}" if limits else self.means()
+
+    def _usual(self) -> Unit:
+        """The unit in which a reader would write the range; kelvin where it starts at zero."""
+        own = resolve(self.unit)
+        absolute = self.unit == "K" and (self.difference or 0.0 in (self.limits.gt, self.limits.ge))
+        if self.is_factor or absolute or not is_named(own.exponents):
+            return own
+        return resolve(usual_unit(own.exponents))
 
     def pattern(self) -> str:
         """Return the regular expression an editor can check; a knob may stand instead."""

@@ -214,6 +214,11 @@ def noun(exponents: Exponents) -> str:
     return named[1] if named else f"something in {_spelled(exponents)}"
 
 
+def is_named(exponents: Exponents) -> bool:
+    """Return whether there is a word for what is measured."""
+    return exponents in _names()
+
+
 def usual_unit(exponents: Exponents) -> str:
     """Return the unit a reader would write for this: "bar" for a pressure."""
     named = _names().get(exponents)

@@ -85,16 +85,24 @@ def _sentence(errors: list[Any], path: tuple[str | int, ...], model: type[BaseMo
         return _no_such_setting(str(path[-1]), _fields(model, path[:-1]))
     if len(errors) > 1:
         wanted = " or ".join(dict.fromkeys(_expected(e) for e in errors))
-        return f"{shorten(str(given))} is not possible, wanted {wanted}"
+        return f"{_found(given)}, wanted {wanted}"
     if kind == "literal_error":
-        hint = suggest(str(given), _choices(error))
-        return f"{shorten(str(given))} is not possible{hint}, wanted {error['ctx']['expected']}"
-    if isinstance(given, Mapping | list) and error["msg"].startswith("Input"):
-        found = "a list" if isinstance(given, list) else "a map"
-        return f"{found} is not possible here, wanted {_expected(error)}"
+        hint = "" if _is_tree(given) else suggest(str(given), _choices(error))
+        return f"{_found(given, hint)}, wanted {error['ctx']['expected']}"
     if error["msg"].startswith("Input"):
-        return f"{shorten(str(given))} is not possible, wanted {_expected(error)}"
+        return f"{_found(given)}, wanted {_expected(error)}"
     return str(error["msg"])
+
+
+def _is_tree(given: Any) -> bool:
+    return isinstance(given, Mapping | list)
+
+
+def _found(given: Any, hint: str = "") -> str:
+    """Say what stood there and does not do."""
+    if _is_tree(given):
+        return f"{'a list' if isinstance(given, list) else 'a map'} is not possible here"
+    return f"{shorten(str(given))} is not possible{hint}"
 
 
 def _no_such_setting(word: str, known: list[str]) -> str:

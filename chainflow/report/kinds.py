@@ -16,7 +16,7 @@ from pydantic import BaseModel
 from pydantic.fields import FieldInfo
 from pydantic_core import PydanticUndefined
 
-from chainflow.basis.quantities import QuantityType, format_quantity
+from chainflow.basis.quantities import QuantityType
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.ports import Port
 
@@ -170,8 +170,7 @@ def _default(field: FieldInfo) -> str:
         return "optional"
     marker = next(_markers(_full_type(field)), None)
     if marker is not None and isinstance(value, float):
-        shown = format_quantity(value, marker.unit, difference=marker.difference)
-        return f"default {shown}"
+        return f"default {marker.shown(value)}"
     return f"default {str(value).lower() if isinstance(value, bool) else value}"
 
 

@@ -298,7 +298,37 @@ def test_the_marker_can_be_found_on_the_model():
     (marker,) = Settings.model_fields["pressure"].metadata
     assert isinstance(marker, QuantityType)
     assert marker.unit == "Pa"
-    assert marker.described() == "a pressure in bar or another such unit; above 0 Pa"
+    assert marker.described() == "a pressure in bar or another such unit; above 0 bar"
+
+
+@pytest.mark.parametrize(
+    ("marker", "value", "shown", "takes"),
+    [
+        (measured("1", gt=1, le=30), 22.0, "22", "a number; above 1, at most 30"),
+        (
+            measured("1", ge=0, le=1),
+            0.3,
+            "30 %",
+            "a share, as '21 %' or 0.21; at least 0 %, at most 100 %",
+        ),
+        (measured("m2/A"), 0.01599, "0.01599 m2/A", "a value in m2/A or another such unit"),
+        (
+            measured("K", ge=423.15),
+            523.15,
+            "250 degC",
+            "a temperature in degC or another such unit; at least 150 degC",
+        ),
+        (
+            measured("K", gt=0),
+            523.15,
+            "250 degC",
+            "a temperature in degC or another such unit; above 0 K",
+        ),
+    ],
+)
+def test_values_and_ranges_are_shown_as_a_reader_would_write_them(marker, value, shown, takes):
+    assert marker.shown(value) == shown
+    assert marker.described() == takes
 
 
 def test_types_made_at_run_time_and_written_out_are_the_same():

@@ -420,7 +420,7 @@ def test_below_at_and_above_the_thermoneutral_voltage():
     middle = at_work(neutral).results
     assert middle["stack_heat_W"] == 0.0
     assert middle["voltage_V"] == pytest.approx(middle["thermoneutral_V"], rel=1e-12)
-    assert middle["voltage_V"] == pytest.approx(1.2867, abs=2e-3)  # own enthalpies, EL-11
+    assert middle["voltage_V"] == pytest.approx(1.2867, abs=2e-3)  # own enthalpies
     low, high = (
         at_work(
             electrolyser("solid-oxide", 800, 1, current_density=f * middle["current_density_A_m2"])
