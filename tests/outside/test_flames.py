@@ -6,6 +6,7 @@ Combustion; Smith, Van Ness, Abbott (both from memory).
 
 import pytest
 
+from chainflow.equipment.burner import Burner
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
 from chainflow.thermo.flames import flame_temperature
 from chainflow.thermo.streams import Stream
@@ -73,3 +74,12 @@ def test_methane_with_a_fifth_more_air():
 def test_dew_point_of_flue_gas(share, published):
     # CoolProp saturation at 101.325 kPa: CH4 in air, CH4 in oxygen; [degC], 0.5 K
     assert saturation_temperature(share * 101325.0) - 273.15 == pytest.approx(published, abs=0.5)
+
+
+def test_air_that_a_burner_asks_for():
+    # closed form of the printed 17.12 kg/kg and 9.52 mol/mol, air O2 + 3.76 N2: 0.3 %
+    fuel = Stream.gaseous(MATTER, MATTER.vector({"CH4": 1.0}), 298.15, 101325.0)
+    air = Stream.gaseous(MATTER, MATTER.vector({"O2": 1 / 4.76, "N2": 3.76 / 4.76}), 298.15, 101325)
+    asked = Burner().run({"fuel": (fuel,), "oxidiser": air}).drawn["oxidiser"]
+    assert asked == pytest.approx(9.52, rel=3e-3)
+    assert asked * air.mass_flow / fuel.mass_flow == pytest.approx(17.12, rel=3e-3)
