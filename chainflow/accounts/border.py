@@ -6,7 +6,7 @@ offer, so the flow of such a line is the flow of its outlet.
 
 from __future__ import annotations
 
-from chainflow.equipment.ports import Flow, Heat
+from chainflow.equipment.ports import Flow
 from chainflow.flowsheet.network import Line
 from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.streams import Stream
@@ -27,13 +27,6 @@ class Flows:
         """Return the matter on a line, or None if it carries something else."""
         flow = self.on(line)
         return flow if isinstance(flow, Stream) else None
-
-
-def rate_of(flow: Flow) -> float:
-    """Return the energy flow [W] of power, light or heat; zero for matter."""
-    if isinstance(flow, Stream):
-        return 0.0
-    return flow.rate if isinstance(flow, Heat) else float(flow)
 
 
 def leaving(solution: Solution, name: str) -> list[SolvedStream]:

@@ -10,10 +10,10 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from chainflow.accounts.border import Flows, rate_of
+from chainflow.accounts.border import Flows
 from chainflow.accounts.worth import Worth, of_heat, of_material, of_power
 from chainflow.equipment.boundary import Product
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import Heat, rate_of
 from chainflow.equipment.power import Grid, Switchboard
 from chainflow.flowsheet.network import Line
 from chainflow.solver.solution import Solution

@@ -13,12 +13,13 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 from itertools import pairwise
 
-from chainflow.accounts.border import leaving, rate_of
+from chainflow.accounts.border import leaving
 from chainflow.accounts.deliveries import Deliveries, deliveries
 from chainflow.accounts.fuel import fuel_lines, worth_of_lines
 from chainflow.accounts.purchases import Purchases, purchases
 from chainflow.accounts.worth import Worth, of_light, of_material, of_power
 from chainflow.equipment.base import Equipment
+from chainflow.equipment.ports import rate_of
 from chainflow.equipment.sunlight import Sunlight
 from chainflow.solver.solution import Solution
 from chainflow.thermo.streams import Stream

@@ -9,11 +9,11 @@ given off. The plant's border (sunlight, supply, product, vent, grid) destroys n
 
 from __future__ import annotations
 
-from chainflow.accounts.border import leaving, rate_of
+from chainflow.accounts.border import leaving
 from chainflow.accounts.purchases import topped_up
 from chainflow.basis.constants import T_REFERENCE
 from chainflow.equipment.boundary import Product, Supply, Vent
-from chainflow.equipment.ports import Flow, Heat, arriving
+from chainflow.equipment.ports import Flow, Heat, arriving, rate_of
 from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.equipment.sunlight import Sunlight

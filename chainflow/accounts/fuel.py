@@ -25,10 +25,11 @@ from __future__ import annotations
 from collections.abc import Iterator
 from dataclasses import dataclass
 
-from chainflow.accounts.border import Flows, rate_of
+from chainflow.accounts.border import Flows
 from chainflow.accounts.worth import Worth, of_material
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.boundary import Product, Supply
+from chainflow.equipment.ports import rate_of
 from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.flowsheet.network import Line

@@ -20,7 +20,16 @@ from chainflow.basis.faults import NotSolved
 from chainflow.equipment.cases import case_count, matter_of, one_case, stack_outcomes
 from chainflow.equipment.heat_needs import Duty, settle
 from chainflow.equipment.outcome import Caution, Outcome, Site
-from chainflow.equipment.ports import Feeds, Flow, Heat, Port, Role, arriving, as_number
+from chainflow.equipment.ports import (
+    Feeds,
+    Flow,
+    Heat,
+    Light,
+    Port,
+    Role,
+    arriving,
+    rate_of,
+)
 from chainflow.equipment.setting_numbers import inside, number_of, replaced, unit_at
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
@@ -215,9 +224,16 @@ def material(feeds: Feeds, port: str) -> Stream:
     return stream
 
 
+def light(feeds: Feeds, port: str = "light") -> Light:
+    """The light that arrives at an inlet."""
+    (flow,) = arriving(feeds, port)
+    assert isinstance(flow, Light)
+    return flow
+
+
 def rate(feeds: Feeds, port: str) -> float:
     """The sum [W] of the power, light or heat that arrives at an inlet."""
-    return sum(f.rate if isinstance(f, Heat) else as_number(f) for f in arriving(feeds, port))
+    return sum(rate_of(f) for f in arriving(feeds, port))
 
 
 __all__ = [
@@ -229,10 +245,12 @@ __all__ = [
     "Flow",
     "Heat",
     "Impossible",
+    "Light",
     "Outcome",
     "Port",
     "Role",
     "Site",
+    "light",
     "material",
     "rate",
 ]

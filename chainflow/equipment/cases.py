@@ -13,7 +13,7 @@ import numpy as np
 
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.outcome import Outcome
-from chainflow.equipment.ports import Feeds, Heat, arriving
+from chainflow.equipment.ports import Feeds, Heat, Light, arriving
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 
@@ -36,6 +36,8 @@ def case_count(*groups: Mapping[str, Any]) -> int | None:
                     return int(flow.gas.shape[0])
                 if isinstance(flow, np.ndarray) and flow.ndim == 1:
                     return int(flow.shape[0])
+                if isinstance(flow, Light) and flow.cases is not None:
+                    return flow.cases
     return None
 
 
@@ -47,6 +49,8 @@ def one_case(group: Mapping[str, Any], i: int) -> dict[str, Any]:
             return flow.case(i)
         if isinstance(flow, np.ndarray) and flow.ndim == 1:
             return float(flow[i])
+        if isinstance(flow, Light):
+            return flow.case(i)
         return flow
 
     return {
@@ -66,6 +70,9 @@ def _stack(values: list[Any]) -> Any:
     if isinstance(values[0], Heat):
         names = ("rate", "start", "end", "mean")
         return Heat(*(_column([getattr(v, name) for v in values]) for name in names))
+    if isinstance(values[0], Light):
+        columns = zip(*(v.numbers for v in values), strict=True)
+        return Light(*(_column(list(column)) for column in columns))
     return _column(values)
 
 

@@ -27,6 +27,7 @@ from chainflow.equipment.base import (
     Equipment,
     Flow,
     Heat,
+    Light,
     Outcome,
     Port,
     Role,
@@ -34,7 +35,7 @@ from chainflow.equipment.base import (
     material,
 )
 from chainflow.equipment.boundary import amounts
-from chainflow.equipment.ports import ANY_NAME, Feeds, arriving, as_number
+from chainflow.equipment.ports import ANY_NAME, Feeds, arriving, as_number, times
 from chainflow.equipment.shares import Shares, resolved
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
@@ -255,8 +256,7 @@ class Splitter(Equipment):
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         (inlet,) = arriving(feeds, "inlet")
         outlets: dict[str, Flow] = {
-            name: inlet.scaled(share) if isinstance(inlet, Stream | Heat) else inlet * share
-            for name, share in resolved(self.shares).items()
+            name: times(inlet, share) for name, share in resolved(self.shares).items()
         }
         return Outcome(outlets)
 
@@ -264,12 +264,15 @@ class Splitter(Equipment):
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
         (inlet,) = arriving(feeds, "inlet")
-        if isinstance(inlet, Heat):
-            return {}
-        size = len(site.matter.components) + 1 if isinstance(inlet, Stream) else 1
-        return {
-            "inlet": {name: share * np.eye(size) for name, share in resolved(self.shares).items()}
-        }
+        return {"inlet": {n: _part(inlet, share) for n, share in resolved(self.shares).items()}}
+
+
+def _part(flow: Flow, share: float) -> Array:
+    """Slopes of a share of a flow: the amount is parted, heat and light keep their state."""
+    if isinstance(flow, Stream):
+        return share * np.eye(len(flow.matter.components) + 1)
+    states = 3 if isinstance(flow, Heat) else 4 if isinstance(flow, Light) else 0
+    return np.diag([share, *[1.0] * states])
 
 
 def _streams(feeds: Feeds, port: str) -> tuple[Stream, ...]:

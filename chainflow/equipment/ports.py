@@ -1,15 +1,16 @@
 """Ports of equipment, the flows that pass them, and who sets the amount of each.
 
 Every port says who decides how much goes through it (`Role`); that is all there is to know about
-degrees of freedom.  A flow is a `Stream` of matter, a `Heat` flow, or a plain number [W] for
-electric power and light.
+degrees of freedom.  A flow is a `Stream` of matter, a `Heat` flow, `Light`, or a plain number [W]
+for electric power.
 """
 
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from enum import Enum
+from typing import Any
 
 import numpy as np
 
@@ -92,8 +93,58 @@ class Heat:
         return Heat(self.rate * factor, self.start, self.end, self.mean)
 
 
-Flow = Stream | Heat | float
+@dataclass(frozen=True, slots=True)
+class Light:
+    """Sunlight on an aperture, with the weather around it.
+
+    `rate` [W] is all that falls on the aperture and is what adds up in a balance; `irradiance`
+    [W/m2] is that in its plane, so that ``rate / irradiance`` is the aperture.  `direct` [0 to 1]
+    is the share of it that comes straight from the sun, the only part that can be concentrated.
+    `air` [K] and `wind` [m/s] say how warm what stands in it gets.  The shape of the spectrum is
+    always that of ASTM G173-03, global, whatever the irradiance.  In a batch each number may be an
+    array over the cases.
+    """
+
+    rate: float
+    irradiance: float
+    direct: float
+    air: float
+    wind: float
+
+    @property
+    def area(self) -> float:
+        """Aperture [m2] that it falls on; zero in the dark, where no rate tells it."""
+        dark = np.asarray(self.irradiance) <= 0.0
+        area = np.where(dark, 0.0, self.rate / np.where(dark, 1.0, self.irradiance))
+        return as_given(area)
+
+    def scaled(self, factor: float) -> Light:
+        """The same light on `factor` times the aperture."""
+        return replace(self, rate=self.rate * factor)
+
+    @property
+    def cases(self) -> int | None:
+        """How many cases a batch of it holds; None if it is one case alone."""
+        return next((len(x) for x in map(np.asarray, self.numbers) if x.ndim == 1), None)
+
+    def case(self, i: int) -> Light:
+        """One case of a batch; what is the same in all cases stays as it is."""
+        found = (np.asarray(x) for x in self.numbers)
+        return Light(*(float(x if x.ndim == 0 else x[i]) for x in found))
+
+    @property
+    def numbers(self) -> tuple[float, float, float, float, float]:
+        """Its five numbers in the order above."""
+        return self.rate, self.irradiance, self.direct, self.air, self.wind
+
+
+Flow = Stream | Heat | Light | float
 Feeds = Mapping[str, Flow | tuple[Flow, ...]]
+
+
+def as_given(numbers: np.ndarray) -> Any:
+    """One case as a plain number, a batch as its array."""
+    return float(numbers) if np.ndim(numbers) == 0 else numbers
 
 
 def mean_temperature(start: float, end: float) -> float:
@@ -112,6 +163,18 @@ def arriving(feeds: Feeds, port: str) -> tuple[Flow, ...]:
 
 
 def as_number(flow: Flow) -> float:
-    """A flow that is one number: power [W], light [W] or an amount [mol/s]."""
-    assert not isinstance(flow, Stream | Heat)
+    """A flow that is one number: power [W] or an amount [mol/s]."""
+    assert not isinstance(flow, Stream | Heat | Light)
     return float(flow)
+
+
+def rate_of(flow: Flow) -> float:
+    """The energy flow [W] of power, light or heat; zero for matter."""
+    if isinstance(flow, Stream):
+        return 0.0
+    return flow.rate if isinstance(flow, Heat | Light) else float(flow)
+
+
+def times(flow: Flow, factor: float) -> Flow:
+    """The same flow in `factor` times the amount."""
+    return flow.scaled(factor) if isinstance(flow, Stream | Heat | Light) else flow * factor

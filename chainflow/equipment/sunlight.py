@@ -6,14 +6,14 @@ SI throughout: light and power [W], irradiance [W/m2], area [m2].
 from __future__ import annotations
 
 from collections.abc import Mapping
-from typing import Any, ClassVar
+from typing import Annotated, Any, ClassVar
 
 import numpy as np
 from pydantic import Field
 
-from chainflow.basis.quantities import Area, Fraction, Irradiance
+from chainflow.basis.quantities import Area, Fraction, Irradiance, Temperature, measured
 from chainflow.equipment.base import Array, Duty, Equipment, Outcome, Port, Role, Site, rate
-from chainflow.equipment.ports import Feeds
+from chainflow.equipment.ports import Feeds, Light
 
 
 class Sunlight(Equipment):
@@ -28,9 +28,16 @@ class Sunlight(Equipment):
 
     irradiance: Irradiance = Field(description="irradiance in the plane of the aperture")
     aperture: Area = Field(description="area that the light falls on")
+    direct: Fraction = Field(
+        0.9,  # ASTM G173-03: direct and circumsolar 900.1 of global 1000.4 W/m2
+        description="share of the irradiance that comes straight from the sun",
+    )
+    air: Temperature = Field(298.15, description="temperature of the air around")
+    wind: Annotated[float, measured("m/s", ge=0)] = Field(1.0, description="speed of the wind")
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
-        return Outcome({"light": self.irradiance * self.aperture})
+        rate = self.irradiance * self.aperture
+        return Outcome({"light": Light(rate, self.irradiance, self.direct, self.air, self.wind)})
 
 
 class PvField(Equipment):
@@ -62,4 +69,4 @@ class PvField(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        return {"light": {"power": np.array([[self.efficiency]])}}
+        return {"light": {"power": np.array([[self.efficiency, 0.0, 0.0, 0.0, 0.0]])}}

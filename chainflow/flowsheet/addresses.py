@@ -13,7 +13,7 @@ from typing import Literal
 
 from chainflow.basis.names import shorten, suggest
 from chainflow.equipment.base import Equipment, Outcome
-from chainflow.equipment.ports import Flow, Heat
+from chainflow.equipment.ports import Flow, Heat, rate_of
 from chainflow.equipment.setting_numbers import inside, keys_inside, number_of
 from chainflow.thermo.streams import Stream
 
@@ -217,7 +217,7 @@ def property_of(flow: Flow, prop: str, argument: str) -> float:
     if isinstance(flow, Stream):
         return _of_stream(flow, prop, argument)
     if prop == "rate":
-        return flow.rate if isinstance(flow, Heat) else float(flow)
+        return rate_of(flow)
     if prop == "temperature" and isinstance(flow, Heat):
         return flow.mean
     carried = "heat" if isinstance(flow, Heat) else "power or light"

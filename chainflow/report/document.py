@@ -21,7 +21,7 @@ from chainflow.accounts.worth import of_material
 from chainflow.basis.faults import Fault, NotSolved
 from chainflow.equipment.base import Outcome
 from chainflow.equipment.heat_needs import Duty
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import Heat, Light
 from chainflow.flowsheet.network import Flowsheet
 from chainflow.solver.solution import HoldResult, Solution, SolvedStream
 from chainflow.thermo.streams import Stream
@@ -119,7 +119,14 @@ def stream_entry(stream: SolvedStream) -> Document:
         return entry | _material_entry(flow)
     if isinstance(flow, Heat):
         return entry | {"rate_W": flow.rate, "from_K": flow.start, "to_K": flow.end}
+    if isinstance(flow, Light):
+        return entry | _light_entry(flow)
     return entry | {"rate_W": flow}
+
+
+def _light_entry(light: Light) -> Document:
+    names = ("rate_W", "irradiance_W_m2", "direct", "air_K", "wind_m_s")
+    return dict(zip(names, light.numbers, strict=True))
 
 
 def _material_entry(stream: Stream) -> Document:

@@ -15,7 +15,7 @@ from chainflow.accounts.plant import PlantAccount, plant_account
 from chainflow.accounts.worth import BASES
 from chainflow.basis.formatting import format_quantity
 from chainflow.equipment.heat_needs import Duty
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import Heat, Light, rate_of
 from chainflow.report import numbers
 from chainflow.report.plain import console, encoding_of, printable
 from chainflow.solver.solution import HoldResult, Solution, SolvedStream
@@ -189,14 +189,14 @@ def _stream_table(streams: list[SolvedStream], width: int) -> Table:
     return table
 
 
-def _energy_table(streams: list[tuple[SolvedStream, Heat | float]]) -> Table:
+def _energy_table(streams: list[tuple[SolvedStream, Heat | Light | float]]) -> Table:
     table = _table("tag", "from -> to", "content", "rate", "degC", right=("tag", "rate"))
     for stream, flow in streams:
         if isinstance(flow, Heat):
             span = f"{numbers.celsius(flow.start)} to {numbers.celsius(flow.end)}"
             row = (numbers.energy(flow.rate), span)
         else:
-            row = (numbers.energy(flow), "")
+            row = (numbers.energy(rate_of(flow)), "")
         table.add_row(str(stream.tag), _ends(stream), stream.content, *row)
     return table
 

@@ -9,11 +9,10 @@ import numpy as np
 
 from chainflow.equipment.base import Outcome
 from chainflow.equipment.boundary import Product, Supply, Vent
-from chainflow.equipment.ports import Flow, Heat
+from chainflow.equipment.ports import Flow, Light, rate_of
 from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.equipment.sunlight import Sunlight
-from chainflow.flowsheet.network import Flowsheet
 from chainflow.solver.finishing import Finish, arriving_whole
 from chainflow.solver.solution import Balance
 from chainflow.thermo.streams import Stream
@@ -80,21 +79,20 @@ def _energy(finish: Finish, name: str) -> tuple[float, float]:
     outcome = finish.outcomes[name]
     inward = outlet = size = 0.0
     for flow in _inflows(finish, name):
-        amount = _stream_energy(flow, finish.flowsheet, name)
+        amount = _stream_energy(flow)
         inward, size = inward + amount, size + abs(amount)
     for flow in outcome.outlets.values():
-        if isinstance(flow, Stream):
-            outlet, size = outlet + float(flow.enthalpy), size + abs(float(flow.enthalpy))
+        amount = _stream_energy(flow)
+        outlet, size = outlet + amount, size + abs(amount)
     size += abs(outcome.power) + sum(abs(d.heat) for d in outcome.duties)
     return inward + outcome.heat + outcome.power - outlet - _passing(finish, name), size
 
 
-def _stream_energy(flow: Flow, flowsheet: Flowsheet, name: str) -> float:
-    """Enthalpy of matter, and light that is turned into something else here."""
+def _stream_energy(flow: Flow) -> float:
+    """Enthalpy of matter, and light."""
     if isinstance(flow, Stream):
         return float(flow.enthalpy)
-    takes_light = any(line.content == "light" for line in flowsheet.into(name))
-    return float(flow) if isinstance(flow, float) and takes_light else 0.0
+    return flow.rate if isinstance(flow, Light) else 0.0
 
 
 def _passing(finish: Finish, name: str) -> float:
@@ -106,15 +104,9 @@ def _passing(finish: Finish, name: str) -> float:
         or finish.flowsheet.equipment[name].kind not in ("splitter", "switchboard", "heat-network")
     ):
         return 0.0
-    inward = sum(_rate(f) for f in arriving_whole(finish.feeds, name))
-    outward = sum(_rate(f) for f in outcome.outlets.values())
+    inward = sum(rate_of(f) for f in arriving_whole(finish.feeds, name))
+    outward = sum(rate_of(f) for f in outcome.outlets.values())
     return outward - inward
-
-
-def _rate(flow: Flow) -> float:
-    if isinstance(flow, Stream):
-        return 0.0
-    return flow.rate if isinstance(flow, Heat) else float(flow)
 
 
 def _plant(finish: Finish, atom_size: float, energy_size: float) -> tuple[float, float]:
@@ -126,7 +118,7 @@ def _plant(finish: Finish, atom_size: float, energy_size: float) -> tuple[float,
             these = formula @ flow.flows
             atoms, energy = atoms + sign * these, energy + sign * float(flow.enthalpy)
         else:
-            energy += sign * _rate(flow)
+            energy += sign * rate_of(flow)
     for name, outcome in finish.outcomes.items():
         if isinstance(flowsheet.equipment[name], _BOUNDARY):
             continue

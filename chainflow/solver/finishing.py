@@ -8,7 +8,7 @@ from collections.abc import Mapping
 import networkx as nx
 
 from chainflow.equipment.base import Equipment, Outcome
-from chainflow.equipment.ports import Feeds, Flow, Heat, Role
+from chainflow.equipment.ports import Feeds, Flow, Heat, Light, Role, rate_of
 from chainflow.flowsheet.network import Flowsheet, Line
 from chainflow.solver.nodes import EquipmentStep, Source, Values, outside_the_data
 from chainflow.solver.program import Program, amount_key, site_of
@@ -114,15 +114,11 @@ class Finish:
     def _streams(self) -> tuple[SolvedStream, ...]:
         found = []
         for name in flow_order(self.flowsheet):
-            piece = self.flowsheet.equipment[name]
             for outlet, flow in self.outcomes[name].outlets.items():
                 lines = self.flowsheet.line_from(name, outlet)
                 if not lines and not _flows(flow):
                     continue
-                port = piece.port(outlet, inlet=False)
-                content = (
-                    lines[0].content if lines else _content(flow, port.content if port else "power")
-                )
+                content = lines[0].content if lines else _content(flow)
                 found.append((name, outlet, tuple(line.end for line in lines), content, flow))
         return tuple(SolvedStream(tag, *parts) for tag, parts in enumerate(found, start=1))
 
@@ -156,19 +152,14 @@ def flow_order(flowsheet: Flowsheet) -> list[str]:
 def _flows(flow: Flow) -> bool:
     if isinstance(flow, Stream):
         return float(flow.total) > 0.0
-    return (flow.rate if isinstance(flow, Heat) else flow) != 0.0
+    return rate_of(flow) != 0.0
 
 
-def _content(flow: Flow, declared: str) -> str:
-    if isinstance(flow, Stream):
-        return "material"
-    return (
-        "heat"
-        if isinstance(flow, Heat)
-        else declared
-        if declared in ("power", "light")
-        else "power"
-    )
+def _content(flow: Flow) -> str:
+    for cls, content in ((Stream, "material"), (Heat, "heat"), (Light, "light")):
+        if isinstance(flow, cls):
+            return content
+    return "power"
 
 
 def arriving_whole(feeds: Mapping[str, Feeds], name: str) -> list[Flow]:

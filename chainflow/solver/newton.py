@@ -12,7 +12,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from chainflow.basis.faults import NotSolved
-from chainflow.equipment.ports import Flow, as_number
+from chainflow.equipment.ports import Flow, Light, as_number, rate_of
 from chainflow.solver.damping import damped
 from chainflow.solver.holding import Holding
 from chainflow.solver.linear import Linear, Singular
@@ -148,7 +148,7 @@ class Newton:
             elif variable.form == "matter":
                 torn[key] = Stream.empty(self.matter, pressure=variable.pressure)
             else:
-                torn[key] = variable.unpack(np.zeros(variable.size), self.matter)
+                torn[key] = variable.unpack(variable.idle, self.matter)
         return torn
 
     def _supply_of(self, key: str) -> float:
@@ -294,9 +294,9 @@ class Newton:
             (float(v.total) for v in values.values() if isinstance(v, Stream)), default=0.0
         )
         numbers = [
-            abs(float(v))
+            abs(rate_of(v))
             for k, v in values.items()
-            if isinstance(v, float)
+            if isinstance(v, float | Light)
             and k in self.variables
             and self.variables[k].content in ("power", "light", "heat")
         ]

@@ -17,7 +17,7 @@ import numpy as np
 from chainflow.basis.faults import NotSolved
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.junctions import joined
-from chainflow.equipment.ports import ANY_NAME, Flow, Heat, as_number
+from chainflow.equipment.ports import ANY_NAME, Flow, Heat, Light, rate_of, times
 from chainflow.solver.variables import ENTHALPY_SCALE, Variable
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
@@ -43,7 +43,7 @@ class Source:
             return flow
         factor = self.amount.of(values)
         assert isinstance(factor, float)
-        return _times(flow, factor)
+        return times(flow, factor)
 
     @property
     def keys(self) -> tuple[str, ...]:
@@ -345,11 +345,11 @@ class ThroughAmountStep(ThroughStep):
         outcome = self.operate(values)
         factor, _ = self._factor(values, outcome)
         written: Values = {
-            key: _times(outcome.outlets[port], factor) for port, key in self.outlets.items()
+            key: times(outcome.outlets[port], factor) for port, key in self.outlets.items()
         }
         for port, key in self.drawn.items():
             whole = port == self.main_inlet
-            written[key] = factor if whole else _times(outcome.drawn[port], factor)
+            written[key] = factor if whole else times(outcome.drawn[port], factor)
         return written
 
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:
@@ -392,7 +392,7 @@ def _full(value: Flow) -> np.ndarray:
         return np.append(value.flows, value.enthalpy)
     if isinstance(value, Heat):
         return np.array([value.rate, value.start, value.end, value.mean])
-    return np.array([float(value)])
+    return np.array(value.numbers if isinstance(value, Light) else [float(value)])
 
 
 @dataclass
@@ -418,13 +418,9 @@ def outside_the_data(name: str, problem: StateError) -> NotSolved:
     return NotSolved("outside-the-data", f"{name}: {problem}", {"equipment": name})
 
 
-def _times(flow: Flow, factor: float) -> Flow:
-    return flow.scaled(factor) if isinstance(flow, Stream | Heat) else flow * factor
-
-
 def _added(amounts: list[Flow]) -> Heat | float:
     heats = [a for a in amounts if isinstance(a, Heat)]
-    return Heat.total(heats) if heats else sum(as_number(a) for a in amounts)
+    return Heat.total(heats) if heats else sum(rate_of(a) for a in amounts)
 
 
 __all__ = [

@@ -69,7 +69,7 @@ def _loops(graph: nx.DiGraph) -> list[list[str]]:
 def _weights(program: Program, graph: nx.DiGraph) -> dict[str, float]:
     weights = {}
     for number, (key, variable) in enumerate(program.variables.items()):
-        size = 1000.0 if variable.form == "heat" else float(variable.size)  # heat has levels too
+        size = 1000.0 if variable.form in ("heat", "light") else float(variable.size)  # levels too
         bonus = _RATE_BONUS if variable.rate else 0.0
         weights[key] = size - bonus + _FILE_ORDER * number
     return {key: weights[key] for key in graph.nodes}

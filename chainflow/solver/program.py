@@ -30,7 +30,7 @@ from chainflow.solver.nodes import (
     outside_the_data,
 )
 from chainflow.solver.pressures import Pressures
-from chainflow.solver.variables import Variable
+from chainflow.solver.variables import FORMS, Variable
 from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
@@ -127,7 +127,7 @@ class _Builder:
         return self._outlet_variable(line.source, line.outlet, line.content)
 
     def _outlet_variable(self, name: str, outlet: str, content: str) -> str:
-        form = {"material": "matter", "heat": "heat"}.get(content, "number")
+        form = FORMS.get(content, "number")
         rate = isinstance(self.flowsheet.equipment[name], Switchboard) and outlet == "rest"
         return self._variable(f"{name}.{outlet}", form, name, outlet, content=content, rate=rate)
 

@@ -7,7 +7,7 @@ from contextlib import contextmanager
 from dataclasses import dataclass, replace
 
 from chainflow.basis.faults import Fault, NotSolved
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import rate_of
 from chainflow.equipment.power import Switchboard
 from chainflow.flowsheet.network import Flowsheet, Hold
 from chainflow.solver.audit import audit
@@ -252,9 +252,7 @@ class Prepared:
 
 def _numbers(flows: object) -> list[float]:
     parts = flows if isinstance(flows, tuple) else (flows,)
-    return [
-        f.rate if isinstance(f, Heat) else float(f) for f in parts if isinstance(f, float | Heat)
-    ]
+    return [rate_of(f) for f in parts if not isinstance(f, Stream)]
 
 
 def _number(closed: Closed, key: str) -> float:

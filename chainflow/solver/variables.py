@@ -2,7 +2,7 @@
 
 A variable is one node of the graph of information.  Matter is ``[n_i of the species that can be
 there, H]``, so it is linear under mixing and splitting; its pressure is known.  Heat is
-``[W, start, end, mean]``, power, light and amounts are one number.
+``[W, start, end, mean]``, light ``[W, W/m2, direct, air, wind]``, power and amounts are one number.
 """
 
 from __future__ import annotations
@@ -11,11 +11,14 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from chainflow.equipment.ports import Flow, Heat
+from chainflow.basis.constants import T_REFERENCE
+from chainflow.equipment.ports import Flow, Heat, Light, as_number
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 
 ENTHALPY_SCALE = 1e5  # [J/mol], the size of a molar enthalpy
+FORMS = {"material": "matter", "heat": "heat", "light": "light"}  # by content; else one number
+_SIZES = {"heat": 4, "light": 5}
 
 
 @dataclass(frozen=True, slots=True)
@@ -23,7 +26,7 @@ class Variable:
     """One unknown of the graph of information."""
 
     key: str
-    form: str  # "matter", "heat" or "number"
+    form: str  # "matter", "heat", "light" or "number"
     places: np.ndarray | None = None  # component indices of the species that can be there
     pressure: float = 0.0  # [Pa]
     content: str = "material"  # what the number is about: material, power, heat, light, setting
@@ -35,7 +38,7 @@ class Variable:
         if self.form == "matter":
             assert self.places is not None
             return len(self.places) + 1
-        return 4 if self.form == "heat" else 1
+        return _SIZES.get(self.form, 1)
 
     def rows(self, matter: Matter) -> np.ndarray:
         """Rows of this variable in a full vector ``[n_1..n_C, H]``."""
@@ -51,7 +54,16 @@ class Variable:
             return np.append(flows, value.enthalpy)
         if isinstance(value, Heat):
             return np.array([value.rate, value.start, value.end, value.mean])
-        return np.array([float(value)])
+        if isinstance(value, Light):
+            return np.array(value.numbers)
+        return np.array([as_number(value)])
+
+    @property
+    def idle(self) -> np.ndarray:
+        """Its numbers while nothing flows; light that does not shine leaves the air warm."""
+        if self.form == "light":
+            return np.array([0.0, 0.0, 0.0, T_REFERENCE, 0.0])
+        return np.zeros(self.size)
 
     def unpack(self, numbers: np.ndarray, matter: Matter, guess: float | None = None) -> Flow:
         """The value behind this variable's numbers; StateError if no temperature fits."""
@@ -59,6 +71,8 @@ class Variable:
             return float(numbers[0])
         if self.form == "heat":
             return Heat(*(float(x) for x in numbers))
+        if self.form == "light":
+            return Light(*(float(x) for x in numbers))
         flows = np.zeros(len(matter.components))
         flows[self.places] = numbers[:-1]
         return Stream.from_enthalpy(matter, flows, float(numbers[-1]), self.pressure, guess)

@@ -21,7 +21,7 @@ PLANTS = {
 def test_destroyed_exergy_is_what_enters_the_plant_and_does_not_leave(text):
     solution = solved(text)
     pieces = solution.flowsheet.equipment
-    light = sum(s.flow for s in solution.streams if s.content == "light")
+    light = sum(s.flow.rate for s in solution.streams if s.content == "light")
     bought = purchases(solution)
     cold = sum(duty.heat * (1 - 298.15 / duty.mean) for _, duty in bought.cold)
     entering = of_light(light).exergy + bought.worth.exergy + cold

@@ -5,6 +5,7 @@ from tests.equipment.feeds import (
     FUEL,
     HOT,
     HYDROGEN,
+    NOON,
     PRODUCT,
     SYNTHESIS,
     WATER,
@@ -25,7 +26,7 @@ def boundary(add):
     add("air, mass flow", "supply", {**air, "flow": "100 kg/h"}, extensive=(("flow",),))
     add("air, normal volume", "supply", {**air, "flow": "50 Nm3/h"}, extensive=(("flow",),))
     for kind in ("product", "vent"):
-        add("gas, power and heat", kind, {}, {"inlet": (FUEL, 3e5, HOT)})
+        add("gas, power and heat", kind, {}, {"inlet": (FUEL, 3e5, HOT, NOON)})
         add("liquid water", kind, {}, {"inlet": (WATER,)})
 
 
@@ -42,8 +43,8 @@ def power(add):
         {"irradiance": "0 W/m2", "aperture": "600 m2"},
         extensive=(("aperture",),),
     )
-    add("20 %", "pv-field", {"efficiency": "20 %"}, {"light": 5e5})
-    add("all of it", "pv-field", {"efficiency": 1}, {"light": 5e5})
+    add("20 %", "pv-field", {"efficiency": "20 %"}, {"light": NOON})
+    add("all of it", "pv-field", {"efficiency": 1}, {"light": NOON})
     served = {"pump": 2e3, "press": 5e4}
     add("with a rest", "switchboard", {}, {"supply": (1e5, 2e4)}, served, outlets=("rest",))
     add("short, nothing behind it", "switchboard", {}, {"supply": (1e4,)}, served)
@@ -171,3 +172,4 @@ def junctions(add):
     )
     add("power", "splitter", shares, {"inlet": 3e5})
     add("heat", "splitter", shares, {"inlet": HOT})
+    add("light", "splitter", shares, {"inlet": NOON})

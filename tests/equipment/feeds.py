@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import Heat, Light, rate_of, times
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
 from chainflow.thermo.streams import Stream
 
@@ -37,6 +37,7 @@ PRODUCT = stream({"CH4": 1.0, "H2O": 2.0, "H2": 0.2, "CO2": 0.05, "N2": 0.02}, 3
 FLUE = stream({"CO2": 6.5, "H2O": 3.0, "O2": 0.1, "CO": 0.01, "N2": 0.05}, 1400.0, 1.2)
 HOT = Heat(8e4, 900.0, 500.0, 680.0)
 WARM = Heat(3e4, 420.0, 350.0, 384.0)
+NOON = Light(5e5, 900.0, 0.85, 293.15, 2.0)
 
 
 def numbers(flow):
@@ -45,16 +46,16 @@ def numbers(flow):
         return np.concatenate([flow.flows, [flow.enthalpy, flow.temperature, flow.pressure]])
     if isinstance(flow, Heat):
         return np.array([flow.rate, flow.start, flow.end, flow.mean])
-    return np.array([float(flow)])
+    return np.array(flow.numbers if isinstance(flow, Light) else [float(flow)])
 
 
 def rate(flow):
     """What heat, power or light carries [W]; matter carries none of them."""
-    return flow.rate if isinstance(flow, Heat) else 0.0 if isinstance(flow, Stream) else flow
+    return rate_of(flow)
 
 
 def enlarged(flow, factor):
     """The same flow in another amount."""
     if isinstance(flow, tuple):
         return tuple(enlarged(part, factor) for part in flow)
-    return flow.scaled(factor) if isinstance(flow, Stream | Heat) else flow * factor
+    return times(flow, factor)

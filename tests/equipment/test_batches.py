@@ -3,7 +3,7 @@
 import numpy as np
 import pytest
 
-from chainflow.equipment.ports import Heat, arriving
+from chainflow.equipment.ports import Heat, Light, arriving, times
 from chainflow.thermo.streams import Stream
 from tests.equipment.cases import CASES, named
 from tests.equipment.feeds import enlarged, numbers, rate
@@ -17,13 +17,15 @@ def in_cases(flow):
         return tuple(in_cases(part) for part in flow)
     if isinstance(flow, Stream):
         return Stream.stack([flow.scaled(size) for size in SIZES])
-    return flow if isinstance(flow, Heat) else flow * SIZES
+    return flow if isinstance(flow, Heat) else times(flow, SIZES)
 
 
 def one_case(flow, place):
     if isinstance(flow, tuple):
         return tuple(one_case(part, place) for part in flow)
     if isinstance(flow, Stream):
+        return flow.case(place)
+    if isinstance(flow, Light):
         return flow.case(place)
     return flow if isinstance(flow, Heat) else float(flow[place])
 
@@ -72,7 +74,7 @@ def _picked(flow, place):
     if isinstance(flow, Heat):
         parts = (flow.rate, flow.start, flow.end, flow.mean)
         return Heat(*(float(np.broadcast_to(part, 3)[place]) for part in parts))
-    return float(np.broadcast_to(flow, 3)[place])
+    return flow.case(place) if isinstance(flow, Light) else float(np.broadcast_to(flow, 3)[place])
 
 
 @named([case for case in CASES if len(everything(case)) > len(case.feeds)])

@@ -3,9 +3,10 @@
 import numpy as np
 import pytest
 
-from chainflow.equipment.ports import ANY_NAME, Heat, arriving
+from chainflow.equipment.ports import ANY_NAME, Heat, Light, arriving
 from chainflow.thermo.streams import Stream
 from tests.equipment.cases import CASES
+from tests.equipment.feeds import numbers
 
 ENTHALPY = 1e5  # [J/mol], the size of a molar enthalpy
 STEP = 2e-5  # of a stream's total
@@ -14,6 +15,10 @@ SLOPES = 2e-6  # central differences: truncation about STEP^2, noise about 1e-12
 
 def shifted(flow, place, size):
     """A flow with one of its numbers moved: a component's flow, the enthalpy, or the amount."""
+    if isinstance(flow, Heat | Light):
+        parts = numbers(flow)
+        parts[place] += size
+        return type(flow)(*parts.tolist())
     if not isinstance(flow, Stream):
         return flow + size
     flows, enthalpy = flow.flows.copy(), flow.enthalpy
@@ -38,9 +43,7 @@ def outputs(case, feeds, asked, equipment):
 def _vector(flow):
     if isinstance(flow, Stream):
         return np.append(flow.flows, flow.enthalpy / ENTHALPY)
-    if isinstance(flow, Heat):
-        return np.array([flow.rate, flow.start, flow.end, flow.mean])
-    return np.array([flow])
+    return numbers(flow)
 
 
 def moved(case, label, place, size, settled):
@@ -83,7 +86,7 @@ def _value(case, label, place):
     flow = _input(case, label)
     if isinstance(flow, Stream):
         return flow.flows[place] if place < len(flow.flows) else np.inf
-    return flow
+    return numbers(flow)[place]
 
 
 def inputs_with_slopes():
@@ -125,7 +128,7 @@ def _columns(flow, case):
     logarithm of its amount, and the first bubble in a liquid is a new phase.
     """
     if not isinstance(flow, Stream):
-        return {0: (1.0, abs(float(flow)))}
+        return {place: (1.0, abs(value)) for place, value in enumerate(numbers(flow))}
     atoms = flow.matter.formula
     there = (atoms @ flow.flows > 0.0) & flow.gas.any()
     columns = {

@@ -8,6 +8,7 @@ from typing import Any
 
 from ruamel.yaml import YAML
 
+from chainflow.equipment.ports import rate_of
 from chainflow.flowsheet.building import read_text
 from chainflow.solver.solution import Solution
 from chainflow.solver.solve import solve_flowsheet
@@ -50,9 +51,7 @@ def flow(solution: Solution, key: str) -> Stream:
 
 def rate(solution: Solution, key: str) -> float:
     """Return the power or light [W] that leaves a port."""
-    found = solution.stream(key).flow
-    assert isinstance(found, float)
-    return found
+    return rate_of(solution.stream(key).flow)
 
 
 def numbers(solution: Solution) -> dict[str, list[float]]:

@@ -78,6 +78,10 @@ def test_power_light_and_heat_streams():
         "to": "field.light",
         "content": "light",
         "rate_W": 5.1e7,
+        "irradiance_W_m2": 850.0,
+        "direct": 0.9,
+        "air_K": 298.15,
+        "wind_m_s": 1.0,
     }
     assert found["field.power"]["rate_W"] == pytest.approx(1.02e7, rel=1e-14)
     heat = found["boiler.heat"]
