@@ -5,7 +5,6 @@ SI throughout: flows [mol/s], temperature [K], pressure [Pa], heat [W].
 
 from __future__ import annotations
 
-import re
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import replace
 from typing import Annotated, Any, ClassVar
@@ -33,13 +32,12 @@ from chainflow.equipment.parting import free_separation, minimum_work, worth_of
 from chainflow.equipment.ports import ANY_NAME, Feeds
 from chainflow.equipment.pressures import lower_feed
 from chainflow.equipment.separation import condensate, phase_blocks
+from chainflow.thermo.chains import carbon_range
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
 from chainflow.thermo.three_phases import Split
 
 REST = "rest"
-_RANGE = re.compile(r"^C(\d{1,2})(?:-C(\d{1,2})|(\+))?$")
-_NO_END = 10**6
 
 
 class FlashDrum(Equipment):
@@ -156,33 +154,14 @@ def _apart(held: Stream, matter: Matter) -> tuple[Stream, Stream, Stream]:
 
 
 def _readable(text: str) -> str:
-    if _RANGE.match(text) is None:
-        raise PydanticCustomError(
-            "carbon-range",
-            "'{text}' is no range of carbon numbers, wanted C5-C9, C21+ or C12",
-            {"text": text[:40]},
-        )
-    first, last = carbon_range(text)
-    if first > last or first < 1:
-        raise PydanticCustomError(
-            "carbon-range",
-            "'{text}' ends before it begins: write the smaller number first, as C5-C9",
-            {"text": text},
-        )
+    try:
+        carbon_range(text)
+    except ValueError as problem:
+        raise PydanticCustomError("carbon-range", "{text}", {"text": str(problem)}) from None
     return text
 
 
 CarbonRange = Annotated[str, AfterValidator(_readable)]
-
-
-def carbon_range(text: str) -> tuple[int, int]:
-    """First and last carbon number of a range: C5-C9, C21+, C12."""
-    match = _RANGE.match(text)
-    assert match is not None
-    first = int(match[1])
-    if match[3]:
-        return first, _NO_END
-    return first, int(match[2]) if match[2] else first
 
 
 class Cut(Equipment):

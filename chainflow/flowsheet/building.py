@@ -20,6 +20,7 @@ from chainflow.equipment.base import Equipment
 from chainflow.equipment.register import kinds
 from chainflow.flowsheet import lines as line_texts
 from chainflow.flowsheet import roles
+from chainflow.flowsheet.component_list import component_names
 from chainflow.flowsheet.holds import HoldReader
 from chainflow.flowsheet.messages import bare, complaints
 from chainflow.flowsheet.network import Flowsheet, Line
@@ -39,7 +40,6 @@ from chainflow.thermo.components import (
     DEFAULT_COMPONENTS,
     Matter,
     known_components,
-    known_in_words,
 )
 
 _TOP = ("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds")
@@ -216,26 +216,12 @@ class _Builder:
         if not isinstance(node, Sequence):
             self.fault(
                 "wrong-value",
-                "components: wanted a list such as [H2, O2, H2O, CO2, CH4]",
+                "components: wanted a list such as [H2, O2, H2O, CO2, CH4] or [CO, C1-C30, wax]",
                 node.place,
             )
             return None
-        names: list[str] = []
-        known = known_components()
-        for item in node.items:
-            name = item.value if isinstance(item, Text) else None
-            if name not in known:
-                self.fault(
-                    "unknown-component",
-                    f"components: there is no component {shorten(str(name))}"
-                    f"{suggest(str(name), known)}; known: {known_in_words()}",
-                    item.place,
-                )
-            elif name in names:
-                self.fault("duplicate-component", f"components: '{name}' stands twice", item.place)
-            else:
-                names.append(str(name))
-        return tuple(names) if names and not self.faults else None
+        names = component_names(node, self.faults)
+        return names if names and not self.faults else None
 
     def _knob_texts(self) -> dict[str, str]:
         node = self.root.get("knobs")

@@ -17,6 +17,7 @@ from chainflow.thermo.components import known_components
 
 DIALECT = "https://json-schema.org/draft/2020-12/schema"
 _KNOB = {"type": "string", "pattern": rf"^\${NAME_PATTERN}$", "description": "a knob"}
+_CHAINS = r"^C[0-9]{1,2}(-C[0-9]{1,2}|\+)?=?$"  # C1-C30, C21+, C2-C20=
 _NAME_KEYS = {"pattern": f"^{NAME_PATTERN}$"}
 
 
@@ -36,7 +37,7 @@ def json_schema() -> dict[str, Any]:
             "ambient": _or_knob(_quantity("K", "temperature of the surroundings (25 degC)")),
             "components": {
                 "type": "array",
-                "items": {"enum": list(known_components())},
+                "items": {"anyOf": [{"enum": list(known_components())}, {"pattern": _CHAINS}]},
                 "uniqueItems": True,
             },
             "knobs": {"type": "object", "propertyNames": _NAME_KEYS},

@@ -3,8 +3,12 @@
 Names of the n-alkanes C1 to C30, the 1-alkenes C2 to C20 and the wax, which stands for all longer
 chains and counts as n-C40H82: 40 is the mean length of what is longer than C30 at a chain growth
 of 0.90. No data here: they stand in ``species.yaml`` and ``hydrocarbons.yaml``.
+
+Several at once are written by their carbon numbers: ``C5-C9`` and ``C12`` are n-alkanes, ``C21+``
+all of them from there on and the wax, ``C2-C20=`` 1-alkenes (the trade's mark for a double bond).
 """
 
+import re
 from functools import cache
 
 LONGEST_ALKANE = 30
@@ -39,3 +43,47 @@ def hydrocarbons() -> tuple[str, ...]:
 
 
 HYDROCARBONS = frozenset(hydrocarbons())
+
+
+_RANGE = re.compile(r"^C(\d{1,2})(?:-C(\d{1,2})|(\+))?$")
+_NO_END = 10**6
+
+
+def carbon_range(text: str) -> tuple[int, int]:
+    """Return the first and last carbon number of a range: C5-C9, C21+, C12.
+
+    Raises ValueError, in a sentence, if it is none.
+    """
+    match = _RANGE.match(text)
+    if match is None:
+        raise ValueError(f"'{text[:40]}' is no range of carbon numbers, wanted C5-C9, C21+ or C12")
+    first = int(match[1])
+    last = _NO_END if match[3] else int(match[2] or first)
+    if first > last or first < 1:
+        raise ValueError(
+            f"'{text}' ends before it begins: write the smaller number first, as C5-C9"
+        )
+    return first, last
+
+
+def chains_in(text: str) -> tuple[str, ...] | None:
+    """Return the components that a range stands for, or None if the text is not written as one.
+
+    ``C1-C30`` are n-alkanes, ``C2-C20=`` 1-alkenes, ``C5+`` n-alkanes and the wax.  Raises
+    ValueError, in a sentence, if there are no such chains.
+    """
+    plain = text.removesuffix("=")
+    if _RANGE.match(plain) is None:
+        return None
+    double = plain != text
+    first, last = carbon_range(plain)
+    least, most = (2, LONGEST_ALKENE) if double else (1, LONGEST_ALKANE)
+    open_end = last == _NO_END
+    last = most if open_end else last
+    if first < least or max(first, last) > most:
+        kind = "1-alkenes" if double else "n-alkanes"
+        raise ValueError(
+            f"'{text}': {kind} go from C{least} to C{most}, and '{WAX}' is all longer chains"
+        )
+    name = alkene if double else alkane
+    return (*map(name, range(first, last + 1)), *((WAX,) if open_end and not double else ()))

@@ -7,6 +7,7 @@ import pytest
 
 from chainflow.basis.faults import FileFault, FlowsheetFault, UsageFault
 from chainflow.flowsheet.building import read_flowsheet, read_text
+from chainflow.thermo.chains import chains_in
 from chainflow.thermo.components import DEFAULT_COMPONENTS
 
 METHANE = """\
@@ -54,6 +55,15 @@ def test_the_small_entries():
     assert sheet.matter.components == sheet.components
     assert sheet.sha256 == hashlib.sha256(METHANE.encode()).hexdigest()
     assert list(sheet.equipment) == ["gas", "more", "mix", "reactor", "dry", "town"]
+
+
+def test_many_chains_are_written_by_their_carbon_numbers():
+    plain = METHANE.replace("CO2, CH4]", "CO2, CH4, C2H6, C3H8, n-C4H10, n-C5H12, C2H4, C3H6, wax]")
+    short = METHANE.replace("CO2, CH4]", "CO2, C1-C5, C2-C3=, wax]")
+    assert read_text(short).components == read_text(plain).components
+    assert chains_in("C29+") == ("n-C29H60", "n-C30H62", "wax")
+    assert chains_in("C20=") == ("1-C20H40",)
+    assert chains_in("CH4") is None
 
 
 def test_settings_are_si_inside():
