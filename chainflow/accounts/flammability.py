@@ -39,6 +39,7 @@ LIMITS = {
 }
 UNKNOWN_FUEL = Limits(0.014, 0.05)  # the worst of the others, for fuels without data
 ALARM_SHARE = 0.5  # of the limits; alarms at half the lower limit are common practice, no source
+NO_GAS = 1e-9  # of a stream: what a solver leaves of gases in a liquid is no hazard
 
 
 @dataclass(frozen=True, slots=True)
@@ -62,9 +63,9 @@ class Mixture:
 
 
 def gas_mixture(stream: Stream) -> Mixture:
-    """Return fuel, oxygen and limits of the gas in a stream."""
+    """Return fuel, oxygen and limits of the gas in a stream; none if it is next to nothing."""
     total = float(stream.gas.sum())
-    if total <= 0.0:
+    if total <= NO_GAS * float(stream.total):
         return Mixture(0.0, 0.0, 1.0, 1.0)
     matter = stream.matter
     shares = dict(zip(matter.components, (stream.gas / total).tolist(), strict=True))

@@ -11,7 +11,7 @@ from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from typing import NamedTuple
 
-from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, Mixture, gas_mixture
+from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, NO_GAS, Mixture, gas_mixture
 from chainflow.basis.constants import ICE_POINT
 from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.densities import liquefying
@@ -109,9 +109,9 @@ def _listed(found: list[tuple[SolvedStream, Finding]]) -> str:
 
 
 def _shares(stream: Stream) -> dict[str, float]:
-    """Return the mole fractions of the gas; empty if there is none."""
+    """Return the mole fractions of the gas; empty if there is next to none."""
     total = float(stream.gas.sum())
-    if total <= 0.0:
+    if total <= NO_GAS * float(stream.total):
         return {}
     pairs = zip(stream.matter.components, stream.gas.tolist(), strict=True)
     return {name: flow / total for name, flow in pairs if flow > 0.0}
@@ -184,6 +184,8 @@ def _hot_hydrogen(stream: Stream) -> Finding | None:
 
 def _liquid_expected(stream: Stream) -> Finding | None:
     level, pressure, shares = float(stream.temperature), float(stream.pressure), _shares(stream)
+    if not shares:
+        return None
     oil = stream.matter.oil  # what can condense as oil has done so already
     found = liquefying(stream.matter, stream.gas, level, pressure)
     names = [name for name in found if oil is None or name not in oil.names]
