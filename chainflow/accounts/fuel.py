@@ -13,6 +13,8 @@ part, and the cut between them is found from the graph:
   maker. So hydrogen that is burnt to run the plant's own electrolyser is not fuel made.
 * A store whose surplus has no line keeps the fuel: that is a use too, though nothing is delivered.
 * A line is *final* if it reaches a use and no maker.
+* What a use leaves of its fuel and gets back again (fuel cells whose spent fuel is led to their
+  inlet) is no fuel line: it was counted when it came.
 
 *Fuel made* is what passes the final lines that leave the making part: their sender is a maker, or
 also gets fuel lines that are not final, or gets none. What a supply sends is bought, not made.
@@ -76,6 +78,8 @@ class _Search:
         self.flowsheet = solution.flowsheet
         flows = Flows(solution)
         self.fuel = [line for line in self.flowsheet.lines if _is_fuel(flows, line)]
+        again = self._going_back()
+        self.fuel = [line for line in self.fuel if line.number not in again]
         self.final = [line for line in self.fuel if self._is_final(line)]
 
     def made(self) -> list[Line]:
@@ -90,6 +94,37 @@ class _Search:
                 origin = self._stored(line, frozenset())
                 kept |= {found.number: found for found in origin or (line,)}
         return list(kept.values())
+
+    def _going_back(self) -> set[int]:
+        """Numbers of the lines with what uses leave of their fuel and get back."""
+        found = {
+            line.number
+            for line in self.fuel
+            if self._is_use(line.source) and self._reaches(line, line.source)
+        }
+        more = found
+        while more:
+            more = {line.number for line in self.fuel if self._goes_on(line, found)} - found
+            found |= more
+        return found
+
+    def _goes_on(self, line: Line, before: set[int]) -> bool:
+        """Whether a line passes on nothing but what lines of `before` bring."""
+        arriving = [other.number for other in self.fuel if other.target == line.source]
+        return bool(arriving) and not self._piece(line.source).makes and before.issuperset(arriving)
+
+    def _reaches(self, start: Line, name: str) -> bool:
+        """Whether fuel lines lead to a piece of equipment through nothing that makes things."""
+        seen, queue = {start.target}, [start.target]
+        while queue:
+            at = queue.pop()
+            if at == name:
+                return True
+            if not self._piece(at).makes:
+                fresh = [line.target for line in self._from(at) if line.target not in seen]
+                seen |= set(fresh)
+                queue += fresh
+        return False
 
     def _piece(self, name: str) -> Equipment:
         return self.flowsheet.equipment[name]
