@@ -18,6 +18,7 @@ from chainflow.thermo.species import gas_phase, species_of
 from chainflow.thermo.validity import StateError
 
 TOLERANCE = 1e-12  # of Cantera's solver; below 1e-13 it falls through to a worse one
+MOST_STEPS = 30  # of its first method
 TRACE = 1e-20  # share of the whole below which a species or an element counts as absent
 FLOOR = 1e-10  # share of what could form that an absent species counts for in the slopes
 DILUENT = "He"
@@ -75,9 +76,8 @@ class Reactants:
         if diluent > 0.0:
             phase, start = self._diluted, np.full(count + 1, diluent)
             start[:count] = amounts
-        phase.TPX = temperature, pressure, start
         try:
-            phase.equilibrate("TP", rtol=TOLERANCE)
+            _equilibrate(phase, temperature, pressure, start)
         except ct.CanteraError as problem:
             raise StateError(
                 f"no equilibrium found for {', '.join(self.names)} at {temperature:g} K and "
@@ -118,6 +118,28 @@ class Reactants:
         slopes = weighted.T @ (answer * scale[:, np.newaxis])
         slopes[:, -1] += heats
         return Response(slopes[:, :elements], slopes[:, -2], slopes[:, -1])
+
+
+def _equilibrate(phase: Any, temperature: float, pressure: float, start: Array) -> None:
+    """Bring a phase to equilibrium; raises Cantera's error if none of its solvers does.
+
+    Its Newton method on element potentials ends within a dozen steps or, in some cold gases with
+    oxygen left over, wanders for thousands; then its minimiser of the Gibbs energy is quicker.
+    """
+    tries: tuple[dict[str, Any], ...] = (
+        {"solver": "element_potential", "max_steps": MOST_STEPS},
+        {"solver": "gibbs"},
+        {},
+    )
+    for last, options in enumerate(tries, 1 - len(tries)):
+        phase.TPX = temperature, pressure, start
+        try:
+            phase.equilibrate("TP", rtol=TOLERANCE, **options)
+        except ct.CanteraError:
+            if last == 0:
+                raise
+        else:
+            return
 
 
 @cache
