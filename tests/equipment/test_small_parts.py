@@ -1,5 +1,7 @@
 """Equations, shares, the register, ports and the numbers among settings."""
 
+import subprocess
+import sys
 from importlib.metadata import EntryPoint
 
 import numpy as np
@@ -134,6 +136,36 @@ def test_ports_of_a_kind_make_sense(cls):
 
 
 # ---------------------------------------------------------------------------------- register
+def test_the_register_names_every_kind_by_its_own_name_and_no_other():
+    for kind, cls in register.kinds().items():
+        assert cls.kind == kind
+        assert f"{cls.__module__}.{cls.__name__}".endswith(f".{register.CORE.get(kind, '')}")
+    given = {
+        cls.kind
+        for cls in all_below(Equipment)
+        if "kind" in vars(cls) and cls.__module__.startswith("chainflow.")
+    }
+    assert given == set(register.CORE)
+
+
+def all_below(cls):
+    """Every class derived from a class, of modules that were imported."""
+    return {one for child in cls.__subclasses__() for one in (child, *all_below(child))}
+
+
+def test_a_file_imports_only_its_own_kinds():
+    code = (
+        "import sys; from chainflow.flowsheet.building import read_text; "
+        "read_text('{equipment: {a: {kind: sunlight, irradiance: 1 W/m2, aperture: 1 m2}, "
+        "b: {kind: product}}, lines: [a -> b]}'); "
+        "print(*sorted(m for m in sys.modules if m.startswith('chainflow.equipment.')))"
+    )
+    found = subprocess.run([sys.executable, "-c", code], check=True, capture_output=True, text=True)
+    loaded = {name.rpartition(".")[2] for name in found.stdout.split()}
+    assert {"sunlight", "boundary"} <= loaded
+    assert not loaded & {"electrolysis", "fuel_cell", "burner", "compression", "methanation"}
+
+
 def test_other_packages_add_kinds_but_replace_none(monkeypatch):
     class Candle(Vent):
         """A kind of another package."""
