@@ -9,7 +9,7 @@ from __future__ import annotations
 import inspect
 import types
 import typing
-from collections.abc import Iterator
+from collections.abc import Iterator, Mapping
 from typing import TYPE_CHECKING, Annotated, Any
 
 from pydantic import BaseModel
@@ -33,7 +33,7 @@ _WHO = {
 }
 
 
-def print_kinds(screen: Console, kinds: dict[str, type[Equipment]]) -> None:
+def print_kinds(screen: Console, kinds: Mapping[str, type[Equipment]]) -> None:
     """Print one line for each kind."""
     width = max(map(len, kinds))
     for name, kind in kinds.items():

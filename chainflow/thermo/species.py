@@ -44,15 +44,21 @@ def hydrocarbon_species() -> dict[str, Any]:
 @cache
 def flame_species() -> dict[str, Any]:
     """Return the species above and the radicals that only flames need."""
-    return {**component_species(), **_read("radicals")}
+    return {**component_species(), **radicals()}
+
+
+@cache
+def radicals() -> dict[str, Any]:
+    """Return the species that only flames need."""
+    return _read("radicals")
 
 
 def species_of(name: str) -> Any:
     """Return one species, component or radical; the long hydrocarbons are read only if needed."""
+    if name in HYDROCARBONS:
+        return hydrocarbon_species()[name]
     found = small_species().get(name)
-    if found is None and name in HYDROCARBONS:
-        found = hydrocarbon_species()[name]
-    return flame_species()[name] if found is None else found
+    return radicals()[name] if found is None else found
 
 
 @cache
