@@ -18,6 +18,12 @@ AVOGADRO: Final = 6.02214076e23
 ELEMENTARY_CHARGE: Final = 1.602176634e-19
 """Charge of the electron [C], exact (SI definition)."""
 
+PLANCK: Final = 6.62607015e-34
+"""Planck constant [J s], exact (SI definition)."""
+
+LIGHT_SPEED: Final = 299792458.0
+"""Speed of light in vacuum [m/s], exact (SI definition)."""
+
 GAS_CONSTANT: Final = BOLTZMANN * AVOGADRO
 """Molar gas constant [J/(mol K)], 8.314462618...; exact product of two exact numbers."""
 

@@ -12,6 +12,8 @@ from chainflow.basis import constants
         (constants.GAS_CONSTANT, scipy.constants.R),
         (constants.FARADAY, scipy.constants.physical_constants["Faraday constant"][0]),
         (constants.STEFAN_BOLTZMANN, scipy.constants.sigma),
+        (constants.PLANCK, scipy.constants.h),
+        (constants.LIGHT_SPEED, scipy.constants.c),
         (constants.ATMOSPHERE, scipy.constants.atm),
         (constants.ICE_POINT, scipy.constants.zero_Celsius),
         (constants.P_REFERENCE, scipy.constants.bar),

@@ -1,0 +1,1 @@
+"""What the sky sends, and what a photovoltaic module makes of it."""
