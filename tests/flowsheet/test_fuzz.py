@@ -12,7 +12,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from chainflow.basis.faults import FlowsheetFault, NotSolved, UsageFault
-from chainflow.equipment.ports import Heat
+from chainflow.equipment.ports import rate_of
 from chainflow.flowsheet.building import read_text
 from chainflow.solver.solve import solve_flowsheet
 from chainflow.thermo.streams import Stream
@@ -161,7 +161,7 @@ def check(found):
             assert (flow.flows >= 0.0).all()
             numbers = [flow.enthalpy, flow.temperature, flow.total]
         else:
-            numbers = [flow.rate if isinstance(flow, Heat) else flow]
+            numbers = [rate_of(flow)]
         assert all(math.isfinite(number) for number in numbers)
 
 
