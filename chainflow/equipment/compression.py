@@ -41,6 +41,7 @@ from chainflow.thermo.streams import Stream, temperature_slopes
 from chainflow.thermo.three_phases import Split
 
 _MOST_STAGES = 12
+_LAST_STEP = 1e-7  # relative: the error after it is its square
 _ROUND_OFF = 1e-12  # of what arrives: less condensate is no state to find a temperature of
 _WET = ("H2O", "CO2")  # what can be in a condensate beside hydrocarbons
 _DISSOLVED = ("CO2",)
@@ -360,6 +361,6 @@ def _gas_temperature(
         state = matter.gas_state(gas, level, pressure)
         step = (enthalpy - state.enthalpy) / state.heat_capacity
         level += step
-        if abs(step) < 1e-12 * level:
+        if abs(step) < _LAST_STEP * level:
             break
     return level

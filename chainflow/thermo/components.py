@@ -124,6 +124,7 @@ class Matter:
         self._polynomials = tuple(polynomial(name) for name in components)
         self._liquid = polynomial("H2O(L)")
         self._gas = gas_phase(components, "Redlich-Kwong")
+        self._gas_is: tuple[float, float, bytes] | None = None  # the state it was last set to
         self.oil = Oil.of(components)
         critical = [s.input_data["critical-parameters"] for s in species]
         # above this no root but the vapour exists for any component, so no reset is needed
@@ -169,6 +170,10 @@ class Matter:
         total = require_amounts(flows, self.components)
         if total == 0.0:
             return 0.0
+        state = temperature, pressure, flows.tobytes()
+        if state == self._gas_is:
+            return total
+        self._gas_is = None
         gas = self._gas
         try:
             if temperature >= self._one_root:
@@ -178,6 +183,7 @@ class Matter:
                 gas.TP = temperature, pressure
         except ct.CanteraError as problem:  # its cubic solver fails where two roots meet
             raise StateError(liquefaction(temperature, pressure)) from problem
+        self._gas_is = state
         return total
 
     def _start_thin(self, flows: Array) -> None:

@@ -18,7 +18,17 @@ from chainflow.thermo.species import gas_phase, species_of
 from chainflow.thermo.validity import StateError
 
 TOLERANCE = 1e-12  # of Cantera's solver; below 1e-13 it falls through to a worse one
-MOST_STEPS = 30  # of its first method
+BALANCED = 1e-9  # share of each element that an answer may miss before the next method is tried
+MOST_PROJECTIONS = 20  # onto the element balance; one is enough where nothing is scarce
+ROUND_OFF = 1e-15  # of the most plentiful element
+# Its Newton method on element potentials ends within 15 steps or, in some cold gases with oxygen
+# left over, wanders for thousands; then its minimiser of the Gibbs energy is quicker.  The last is
+# what it does by itself: all methods, as long as they take.
+_TRIES: tuple[dict[str, Any], ...] = (
+    {"solver": "element_potential", "max_steps": 30},
+    {"solver": "gibbs"},
+    {},
+)
 TRACE = 1e-20  # share of the whole below which a species or an element counts as absent
 FLOOR = 1e-10  # share of what could form that an absent species counts for in the slopes
 DILUENT = "He"
@@ -64,8 +74,13 @@ class Reactants:
         fed = self.formula @ amounts
         found = self._composition(amounts, fed, diluent, temperature, pressure)
         response = self._response(found, fed, diluent, temperature)
-        found = found + response.by_element @ (fed - self.formula @ found)
-        found[found < TRACE * (found.sum() + diluent)] = 0.0
+        missing = fed - self.formula @ found
+        for _ in range(MOST_PROJECTIONS):
+            found = found + response.by_element @ missing
+            found[found < TRACE * (found.sum() + diluent)] = 0.0
+            missing = fed - self.formula @ found
+            if np.abs(missing).max() <= ROUND_OFF * fed.max():
+                break
         return Balance(found, response)
 
     def _composition(
@@ -76,15 +91,23 @@ class Reactants:
         if diluent > 0.0:
             phase, start = self._diluted, np.full(count + 1, diluent)
             start[:count] = amounts
-        try:
-            _equilibrate(phase, temperature, pressure, start)
-        except ct.CanteraError as problem:
-            raise StateError(
-                f"no equilibrium found for {', '.join(self.names)} at {temperature:g} K and "
-                f"{pressure:g} Pa: {_last_line(problem)}"
-            ) from problem
-        shares = phase.X[:count]
-        return shares * (float(fed.sum()) / float(self._atoms @ shares))
+        shares = start[:count]
+        for options in _TRIES:
+            phase.TPX = temperature, pressure, start
+            try:
+                phase.equilibrate("TP", rtol=TOLERANCE, **options)
+            except ct.CanteraError as problem:
+                if options:
+                    continue
+                raise StateError(
+                    f"no equilibrium found for {', '.join(self.names)} at {temperature:g} K and "
+                    f"{pressure:g} Pa: {_last_line(problem)}"
+                ) from problem
+            shares = phase.X[:count]
+            shares = shares * (float(fed.sum()) / float(self._atoms @ shares))
+            if (np.abs(self.formula @ shares - fed) <= BALANCED * fed).all():
+                break
+        return shares
 
     def enthalpies(self, temperature: float) -> Array:
         """Return the enthalpies of the species as ideal gases [J/mol]."""
@@ -118,28 +141,6 @@ class Reactants:
         slopes = weighted.T @ (answer * scale[:, np.newaxis])
         slopes[:, -1] += heats
         return Response(slopes[:, :elements], slopes[:, -2], slopes[:, -1])
-
-
-def _equilibrate(phase: Any, temperature: float, pressure: float, start: Array) -> None:
-    """Bring a phase to equilibrium; raises Cantera's error if none of its solvers does.
-
-    Its Newton method on element potentials ends within a dozen steps or, in some cold gases with
-    oxygen left over, wanders for thousands; then its minimiser of the Gibbs energy is quicker.
-    """
-    tries: tuple[dict[str, Any], ...] = (
-        {"solver": "element_potential", "max_steps": MOST_STEPS},
-        {"solver": "gibbs"},
-        {},
-    )
-    for last, options in enumerate(tries, 1 - len(tries)):
-        phase.TPX = temperature, pressure, start
-        try:
-            phase.equilibrate("TP", rtol=TOLERANCE, **options)
-        except ct.CanteraError:
-            if last == 0:
-                raise
-        else:
-            return
 
 
 @cache

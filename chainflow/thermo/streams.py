@@ -10,6 +10,7 @@ liquefied gas, or colder than the gas data (`chainflow.thermo.liquefied`).
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import TYPE_CHECKING, Any, cast
 
 import numpy as np
@@ -26,6 +27,7 @@ if TYPE_CHECKING:
 
 Value = float | Array  # one case, or an array of cases
 DISSOLVED = ("CO2",)
+_KEPT = 128  # streams and slopes of each kind
 
 
 @dataclass(frozen=True, slots=True, eq=False)
@@ -54,18 +56,11 @@ class Stream:
         `flows` [mol/s] has shape (..., components); temperature and pressure are broadcast over
         the cases. Raises `StateError` for negative flows and states outside the data.
         """
-        flows = _own(flows)
+        flows = np.asarray(flows, dtype=float)
         if flows.ndim > 1 or np.ndim(temperature) or np.ndim(pressure):
             make = _per_case(lambda n, t, p: cls.at(matter, n, t, p, dissolved))
             return cast(Stream, make(flows, temperature, pressure))
-        temperature, pressure = float(temperature), float(pressure)
-        clean = without_round_off(flows, matter.components)
-        if temperature < LOWEST_TEMPERATURE:
-            cold = _cold_at(matter, clean, temperature, pressure)
-            if cold is not None:
-                return cls._of(matter, cold, pressure)
-        found = phases_at(matter, clean, temperature, pressure, dissolved)
-        return cls._of(matter, found, pressure)
+        return _at(matter, flows.tobytes(), float(temperature), float(pressure), dissolved)
 
     @classmethod
     def liquefied(
@@ -84,15 +79,11 @@ class Stream:
     @classmethod
     def gaseous(cls, matter: Matter, flows: Array, temperature: Value, pressure: Value) -> "Stream":
         """Return the stream as a gas without looking for liquid."""
-        flows = _own(flows)
+        flows = np.asarray(flows, dtype=float)
         if flows.ndim > 1 or np.ndim(temperature) or np.ndim(pressure):
             make = _per_case(lambda n, t, p: cls.gaseous(matter, n, t, p))
             return cast(Stream, make(flows, temperature, pressure))
-        temperature, pressure = float(temperature), float(pressure)
-        clean = without_round_off(flows, matter.components)
-        enthalpy = matter.gas_enthalpy(clean, temperature, pressure)
-        nothing = matter.nothing
-        return cls._of(matter, Phases(clean, nothing, nothing, temperature, enthalpy), pressure)
+        return _gaseous(matter, flows.tobytes(), float(temperature), float(pressure))
 
     @classmethod
     def from_enthalpy(
@@ -109,7 +100,7 @@ class Stream:
         Boiling water is split so that the enthalpy is met. Without flow the temperature is the
         guess, or 298.15 K. Raises `StateError` if no temperature of the data has this enthalpy.
         """
-        flows = _own(flows)
+        flows = np.asarray(flows, dtype=float)
         if flows.ndim > 1 or np.ndim(enthalpy) or np.ndim(pressure):
             start: Value = np.nan if guess is None else guess
             make = _per_case(
@@ -118,16 +109,9 @@ class Stream:
                 )
             )
             return cast(Stream, make(flows, enthalpy, pressure, start))
-        pressure = float(pressure)
-        clean = without_round_off(flows, matter.components)
         start = T_REFERENCE if guess is None else float(guess)
-        cold = liquefied.cold_by_enthalpy(matter, clean, float(enthalpy), pressure)
-        if cold is not None:
-            return cls._of(matter, Phases(*liquefied.cold_flows(matter, clean, cold)), pressure)
-        if start < LOWEST_TEMPERATURE and not some(clean):
-            return cls.empty(matter, start, pressure)
-        found = find_phases(matter, clean, float(enthalpy), pressure, start, dissolved)
-        return cls._of(matter, found, pressure)
+        raw = flows.tobytes()
+        return _from_enthalpy(matter, raw, float(enthalpy), float(pressure), start, dissolved)
 
     @classmethod
     def empty(
@@ -283,6 +267,49 @@ class Stream:
         )
 
 
+# The same state is often asked for several times in a row: by a piece, by the heat it is booked
+# with, by its slopes.  Streams do not change, so the last ones are kept.
+
+
+@lru_cache(maxsize=_KEPT)
+def _at(
+    matter: Matter, raw: bytes, temperature: float, pressure: float, dissolved: tuple[str, ...]
+) -> Stream:
+    clean = without_round_off(np.frombuffer(raw), matter.components)
+    if temperature < LOWEST_TEMPERATURE:
+        cold = _cold_at(matter, clean, temperature, pressure)
+        if cold is not None:
+            return Stream._of(matter, cold, pressure)
+    return Stream._of(matter, phases_at(matter, clean, temperature, pressure, dissolved), pressure)
+
+
+@lru_cache(maxsize=_KEPT)
+def _gaseous(matter: Matter, raw: bytes, temperature: float, pressure: float) -> Stream:
+    clean = without_round_off(np.frombuffer(raw), matter.components)
+    enthalpy = matter.gas_enthalpy(clean, temperature, pressure)
+    nothing = matter.nothing
+    return Stream._of(matter, Phases(clean, nothing, nothing, temperature, enthalpy), pressure)
+
+
+@lru_cache(maxsize=_KEPT)
+def _from_enthalpy(
+    matter: Matter,
+    raw: bytes,
+    enthalpy: float,
+    pressure: float,
+    start: float,
+    dissolved: tuple[str, ...],
+) -> Stream:
+    clean = without_round_off(np.frombuffer(raw), matter.components)
+    cold = liquefied.cold_by_enthalpy(matter, clean, enthalpy, pressure)
+    if cold is not None:
+        return Stream._of(matter, Phases(*liquefied.cold_flows(matter, clean, cold)), pressure)
+    if start < LOWEST_TEMPERATURE and not some(clean):
+        return Stream.empty(matter, start, pressure)
+    found = find_phases(matter, clean, enthalpy, pressure, start, dissolved)
+    return Stream._of(matter, found, pressure)
+
+
 def _per_case(make: Any) -> Any:
     """Return a maker of stacked streams: it broadcasts its arguments and loops over the cases."""
 
@@ -318,6 +345,7 @@ def _ratio(part: Value, whole: Value) -> Value:
     return np.divide(part, whole, out=np.zeros_like(whole), where=np.asarray(whole) != 0.0)
 
 
+@lru_cache(maxsize=_KEPT)
 def enthalpy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tuple[Array, float]:
     """Return dH/dn (components,) [J/mol] and dH/dT [W/K] of one stream, phases in equilibrium.
 
@@ -327,11 +355,11 @@ def enthalpy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> t
     """
     temperature, pressure = float(stream.temperature), float(stream.pressure)
     if _is_cold(stream):
-        return _cold_slopes(stream)[:2]
+        return _fixed(*_cold_slopes(stream)[:2])
     if _boils(stream):
-        return _boiling_slopes(stream), np.inf
+        return _fixed(_boiling_slopes(stream), np.inf)
     found = phase_slopes(stream.matter, _split_of(stream), temperature, pressure, dissolved)
-    return found.by_flows, found.by_temperature
+    return _fixed(*found)
 
 
 def _cold_at(matter: Matter, flows: Array, temperature: float, pressure: float) -> Phases | None:
@@ -371,26 +399,29 @@ def _boiling_slopes(stream: Stream) -> Array:
         by_flows[matter.water] = float(stream.enthalpy) / float(stream.total)
         return by_flows
     assert matter.oil is not None
-    vapour = matter.gas_partial(stream.gas, level, pressure).enthalpy
+    vapour = matter.gas_partial(stream.gas, level, pressure).enthalpy.copy()
     held = stream.gas * vapour + stream.liquid * matter.oil.enthalpies(level, pressure)
     if some(stream.water):
         held = held + stream.water * matter.water_partial(level, pressure).enthalpy
     return np.divide(held, stream.flows, out=vapour, where=stream.flows > 0.0)
 
 
+@lru_cache(maxsize=_KEPT)
 def entropy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tuple[Array, float]:
     """Return dS/dn (components,) [J/(mol K)] and dS/dT [W/K2] of one stream, as above."""
     temperature, pressure = float(stream.temperature), float(stream.pressure)
     if _is_cold(stream):
-        return _cold_slopes(stream)[2:]
+        return _fixed(*_cold_slopes(stream)[2:])
     if _boils(stream):
         by_flows = np.zeros(len(stream.flows))
         if not some(stream.liquid):
             by_flows[stream.matter.water] = float(stream.entropy) / float(stream.total)
-        return by_flows, np.inf
-    return phases.entropy_slopes(stream.matter, _split_of(stream), temperature, pressure, dissolved)
+        return _fixed(by_flows, np.inf)
+    split = _split_of(stream)
+    return _fixed(*phases.entropy_slopes(stream.matter, split, temperature, pressure, dissolved))
 
 
+@lru_cache(maxsize=_KEPT)
 def temperature_slopes(
     stream: Stream, dissolved: tuple[str, ...] = DISSOLVED
 ) -> tuple[Array, float]:
@@ -400,8 +431,14 @@ def temperature_slopes(
     """
     by_flows, by_temperature = enthalpy_slopes(stream, dissolved)
     if by_temperature == 0.0 or np.isinf(by_temperature):
-        return np.zeros(len(by_flows)), 0.0
-    return -by_flows / by_temperature, 1.0 / by_temperature
+        return _fixed(np.zeros(len(by_flows)), 0.0)
+    return _fixed(-by_flows / by_temperature, 1.0 / by_temperature)
+
+
+def _fixed(slopes: Array, slope: float) -> tuple[Array, float]:
+    """Return slopes that may be kept: nobody can write into them."""
+    slopes.setflags(write=False)
+    return slopes, slope
 
 
 def _boils(stream: Stream) -> bool:
