@@ -237,8 +237,9 @@ class FedReactor(ReactorBase):
         results["carbon_activity_inlet"] = before
         cooled = cooling_activity(product, self.dusting_from, self.dusting_to)
         if cooled is not None:
-            results["carbon_activity_cooling"] = cooled[0]
-        more = (*inlet_caution(before, level, self.carbon_limit), *dusting_caution(cooled))
+            results["carbon_activity_cooling"] = cooled.activity
+        dusting = dusting_caution(cooled, self.dusting_from)
+        more = (*inlet_caution(before, level, self.carbon_limit), *dusting)
         return results, (*cautions, *more)
 
     def slopes(

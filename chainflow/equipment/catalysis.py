@@ -35,9 +35,15 @@ def missing_components(
         yield ("kind",), f"{what} needs {', '.join(missing)} among the components"
 
 
-def converted(flows: Array, matter: Matter, share: float, equations: tuple[str, str]) -> Product:
+def stated_reaction(
+    flows: Array, matter: Matter, share: float, equations: tuple[str, str]
+) -> Reaction:
     """Return one reaction by the conversion of CO2, or its CO twin where there is no CO2."""
     carbon_dioxide = flows[matter.index["CO2"]] > 0.0 or "CO" not in matter.index
     key, equation = ("CO2", equations[0]) if carbon_dioxide else ("CO", equations[1])
-    reactor = Reactor(reactions=(Reaction(equation=equation, conversion={key: share}),))
-    return reactor.convert(flows, matter)
+    return Reaction(equation=equation, conversion={key: share})
+
+
+def converted(flows: Array, matter: Matter, reaction: Reaction) -> Product:
+    """Return what one reaction makes of a feed."""
+    return Reactor(reactions=(reaction,)).convert(flows, matter)

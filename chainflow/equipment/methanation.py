@@ -37,12 +37,14 @@ from chainflow.equipment.catalysis import (
     Approach,
     converted,
     missing_components,
+    stated_reaction,
     those_there,
 )
 from chainflow.equipment.junctions import spread_faults
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.published import roensch_2016 as nickel
 from chainflow.equipment.published.en_437 import UPPER_WOBBE_INDEX, GasGroup
+from chainflow.equipment.reactions import Reaction
 from chainflow.equipment.reactor_base import (
     TRACE,
     Product,
@@ -59,6 +61,8 @@ from chainflow.thermo.validity import StateError
 MOST_BEDS = 6
 _CONDENSATE = ("H2O", "CO2")  # what a knock-out takes out
 _TRAIN_ONLY = ("bed_limit", "knock_out", "knock_outs", "hold", "blower_efficiency")
+
+_STATED = ("CO2 + 4 H2 -> CH4 + 2 H2O", "CO + 3 H2 -> CH4 + H2O")
 
 
 class MethanationReactor(ReactorBase):
@@ -215,13 +219,13 @@ class MethanationReactor(ReactorBase):
     def shift_of_temperature(self) -> float:
         return self.approach
 
+    def stated(self, flows: Array, matter: Matter) -> tuple[Reaction, ...]:
+        if self.conversion is None:
+            return ()
+        return (stated_reaction(flows, matter, self.conversion, _STATED),)
+
     def convert(self, flows: Array, matter: Matter) -> Product:
-        return converted(
-            flows,
-            matter,
-            self.conversion or 0.0,
-            ("CO2 + 4 H2 -> CH4 + 2 H2O", "CO + 3 H2 -> CH4 + H2O"),
-        )
+        return converted(flows, matter, *self.stated(flows, matter))
 
     # --- the train ---------------------------------------------------------------------------
 

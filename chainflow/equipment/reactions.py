@@ -120,3 +120,7 @@ class Reaction(BaseModel):
         for name, share in (self.conversion or {}).items():
             row[matter.index[name]] = share / -self.numbers[name]
         return row
+
+    def extent_of(self, feed: np.ndarray, matter: Matter) -> float:
+        """Extent [mol/s] of the reaction for a feed."""
+        return float(self.by_feed(matter) @ feed) + (self.extent.value if self.extent else 0.0)

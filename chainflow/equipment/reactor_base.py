@@ -31,9 +31,11 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
+from chainflow.equipment.beyond_equilibrium import beyond_equilibrium
 from chainflow.equipment.carbon_margin import CARBON_FORMS_ABOVE
 from chainflow.equipment.cooling import cooling_duties
 from chainflow.equipment.ports import Feeds
+from chainflow.equipment.reactions import Reaction
 from chainflow.thermo.carbon import carbon_activity
 from chainflow.thermo.components import Matter
 from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
@@ -115,6 +117,10 @@ class ReactorBase(Equipment):
     def shift_of_temperature(self) -> float:
         """What is added to the temperature where equilibrium constants are taken [K]."""
         return 0.0
+
+    def stated(self, flows: Array, matter: Matter) -> tuple[Reaction, ...]:
+        """The reactions whose conversions or extents are stated."""
+        return ()
 
     def convert(self, flows: Array, matter: Matter) -> Product:
         """The product of stated conversions."""
@@ -216,6 +222,7 @@ class ReactorBase(Equipment):
         if not self.burns_oxygen:
             cautions += _oxygen(feed)
         cautions += self._traces(feed, product)
+        cautions += beyond_equilibrium(feed, product, self.stated(feed.flows, matter), matter)
         return results, tuple(cautions)
 
     @property

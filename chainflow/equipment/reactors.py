@@ -86,16 +86,16 @@ class Reactor(ReactorBase):
     def burns_oxygen(self) -> bool:
         return any(reaction.numbers.get("O2", 0.0) < 0.0 for reaction in self.reactions or ())
 
+    def stated(self, flows: Array, matter: Matter) -> tuple[Reaction, ...]:
+        return self.reactions or ()
+
     def convert(self, flows: Array, matter: Matter) -> Product:
         by_feed, out = np.eye(len(flows)), flows.copy()
         for reaction in self.reactions or ():
             vector = reaction.vector(matter)
             row = reaction.by_feed(matter)
             by_feed = by_feed + np.outer(vector, row)
-            extent = float(row @ flows) + (
-                reaction.extent.value if reaction.extent is not None else 0.0
-            )
-            out = out + vector * extent
+            out = out + vector * reaction.extent_of(flows, matter)
         if (out >= -1e-12 * flows.sum()).all():
             return Product(np.maximum(out, 0.0), by_feed, {})
         return self._too_much(flows, out, matter)

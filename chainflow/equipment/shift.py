@@ -21,10 +21,14 @@ from chainflow.equipment.catalysis import (
     Approach,
     converted,
     missing_components,
+    stated_reaction,
     those_there,
 )
+from chainflow.equipment.reactions import Reaction
 from chainflow.equipment.reactor_base import Product, ReactorBase, exchanging
 from chainflow.thermo.components import Matter
+
+_STATED = ("CO2 + H2 -> CO + H2O", "CO + H2O -> CO2 + H2")
 
 
 class ShiftReactor(FedReactor):
@@ -93,7 +97,10 @@ class ShiftReactor(FedReactor):
     def shift_of_temperature(self) -> float:
         return -self.approach
 
+    def stated(self, flows: Array, matter: Matter) -> tuple[Reaction, ...]:
+        if self.conversion is None:
+            return ()
+        return (stated_reaction(flows, matter, self.conversion, _STATED),)
+
     def convert(self, flows: Array, matter: Matter) -> Product:
-        return converted(
-            flows, matter, self.conversion or 0.0, ("CO2 + H2 -> CO + H2O", "CO + H2O -> CO2 + H2")
-        )
+        return converted(flows, matter, *self.stated(flows, matter))

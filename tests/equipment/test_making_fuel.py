@@ -5,9 +5,11 @@ import pytest
 from pydantic import ValidationError
 
 from chainflow.equipment.base import Site
+from chainflow.equipment.carbon_margin import cooling_activity
 from chainflow.equipment.junctions import joined
 from chainflow.equipment.register import kinds
-from tests.equipment.feeds import MATTER, stream
+from chainflow.thermo.carbon import carbon_activities
+from tests.equipment.feeds import MATTER, METHANOL, stream
 
 RNG = np.random.default_rng(20)
 OXYGEN = stream({"O2": 1.0}, 25.0, 20.0)
@@ -129,7 +131,7 @@ def test_cautions_of_the_reformer():
     dry = run(
         made("reformer", temperature="850 degC"), feed=stream({"CH4": 1.0, "CO2": 0.5}, 400.0)
     )
-    assert {"carbon-activity", "metal-dusting"} <= codes(dry)
+    assert {"carbon-activity", "dusting-when-cooled"} <= codes(dry)
     prudent = made("reformer", temperature="800 degC", steam_to_carbon=2.0, carbon_margin=0.1)
     assert "carbon-activity" in codes(run(prudent, feed=GAS, steam=STEAM))
     water = stream({"H2O": 1.0}, 25.0, 20.0)
@@ -143,11 +145,22 @@ def test_metal_dusting_is_feared_where_the_product_is_cooled():
     feed = stream({"H2": 2.0, "CO2": 1.0}, 300.0, 10.0)
     hot = run(made("shift-reactor", temperature="900 degC"), feed=feed)
     assert hot.results["carbon_activity"] < 1.0 < hot.results["carbon_activity_cooling"]
-    assert "metal-dusting" in codes(hot)
+    assert "dusting-when-cooled" in codes(hot)
+    assert "metal-dusting" not in codes(hot)
+    (said,) = [c.text for c in hot.cautions if c.code == "dusting-when-cooled"]
+    onset = float(said.partition("above 1 from ")[2].partition(" degC")[0])
+    product = hot.outlets["product"]
+    by_route = [
+        carbon_activities(MATTER, product.flows, t + 273.15, 10e5) for t in (onset - 2, onset + 2)
+    ]
+    below, above = (max(a["boudouard"], a["water-gas"]) for a in by_route)
+    assert above < 1.0 < below
     moved = made(
         "shift-reactor", temperature="900 degC", dusting_from="850 degC", dusting_to="890 degC"
     )
-    assert "metal-dusting" not in codes(run(moved, feed=feed))
+    assert "dusting-when-cooled" not in codes(run(moved, feed=feed))
+    methane = stream({"CH4": 1.0, "H2": 0.01, "CO2": 1e-5, "CO": 1e-8}, 780.0, 10.0)
+    assert cooling_activity(methane, 723.15, 1073.15).activity < 1.0  # soot, but no dusting
     cold = run(made("shift-reactor", temperature="400 degC"), feed=feed)
     assert "carbon_activity_cooling" not in cold.results
 
@@ -334,3 +347,33 @@ def test_inlets_at_different_pressures_are_refused():
 def test_ports_are_there_when_they_are_of_use(kind, settings, ports):
     found = {port.name for port in made(kind, **settings).port_list()}
     assert found & {"oxygen", "steam", "liquid", "leak"} == ports
+
+
+# ------------------------------------------------------------------------ beyond equilibrium
+def test_a_conversion_beyond_equilibrium_is_doubted_and_told_where_it_ends():
+    """At 700 degC, 10 bar and H2/CO2 = 3: what the equilibrium itself says is the border."""
+    feed = stream({"H2": 3.0, "CO2": 1.0}, 300.0, 10.0)
+    free = run(made("shift-reactor", temperature="700 degC", methane="excluded"), feed=feed)
+    most = free.results["conversion_CO2"]
+    for share, doubted in ((0.98, False), (1.0, False), (1.02, True)):
+        piece = made("shift-reactor", temperature="700 degC", conversion=f"{100 * most * share} %")
+        said = [c.text for c in run(piece, feed=feed).cautions if c.code == "beyond-equilibrium"]
+        assert bool(said) is doubted
+    assert f"ends at {100 * most:.3g} % of the CO2" in said[0]
+    assert "at 700 degC" in said[0]
+
+
+def test_reactions_of_a_reactor_are_doubted_one_by_one():
+    """Methanol at 250 degC, 50 bar: Q of the shift is 0.0144, its K 0.012 (NASA data)."""
+    shift = {"equation": "CO2 + H2 -> CO + H2O", "conversion": {"CO2": "10 %"}}
+    methanol = {"equation": "CO2 + 3 H2 -> CH3OH + H2O", "conversion": {"CO2": "10 %"}}
+    piece = made("reactor", reactions=[methanol, shift], temperature="250 degC")
+    feed = stream({"H2": 3.0, "CO2": 1.0, "CO": 0.05, "N2": 0.05}, 210.0, 50.0, METHANOL)
+    outcome = piece.operate({"feed": feed}, {}, Site(METHANOL))
+    (said,) = [c.text for c in outcome.cautions if c.code == "beyond-equilibrium"]
+    assert "'CO2 + H2 -> CO + H2O'" in said
+    burning = {"equation": "CH4 + 2 O2 -> CO2 + 2 H2O", "conversion": {"CH4": "100 %"}}
+    hot = made("reactor", reactions=[burning], temperature="1000 degC")
+    assert "beyond-equilibrium" not in codes(
+        run(hot, feed=stream({"CH4": 1.0, "O2": 2.0, "N2": 8.0}, 25.0, 1.0))
+    )

@@ -29,10 +29,10 @@ MAKERS = NAMES[1:]  # of methane
 LIGHT = 800 * 25000.0  # [W], irradiance by aperture
 EXPECTED_CAUTIONS = {
     "asphyxiating-contents",
+    "dusting-when-cooled",  # wherever gas with CO is cooled from a shift's heat
     "flammable-contents",
     "high-pressure",
     "hot-hydrogen",
-    "metal-dusting",  # wherever gas with CO is cooled from a shift's heat: alloys and quick cooling
     "oxygen-enriched",
     "toxic-contents",
 }
