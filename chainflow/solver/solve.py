@@ -24,6 +24,7 @@ from chainflow.thermo.validity import StateError
 
 _SOLVED = 1e-9  # largest relative balance error of what is called solved
 _ROUND_OFF = 1e-9
+_SAME = 1e-9  # relative: results of a hold this close do not count as moved
 _NEVER_CLOSED = ("not-converged", "grows", "undetermined")
 
 
@@ -124,7 +125,10 @@ class Prepared:
         try:
             return self.close()
         except NotSolved as problem:
-            if problem.code not in _NEVER_CLOSED or not self.conditional:
+            if problem.code not in _NEVER_CLOSED:
+                raise
+            if not self.conditional:
+                self._refuse_out_of_reach(problem)
                 raise
             first = self.conditional[0]
             stores = {"stores": list(first.stores)}
@@ -155,39 +159,59 @@ class Prepared:
         for hold, setting, result in self.program.holds:
             why = closed.aside.get(setting)
             if why == "unable":
-                raise NotSolved(
-                    "hold-unable",
-                    f"hold {hold.text}: moving {hold.by} changes nothing there "
-                    f"(it stays at {_shown(_number(closed, result), hold.unit)}): "
-                    "aim at a result that the setting can move, or let something flow",
-                    {"hold": hold.text},
-                )
+                raise self._unable(hold, setting, result, closed)
             if why == "bound":
                 raise self._out_of_reach(hold, setting, result, closed)
+
+    def _unable(self, hold: Hold, setting: str, result: str, closed: Closed) -> NotSolved:
+        """A setting that moves nothing where it stands: here only, or anywhere in its range?"""
+        here = _number(closed, result)
+        reached = self._probed(hold, setting, result)
+        moved = [r for r in reached.values() if r == r and abs(r - here) > _SAME * abs(here or r)]
+        stuck = f"hold {hold.text}: moving {hold.by} changes nothing there"
+        if not moved:
+            text = (
+                f"{stuck} (it stays at {_shown(here, hold.unit)}): "
+                "aim at a result that the setting can move, or let something flow"
+            )
+            return NotSolved("hold-unable", text, {"hold": hold.text})
+        if _all_on_one_side([here, *moved], hold.at):
+            return _beyond_reach(hold, reached)
+        text = (
+            f"{stuck} at {_shown(_number(closed, setting), hold.by_unit)}, though it is "
+            f"{_listed(hold, reached)}: begin nearer, or narrow 'within' to where it moves"
+        )
+        return NotSolved("hold-unable", text, {"hold": hold.text})
 
     def _out_of_reach(self, hold: Hold, setting: str, result: str, closed: Closed) -> NotSolved:
         """A setting ended at one end of its range: say what comes out at both ends."""
         here = _number(closed, setting)
         there = hold.high if abs(here - hold.low) < abs(here - hold.high) else hold.low
         reached = {here: _number(closed, result)}
-        try:
-            reached[there] = _number(self.close({setting: there}), result)
-        except NotSolved:
-            reached[there] = float("nan")
-        ends = " and ".join(
-            f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}"
-            for value in sorted(reached)
-        )
-        text = (
-            f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is {ends}; "
-            "widen 'within' or change what is wanted"
-        )
-        details = {
-            "hold": hold.text,
-            "wanted": hold.at,
-            "ends": [[v, None if r != r else r] for v, r in sorted(reached.items())],
-        }
-        return NotSolved("hold-out-of-reach", text, details)
+        return _beyond_reach(hold, reached | self._reached(setting, result, (there,)))
+
+    def _refuse_out_of_reach(self, problem: NotSolved) -> None:
+        """Where loops do not close because a hold cannot be met, say that instead."""
+        for hold, setting, result in self.program.holds:
+            reached = self._probed(hold, setting, result)
+            if all(r == r for r in reached.values()) and _all_on_one_side(
+                list(reached.values()), hold.at
+            ):
+                raise _beyond_reach(hold, reached) from problem
+
+    def _probed(self, hold: Hold, setting: str, result: str) -> dict[float, float]:
+        """What is reached at the ends and in the middle of a setting's range."""
+        return self._reached(setting, result, (hold.low, 0.5 * (hold.low + hold.high), hold.high))
+
+    def _reached(self, setting: str, result: str, values: tuple[float, ...]) -> dict[float, float]:
+        """The result at values of the setting, not a number where there is no steady state."""
+        reached = {}
+        for value in values:
+            try:
+                reached[value] = _number(self.close({setting: value}), result)
+            except NotSolved:
+                reached[value] = float("nan")
+        return reached
 
     # --- judgement ---------------------------------------------------------------------------
 
@@ -248,6 +272,32 @@ class Prepared:
                     f"worst at {worst}: please report this flowsheet"
                 )
                 raise NotSolved("not-balanced", text, {"error": error, "equipment": worst})
+
+
+def _all_on_one_side(values: list[float], wanted: float) -> bool:
+    return all(v < wanted for v in values) or all(v > wanted for v in values)
+
+
+def _listed(hold: Hold, reached: Mapping[float, float]) -> str:
+    """What comes out at both ends of what was tried."""
+    return " and ".join(
+        f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}"
+        for value in (min(reached), max(reached))
+    )
+
+
+def _beyond_reach(hold: Hold, reached: Mapping[float, float]) -> NotSolved:
+    text = (
+        f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is "
+        f"{_listed(hold, reached)}; widen 'within' or change what is wanted"
+    )
+    ends = [(value, reached[value]) for value in (min(reached), max(reached))]
+    details = {
+        "hold": hold.text,
+        "wanted": hold.at,
+        "ends": [[value, None if r != r else r] for value, r in ends],
+    }
+    return NotSolved("hold-out-of-reach", text, details)
 
 
 def _numbers(flows: object) -> list[float]:

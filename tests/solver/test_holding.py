@@ -157,3 +157,73 @@ def test_net_of_a_store_can_be_held_at_zero() -> None:
     )
     assert solution.passes <= 10
     assert value_at(solution, "store.net") == pytest.approx(0.0, abs=1e-8)
+
+
+EXCHANGER = """
+components: [N2]
+equipment:
+  warm:  {kind: supply, composition: {N2: 1}, temperature: 300 degC, pressure: 1 bar,
+          flow: 1 mol/s}
+  cold:  {kind: supply, composition: {N2: 1}, temperature: 20 degC, pressure: 1 bar, flow: 1 mol/s}
+  meets: {kind: heat-exchanger, duty: 1 kW, approach: 50 K}
+  sky:   {kind: vent}
+lines:
+  - warm -> meets -> sky
+  - cold -> meets.cold
+"""
+
+
+def test_a_result_that_stays_where_the_setting_is_clipped_is_out_of_reach() -> None:
+    """No duty brings the hot side nearer to the cold one than the approach."""
+    text = EXCHANGER + hold(
+        hold="meets.hot_out.temperature", at="60 degC", by="meets.duty", low="0.1 kW", high="20 kW"
+    )
+    with pytest.raises(NotSolved, match="out of reach") as problem:
+        solve_flowsheet(read_text(text))
+    assert problem.value.code == "hold-out-of-reach"
+    (_, most), (_, least) = problem.value.details["ends"]
+    assert least == pytest.approx(273.15 + 70.0, abs=2.0)  # 20 degC and the approach
+    assert most > 560.0
+
+
+def test_a_setting_that_is_stuck_only_where_it_stands_is_told_so() -> None:
+    """Nothing condenses at 90 degC; at 5 degC nearly all of the water does."""
+    text = """
+components: [N2, H2O]
+equipment:
+  gas: {kind: supply, composition: {N2: rest, H2O: 10 %}, temperature: 95 degC, pressure: 2 bar,
+        flow: 1 mol/s}
+  dry: {kind: condenser, temperature: 90 degC}
+  sky: {kind: vent}
+lines:
+  - gas -> dry -> sky
+""" + hold(
+        hold="dry.liquid.flow", at="10 mmol/s", by="dry.temperature", low="5 degC", high="94 degC"
+    )
+    with pytest.raises(NotSolved, match=r"changes nothing there at .*, though it is") as problem:
+        solve_flowsheet(read_text(text))
+    assert problem.value.code == "hold-unable"
+    assert "begin nearer" in str(problem.value)
+
+
+def test_loops_that_a_hold_keeps_open_are_blamed_on_the_hold() -> None:
+    """Between 300 and 1200 degC no shift of 70 % hydrogen keeps 90 % of it."""
+    text = """
+components: [H2, H2O, CO, CO2, CH4]
+equipment:
+  gas:   {kind: supply, composition: {H2: rest, CO2: 30 %}, temperature: 300 degC,
+          pressure: 10 bar, flow: 1 mol/s}
+  shift: {kind: shift-reactor, temperature: 700 degC}
+  sky:   {kind: vent}
+lines:
+  - gas -> shift -> sky
+""" + hold(
+        hold="shift.product.fraction.H2",
+        at="0.9",
+        by="shift.temperature",
+        low="300 degC",
+        high="1200 degC",
+    )
+    with pytest.raises(NotSolved, match="out of reach") as problem:
+        solve_flowsheet(read_text(text))
+    assert problem.value.code == "hold-out-of-reach"
