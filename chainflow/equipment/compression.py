@@ -281,7 +281,9 @@ class Compressor(Equipment):
         isentropic = matter.gas_enthalpy(gas, ideal, high) - before
         if self.polytropic_efficiency is None:
             work = isentropic / self.efficiency
-            discharge = _gas_temperature(matter, gas, before + work, high, ideal)
+            capacity = matter.gas_heat_capacity(gas, ideal, high)
+            guess = ideal + (work - isentropic) / capacity
+            discharge = _gas_temperature(matter, gas, before + work, high, guess)
         else:
             discharge = polytropic_temperature(
                 matter, gas, suction, low, high, self.polytropic_efficiency

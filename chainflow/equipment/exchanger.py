@@ -180,10 +180,11 @@ def _profile(
     for kink in cold_kinks(cold, high):
         shares.append((stream_curve(cold, high)(kink) - float(cold_out.enthalpy)) / heat + 1.0)
     shares = sorted(share for share in shares if 0.0 <= share <= 1.0)
-    gaps = []
-    for share in shares:
-        warm = _moved(hot_out, heat * share, low)
-        cool = _moved(cold_out, heat * (share - 1.0), high)
+    gaps, warm, cool = [], hot_out, _moved(cold_out, -heat, high)
+    for share in shares:  # from one place to the next, each a good guess for its neighbour
+        warm = _moved(warm, float(hot_out.enthalpy) + heat * share - float(warm.enthalpy), low)
+        taken = heat * (share - 1.0)
+        cool = _moved(cool, float(cold_out.enthalpy) + taken - float(cool.enthalpy), high)
         gaps.append(float(warm.temperature) - float(cool.temperature))
     pieces = zip(shares, shares[1:], gaps, gaps[1:], strict=False)
     conductance = sum(heat * (end - start) / _log_mean(a, b) for start, end, a, b in pieces)

@@ -30,13 +30,18 @@ def least_work_pressures(
     logs = np.linspace(log(low), log(high), count + 1)
     if count == 1 or not gas.any() or high <= low:
         return [float(np.exp(x)) for x in logs]
-    total = float(gas.sum())
+    one = gas / float(gas.sum())
+    gradient, hessian = _gradient(matter, one, suctions, logs)
     for _ in range(_MOST_STEPS):
-        gradient, hessian = _gradient(matter, gas / total, suctions, logs)
-        step = np.linalg.solve(hessian, -gradient)
-        logs[1:-1] += np.clip(step, -0.5, 0.5)
-        if np.abs(step).max() < _SETTLED:
+        wanted = np.linalg.solve(hessian, -gradient)
+        step = np.clip(wanted, -0.5, 0.5)
+        logs[1:-1] += step
+        if np.abs(wanted).max() < _SETTLED:
             break
+        before = gradient
+        gradient, _ = _gradient(matter, one, suctions, logs)
+        # the ideal gas's slopes are nearly right; each step corrects them along itself (Broyden)
+        hessian = hessian + np.outer(gradient - before - hessian @ step, step) / (step @ step)
     return [low, *(exp(float(x)) for x in logs[1:-1]), high]
 
 

@@ -6,7 +6,7 @@ the gas is a diluent that only thins them. Amounts [mol/s] of one case, temperat
 solver fall back to slow and poor methods); helium stands in for the diluent.
 """
 
-from functools import cache
+from functools import cache, lru_cache
 from typing import Any, NamedTuple
 
 import cantera as ct
@@ -71,6 +71,10 @@ class Reactants:
         self, amounts: Array, diluent: float, temperature: float, pressure: float
     ) -> Balance:
         """Return the equilibrium of amounts thinned by a diluent, with its slopes."""
+        return _balance(self, amounts.tobytes(), diluent, temperature, pressure)
+
+    def find(self, amounts: Array, diluent: float, temperature: float, pressure: float) -> Balance:
+        """Work out what `balance` keeps."""
         fed = self.formula @ amounts
         found = self._composition(amounts, fed, diluent, temperature, pressure)
         response = self._response(found, fed, diluent, temperature)
@@ -81,6 +85,8 @@ class Reactants:
             missing = fed - self.formula @ found
             if np.abs(missing).max() <= ROUND_OFF * fed.max():
                 break
+        for array in (found, *response):
+            array.setflags(write=False)
         return Balance(found, response)
 
     def _composition(
@@ -141,6 +147,13 @@ class Reactants:
         slopes = weighted.T @ (answer * scale[:, np.newaxis])
         slopes[:, -1] += heats
         return Response(slopes[:, :elements], slopes[:, -2], slopes[:, -1])
+
+
+@lru_cache(maxsize=64)  # a reactor asks again for its slopes, its report, its next bed
+def _balance(
+    reactants: Reactants, raw: bytes, diluent: float, temperature: float, pressure: float
+) -> Balance:
+    return reactants.find(np.frombuffer(raw), diluent, temperature, pressure)
 
 
 @cache
