@@ -24,7 +24,12 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
-from chainflow.equipment.parting import at_one_temperature, free_separation, minimum_work
+from chainflow.equipment.parting import (
+    at_one_temperature,
+    free_separation,
+    minimum_work,
+    one_temperature_blocks,
+)
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import lower_feed
 from chainflow.equipment.published import pressure_swing_practice as practice
@@ -137,12 +142,50 @@ class PressureSwing(Equipment):
             idealisations=free_separation(power, least) if site.detail else (),
         )
 
-    def _product(self, flows: Array, matter: Matter) -> Array:
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        feed, matter = material(feeds, "feed"), site.matter
+        if float(feed.total) == 0.0 or (self.power_use and "heat" in site.outlets):
+            return {}
+        one, other = outcome.outlets["product"], outcome.outlets["tail"]
+        assert isinstance(one, Stream) and isinstance(other, Stream)
+        part = self._product_slopes(feed.flows, matter)
+        blocks = one_temperature_blocks((one, other), (part, np.eye(len(part)) - part))
+        if blocks is None:
+            return {}
+        power = np.append(self.power_use * (matter.molar_mass @ part), 0.0)
+        found = {"product": blocks[0], "tail": blocks[1], "drawn:power": power[None, :]}
+        if "heat" in site.outlets:
+            found["heat"] = np.zeros((4, len(power)))
+        return {"feed": found}
+
+    def _product_slopes(self, flows: Array, matter: Matter) -> Array:
+        """How the product's flows answer to the feed's; shape (components, components)."""
         place = matter.index[self.component]
+        others = self._others(flows, matter)
+        total, gain = float(others.sum()), self.recovery * (1.0 - self.purity) / self.purity
+        slopes = np.zeros((len(flows), len(flows)))
+        slopes[place, place] = self.recovery
+        counted = self._others(np.ones_like(flows), matter)
+        if gain * flows[place] >= self.recovery * total:
+            return slopes + self.recovery * np.diag(counted)
+        share = gain * flows[place] / total
+        slopes += share * (np.diag(counted) - np.outer(others / total, counted))
+        slopes[:, place] += gain * others / total
+        return slopes
+
+    def _others(self, flows: Array, matter: Matter) -> Array:
+        """The flows without the component that is wanted and without water."""
         others = flows.copy()
-        others[place] = 0.0
+        others[matter.index[self.component]] = 0.0
         if matter.water is not None and self.component != "H2O":
             others[matter.water] = 0.0
+        return others
+
+    def _product(self, flows: Array, matter: Matter) -> Array:
+        place = matter.index[self.component]
+        others = self._others(flows, matter)
         product = np.zeros_like(flows)
         product[place] = self.recovery * flows[place]
         total = float(others.sum())

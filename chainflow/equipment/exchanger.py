@@ -13,11 +13,11 @@ from pydantic import Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from chainflow.basis.quantities import PressureDrop, Temperature, measured
-from chainflow.equipment.base import Caution, Equipment, Outcome, Port, Role, Site, material
+from chainflow.equipment.base import Array, Caution, Equipment, Outcome, Port, Role, Site, material
 from chainflow.equipment.exchange import cold_kinks, hot_kinks, least_on, stream_curve
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
-from chainflow.thermo.streams import Stream
+from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 _PLACES = 24  # where the temperature difference is looked at for the printed answer
 _REACHED = 1e-9  # relative
@@ -97,6 +97,7 @@ class HeatExchanger(Equipment):
             {"hot_out": hot_out, "cold_out": cold_out},
             results=results,
             cautions=self._cautions(hot, cold, wanted, most),
+            inner=wanted is not None and 0.0 < wanted < most,
         )
 
     def _most(
@@ -119,6 +120,34 @@ class HeatExchanger(Equipment):
 
         pinch, heat = least_on(room, low, high, kinks)
         return max(heat, 0.0), pinch
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        hot, cold = material(feeds, "hot"), material(feeds, "cold")
+        if not outcome.inner:  # the approach has the say: it may be anywhere inside
+            return {}
+        one = np.eye(len(site.matter.components) + 1)
+        heat = {"hot": np.zeros_like(one), "cold": np.zeros_like(one)}  # [0, Q] by each side
+        for side, stream, level, sign in (
+            ("hot", hot, self.hot_outlet, -1.0),
+            ("cold", cold, self.cold_outlet, 1.0),
+        ):
+            if level is None:
+                continue
+            pressure = float(stream.pressure) - getattr(self, f"{side}_pressure_drop")
+            reached = Stream.at(site.matter, stream.flows, level, pressure)
+            by_flow, by_level = enthalpy_slopes(reached)
+            if not np.isfinite(by_level):
+                return {}
+            heat[side][-1] = sign * np.append(by_flow, -1.0)
+        return {
+            side: {
+                "hot_out": (one if side == "hot" else 0.0) - heat[side],
+                "cold_out": (one if side == "cold" else 0.0) + heat[side],
+            }
+            for side in ("hot", "cold")
+        }
 
     def _wanted(
         self, hot: Stream, cold: Stream, hot_pressure: float, cold_pressure: float

@@ -90,10 +90,12 @@ class _Exchanger(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if self.temperature is None:
-            return {}
         inlet, outlet = material(feeds, "inlet"), outcome.outlets["outlet"]
         assert isinstance(outlet, Stream)
+        if self.temperature is None:
+            linked = {"heat", "power"} & (site.inlets | site.outlets)
+            free = not linked and float(inlet.total) > 0.0
+            return {"inlet": {"outlet": np.eye(len(inlet.flows) + 1)}} if free else {}
         partial, _ = enthalpy_slopes(outlet)
         size = len(partial)
         block = np.zeros((size + 1, size + 1))

@@ -83,3 +83,26 @@ def _closed(streams: list[Stream], missing: float) -> list[Stream]:
         streams[largest], enthalpy=float(streams[largest].enthalpy) + missing
     )
     return streams
+
+
+def one_temperature_blocks(streams: Sequence[Stream], parts: Sequence[Array]) -> list[Array] | None:
+    """Return the slopes of outlets that leave at the one temperature that closes energy.
+
+    `parts` says how the flows of each outlet answer to those of the inlet, (components,
+    components); what comes back is by ``[n_1..n_C, H]`` of the inlet.  None where something boils
+    alone, so that temperature and flows do not fix its state.
+    """
+    found = [enthalpy_slopes(stream) for stream in streams]
+    capacity = sum(by_level for _, by_level in found)
+    if not np.isfinite(capacity) or capacity == 0.0:
+        return None
+    fixed = [by_flow @ part for (by_flow, _), part in zip(found, parts, strict=True)]
+    level = np.append(-sum(fixed), 1.0) / capacity
+    blocks = []
+    for part, row, (_, by_level) in zip(parts, fixed, found, strict=True):
+        size = len(part)
+        block = np.zeros((size + 1, size + 1))
+        block[:size, :size] = part
+        block[size] = np.append(row, 0.0) + by_level * level
+        blocks.append(block)
+    return blocks

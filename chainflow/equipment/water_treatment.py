@@ -9,10 +9,20 @@ from __future__ import annotations
 from collections.abc import Iterable, Iterator, Mapping
 from typing import Annotated, Any, ClassVar
 
+import numpy as np
 from pydantic import Field
 
 from chainflow.basis.quantities import OpenFraction, Pressure, measured
-from chainflow.equipment.base import Caution, Equipment, Outcome, Port, Role, Site, material
+from chainflow.equipment.base import (
+    Array,
+    Caution,
+    Equipment,
+    Outcome,
+    Port,
+    Role,
+    Site,
+    material,
+)
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import WATER_MOLAR_VOLUME, Matter
 from chainflow.thermo.streams import Stream
@@ -81,6 +91,17 @@ class WaterTreatment(Equipment):
             results={"water_m3_s": volume, "power_use_J_m3": self.power_use},
             cautions=self._cautions(inlet),
         )
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        both = np.eye(len(site.matter.components) + 1)
+        power = np.zeros(len(both))
+        power[site.matter.water] = self.power_use * self.recovery * WATER_MOLAR_VOLUME
+        both[-1] += power
+        rejected = (1.0 - self.recovery) * both
+        blocks = {"water": self.recovery * both, "reject": rejected, "drawn:power": power[None, :]}
+        return {"inlet": blocks}
 
     def _cautions(self, inlet: Stream) -> tuple[Caution, ...]:
         if float(inlet.gas.sum()) <= 1e-3 * float(inlet.total):

@@ -168,4 +168,11 @@ def test_slopes_are_given_where_they_pay():
         "electrolyser",
         "switchboard",
         "pv-field",
+        "flash-drum",
+        "cut",
+        "reformer",
+        "fischer-tropsch-reactor",
+        "pressure-swing",
+        "water-treatment",
+        "heat-exchanger",
     }
