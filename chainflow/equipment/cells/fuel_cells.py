@@ -14,9 +14,9 @@ from math import exp, inf
 from typing import Annotated, Any, Literal, NamedTuple
 
 import numpy as np
-from pydantic import BaseModel, ConfigDict, Field, model_validator
+from pydantic import Field, model_validator
 
-from chainflow.basis.constants import ATMOSPHERE, FARADAY, GAS_CONSTANT
+from chainflow.basis.constants import ATMOSPHERE, GAS_CONSTANT
 from chainflow.basis.quantities import measured
 from chainflow.equipment.base import Array
 from chainflow.equipment.burning import oxygen_demand
@@ -27,7 +27,7 @@ from chainflow.equipment.cells.pem import (
     AreaResistance,
     ExchangeCurrent,
     LimitingCurrent,
-    Permeability,
+    Membrane,
     Thickness,
     Transfer,
     WaterContent,
@@ -86,10 +86,8 @@ SETS: dict[str, dict[str, Any]] = {
 _N, _F = neyerlin_2006.NUMBERS, mann_2000.FITTED
 
 
-class PemFuelCell(BaseModel):
+class PemFuelCell(Membrane):
     """Numbers of a PEM fuel cell; those of `set` unless given."""
-
-    model_config = ConfigDict(frozen=True, extra="forbid")
 
     set: Literal["neyerlin-2006", "mark-v", "mann-2000"] = Field(
         "neyerlin-2006",
@@ -116,9 +114,6 @@ class PemFuelCell(BaseModel):
         _N["oxygen_order"], description="order of the exchange current in oxygen pressure"
     )
     transfer: Transfer = Field(_N["transfer"], description="transfer coefficient times electrons")
-    permeability: Permeability | None = Field(
-        None, description="of the membrane for hydrogen, instead of the one by temperature"
-    )
     xi1: Volt = Field(_F.xi1, description="semi-empirical activation")
     xi2: VoltPerKelvin | None = Field(
         _F.xi2, description="the same by temperature; without it from cell size and hydrogen"
@@ -138,15 +133,11 @@ class PemFuelCell(BaseModel):
 
     def curve(self, temperature: float, hydrogen: float, oxygen: float) -> PemFuelCurve:
         """Return the cell at a temperature and the pressures of hydrogen and oxygen."""
-        permeability = self.permeability
-        if permeability is None:
-            permeability = kocha_2006.hydrogen_permeability(temperature)
         semi_empirical = self.set != "neyerlin-2006"
-        leak = 0.0 if semi_empirical else 2.0 * FARADAY * permeability * hydrogen / self.thickness
+        leak = 0.0 if semi_empirical else self.leak(temperature) * hydrogen
         warmth = 1.0 / temperature - 1.0 / neyerlin_2006.REFERENCE_TEMPERATURE
         exchange = self.exchange_current * exp(-self.activation_energy / GAS_CONSTANT * warmth)
         exchange *= (oxygen / neyerlin_2006.REFERENCE_PRESSURE) ** self.oxygen_order
-        conductivity = springer_1991.conductivity(self.water_content, temperature)
         return PemFuelCurve(
             self,
             temperature,
@@ -154,7 +145,7 @@ class PemFuelCell(BaseModel):
             oxygen,
             reversible_voltage(temperature) + nernst_shift(temperature, hydrogen, oxygen),
             exchange,
-            self.thickness / conductivity + self.contact_resistance,
+            self.resistance(temperature),
             leak,
             self.limiting_current,
             semi_empirical,

@@ -71,10 +71,43 @@ def completed(given: Any, sets: dict[str, dict[str, float]], default: str) -> An
     return {**sets.get(name, {}), **given} if isinstance(name, str) else given
 
 
-class PemCell(BaseModel):
-    """Numbers of a PEM electrolyser; those of `set` unless given."""
+class Membrane(BaseModel):
+    """What a cell with a proton-conducting membrane has, whichever way it is run.
+
+    Defaults stand in the classes derived from it.
+    """
 
     model_config = ConfigDict(frozen=True, extra="forbid")
+
+    set: str = Field(description="published numbers that hold where none is given")
+    thickness: Thickness = Field(description="membrane thickness")
+    water_content: WaterContent = Field(description="water per acid group of the membrane")
+    contact_resistance: AreaResistance = Field(description="contacts and plates, by cell area")
+    limiting_current: LimitingCurrent = Field(
+        description="current density at which transport gives out"
+    )
+    permeability: Permeability | None = Field(
+        None, description="of the membrane for hydrogen, instead of the one by temperature"
+    )
+
+    def conductivity_at(self, temperature: float) -> float:
+        """Return the conductivity of the membrane [S/m] by its water content."""
+        return springer_1991.conductivity(self.water_content, temperature)
+
+    def resistance(self, temperature: float) -> float:
+        """Return membrane and contacts [ohm m2]."""
+        return self.thickness / self.conductivity_at(temperature) + self.contact_resistance
+
+    def leak(self, temperature: float) -> float:
+        """Return what hydrogen crossing is worth per pressure of hydrogen [A/(m2 Pa)]."""
+        permeability = self.permeability
+        if permeability is None:
+            permeability = kocha_2006.hydrogen_permeability(temperature)
+        return 2.0 * FARADAY * permeability / self.thickness
+
+
+class PemCell(Membrane):
+    """Numbers of a PEM electrolyser; those of `set` unless given."""
 
     set: Literal["han-2015", "bernt-2016", "espinosa-lopez-2018"] = Field(
         "han-2015", description="published numbers that hold where none is given"
@@ -113,9 +146,6 @@ class PemCell(BaseModel):
     cathode_transfer: Transfer = Field(
         _DEFAULT["cathode_transfer"], description="transfer coefficient times electrons"
     )
-    permeability: Permeability | None = Field(
-        None, description="of the membrane for hydrogen, instead of the one by temperature"
-    )
     supersaturation: Supersaturation = Field(
         0.0, description="hydrogen pressure that a current adds at the membrane, 0 to 40 bar*cm2/A"
     )
@@ -134,14 +164,10 @@ class PemCell(BaseModel):
     def _of_set(cls, given: Any) -> Any:
         return completed(given, SETS, "han-2015")
 
-    def resistance(self, temperature: float) -> float:
-        """Return membrane and contacts [ohm m2]."""
-        conductivity = springer_1991.conductivity(self.water_content, temperature)
-        if self.conductivity is not None:
-            conductivity = self.conductivity * _arrhenius(
-                self.conductivity_activation_energy, temperature
-            )
-        return self.thickness / conductivity + self.contact_resistance
+    def conductivity_at(self, temperature: float) -> float:
+        if self.conductivity is None:
+            return super().conductivity_at(temperature)
+        return self.conductivity * _arrhenius(self.conductivity_activation_energy, temperature)
 
     def curve(self, temperature: float, pressure: float) -> PemCurve:
         """Return the cell at a temperature and the pressure of its hydrogen side."""
@@ -149,9 +175,7 @@ class PemCell(BaseModel):
         hydrogen = pressure - vapour
         oxygen = (self.oxygen_pressure or pressure) - vapour
         reversible = reversible_voltage(temperature) + nernst_shift(temperature, hydrogen, oxygen)
-        permeability = self.permeability
-        if permeability is None:
-            permeability = kocha_2006.hydrogen_permeability(temperature)
+        leak = self.leak(temperature)
         return PemCurve(
             self,
             temperature,
@@ -159,8 +183,8 @@ class PemCell(BaseModel):
             self.anode_exchange_current * _arrhenius(self.anode_activation_energy, temperature),
             self.cathode_exchange_current * _arrhenius(self.cathode_activation_energy, temperature),
             self.resistance(temperature),
-            2.0 * FARADAY * permeability / self.thickness * hydrogen,
-            2.0 * FARADAY * permeability / self.thickness * self.supersaturation,
+            leak * hydrogen,
+            leak * self.supersaturation,
             self.limiting_current,
         )
 
