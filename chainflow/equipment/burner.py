@@ -37,6 +37,7 @@ from chainflow.thermo.flames import flame_state
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 _MOST_STEPS = 60
+_FLAME = 2000.0  # [K], where the search for an adiabatic flame begins
 
 
 class Burner(Combustion):
@@ -314,7 +315,7 @@ class _Fire:
             out = np.maximum(burnt(matter) @ flows, 0.0)
             level = float(Stream.from_enthalpy(matter, out, enthalpy, pressure, 1500.0).temperature)
             return _Fire(flows, enthalpy, pressure, out, level, dict(drawn), unmet)
-        found = equilibrate_adiabatic(matter, flows, enthalpy, pressure)
+        found = equilibrate_adiabatic(matter, flows, enthalpy, pressure, guess=_FLAME)
         level = found.temperature
         return _Fire(flows, enthalpy, pressure, found.flows, level, dict(drawn), unmet, found)
 

@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
+from math import inf
 from typing import Any, ClassVar, Literal
 
 import numpy as np
@@ -231,14 +232,14 @@ class Compressor(Equipment):
     def _stages(self, inlet: Stream, matter: Matter) -> list[Stage]:
         if self.stages != "auto":
             return self._train(inlet, matter, self.stages)
-        train: list[Stage] = []
-        for count in range(1, _MOST_STAGES + 1):
-            train = self._train(inlet, matter, count)
-            if max(stage.discharge for stage in train) <= self.discharge_limit:
-                break
-        return train
+        for count in range(1, _MOST_STAGES):
+            train = self._train(inlet, matter, count, self.discharge_limit)
+            if train[-1].discharge <= self.discharge_limit:
+                return train
+        return self._train(inlet, matter, _MOST_STAGES)
 
-    def _train(self, inlet: Stream, matter: Matter, count: int) -> list[Stage]:
+    def _train(self, inlet: Stream, matter: Matter, count: int, limit: float = inf) -> list[Stage]:
+        """That many stages; none more behind one that discharges above a limit [K]."""
         gas, suction = inlet.gas, float(inlet.temperature)
         low, *rises = self._pressures(inlet, matter, count)
         train = []
@@ -246,6 +247,8 @@ class Compressor(Equipment):
             cool = self.aftercool if number == count - 1 else self.intercool
             stage = self._stage(matter, gas, suction, low, high, cool)
             train.append(stage)
+            if stage.discharge > limit:
+                break
             gas, low = gas - stage.condensate, high
             suction = stage.discharge if stage.cooled_to is None else stage.cooled_to
         return train
