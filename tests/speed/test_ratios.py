@@ -20,6 +20,7 @@ import pytest
 from chainflow.flowsheet.building import read_flowsheet, read_text
 from chainflow.solver.newton import Newton
 from chainflow.solver.solve import Prepared
+from chainflow.thermo.species import gas_phase
 from tests.solver.small_plants import chain_of_loops, methane_loop
 from tests.speed.recording import recorded, replay, seconds
 
@@ -33,22 +34,40 @@ def say(text: str) -> None:
     print(f"\n    {text}", flush=True)
 
 
+def raw_equilibria(count: int = 1000) -> float:
+    """CPU seconds of raw equilibria of five gases: a yardstick that no change of ours moves."""
+    phase = gas_phase(("H2", "CO", "CO2", "CH4", "H2O"))
+    start = time.process_time()
+    for _ in range(count):
+        phase.TPX = 900.0, 3e6, "H2:4, CO2:1"
+        phase.equilibrate("TP", rtol=1e-12)
+    return time.process_time() - start
+
+
 def test_solver_time_over_raw_cantera_calls(benchmark: Any) -> None:
-    """Aim 4, not above 6: closing the loops against the same Cantera calls alone."""
+    """Closing the loops against the same Cantera calls alone, and against a fixed yardstick.
+
+    The first ratio grows when calls are saved, so it is shown and not judged: of the calls that
+    it once was 5.4 times of, more than half of the time went into flames that Cantera could not
+    solve.  The second falls only if closing the loops gets faster.
+    """
     flowsheet = read_flowsheet(FLOWSHEETS / "methane-cycle.yaml")
     Prepared(flowsheet).close()  # warm caches
     prepared = Prepared(flowsheet)
     with recorded(flowsheet.matter) as log:
         prepared.close()
-    ratios = []
+    ratios, fixed = [], []
     for _ in range(RUNS):
         prepared = Prepared(flowsheet)
-        ratios.append(seconds(prepared.close) / replay(log))
-    ratio = statistics.median(ratios)
+        took = seconds(prepared.close)
+        ratios.append(took / replay(log))
+        fixed.append(took / raw_equilibria())
+    ratio, judged = statistics.median(ratios), statistics.median(fixed)
     say(f"solver over raw Cantera calls: {ratio:.2f} ({len(log)} calls)")
+    say(f"solver over 1000 raw equilibria: {judged:.2f}")
     benchmark.extra_info["ratio"] = ratio
     benchmark.pedantic(lambda: Prepared(flowsheet).close(), rounds=3)
-    assert ratio < 6.0
+    assert judged < 15.0
 
 
 def substitution_passes(newton: Newton, most: int = 5000) -> int:
