@@ -13,6 +13,7 @@ from typing import Any
 
 from chainflow.accounts.deliveries import Deliveries, deliveries
 from chainflow.accounts.efficiency import Efficiency, efficiency, sunlight
+from chainflow.accounts.heat import HeatAccount, heat_account
 from chainflow.accounts.purchases import Purchases, purchases
 from chainflow.accounts.returned import returned
 from chainflow.basis.faults import UsageFault
@@ -32,6 +33,7 @@ class PlantAccount:
     sold: Deliveries
     efficiency: Efficiency
     returned: dict[str, float | None]
+    heat: HeatAccount
     from_air: tuple[tuple[str, Stream], ...] = ()
 
     def as_data(self) -> dict[str, Any]:
@@ -60,6 +62,7 @@ class PlantAccount:
                 {"from": rung.start, "to": rung.end, "ratio": rung.ratio} for rung in found.rungs
             ],
             "returned": dict(self.returned),
+            "heat": self.heat.as_data(),
         }
 
 
@@ -72,6 +75,7 @@ def plant_account(solution: Solution) -> PlantAccount:
         sold=sold,
         efficiency=efficiency(solution, bought, sold),
         returned={name: returned(solution, species) for name, species in RETURNED.items()},
+        heat=heat_account(solution),
         from_air=tuple(
             (name, stream) for name, found in solution.outcomes.items() for stream in found.taken
         ),

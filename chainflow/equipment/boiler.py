@@ -245,13 +245,18 @@ class Boiler(Equipment):
         )
 
     def _duties(self, given: Heat | None, used: float) -> list[Duty]:
+        """The heat taken in, and its colder rest."""
         if given is None:
             return []
-        hottest, coldest = max(given.start, given.end), min(given.start, given.end)
-        share = min(used / given.rate, 1.0) if given.rate > 0.0 else 0.0
-        turn = hottest - share * (hottest - coldest)
         taken = Duty("heat taken in", given.rate, given.start, given.end, given.mean, "heat")
-        return [taken, Duty.between("heat left over", used - given.rate, turn, coldest)]
+        duties = [replace(taken, curve=given.parts)]
+        for piece in _falling(given):
+            gone = min(max(used, 0.0), piece.rate)
+            used -= gone
+            share = gone / piece.rate if piece.rate > 0.0 else 0.0
+            turn = piece.hottest - share * (piece.hottest - piece.coldest)
+            duties.append(Duty.between("heat left over", gone - piece.rate, turn, piece.coldest))
+        return duties
 
     def _cautions(self, side: _HotSide, one: _PerMol, amount: float) -> tuple[Caution, ...]:
         if amount > 0.0 or side.total <= 0.0:
@@ -263,16 +268,25 @@ class Boiler(Equipment):
         return (Caution("hot-not-hot", text),)
 
 
+def _falling(given: Heat) -> list[Heat]:
+    """The pieces of a heat flow, the hottest first."""
+    return sorted(given.pieces, key=lambda piece: (-piece.hottest, -piece.coldest))
+
+
 def _of_heat(given: Heat) -> _HotSide:
-    """Heat spread evenly between its two temperatures, or all at one."""
-    hottest, coldest = max(given.start, given.end), min(given.start, given.end)
+    """Heat whose every piece is spread evenly between two temperatures, or all at one."""
 
     def above(level: float) -> float:
-        if level <= coldest:
-            return given.rate
-        if level >= hottest:
-            return 0.0
-        return given.rate * (hottest - level) / (hottest - coldest)
+        return sum(_above(piece, level) for piece in given.pieces)
 
-    kinks = [coldest, hottest, hottest * (1.0 + _BESIDE)]
-    return _HotSide(above, kinks, hottest, max(given.rate, 0.0))
+    ends = [end for piece in given.pieces for end in (piece.coldest, piece.hottest)]
+    kinks = [*ends, *(end * (1.0 + _BESIDE) for end in ends)]
+    return _HotSide(above, kinks, given.hottest, max(given.rate, 0.0))
+
+
+def _above(piece: Heat, level: float) -> float:
+    if level <= piece.coldest:
+        return piece.rate
+    if level >= piece.hottest:
+        return 0.0
+    return piece.rate * (piece.hottest - level) / (piece.hottest - piece.coldest)

@@ -1,8 +1,9 @@
 """The heat cascade: how much of the needs can be met by heat that is hot enough.
 
 A plain function of heat flows [W] between temperatures [K], the problem table of Linnhoff and
-Flower, AIChE J. 24 (1978) 633: heat falls from interval to interval; where more has been needed
-than given so far, heat from outside is missing.
+Flower, AIChE J. 24 (1978) 633: heat given off is shifted down and heat needed is shifted up by half
+the approach, then heat falls from interval to interval; where more has been needed than given so
+far, heat from outside is missing.
 """
 
 from __future__ import annotations
@@ -12,70 +13,106 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from chainflow.equipment.ports import Heat, mean_temperature
+from chainflow.equipment.heat_matching import SAME_LEVEL
+from chainflow.equipment.ports import Heat
+
+_NOTHING = 1e-12  # relative to all heat: round-off of the sums
 
 
 @dataclass(frozen=True, slots=True)
 class Cascade:
-    """Result of a heat cascade; temperatures are shifted by half the approach."""
+    """Result of a heat cascade; its levels are shifted by half the approach."""
 
+    approach: float  # [K]
     hot_utility: float  # least heat from outside [W]
     cold_utility: float  # heat left over [W]
-    pinch: float | None  # shifted temperature where the cascade is empty [K]
+    pinch: float | None  # shifted temperature that no heat passes [K]; None if heat is enough
     levels: np.ndarray  # shifted temperatures, falling, shape (n,) [K]
-    flow: np.ndarray  # heat that falls past each level with the hot utility, shape (n,) [W]
-    rest: Heat | None  # what is left over, as one flow
+    arriving: np.ndarray  # heat that reaches each level from above, hot utility included, (n,) [W]
+    passing: np.ndarray  # heat that leaves it downwards, after heat of that very level, (n,) [W]
+
+    @property
+    def flow(self) -> np.ndarray:
+        """The smaller of what reaches and what leaves each level, shape (n,) [W]."""
+        return np.minimum(self.arriving, self.passing)
+
+    @property
+    def pinch_given(self) -> float | None:
+        """Temperature of the heat given off at the pinch [K]."""
+        return None if self.pinch is None else self.pinch + 0.5 * self.approach
+
+    @property
+    def pinch_needed(self) -> float | None:
+        """Temperature of the heat needed at the pinch [K]."""
+        return None if self.pinch is None else self.pinch - 0.5 * self.approach
+
+    @property
+    def grand_composite(self) -> list[tuple[float, float]]:
+        """Points (heat [W], shifted temperature [K]) from the hottest level down."""
+        points: list[tuple[float, float]] = []
+        for level, above, below in zip(self.levels, self.arriving, self.passing, strict=True):
+            points.append((float(above), float(level)))
+            if below != above:
+                points.append((float(below), float(level)))
+        return points
 
 
 def cascade(given: Sequence[Heat], needed: Sequence[Heat], approach: float = 0.0) -> Cascade:
     """Let the heat of `given` fall onto `needed`; rates positive [W], approach [K]."""
-    shift = 0.5 * approach
-    sources = [(max(h.start, h.end) - shift, min(h.start, h.end) - shift, h.rate) for h in given]
-    sinks = [(max(h.start, h.end) + shift, min(h.start, h.end) + shift, h.rate) for h in needed]
-    levels = np.array(
-        sorted({t for hot, cold, _ in (*sources, *sinks) for t in (hot, cold)}, reverse=True)
-    )
+    half = 0.5 * approach
+    sources = [(p.hottest - half, p.coldest - half, p.rate) for h in given for p in h.pieces]
+    sinks = [(p.hottest + half, p.coldest + half, p.rate) for h in needed for p in h.pieces]
+    levels = _levels([*sources, *sinks])
     if levels.size == 0:
-        return Cascade(0.0, 0.0, None, levels, levels, None)
-    supply = _by_interval(sources, levels)
-    demand = _by_interval(sinks, levels)
-    flow = np.cumsum(supply - demand)
+        return Cascade(approach, 0.0, 0.0, None, levels, levels, levels)
+    net = _by_interval(sources, levels) - _by_interval(sinks, levels)
+    flow = np.cumsum(net)
+    size = _NOTHING * sum(rate for _, _, rate in (*sources, *sinks))
     least = max(0.0, -float(flow.min()))
-    at_level = np.maximum(least + flow, 0.0)[::2]  # just past each level's own (isothermal) heat
-    between = least + np.concatenate([[0.0], flow[1::2]])
-    falling = np.minimum(at_level, between)
-    pinch = float(levels[int(np.argmin(falling))]) if falling.size else None
-    rest = _left_over(supply, demand, levels)
-    return Cascade(least, least + float(flow[-1]), pinch, levels, falling, rest)
+    least = least if least > size else 0.0
+    arriving = np.maximum(least + np.concatenate([[0.0], flow[1::2]]), 0.0)
+    passing = np.maximum(least + flow[::2], 0.0)
+    smaller = np.minimum(arriving, passing)
+    pinched = least > 0.0 and sources
+    pinch = float(levels[int(np.argmin(smaller))]) if pinched else None
+    return Cascade(approach, least, float(passing[-1]), pinch, levels, arriving, passing)
+
+
+def composite(heats: Sequence[Heat]) -> list[tuple[float, float]]:
+    """The composite curve: points (heat [W], temperature [K]), heat summed up from the coldest."""
+    parts = [(p.hottest, p.coldest, p.rate) for h in heats for p in h.pieces if p.rate > 0.0]
+    levels = _levels(parts)
+    if levels.size == 0:
+        return []
+    heat = _by_interval(parts, levels)[::-1]  # from the coldest up: at a level, above it, ...
+    total, points = 0.0, [(0.0, float(levels[-1]))]
+    for place, amount in enumerate(heat):
+        total += float(amount)
+        between = place % 2 == 1
+        if between or amount > 0.0:
+            points.append((total, float(levels[::-1][(place + 1) // 2])))
+    return points
+
+
+def _levels(parts: Sequence[tuple[float, float, float]]) -> np.ndarray:
+    """All temperatures, falling; those that are the same but for round-off once."""
+    found: list[float] = []
+    for level in sorted({t for hot, cold, _ in parts for t in (hot, cold)}, reverse=True):
+        if not found or found[-1] - level > SAME_LEVEL:
+            found.append(level)
+    return np.array(found)
 
 
 def _by_interval(parts: Sequence[tuple[float, float, float]], levels: np.ndarray) -> np.ndarray:
     """Heat at each level (even index) and in the interval below it (odd index); shape (2n - 1,)."""
     heat = np.zeros(2 * len(levels) - 1)
     for hot, cold, rate in parts:
-        if hot == cold:
-            heat[2 * int(np.flatnonzero(levels == hot)[0])] += rate
+        first, last = (int(np.abs(levels - end).argmin()) for end in (hot, cold))
+        if first == last:
+            heat[2 * first] += rate
             continue
-        inside = (levels[:-1] <= hot) & (levels[1:] >= cold)
-        heat[1::2] += np.where(inside, rate * (levels[:-1] - levels[1:]) / (hot - cold), 0.0)
-    return heat
-
-
-def _left_over(supply: np.ndarray, demand: np.ndarray, levels: np.ndarray) -> Heat | None:
-    """What remains when each need, hottest first, takes the coldest heat that is hot enough."""
-    left = supply.copy()
-    for i, need in enumerate(demand):
-        for j in range(i, -1, -1):
-            used = min(need, left[j])
-            left[j] -= used
-            need -= used
-    parts = []
-    for k in np.flatnonzero(left > 0.0):
-        start = levels[k // 2]
-        end = levels[k // 2 + (k % 2)]
-        parts.append(
-            Heat(
-                float(left[k]), float(start), float(end), mean_temperature(float(start), float(end))
-            )
+        inside = levels[first : last + 1]
+        heat[2 * first + 1 : 2 * last : 2] += (
+            rate * (inside[:-1] - inside[1:]) / (inside[0] - inside[-1])
         )
-    return Heat.total(parts) if parts else None
+    return heat

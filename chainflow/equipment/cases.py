@@ -7,7 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Mapping
 from dataclasses import replace
-from typing import Any
+from typing import Any, cast
 
 import numpy as np
 
@@ -34,10 +34,11 @@ def case_count(*groups: Mapping[str, Any]) -> int | None:
             for flow in arriving(group, port):
                 if isinstance(flow, Stream) and flow.gas.ndim == 2:
                     return int(flow.gas.shape[0])
-                if isinstance(flow, np.ndarray) and flow.ndim == 1:
-                    return int(flow.shape[0])
                 if isinstance(flow, Light) and flow.cases is not None:
                     return flow.cases
+                number = flow.rate if isinstance(flow, Heat) else flow
+                if isinstance(number, np.ndarray) and number.ndim == 1:
+                    return int(number.shape[0])
     return None
 
 
@@ -51,12 +52,23 @@ def one_case(group: Mapping[str, Any], i: int) -> dict[str, Any]:
             return float(flow[i])
         if isinstance(flow, Light):
             return flow.case(i)
+        if isinstance(flow, Heat):
+            parts = tuple(tuple(_one(number, i) for number in part) for part in flow.parts)
+            rate, start, end, mean = (
+                _one(n, i) for n in (flow.rate, flow.start, flow.end, flow.mean)
+            )
+            return Heat(rate, start, end, mean, cast(Any, parts))
         return flow
 
     return {
         port: tuple(one(f) for f in flow) if isinstance(flow, tuple) else one(flow)
         for port, flow in group.items()
     }
+
+
+def _one(number: Any, i: int) -> Any:
+    """One case of a number; what is the same in all cases stays as it is."""
+    return float(number[i]) if isinstance(number, np.ndarray) and number.ndim == 1 else number
 
 
 def _column(numbers: list[Any]) -> Any:
@@ -68,12 +80,25 @@ def _stack(values: list[Any]) -> Any:
     if isinstance(values[0], Stream):
         return Stream.stack(values)
     if isinstance(values[0], Heat):
-        names = ("rate", "start", "end", "mean")
-        return Heat(*(_column([getattr(v, name) for v in values]) for name in names))
+        return _stack_heat(values)
     if isinstance(values[0], Light):
         columns = zip(*(v.numbers for v in values), strict=True)
         return Light(*(_column(list(column)) for column in columns))
     return _column(values)
+
+
+def _stack_heat(heats: list[Heat]) -> Heat:
+    """One heat flow; cases with fewer parts get some without heat at their end."""
+    names = ("rate", "start", "end", "mean")
+    rate, start, end, mean = (_column([getattr(heat, name) for heat in heats]) for name in names)
+    most = max(len(heat.parts) for heat in heats)
+    rows = [[(p.rate, p.start, p.end, p.mean) for p in heat.pieces] for heat in heats]
+    for heat, row in zip(heats, rows, strict=True):
+        row += [(0.0, heat.end, heat.end, heat.end)] * (most - len(row))
+    parts = tuple(
+        tuple(_column([row[k][place] for row in rows]) for place in range(4)) for k in range(most)
+    )
+    return Heat(rate, start, end, mean, cast(Any, parts))
 
 
 def stack_outcomes(singles: list[Outcome]) -> Outcome:

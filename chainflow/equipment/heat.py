@@ -26,7 +26,8 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
-from chainflow.equipment.cooling import add_heat_slopes, cooling_duties, wrong_way
+from chainflow.equipment.cooling import cooling_duties, wrong_way
+from chainflow.equipment.cooling_slopes import add_heat_slopes
 from chainflow.equipment.ports import Feeds, arriving
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 

@@ -10,14 +10,18 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass, replace
 
-from chainflow.equipment.ports import Heat, mean_temperature
+from chainflow.equipment.ports import Heat, Part, mean_temperature, scaled_parts
 
 _TEMPERATURE_SLACK = 1e-6  # [K], so that heat at 593.15 K serves a need up to 593.15 K
 
 
 @dataclass(frozen=True, slots=True)
 class Duty:
-    """Heat into (+) or out of (-) a piece of equipment [W], between two temperatures [K]."""
+    """Heat into (+) or out of (-) a piece of equipment [W], between two temperatures [K].
+
+    Where it is not spread evenly between them, `curve` says how: parts ``(heat, start, end, mean)``
+    from its start to its end that add up to it.
+    """
 
     purpose: str
     heat: float
@@ -25,6 +29,8 @@ class Duty:
     end: float
     mean: float
     met_by: str = ""  # power, heat, own, ambient, bought
+    curve: tuple[Part, ...] = ()
+    usable: bool = False  # given off above the ambient where a line could take it
 
     @staticmethod
     def between(
@@ -43,7 +49,15 @@ class Duty:
 
     def part(self, heat: float, met_by: str) -> Duty:
         """The same duty for a part of its heat."""
-        return replace(self, heat=heat, met_by=met_by)
+        curve = scaled_parts(self.curve, heat / self.heat) if self.curve else ()
+        return replace(self, heat=heat, met_by=met_by, curve=curve)
+
+    @property
+    def flow(self) -> Heat:
+        """The heat as a flow with a positive rate, whichever way it goes."""
+        sign = 1.0 if self.heat >= 0.0 else -1.0
+        parts = scaled_parts(self.curve, sign)
+        return Heat(sign * self.heat, self.start, self.end, self.mean, parts)
 
 
 @dataclass(frozen=True, slots=True)
@@ -85,9 +99,10 @@ def settle(
             at_ambient = cold.coldest >= ambient - _TEMPERATURE_SLACK
             done.append(replace(cold, met_by="ambient" if at_ambient else "bought"))
         if warm is not None:
-            leaving.append(replace(warm, met_by="heat" if "heat" in outlets else "ambient"))
-    offered = [Heat(-d.heat, d.start, d.end, d.mean) for d in leaving if d.met_by == "heat"]
-    called = [Heat(d.heat, d.start, d.end, d.mean) for d in asked if d.met_by == "heat"]
+            way = "heat" if "heat" in outlets else "ambient"
+            leaving.append(replace(warm, met_by=way, usable=True))
+    offered = [duty.flow for duty in leaving if duty.met_by == "heat"]
+    called = [duty.flow for duty in asked if duty.met_by == "heat"]
     level = needs[0].start if needs else ambient
     none = Heat(0.0, level, level, level)
     return Settled(
@@ -118,7 +133,10 @@ def _meet_own(needs: Sequence[Duty]) -> tuple[list[Duty], list[Duty], list[Duty]
 
 
 def _cut_at(duty: Duty, ambient: float) -> tuple[Duty | None, Duty | None]:
-    """The part of a duty at or below the ambient temperature, and the part above it."""
+    """The part of a duty at or below the ambient temperature, and the part above it.
+
+    A duty with a curve has been cut there already; another that is not loses its curve.
+    """
     if duty.coldest >= ambient - _TEMPERATURE_SLACK:
         return (duty, None) if duty.hottest <= ambient + _TEMPERATURE_SLACK else (None, duty)
     if duty.hottest <= ambient + _TEMPERATURE_SLACK:

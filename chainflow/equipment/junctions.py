@@ -271,8 +271,9 @@ def _part(flow: Flow, share: float) -> Array:
     """Slopes of a share of a flow: the amount is parted, heat and light keep their state."""
     if isinstance(flow, Stream):
         return share * np.eye(len(flow.matter.components) + 1)
-    states = 3 if isinstance(flow, Heat) else 4 if isinstance(flow, Light) else 0
-    return np.diag([share, *[1.0] * states])
+    if isinstance(flow, Heat):
+        return np.diag([share, 1.0, 1.0, 1.0] * len(flow.pieces))
+    return np.diag([share, *[1.0] * (4 if isinstance(flow, Light) else 0)])
 
 
 def _streams(feeds: Feeds, port: str) -> tuple[Stream, ...]:

@@ -27,7 +27,8 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
-from chainflow.equipment.cooling import add_heat_slopes, cooling_duties
+from chainflow.equipment.cooling import cooling_duties
+from chainflow.equipment.cooling_slopes import add_heat_slopes
 from chainflow.equipment.parting import free_separation, minimum_work, worth_of
 from chainflow.equipment.ports import ANY_NAME, Feeds
 from chainflow.equipment.pressures import lower_feed

@@ -26,7 +26,9 @@ class Caution:
 class Site:
     """What the place gives: the matter, the ambient temperature [K] and which ports are linked.
 
-    `detail` asks for what only the printed answer needs (duty segments, cautions).
+    `detail` asks for what only the printed answer needs (duty segments, cautions); `shaped` for
+    how heat on a line is spread over its temperatures; `electric` names the linked inlets that
+    power reaches where heat could come, too.
     """
 
     matter: Matter
@@ -34,6 +36,8 @@ class Site:
     inlets: frozenset[str] = frozenset()
     outlets: frozenset[str] = frozenset()
     detail: bool = True
+    electric: frozenset[str] = frozenset()
+    shaped: bool = True
 
 
 @dataclass(frozen=True, slots=True)

@@ -10,6 +10,7 @@ from __future__ import annotations
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from enum import Enum
+from itertools import pairwise
 from typing import Any
 
 import numpy as np
@@ -37,7 +38,7 @@ class Port:
     """One inlet or outlet of a kind of equipment."""
 
     name: str
-    content: str  # "material", "power", "heat", "light" or "any"
+    content: str  # "material", "power", "heat", "light", "heat or power" or "any"
     role: Role
     many: bool = False  # takes, or serves, any number of lines
     optional: bool = False  # may stay without a line
@@ -53,17 +54,28 @@ class Port:
         return self.name == ANY_NAME
 
 
+Part = tuple[float, float, float, float]  # rate [W], start, end, entropy-mean temperature [K]
+MOST_PARTS = 24  # of one heat flow; the closest of more are joined
+
+
+def scaled_parts(parts: Sequence[Part], factor: float) -> tuple[Part, ...]:
+    """The same parts with another amount of heat in each."""
+    return tuple((rate * factor, start, end, mean) for rate, start, end, mean in parts)
+
+
 @dataclass(frozen=True, slots=True)
 class Heat:
     """A flow of heat [W] given off (or needed) between two temperatures [K].
 
-    `mean` is the entropy-mean temperature: rate / (entropy that goes with it) [K].
+    `mean` is the entropy-mean temperature: rate / (entropy that goes with it) [K].  Heat that is
+    not spread evenly over its temperatures comes in `parts` that are; they add up to it.
     """
 
     rate: float
     start: float
     end: float
     mean: float
+    parts: tuple[Part, ...] = ()
 
     @staticmethod
     def between(rate: float, start: float, end: float) -> Heat:
@@ -71,26 +83,74 @@ class Heat:
         return Heat(rate, start, end, mean_temperature(start, end))
 
     @staticmethod
-    def total(parts: Sequence[Heat]) -> Heat:
-        """All of `parts` as one flow: from the hottest start to the coldest end."""
-        flowing = [part for part in parts if part.rate != 0.0]
+    def total(flows: Sequence[Heat]) -> Heat:
+        """All of `flows` as one: from the hottest start to the coldest end, shapes kept."""
+        flowing = [flow for flow in flows if flow.rate != 0.0]
         if not flowing:
-            return parts[0] if parts else Heat(0.0, 298.15, 298.15, 298.15)
+            return flows[0] if flows else Heat(0.0, 298.15, 298.15, 298.15)
         if len(flowing) == 1:
             return flowing[0]
-        rate = sum(part.rate for part in flowing)
-        entropy = sum(part.rate / part.mean for part in flowing)
-        hottest = max(max(part.start, part.end) for part in flowing)
-        coldest = min(min(part.start, part.end) for part in flowing)
+        rate = sum(flow.rate for flow in flowing)
+        entropy = sum(flow.rate / flow.mean for flow in flowing)
+        hottest = max(flow.hottest for flow in flowing)
+        coldest = min(flow.coldest for flow in flowing)
         if rate == 0.0 or entropy == 0.0:
             return Heat(rate, hottest, coldest, mean_temperature(hottest, coldest))
-        start, end = (
-            (hottest, coldest) if flowing[0].start >= flowing[0].end else (coldest, hottest)
-        )
-        return Heat(rate, start, end, rate / entropy)
+        falls = flowing[0].start >= flowing[0].end
+        start, end = (hottest, coldest) if falls else (coldest, hottest)
+        pieces = [piece for flow in flowing for piece in flow.pieces if piece.rate != 0.0]
+        return Heat(rate, start, end, rate / entropy, _as_parts(pieces, falls=falls))
+
+    @property
+    def hottest(self) -> float:
+        """The higher of its two temperatures [K]."""
+        return max(self.start, self.end)
+
+    @property
+    def coldest(self) -> float:
+        """The lower of its two temperatures [K]."""
+        return min(self.start, self.end)
+
+    @property
+    def pieces(self) -> tuple[Heat, ...]:
+        """Its parts as flows of their own, each spread evenly; itself if it has none."""
+        return tuple(Heat(*part) for part in self.parts) if self.parts else (self,)
 
     def scaled(self, factor: float) -> Heat:
-        return Heat(self.rate * factor, self.start, self.end, self.mean)
+        """The same heat in another amount."""
+        parts = scaled_parts(self.parts, factor)
+        return Heat(self.rate * factor, self.start, self.end, self.mean, parts)
+
+
+def _as_parts(pieces: Sequence[Heat], *, falls: bool) -> tuple[Part, ...]:
+    """The parts of a flow; where there are too many the closest are joined."""
+    if len(pieces) <= MOST_PARTS:
+        return tuple((piece.rate, piece.start, piece.end, piece.mean) for piece in pieces)
+    ordered = sorted(pieces, key=lambda piece: (-piece.hottest, -piece.coldest))
+    parts: list[Part] = []
+    for group in closest_groups([(piece.hottest, piece.coldest) for piece in ordered], MOST_PARTS):
+        members = [ordered[i] for i in group]
+        hottest = max(piece.hottest for piece in members)
+        coldest = min(piece.coldest for piece in members)
+        rate = sum(piece.rate for piece in members)
+        entropy = sum(piece.rate / piece.mean for piece in members)
+        ends = (hottest, coldest) if falls else (coldest, hottest)
+        parts.append((rate, *ends, rate / entropy))
+    return tuple(parts)
+
+
+def closest_groups(ends: Sequence[tuple[float, float]], most: int) -> list[list[int]]:
+    """Group neighbours of a falling row of temperature spans until at most `most` are left.
+
+    The two neighbours that together span the least are joined first.
+    """
+    groups = [([i], hot, cold) for i, (hot, cold) in enumerate(ends)]
+    while len(groups) > most:
+        spans = [max(a[1], b[1]) - min(a[2], b[2]) for a, b in pairwise(groups)]
+        at = spans.index(min(spans))
+        (first, hot, cold), (second, other_hot, other_cold) = groups[at : at + 2]
+        groups[at : at + 2] = [(first + second, max(hot, other_hot), min(cold, other_cold))]
+    return [members for members, _, _ in groups]
 
 
 @dataclass(frozen=True, slots=True)

@@ -25,7 +25,8 @@ from chainflow.equipment.base import (
     Site,
     material,
 )
-from chainflow.equipment.cooling import add_heat_slopes, cooling_duties, wrong_way
+from chainflow.equipment.cooling import cooling_duties, wrong_way
+from chainflow.equipment.cooling_slopes import add_heat_slopes
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
 from chainflow.thermo.exergy import Environment

@@ -42,12 +42,23 @@ from chainflow.thermo.components import (
     known_components,
 )
 
-_TOP = ("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds")
+_TOP = (
+    "title",
+    "basis",
+    "ambient",
+    "approach",
+    "components",
+    "knobs",
+    "equipment",
+    "lines",
+    "holds",
+)
 _REQUIRED = {
     "equipment": "'equipment:' and below it names with their kind, as in 'town: {kind: product}'",
     "lines": "'lines:' and below it a list, as in '- stack.hydrogen -> dry'",
 }
 _AMBIENT = 298.15  # [K]
+_APPROACH = 10.0  # [K], common practice, no source
 
 
 def read_flowsheet(path: Path | str, overrides: AnyMapping[str, str] | None = None) -> Flowsheet:
@@ -132,6 +143,7 @@ class _Builder:
         components = self._components()
         pieces = self._equipment()
         title, basis, ambient = self._title(), self._basis(), self._ambient()
+        approach = self._approach()
         if components is not None:
             self._check_components(pieces, components)
         joined = self._joined(pieces)
@@ -156,6 +168,7 @@ class _Builder:
             tuple(self.remarks),
             self.tree.sha256,
             self.path,
+            approach,
         )
 
     # --- the small entries -------------------------------------------------------------------
@@ -200,14 +213,20 @@ class _Builder:
         return str(node.value)
 
     def _ambient(self) -> float:
-        node = self._text("ambient")
+        return self._temperature("ambient", _AMBIENT, gt=0.0)
+
+    def _approach(self) -> float:
+        return self._temperature("approach", _APPROACH, ge=0.0, difference=True)
+
+    def _temperature(self, entry: str, default: float, **limits: Any) -> float:
+        node = self._text(entry)
         if node is None:
-            return _AMBIENT
+            return default
         try:
-            return parse(str(node.value), "K", gt=0.0)
+            return parse(str(node.value), "K", **limits)
         except QuantityFault as problem:
-            self.fault("wrong-quantity", f"ambient: {problem}", node.place)
-            return _AMBIENT
+            self.fault("wrong-quantity", f"{entry}: {problem}", node.place)
+            return default
 
     def _components(self) -> tuple[str, ...] | None:
         node = self.root.get("components")

@@ -68,6 +68,7 @@ class Flowsheet:
     remarks: tuple[Fault, ...] = ()  # what is odd but no fault
     sha256: str = ""
     path: str = ""
+    approach: float = 10.0  # of the heat account: least difference between heats that meet [K]
 
     _at: Mapping[tuple[str, ...], tuple[Line, ...]] = field(init=False, repr=False, compare=False)
 

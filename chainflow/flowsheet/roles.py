@@ -41,7 +41,7 @@ def contents(joined: Sequence[JoinedPorts], faults: list[Fault]) -> list[str]:
         wanted = line.inlet.content
         if known[i] == "any":
             known[i] = "material"
-        if wanted not in ("any", known[i]):
+        if wanted != "any" and known[i] not in wanted.split(" or "):
             say = f"lines: '{line.text}' brings {known[i]} to a port for {wanted}"
             faults.append(Fault("wrong-content", say).located(line.place))
     return known

@@ -35,6 +35,9 @@ def json_schema() -> dict[str, Any]:
             "title": {"type": "string", "description": "any text"},
             "basis": {"enum": ["LHV", "HHV"], "description": "heating value of headline figures"},
             "ambient": _or_knob(_quantity("K", "temperature of the surroundings (25 degC)")),
+            "approach": _or_knob(
+                _quantity("K", "least temperature difference of the heat account (10 K)")
+            ),
             "components": {
                 "type": "array",
                 "items": {"anyOf": [{"enum": list(known_components())}, {"pattern": _CHAINS}]},

@@ -11,6 +11,7 @@ from typing import TYPE_CHECKING, Literal, TextIO
 
 from chainflow.accounts.exergy import exergy_destroyed
 from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
+from chainflow.accounts.heat import HeatAccount
 from chainflow.accounts.plant import PlantAccount, plant_account
 from chainflow.accounts.worth import BASES
 from chainflow.basis.formatting import format_quantity
@@ -73,6 +74,7 @@ def _short_answer(solution: Solution) -> Iterator[str]:
     )
     yield from _listed("bought", _bought(account, _ROUND_OFF * largest))
     yield from _listed("delivered", _delivered(account))
+    yield from _listed_if_any("heat recovery", _heat(account.heat))
     yield _line("exergy lost in", _losses(solution))
 
 
@@ -85,6 +87,33 @@ def _listed(label: str, entries: Iterator[str]) -> Iterator[str]:
     found = list(entries) or ["nothing"]
     for place, entry in enumerate(found):
         yield _line(label if place == 0 else "", entry)
+
+
+def _listed_if_any(label: str, entries: Iterator[str]) -> Iterator[str]:
+    for place, entry in enumerate(entries):
+        yield _line(label if place == 0 else "", entry)
+
+
+def _heat(heat: HeatAccount) -> Iterator[str]:
+    """What the plant needs of heat, how it is met, and the least that has to come from outside."""
+    if heat.needed <= 0.0:
+        return
+    parts = {"bought": heat.bought, "electric": heat.electric}
+    least = _ROUND_OFF * heat.needed
+    rest = [f"{numbers.energy(rate)} {word}" for word, rate in parts.items() if rate > least]
+    yield (
+        f"{numbers.energy(heat.recovered)} of {numbers.energy(heat.needed)} needed come from the "
+        f"plant itself" + (f", {', '.join(rest)}" if rest else "")
+    )
+    table = heat.table
+    pinch = ""
+    if table.pinch_given is not None and table.pinch_needed is not None:
+        levels = (numbers.celsius(table.pinch_given), numbers.celsius(table.pinch_needed))
+        pinch = f"; pinch at {levels[0]} / {levels[1]} degC"
+    yield (
+        f"least at an approach of {heat.approach:g} K: {numbers.energy(table.hot_utility)} from "
+        f"outside, {numbers.energy(table.cold_utility)} to cool away{pinch}"
+    )
 
 
 def _bought(account: PlantAccount, nothing: float) -> Iterator[str]:

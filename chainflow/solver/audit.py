@@ -9,7 +9,7 @@ import numpy as np
 
 from chainflow.equipment.base import Outcome
 from chainflow.equipment.boundary import Product, Supply, Vent
-from chainflow.equipment.ports import Flow, Light, rate_of
+from chainflow.equipment.ports import Flow, Heat, Light, rate_of
 from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.equipment.sunlight import Sunlight
@@ -96,15 +96,20 @@ def _stream_energy(flow: Flow) -> float:
 
 
 def _passing(finish: Finish, name: str) -> float:
-    """Power, light and heat that only pass (splitter, switchboard, heat network) must add up."""
+    """Power, light and heat that only pass (splitter, switchboard, heat network) must add up.
+
+    Power that is turned into heat is in the outcome's power.
+    """
     outcome = finish.outcomes[name]
-    if (
-        outcome.power
-        or outcome.duties
-        or finish.flowsheet.equipment[name].kind not in ("splitter", "switchboard", "heat-network")
-    ):
+    kind = finish.flowsheet.equipment[name].kind
+    if outcome.duties or kind not in ("splitter", "switchboard", "heat-network"):
         return 0.0
-    inward = sum(rate_of(f) for f in arriving_whole(finish.feeds, name))
+    passing = [
+        f
+        for f in arriving_whole(finish.feeds, name)
+        if isinstance(f, Heat) or kind != "heat-network"
+    ]
+    inward = sum(rate_of(f) for f in passing)
     outward = sum(rate_of(f) for f in outcome.outlets.values())
     return outward - inward
 

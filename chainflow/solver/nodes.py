@@ -17,8 +17,9 @@ import numpy as np
 from chainflow.basis.faults import NotSolved
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.junctions import joined
-from chainflow.equipment.ports import ANY_NAME, Flow, Heat, Light, rate_of, times
-from chainflow.solver.variables import ENTHALPY_SCALE, Variable
+from chainflow.equipment.ports import ANY_NAME, Flow, Heat, times
+from chainflow.solver.scaling import added, scaled_rows, scaling
+from chainflow.solver.variables import ENTHALPY_SCALE, HEAT_NUMBERS, Variable
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
@@ -99,7 +100,8 @@ class Step:
         if isinstance(value, Stream) and float(value.total) == 0.0:
             return found
         guess = float(value.temperature) if isinstance(value, Stream) else None
-        for column in range(variable.size):
+        used = HEAT_NUMBERS * len(value.pieces) if isinstance(value, Heat) else variable.size
+        for column in range(used):
             step = step_of(variable, base, column)
             changed = base.copy()
             changed[column] += step
@@ -133,24 +135,26 @@ class EquipmentStep(Step):
         default_factory=dict
     )  # variable -> getter
     outcome: Outcome | None = None
+    twin: EquipmentStep | None = None  # the step whose settled equipment this one runs
     _used: tuple[Any, Any, Equipment] | None = None
-    _names: dict[str, list[str]] | None = None  # how the equipment calls what is read
+    # how the equipment calls what is read: each line, and its port
+    _names: dict[str, list[tuple[str, str]]] | None = None
     _spots: dict[tuple[str, str], Any] = field(default_factory=dict)  # index of each block
 
     def inputs(
         self, values: Mapping[str, Flow]
     ) -> tuple[dict[str, Any], dict[str, Any], Equipment]:
         """Feeds, amounts asked and the equipment with its held settings, for these values."""
-        assert self.equipment is not None
         feeds: dict[str, Any] = {}
         for port, sources in self.feeds.items():
             flows = tuple(source.of(values) for source in sources)
             feeds[port] = flows if port in self.many else flows[0]
         asked = {
-            port: _added([source.of(values) for source in sources])
+            port: added([source.of(values) for source in sources])
             for port, sources in self.asked.items()
         }
-        piece = self.equipment
+        piece = self.equipment if self.twin is None else self.twin.equipment
+        assert piece is not None
         for path, key in self.settings:
             number = values[key]
             assert isinstance(number, float)
@@ -190,25 +194,34 @@ class EquipmentStep(Step):
         if not slopes:
             return {}
         labels = self._labels()
-        return {
-            key: self._summed(key, [slopes[label] for label in names])
-            for key, names in labels.items()
-            if all(label in slopes for label in names)
-        }
+        known = {}
+        for key, names in labels.items():
+            columns = [slopes.get(name, slopes.get(port)) for name, port in names]
+            if all(column is not None for column in columns):
+                known[key] = self._summed(key, [column for column in columns if column is not None])
+        return known
 
-    def _labels(self) -> dict[str, list[str]]:
-        """How the equipment calls each variable that is read."""
+    def _labels(self) -> dict[str, list[tuple[str, str]]]:
+        """How the equipment calls each variable that is read: one line alone, or any at its port.
+
+        Heat asked by several lines at one outlet is one flow there, whose parts are not theirs.
+        """
         if self._names is not None:
             return self._names
-        labels: dict[str, list[str]] = {}
+        labels: dict[str, list[tuple[str, str]]] = {}
         for port, sources in self.feeds.items():
-            for source in sources:
-                labels.setdefault(source.key, []).append(port)
+            for number, source in enumerate(sources, start=1):
+                line = port if number == 1 else f"{port}#{number}"
+                labels.setdefault(source.key, []).append((line, port))
         for port, sources in self.asked.items():
+            label = f"asked:{port}"
             for source in sources:
-                labels.setdefault(source.key, []).append(f"asked:{port}")
+                heat = source.key and self.variables[source.key].form == "heat"
+                spread = heat and len(sources) > 1
+                labels.setdefault(source.key, []).append(("", "") if spread else (label, label))
         for path, key in self.settings:
-            labels.setdefault(key, []).append(f"settings:{'.'.join(path)}")
+            label = f"settings:{'.'.join(path)}"
+            labels.setdefault(key, []).append((label, label))
         labels.pop("", None)
         self._names = labels
         return labels
@@ -220,11 +233,19 @@ class EquipmentStep(Step):
             block: np.ndarray | None = None
             for column in columns:
                 if label in column:
-                    part = column[label][spot]
+                    part = self._fitted(written, key, column[label])[spot]
                     block = part if block is None else block + part
             if block is not None:
                 blocks[written, key] = block
         return blocks
+
+    def _fitted(self, written: str, read: str, block: np.ndarray) -> np.ndarray:
+        """A block with rows and columns for all the parts that heat can have."""
+        missing = [
+            self.variables[key].size - size if self.variables[key].form == "heat" else 0
+            for key, size in zip((written, read), block.shape, strict=True)
+        ]
+        return np.pad(block, [(0, more) for more in missing]) if any(missing) else block
 
     def _outputs(self) -> list[tuple[str, str]]:
         """Each variable that is written, with what the equipment calls it."""
@@ -359,7 +380,9 @@ class ThroughAmountStep(ThroughStep):
         if key and isinstance(wanted, float) and wanted != 0.0:
             written = self.run(values)
             known[key] = {
-                (w, key): self.variables[w].pack(written[w])[:, None] / wanted for w in self.writes
+                (w, key): self._fitted(w, key, scaling(written[w], self.variables[w])[:, None])
+                / wanted
+                for w in self.writes
             }
         slopes = self.sample_slopes() if self.sample_key else None
         if slopes is not None and self.sample_key != key:
@@ -378,21 +401,12 @@ class ThroughAmountStep(ThroughStep):
             else:
                 value = outcome.drawn[port] if inlet else outcome.outlets[port]
                 label = f"drawn:{port}" if inlet else port
-                full = _full(value)
-                block = np.outer(full, by_factor)
+                block = np.outer(scaling(value), by_factor)
                 if label in slopes:
-                    block = block + factor * slopes[label]
+                    block = block + scaled_rows(value, factor) * slopes[label]
+            block = self._fitted(w, self.sample_key, block)
             blocks[w, self.sample_key] = block[self._spot(w, self.sample_key)]
         return blocks
-
-
-def _full(value: Flow) -> np.ndarray:
-    """A value as numbers over all components."""
-    if isinstance(value, Stream):
-        return np.append(value.flows, value.enthalpy)
-    if isinstance(value, Heat):
-        return np.array([value.rate, value.start, value.end, value.mean])
-    return np.array(value.numbers if isinstance(value, Light) else [float(value)])
 
 
 @dataclass
@@ -408,7 +422,7 @@ class ResultStep(Step):
         assert self.get is not None
         flows = [source.of(values) for source in self.sources]
         streams = [flow for flow in flows if isinstance(flow, Stream)]
-        whole = joined(streams, self.matter) if streams else _added(flows)
+        whole = joined(streams, self.matter) if streams else added(flows)
         number = self.get(whole)
         return {self.key: number if np.isfinite(number) else 0.0}
 
@@ -416,11 +430,6 @@ class ResultStep(Step):
 def outside_the_data(name: str, problem: StateError) -> NotSolved:
     """What is said where a piece of equipment meets a state that the data do not describe."""
     return NotSolved("outside-the-data", f"{name}: {problem}", {"equipment": name})
-
-
-def _added(amounts: list[Flow]) -> Heat | float:
-    heats = [a for a in amounts if isinstance(a, Heat)]
-    return Heat.total(heats) if heats else sum(rate_of(a) for a in amounts)
 
 
 __all__ = [

@@ -31,8 +31,8 @@ class Order:
 
 def order_steps(program: Program) -> Order:
     """Cut the loops and sort the steps."""
-    graph = _information_graph(program)
-    loops = _loops(graph)
+    graph = information_graph(program)
+    loops = loops_of(graph)
     settings = list(program.settings)
     weights = _weights(program, graph)
     tears = list(settings)
@@ -47,7 +47,8 @@ def order_steps(program: Program) -> Order:
     return order
 
 
-def _information_graph(program: Program) -> nx.DiGraph:
+def information_graph(program: Program) -> nx.DiGraph:
+    """An edge from every variable that is read to every one that is written from it."""
     graph: nx.DiGraph = nx.DiGraph()
     graph.add_nodes_from(program.variables)
     for step in program.steps:
@@ -56,7 +57,8 @@ def _information_graph(program: Program) -> nx.DiGraph:
     return graph
 
 
-def _loops(graph: nx.DiGraph) -> list[list[str]]:
+def loops_of(graph: nx.DiGraph) -> list[list[str]]:
+    """The variables of each loop of information, in the order of the graph."""
     place = {key: i for i, key in enumerate(graph.nodes)}
     found = [
         sorted(part, key=place.__getitem__)

@@ -64,6 +64,7 @@ def site_of(flowsheet: Flowsheet, name: str, *, detail: bool) -> Site:
         frozenset(line.inlet for line in flowsheet.into(name)),
         frozenset(line.outlet for line in flowsheet.out_of(name)),
         detail,
+        frozenset(line.inlet for line in flowsheet.into(name) if line.content == "power"),
     )
 
 

@@ -12,6 +12,7 @@ from chainflow.equipment.power import Switchboard
 from chainflow.flowsheet.network import Flowsheet, Hold
 from chainflow.solver.audit import audit
 from chainflow.solver.finishing import Finish
+from chainflow.solver.idle_heat import part_idle_heat
 from chainflow.solver.inventories import Conditional, check_inventories, find_presence
 from chainflow.solver.newton import FLOOR, Closed, Newton, short_of_power
 from chainflow.solver.order import Order, order_steps
@@ -96,6 +97,7 @@ class Prepared:
         self.conditional = check_inventories(opened, presence)
         with _states_explained():
             self.program = build_program(flowsheet, self.pressures, presence)
+        part_idle_heat(self.program)
         self.order = order_steps(self.program)
         self.remarks = tuple(drop_free_recycles(flowsheet, self.pressures))
 

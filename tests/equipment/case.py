@@ -79,9 +79,13 @@ class Collector:
         outlets=(),
         matter=MATTER,
         ambient=298.15,
+        electric=(),
         **marks,
     ):
-        """Note one case; `inlets`, `outlets` name linked ports beside those that get something."""
+        """Note one case; `inlets`, `outlets` name linked ports beside those that get something.
+
+        `electric` names the inlets that power reaches.
+        """
         feeds, asked = feeds or {}, asked or {}
         equipment = kinds()[kind].model_validate(settings)
         site = Site(
@@ -89,5 +93,6 @@ class Collector:
             ambient,
             frozenset(feeds) | frozenset(inlets),
             frozenset(outlets) | frozenset(asked),
+            electric=frozenset(electric),
         )
         self.cases.append(Case(f"{kind}: {label}", equipment, feeds, asked, site, **marks))

@@ -1,7 +1,18 @@
 """Cases of separation, heat and pressure."""
 
 from chainflow.equipment.ports import Heat
-from tests.equipment.feeds import FLUE, HOT, HYDROGEN, PRODUCT, SYNTHESIS, WARM, WATER, stream
+from tests.equipment.feeds import (
+    CONDENSING,
+    FLUE,
+    HOT,
+    HYDROGEN,
+    PRODUCT,
+    STEAM,
+    SYNTHESIS,
+    WARM,
+    WATER,
+    stream,
+)
 
 
 def separation(add):
@@ -108,11 +119,48 @@ def heat(add):
     add("60 % of Carnot", "heat-engine", {"share_of_carnot": "60 %"}, {"heat": (HOT, WARM)})
     add("reversible", "heat-engine", {"share_of_carnot": 1, "sink": "35 degC"}, {"heat": (HOT,)})
     add("too cold", "heat-engine", {"share_of_carnot": 1, "sink": "150 degC"}, {"heat": (WARM,)})
-    needs = {"shift": Heat(2e4, 600.0, 700.0, 648.7), "dryer": Heat(1e4, 330.0, 380.0, 354.4)}
-    add("enough", "heat-network", {}, {"supply": (HOT, WARM)}, needs, outlets=("rest",))
-    add("short, linked", "heat-network", {}, {"supply": (WARM,)}, needs, inlets=("shortage",))
-    add("short, nothing behind it", "heat-network", {}, {"supply": (WARM,)}, needs, unmet=True)
-    add("no heat at all", "heat-network", {}, {}, needs, inlets=("shortage",))
+    networks(add)
+
+
+def networks(add):
+    """Heat networks: enough and short of heat, with electric and with other heat behind them."""
+    net = "heat-network"
+    needs = {"shift": Heat(2.4e4, 600.0, 700.0, 648.7), "dryer": Heat(1e4, 330.0, 380.0, 354.4)}
+    add("enough", net, {}, {"supply": (HOT, WARM)}, needs, outlets=("rest",))
+    add("short, linked", net, {}, {"supply": (WARM,)}, needs, inlets=("shortage",))
+    add("short, nothing behind it", net, {}, {"supply": (WARM,)}, needs, unmet=True)
+    add("no heat at all", net, {}, {}, needs, inlets=("shortage",))
+    electric = {"inlets": ("shortage",), "electric": ("shortage",), "outlets": ("rest",)}
+    add("short, electric", net, {}, {"supply": (WARM,)}, needs, **electric)
+    steam = {"steam": STEAM, "feed": Heat.between(1.2e4, 330.0, 520.0)}
+    reactor = Heat(9e4, 573.15, 573.15, 573.15)
+    add("steam from a reactor", net, {}, {"supply": (reactor,)}, steam, outlets=("rest",))
+    add(
+        "steam from a condensing gas",
+        net,
+        {"approach": "15 K"},
+        {"supply": (CONDENSING,)},
+        steam,
+        **electric,
+    )
+    add(
+        "pinched at the dew point, helped by heat",
+        net,
+        {"approach": "5 K"},
+        {"supply": (CONDENSING, Heat.between(2.5e4, 480.0, 452.0))},
+        {"water": Heat.between(6.1e4, 310.0, 440.0), "steam": STEAM},
+        inlets=("shortage",),
+        outlets=("rest",),
+    )
+    add("without a difference", net, {"approach": "0 K"}, {"supply": (HOT, WARM)}, needs)
+    add(
+        "hotter than all it gets",
+        net,
+        {"approach": "20 K"},
+        {"supply": (reactor, WARM)},
+        {"shift": Heat.between(3e4, 500.0, 900.0)},
+        **electric,
+    )
 
 
 def pressure(add):

@@ -40,13 +40,37 @@ WARM = Heat(3e4, 420.0, 350.0, 384.0)
 NOON = Light(5e5, 900.0, 0.85, 293.15, 2.0)
 
 
+# condensing: most of its heat near its cold end
+CONDENSING = Heat.total(
+    [
+        Heat.between(1e4, 600.0, 433.0),
+        Heat.between(3e4, 433.0, 400.0),
+        Heat.between(2e4, 400.0, 360.0),
+        Heat.between(1e4, 360.0, 305.0),
+    ]
+)
+# steam raised and superheated: most of the heat at one temperature
+STEAM = Heat.total(
+    [
+        Heat.between(8e3, 298.15, 453.0),
+        Heat(4e4, 453.0, 453.0, 453.0),
+        Heat.between(6e3, 453.0, 560.0),
+    ]
+)
+
+
 def numbers(flow):
     """A flow as numbers: flows, enthalpy, temperature and pressure; heat; or W."""
     if isinstance(flow, Stream):
         return np.concatenate([flow.flows, [flow.enthalpy, flow.temperature, flow.pressure]])
     if isinstance(flow, Heat):
-        return np.array([flow.rate, flow.start, flow.end, flow.mean])
+        return heat_numbers(flow)
     return np.array(flow.numbers if isinstance(flow, Light) else [float(flow)])
+
+
+def heat_numbers(heat):
+    """Rate, start, end and mean of every piece of a heat flow."""
+    return np.ravel([(p.rate, p.start, p.end, p.mean) for p in heat.pieces])
 
 
 def rate(flow):

@@ -1,10 +1,9 @@
-"""How heat needs are met: own heat, ambient, lines, bought; and the heat cascade."""
+"""How heat needs are met: own heat, ambient, lines, bought."""
 
 import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from chainflow.equipment.cascade import cascade
 from chainflow.equipment.heat_needs import Duty, settle
 from chainflow.equipment.ports import Heat, mean_temperature
 
@@ -111,70 +110,10 @@ def test_settling_keeps_heat_and_entropy(needs, inlets, outlets):
         assert duty.met_by in ("power", "heat", "own", "ambient", "bought")
 
 
-# -------------------------------------------------------------------------------- the cascade
-def flow(rate, start, end):
-    return Heat.between(rate, start, end)
-
-
-def test_the_cascade_of_a_textbook():
-    # Linnhoff and Flower's four-stream problem as it stands in the Pinch Analysis handbooks
-    # (Kemp, Pinch Analysis and Process Integration, 2nd ed. 2007, table 2.2; from memory):
-    # approach 10 K, hot utility 20 kW, cold utility 60 kW, pinch at 85 degC (shifted)
-    hot = [
-        flow(3.0 * 110, 170.0 + 273.15, 60.0 + 273.15),
-        flow(1.5 * 120, 150.0 + 273.15, 30.0 + 273.15),
-    ]
-    cold = [
-        flow(2.0 * 115, 20.0 + 273.15, 135.0 + 273.15),
-        flow(4.0 * 60, 80.0 + 273.15, 140.0 + 273.15),
-    ]
-    found = cascade(hot, cold, 10.0)
-    assert found.hot_utility == pytest.approx(20.0)
-    assert found.cold_utility == pytest.approx(60.0)
-    assert found.pinch - 273.15 == pytest.approx(85.0)
-
-
-def test_heat_that_is_not_hot_enough_meets_nothing():
-    found = cascade([flow(100.0, 350.0, 340.0)], [flow(40.0, 400.0, 420.0)])
-    assert (found.hot_utility, found.cold_utility) == (40.0, 100.0)
-
-
-def test_heat_of_one_temperature_meets_a_need_of_the_same():
-    found = cascade([flow(100.0, 500.0, 500.0)], [flow(40.0, 500.0, 500.0)])
-    assert (found.hot_utility, found.cold_utility) == (0.0, 60.0)
-    assert found.rest == Heat(60.0, 500.0, 500.0, 500.0)
-
-
-def test_an_empty_cascade():
-    found = cascade([], [])
-    assert (found.hot_utility, found.cold_utility, found.pinch, found.rest) == (
-        0.0,
-        0.0,
-        None,
-        None,
-    )
-
-
-HEATS = st.lists(st.tuples(st.floats(1.0, 1e3), TEMPERATURES, TEMPERATURES), max_size=4)
-
-
-@given(HEATS, HEATS)
-def test_the_cascade_keeps_the_heat(hot, cold):
-    given_, needed = [flow(*row) for row in hot], [flow(*row) for row in cold]
-    found = cascade(given_, needed)
-    size = sum(h.rate for h in (*given_, *needed)) + 1e-12
-    balance = sum(h.rate for h in given_) + found.hot_utility - sum(h.rate for h in needed)
-    assert balance == pytest.approx(found.cold_utility, abs=1e-9 * size)
-    assert found.hot_utility >= -1e-9 * size
-    assert found.cold_utility >= -1e-9 * size
-    assert found.hot_utility <= sum(h.rate for h in needed) * (1 + 1e-9)
-
-
-@given(HEATS, HEATS, st.floats(0.0, 50.0))
-def test_a_wider_approach_never_saves(hot, cold, approach):
-    given_, needed = [flow(*row) for row in hot], [flow(*row) for row in cold]
-    size = sum(h.rate for h in (*given_, *needed)) + 1e-12
-    assert (
-        cascade(given_, needed, approach).hot_utility
-        >= cascade(given_, needed).hot_utility - 1e-9 * size
-    )
+def test_a_part_of_a_duty_keeps_the_shape_of_its_heat():
+    parts = ((-60.0, 500.0, 450.0, 474.6), (-40.0, 450.0, 400.0, 424.5))
+    whole = Duty("cooling", -100.0, 500.0, 400.0, 453.2, curve=parts)
+    half = whole.part(-50.0, "heat")
+    assert half.curve == ((-30.0, *parts[0][1:]), (-20.0, *parts[1][1:]))
+    assert [(p.rate, p.start) for p in half.flow.pieces] == [(30.0, 500.0), (20.0, 450.0)]
+    assert settle([whole], AMBIENT, NONE, HEAT).offered == whole.flow

@@ -6,7 +6,7 @@ import pytest
 from chainflow.equipment.ports import ANY_NAME, Heat, Light, arriving
 from chainflow.thermo.streams import Stream
 from tests.equipment.cases import CASES
-from tests.equipment.feeds import numbers
+from tests.equipment.feeds import heat_numbers, numbers
 
 ENTHALPY = 1e5  # [J/mol], the size of a molar enthalpy
 STEP = 2e-5  # of a stream's total
@@ -15,10 +15,14 @@ SLOPES = 2e-6  # central differences: truncation about STEP^2, noise about 1e-12
 
 def shifted(flow, place, size):
     """A flow with one of its numbers moved: a component's flow, the enthalpy, or the amount."""
-    if isinstance(flow, Heat | Light):
+    if isinstance(flow, Heat):
+        changed = heat_numbers(flow)
+        changed[place] += size
+        return Heat.total([Heat(*row) for row in changed.reshape(-1, 4)])
+    if isinstance(flow, Light):
         parts = numbers(flow)
         parts[place] += size
-        return type(flow)(*parts.tolist())
+        return Light(*parts.tolist())
     if not isinstance(flow, Stream):
         return flow + size
     flows, enthalpy = flow.flows.copy(), flow.enthalpy
@@ -51,7 +55,7 @@ def moved(case, label, place, size, settled):
     feeds, asked = dict(case.feeds), dict(case.asked)
     if label.startswith("asked:"):
         port = label.removeprefix("asked:")
-        asked[port] = asked[port] + size
+        asked[port] = shifted(asked[port], place, size)
     else:
         port, _, number = label.partition("#")
         flow, which = feeds[port], int(number or 1) - 1
@@ -79,7 +83,8 @@ def _input(case, label):
     """The flow or amount that a label of the slopes stands for."""
     if label.startswith("asked:"):
         return case.asked[label.removeprefix("asked:")]
-    return arriving(case.feeds, label.partition("#")[0])[0]
+    port, _, number = label.partition("#")
+    return arriving(case.feeds, port)[int(number or 1) - 1]
 
 
 def _value(case, label, place):
@@ -125,8 +130,15 @@ def _columns(flow, case):
 
     A component that is absent is moved only if there is gas to be in and its elements are there
     already: the first atom of an element changes an equilibrium like the square root or the
-    logarithm of its amount, and the first bubble in a liquid is a new phase.
+    logarithm of its amount, and the first bubble in a liquid is a new phase.  Of heat, the rate and
+    the mean of each piece: two pieces that meet at a temperature have a kink there (see
+    `test_heat_matching.py` for temperatures).
     """
+    if isinstance(flow, Heat):
+        rows = [(p.rate, p.mean) for p in flow.pieces]
+        sizes = {4 * i: rate for i, (rate, _) in enumerate(rows)}
+        sizes |= {4 * i + 3: mean for i, (_, mean) in enumerate(rows)}
+        return {place: (1.0, size) for place, size in sizes.items()}
     if not isinstance(flow, Stream):
         return {place: (1.0, abs(value)) for place, value in enumerate(numbers(flow))}
     atoms = flow.matter.formula

@@ -125,7 +125,7 @@ def test_ports_of_a_kind_make_sense(cls):
     for inlet in (True, False):
         assert sum(port.main for port in cls.ports if port.is_inlet == inlet) <= 1
     for port in cls.ports:
-        assert port.content in ("material", "power", "heat", "light", "any")
+        assert port.content in ("material", "power", "heat", "light", "any", "heat or power")
         assert port.means
         assert port.is_inlet == (port.role in (Role.TAKES, Role.CALLS))
     if cls.through:
