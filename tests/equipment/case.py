@@ -80,14 +80,16 @@ class Collector:
         matter=MATTER,
         ambient=298.15,
         electric=(),
+        others=None,
         **marks,
     ):
         """Note one case; `inlets`, `outlets` name linked ports beside those that get something.
 
-        `electric` names the inlets that power reaches.
+        `electric` names the inlets that power reaches, `others` is equipment whose settings it
+        has to know, by name.
         """
         feeds, asked = feeds or {}, asked or {}
-        equipment = kinds()[kind].model_validate(settings)
+        equipment = kinds()[kind].model_validate(settings).seeing(others or {})
         site = Site(
             matter,
             ambient,

@@ -140,7 +140,7 @@ def _columns(flow, case):
         sizes |= {4 * i + 3: mean for i, (_, mean) in enumerate(rows)}
         return {place: (1.0, size) for place, size in sizes.items()}
     if not isinstance(flow, Stream):
-        return {place: (1.0, abs(value)) for place, value in enumerate(numbers(flow))}
+        return {place: (1.0, abs(value) or 1.0) for place, value in enumerate(numbers(flow))}
     atoms = flow.matter.formula
     there = (atoms @ flow.flows > 0.0) & flow.gas.any()
     columns = {

@@ -17,6 +17,8 @@ from tests.flowsheets.ranges import RANGES
 
 FOLDER = Path(__file__).parents[2] / "flowsheets"
 NAMES = tuple(RANGES)
+STATED = ("hydrogen-store", "methane-store", "methane-cycle", "methane-cycle-direct")
+"""Those with a field of 20 %, a stack of 52 kWh/kg and one switchboard for all."""
 CYCLES = ("methane-cycle", "methane-cycle-direct")
 CLOSED = {"capture": "100 %", "purge": "0 %"}
 
@@ -127,6 +129,9 @@ def renamed(text: str) -> tuple[str, dict[str, str]]:
         return names[first] + dot + rest
 
     data["equipment"] = {names[old]: entry for old, entry in data["equipment"].items()}
+    for entry in data["equipment"].values():
+        if "coupling" in entry:
+            entry["coupling"]["load"] = names[entry["coupling"]["load"]]
     data["lines"] = [" -> ".join(map(address, line.split("->"))) for line in data["lines"]]
     for hold in data.get("holds", []):
         hold["hold"], hold["by"] = address(hold["hold"]), address(hold["by"])
