@@ -88,6 +88,18 @@ class Equipment(BaseModel):
         """What is wrong with the settings once the components are known: (path, sentence)."""
         return iter(())
 
+    def sees(self) -> Iterator[tuple[tuple[str, ...], str, str]]:
+        """Other equipment whose settings it has to know: (setting path, name, outlet to it)."""
+        return iter(())
+
+    def trouble_seeing(self, name: str, other: Equipment) -> str:
+        """Why it cannot work with the equipment that it sees; empty if it can."""
+        return ""
+
+    def seeing(self, others: Mapping[str, Equipment]) -> Self:
+        """A copy that knows the equipment it sees, by name."""
+        return self
+
     def origins(self) -> dict[str, tuple[str, ...]]:
         """Species that come into the plant here, by outlet."""
         return {}

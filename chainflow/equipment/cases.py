@@ -14,17 +14,17 @@ import numpy as np
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.outcome import Outcome
 from chainflow.equipment.ports import Feeds, Heat, Light, arriving
-from chainflow.thermo.components import Matter
+from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
 from chainflow.thermo.streams import Stream
 
 
 def matter_of(feeds: Feeds) -> Matter:
-    """The matter of the streams that arrive; that of no component if none does."""
+    """The matter of the streams that arrive; the usual components if none does."""
     for port in feeds:
         for flow in arriving(feeds, port):
             if isinstance(flow, Stream):
                 return flow.matter
-    return Matter.of(())
+    return Matter.of(DEFAULT_COMPONENTS)
 
 
 def case_count(*groups: Mapping[str, Any]) -> int | None:

@@ -282,7 +282,8 @@ class Electrolyser(Equipment):
         """Power drawn per direct current."""
         return 1.0 / self.rectifier + self.auxiliaries
 
-    def _sizing(self, density: float | None = None) -> Sizing:
+    def sizing(self, density: float | None = None) -> Sizing:
+        """What the settings say of the stack's size."""
         known = self.current_density if density is None else density
         return Sizing(self.drawn, known, self.cell_area, self.rating)
 
@@ -296,9 +297,10 @@ class Electrolyser(Equipment):
             self.pressure,
             self._oxygen_pressure,
         )
-        return _Stack(self._liquid_curve(), gases, {"water": gases.unmet} if gases.unmet else {})
+        return _Stack(self.liquid_curve(), gases, {"water": gases.unmet} if gases.unmet else {})
 
-    def _liquid_curve(self) -> Curve:
+    def liquid_curve(self) -> Curve:
+        """The voltage of a cell by current density, for all models but solid-oxide."""
         if self.pem is not None:
             return self.pem.curve(self.temperature, self.pressure)
         if self.alkaline is not None:
@@ -335,7 +337,7 @@ class Electrolyser(Equipment):
         stack = self._stack(feeds, site)
         if stack.gases is None:
             return self._idle(feeds, stack.unmet, site)
-        sizing = self._sizing(self._neutral_density(stack, site))
+        sizing = self.sizing(self._neutral_density(stack, site))
         at = self._working(sizing, stack.curve, feeds)
         made = stack.gases.made(at.gross, at.share, site)
         heat = _without_round_off(made.leaving, -made.heated, -at.direct)

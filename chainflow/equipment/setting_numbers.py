@@ -88,3 +88,13 @@ def unit_of(annotation: Any) -> str | None:
             if unit is not None:
                 return unit
     return None
+
+
+def stated(model: BaseModel) -> set[str]:
+    """Return the settings that were given, but for those given as they are by default."""
+    fields = type(model).model_fields
+    return {
+        name
+        for name in model.model_fields_set
+        if fields[name].is_required() or getattr(model, name) != fields[name].get_default()
+    }

@@ -35,6 +35,8 @@ _RESULT_UNITS = {  # the first end that fits counts: longer ones stand before wh
     "_J_kg": "J/kg",
     "_J_mol": "J/mol",
     "_J_m3": "J/m3",
+    "_J_m2": "J/m2",
+    "_W_m2": "W/m2",
     "_mol_m2_s": "mol/(m2*s)",
     "_m3_s": "m3/s",
     "_kg_m3": "kg/m3",
@@ -48,6 +50,8 @@ _RESULT_UNITS = {  # the first end that fits counts: longer ones stand before wh
     "_m2": "m2",
     "_A": "A",
     "_V": "V",
+    "_rad": "rad",
+    "_s": "s",
 }
 
 

@@ -36,6 +36,7 @@ from chainflow.flowsheet.reading import (
     read_tree,
     substitute_knobs,
 )
+from chainflow.flowsheet.sight import Sight
 from chainflow.thermo.components import (
     DEFAULT_COMPONENTS,
     Matter,
@@ -143,6 +144,7 @@ class _Builder:
         broken = self._broken(pieces)
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
+        used = Sight(used, lines, holds, self.fault, self._spot).seeing()
         self.stop_on_faults()
         return Flowsheet(
             title,

@@ -79,11 +79,15 @@ class Collector:
         outlets=(),
         matter=MATTER,
         ambient=298.15,
+        others=None,
         **marks,
     ):
-        """Note one case; `inlets`, `outlets` name linked ports beside those that get something."""
+        """Note one case; `inlets`, `outlets` name linked ports beside those that get something.
+
+        `others` is equipment whose settings it has to know, by name.
+        """
         feeds, asked = feeds or {}, asked or {}
-        equipment = kinds()[kind].model_validate(settings)
+        equipment = kinds()[kind].model_validate(settings).seeing(others or {})
         site = Site(
             matter,
             ambient,

@@ -12,6 +12,7 @@ from tests.equipment.cases_exchanging import exchanging
 from tests.equipment.cases_keeping import keeping
 from tests.equipment.cases_liquid_fuels import liquid_fuels
 from tests.equipment.cases_making_fuel import making_fuel
+from tests.equipment.cases_of_sunlight import sunlight
 from tests.equipment.cases_separating import separating
 
 _PARTS = (
@@ -31,6 +32,7 @@ _PARTS = (
     exchanging,
     keeping,
     liquid_fuels,
+    sunlight,
 )
 
 

@@ -128,7 +128,7 @@ def _columns(flow, case):
     logarithm of its amount, and the first bubble in a liquid is a new phase.
     """
     if not isinstance(flow, Stream):
-        return {place: (1.0, abs(value)) for place, value in enumerate(numbers(flow))}
+        return {place: (1.0, abs(value) or 1.0) for place, value in enumerate(numbers(flow))}
     atoms = flow.matter.formula
     there = (atoms @ flow.flows > 0.0) & flow.gas.any()
     columns = {

@@ -35,4 +35,18 @@ RANGES: dict[str, dict[str, Range]] = {
     },
     "methane-cycle": {**CYCLE, "shift": (800, 1000, "degC"), "regain": (150, 700, "degC")},
     "methane-cycle-direct": CYCLE,
+    "hydrogen-direct-coupled": {
+        "sun": (200, 1100, "W/m2"),
+        "aperture": (10000, 40000, "m2"),
+        "air": (0, 40, "degC"),
+        "keep": (50, 500, "bar"),
+        "engine": (30, 48, "% LHV"),
+    },
+    "solar-heat-syngas": {
+        "beam": (400, 1000, "W/m2"),
+        "sun": (200, 1100, "W/m2"),
+        "aperture": (5000, 100000, "m2"),
+        "hot": (900, 1200, "degC"),
+        "shift": (750, 890, "degC"),
+    },
 }

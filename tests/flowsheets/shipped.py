@@ -17,6 +17,8 @@ from tests.flowsheets.ranges import RANGES
 
 FOLDER = Path(__file__).parents[2] / "flowsheets"
 NAMES = tuple(RANGES)
+STATED = ("hydrogen-store", "methane-store", "methane-cycle", "methane-cycle-direct")
+"""Those with a field of 20 %, a stack of 52 kWh/kg and one switchboard for all."""
 CYCLES = ("methane-cycle", "methane-cycle-direct")
 CLOSED = {"capture": "100 %", "purge": "0 %"}
 
