@@ -39,6 +39,7 @@ RANGES: dict[str, dict[str, Range]] = {
         "sun": (200, 1100, "W/m2"),
         "aperture": (10000, 40000, "m2"),
         "air": (0, 40, "degC"),
+        "cells": (100, 250, "m2"),
         "keep": (50, 500, "bar"),
         "engine": (30, 48, "% LHV"),
     },
@@ -48,5 +49,6 @@ RANGES: dict[str, dict[str, Range]] = {
         "aperture": (5000, 100000, "m2"),
         "hot": (900, 1200, "degC"),
         "shift": (750, 890, "degC"),
+        "spare": (1, 200, "kW"),
     },
 }

@@ -129,6 +129,9 @@ def renamed(text: str) -> tuple[str, dict[str, str]]:
         return names[first] + dot + rest
 
     data["equipment"] = {names[old]: entry for old, entry in data["equipment"].items()}
+    for entry in data["equipment"].values():
+        if "coupling" in entry:
+            entry["coupling"]["load"] = names[entry["coupling"]["load"]]
     data["lines"] = [" -> ".join(map(address, line.split("->"))) for line in data["lines"]]
     for hold in data.get("holds", []):
         hold["hold"], hold["by"] = address(hold["hold"]), address(hold["by"])

@@ -18,6 +18,11 @@ from tests.flowsheets.shipped import (
     text_of,
 )
 
+ALSO_AMOUNTS = {  # knobs beside the aperture, a thousand times as large
+    "hydrogen-direct-coupled": {"cells": "150000 m2"},
+    "solar-heat-syngas": {"spare": "20 MW"},
+}
+
 
 @pytest.mark.parametrize("purge", ["5 %", "1 %", "0.1 %"])
 def test_a_recycle_with_a_purge_closes_in_few_passes(purge):
@@ -104,7 +109,8 @@ def test_a_second_run_gives_the_same_bits(name):
 
 @pytest.mark.parametrize("name", NAMES)
 def test_a_plant_a_thousand_times_as_large_is_the_same_plant(name):
-    large = numbers(solved(name, aperture="25000000 m2"))
+    amounts = {"aperture": "25000000 m2"} | ALSO_AMOUNTS.get(name, {})
+    large = numbers(solved(name, **amounts))
     scaled = {
         key: [1e3 * value for value in values[:-2]] + values[-2:]
         if len(values) > 1

@@ -40,7 +40,8 @@ _WHAT = {
 }
 _TM2_NAMES = {"GHI": "ghi", "DNI": "dni", "DHI": "dhi", "DryBulb": "temp_air", "Wspd": "wind_speed"}
 _TM2_TENTHS = ("DryBulb", "Wspd")
-_NOT_READ = (ValueError, KeyError, IndexError, TypeError, AttributeError, EOFError, OverflowError)
+# whatever a reader stumbles over in a file that is something else
+_NOT_READ = (ValueError, LookupError, TypeError, AttributeError, NameError, ArithmeticError)
 
 
 class WeatherFault(ValueError):
@@ -97,11 +98,10 @@ def _read(path: str, shown: str, changed: int) -> Weather:  # noqa: ARG001 - `ch
         raise FileFault(f"cannot read the weather file {shown}: {error.strerror}") from None
     try:
         columns, place = _FORMATS[_format(first)](path)
-    except _NOT_READ as error:
-        said = " ".join(str(error).split())
+    except _NOT_READ:
         raise WeatherFault(
-            f"{shown} cannot be read as a weather file of the format {_format(first)}: "
-            f"{shorten(said, 120)}; wanted EPW, TMY3 (CSV) or TM2"
+            f"{shown} is no weather file: by its first line it would be {_format(first)}, but it "
+            "does not read as that; wanted EPW, TMY3 (CSV) or TM2"
         ) from None
     return _checked(columns, place, shown)
 
