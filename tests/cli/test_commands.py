@@ -309,3 +309,14 @@ def test_schema_is_json(run):
 def test_solve_does_not_import_pandas(run, file, monkeypatch):
     monkeypatch.setitem(sys.modules, "pandas", None)  # an import would fail
     assert run("solve", file).exit_code == 0
+
+
+def test_a_weather_file_that_is_not_there(run, file):
+    text = HYDROGEN.replace("irradiance: $sun", "weather: hill.epw")
+    assert text != HYDROGEN
+    file.write_text(text)
+    result = run("solve", file)
+    assert result.exit_code == 4
+    assert result.stdout == ""
+    said = "cannot read the weather file 'hill.epw': No such file or directory"
+    assert said in " ".join(result.stderr.split())

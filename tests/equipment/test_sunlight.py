@@ -249,7 +249,8 @@ def test_a_weather_file_that_is_not_there(folder):
             epw(ghi=9999),
             (
                 "'hill.epw': 8760 of its hours have no global irradiance, the first is "
-                "1 Jan 1:00 with 9999 W/m2, wanted 0 to 1500 W/m2: fill the gaps or take another file"
+                "1 Jan 1:00 with 9999 W/m2, wanted 0 to 1500 W/m2: fill the gaps or take "
+                "another file"
             ),
         ),
         (epw(temp=99.9), "have no air temperature, the first is 1 Jan 1:00 with 99.9 degC"),

@@ -102,3 +102,29 @@ def test_wall_time_of_solve_over_bare_imports() -> None:
     ratios = [wall(solve) / wall(bare) for _ in range(RUNS)]
     say(f"chainflow solve over bare imports: {statistics.median(ratios):.2f}")
     assert statistics.median(ratios) < 4.0
+
+
+def test_a_year_of_a_field_on_a_stack_at_once() -> None:
+    """8760 hours of one diode in direct coupling against the same hours one by one."""
+    import pvlib
+
+    from chainflow.equipment.sunlight import Sunlight
+
+    weather = Path(pvlib.__file__).parent / "data" / "723170TYA.CSV"
+    field = read_flowsheet(FLOWSHEETS / "hydrogen-direct-coupled.yaml").equipment["modules"]
+    sun = Sunlight.model_validate(
+        {"weather": str(weather), "aperture": "23000 m2", "plane": {"tilt": "36 deg"}}
+    )
+    year = sun.year()
+    field.run({"light": year})  # warm caches
+    some = range(0, 8760, 60)
+
+    def one_by_one() -> None:
+        for hour in some:
+            field.run({"light": year.case(hour)})
+
+    at_once = statistics.median(seconds(lambda: field.run({"light": year})) for _ in range(RUNS))
+    hours = 8760 / len(some) * seconds(one_by_one)
+    say(f"8760 hours one by one over all at once: {hours / at_once:.0f} ({at_once:.2f} s at once)")
+    assert hours > 30 * at_once
+    assert at_once < 1.0
