@@ -26,12 +26,10 @@ from chainflow.equipment.base import (
     light,
 )
 from chainflow.equipment.cases import matter_of
-from chainflow.equipment.electrolysis import Electrolyser
 from chainflow.equipment.ports import Feeds, as_given
 from chainflow.equipment.setting_numbers import stated
 from chainflow.equipment.sun import cell_temperature, module
 from chainflow.equipment.sun.cell_temperature import CellTemperature
-from chainflow.equipment.sun.coupling import Load, best_cells, crossing, trouble_with
 from chainflow.equipment.sun.module import Module
 from chainflow.equipment.sun.one_diode import Point
 
@@ -123,7 +121,7 @@ class PvField(Equipment):
     coupling: Coupling | None = Field(
         None, description="an electrolyser on the field without a converter (model: one-diode)"
     )
-    _load: Load | None = PrivateAttr(None)
+    _load: Any = PrivateAttr(None)  # the stack of the coupling, a `Load`
 
     @model_validator(mode="after")
     def _fits(self) -> PvField:
@@ -154,17 +152,20 @@ class PvField(Equipment):
             yield ("coupling", "load"), self.coupling.load, "power"
 
     def trouble_seeing(self, name: str, other: Equipment) -> str:
+        from chainflow.equipment.sun.coupling import trouble_with
+
         return trouble_with(other, name)
 
     def seeing(self, others: Mapping[str, Equipment]) -> Self:
         """Return the field with the stack of its `coupling` on it."""
         if self.coupling is None:
             return self
+        from chainflow.equipment.sun.coupling import Load
+
         stack = others[self.coupling.load]
-        trouble = trouble_with(stack, self.coupling.load)
+        trouble = self.trouble_seeing(self.coupling.load, stack)
         if trouble:
             raise ValueError(trouble)
-        assert isinstance(stack, Electrolyser)
         copy = self.model_copy()
         copy._load = Load.of(stack, self.coupling.cells)
         return copy
@@ -218,6 +219,8 @@ class PvField(Equipment):
         best = diode.at(span.best)
         point, found, cells = best, np.ones(best.current.shape, dtype=bool), None
         if self._load is not None:
+            from chainflow.equipment.sun.coupling import best_cells, crossing
+
             point, found = crossing(diode, span, self.series, strings, self._load)
             cells = best_cells(diode, span, self.series, strings, self._load)
         return _Work(
@@ -282,9 +285,47 @@ class PvField(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if self.efficiency is None:
+        if self.efficiency is not None:
+            return {"light": {"power": np.array([[self.efficiency, 0.0, 0.0, 0.0, 0.0]])}}
+        sun = light(feeds)
+        if outcome.unmet or not (sun.rate > 0.0 and sun.irradiance > 0.0):
             return {}
-        return {"light": {"power": np.array([[self.efficiency, 0.0, 0.0, 0.0, 0.0]])}}
+        return {"light": {"power": self._by_light(sun)[None, :]}}
+
+    def _by_light(self, sun: Light) -> Array:
+        """Derivatives of the power by the five numbers of the light."""
+        from chainflow.equipment.sun.field_slopes import at_maximum, response
+
+        level = np.array(self.cell_temperature.of(sun.irradiance, sun.air, sun.wind))
+        diode = self.module.diode(sun.irradiance, level)
+        span = diode.span()
+        strings = np.asarray(self._modules(np.asarray(sun.area))) / self.series
+        meeting, voltage = None, span.best
+        if self._load is not None:
+            from chainflow.equipment.sun.coupling import meeting_of
+
+            meeting, voltage = meeting_of(diode, span, self.series, strings, self._load)
+        answer = response(self.module, diode, voltage, np.asarray(sun.irradiance), level)
+        by_sun, by_air, by_wind = self.cell_temperature.slopes(sun.irradiance, sun.wind)
+        currents = (
+            0.0,
+            answer.by_irradiance + answer.by_temperature * by_sun,
+            0.0,
+            answer.by_temperature * by_air,
+            answer.by_temperature * by_wind,
+        )
+        follows = self.strings is None  # the number of strings follows the aperture
+        shares = (1.0 / sun.rate, -1.0 / sun.irradiance, 0.0, 0.0, 0.0) if follows else (0.0,) * 5
+        found = []
+        for change, share in zip(currents, shares, strict=True):
+            if meeting is not None:
+                found.append(meeting.power(answer, np.asarray(change), share * strings))
+                continue
+            point = diode.at(voltage)
+            one = at_maximum(np.asarray(change), point.current, voltage, diode.series_resistance)
+            number = self.series * strings
+            found.append(self.converter * number * (share * point.power + one))
+        return np.array(found, dtype=float)
 
 
 def _lost(purpose: str, heat: Any, site: Site) -> Duty:

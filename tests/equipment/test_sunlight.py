@@ -402,6 +402,44 @@ def test_a_year_at_once_is_its_hours_one_by_one():
     )
 
 
+@pytest.mark.parametrize("hung", [True, False], ids=["on a stack", "at maximum power"])
+@pytest.mark.parametrize(
+    "more",
+    [
+        {},
+        {"strings": 8},
+        {"cell_temperature": {"model": "noct"}},
+        {"cell_temperature": {"model": "loss-factor"}},
+        {"cell_temperature": {"model": "as-air"}},
+    ],
+    ids=["faiman", "strings", "noct", "loss factor", "as air"],
+)
+def test_slopes_of_one_diode_agree_with_differences(hung, more):
+    """By rate, irradiance, beam, air and wind; on a stack whose voltage grows with current."""
+    field = (
+        hanging(pem(), **more)
+        if hung
+        else PvField.model_validate({"model": "one-diode", "series": 20, **more})
+    )
+    numbers = np.array(NOON.numbers)
+
+    def power(values):
+        return field.operate({"light": Light(*values)}, {}, SITE).outlets["power"]
+
+    outcome = field.operate({"light": NOON}, {}, SITE)
+    assert not outcome.unmet
+    given = field.slopes({"light": NOON}, {}, SITE, outcome)["light"]["power"][0]
+    for place, slope in enumerate(given):
+        step = 2e-5 * numbers[place]
+        ahead, back = numbers.copy(), numbers.copy()
+        ahead[place] += step
+        back[place] -= step
+        found = (power(ahead) - power(back)) / (2 * step)
+        assert slope * numbers[place] == pytest.approx(
+            found * numbers[place], abs=1e-6 * outcome.outlets["power"]
+        )
+
+
 def test_warm_modules_give_less_and_wind_cools_them():
     field = PvField.model_validate({"model": "one-diode"})
 

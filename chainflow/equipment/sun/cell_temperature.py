@@ -73,3 +73,14 @@ class CellTemperature(BaseModel):
         if self.model == "noct":
             return air + (self.noct - ICE_POINT - 20.0) * irradiance / 800.0
         return air + 0.0 * np.asarray(irradiance)
+
+    def slopes(self, irradiance: float, wind: float) -> tuple[float, float, float]:
+        """Return its derivatives by irradiance [K m2/W], air [K/K] and wind [K s/m]."""
+        if self.model == "faiman":
+            loss = self.still_air_loss + self.wind_loss * wind
+            return 1.0 / loss, 1.0, -irradiance * self.wind_loss / loss**2
+        if self.model == "loss-factor":
+            return self.absorptance * (1.0 - self.converted) / self.loss_factor, 1.0, 0.0
+        if self.model == "noct":
+            return (self.noct - ICE_POINT - 20.0) / 800.0, 1.0, 0.0
+        return 0.0, 1.0, 0.0

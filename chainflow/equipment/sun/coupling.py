@@ -14,8 +14,10 @@ from typing import NamedTuple
 
 import numpy as np
 
+from chainflow.equipment.base import Equipment
 from chainflow.equipment.cells.losses import Curve
 from chainflow.equipment.electrolysis import Electrolyser
+from chainflow.equipment.sun.field_slopes import OnLoad
 from chainflow.equipment.sun.one_diode import Array, Diode, Point, Span, rising_zero
 
 _TABLE = np.geomspace(1e-6, 1e6, 2001)  # current densities [A/m2]
@@ -35,8 +37,9 @@ class Load:
     table: tuple[Array, Array]  # current density [A/m2], voltage [V]
 
     @staticmethod
-    def of(stack: Electrolyser, cells: int) -> Load:
+    def of(stack: Equipment, cells: int) -> Load:
         """Return a stack, `trouble_with` of which is empty, as a load."""
+        assert isinstance(stack, Electrolyser)
         curve = stack.liquid_curve()
         area = stack.sizing().area_of(curve)
         constant = curve.voltage(stack.current_density or 0.0)
@@ -112,6 +115,25 @@ def crossing(diode: Diode, span: Span, series: int, strings: Array, load: Load) 
         Point(np.where(found, point.current, 0.0), np.where(found, point.voltage, span.opened)),
         found,
     )
+
+
+def meeting_of(
+    diode: Diode, span: Span, series: int, strings: Array, load: Load
+) -> tuple[OnLoad, Array]:
+    """Return the place where the curves cross with the load's slope, and the diode's voltage."""
+    point = crossing(diode, span, series, strings, load).point
+    current = strings * point.current
+    step = _ASIDE * current
+    slope = (load.voltage(current + step) - load.voltage(current - step)) / (2.0 * step)
+    meeting = OnLoad(
+        series,
+        strings,
+        point.current,
+        diode.series_resistance,
+        load.voltage(current),
+        slope,
+    )
+    return meeting, point.voltage + point.current * diode.series_resistance
 
 
 def _in_table(
