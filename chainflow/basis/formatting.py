@@ -25,6 +25,7 @@ _SCALES: Final = (
     ("J/kg", ("kWh/kg", "kJ/kg")),
     ("J/mol", ("kJ/mol",)),
     ("A/m2", ("A/cm2", "A/m2")),
+    ("rad", ("deg",)),
     ("1", ("%", "ppm")),
 )
 

@@ -166,7 +166,7 @@ def _default(field: FieldInfo) -> str:
     if field.is_required():
         return "required"
     value = field.get_default(call_default_factory=True)
-    if value is None or value is PydanticUndefined:
+    if value is None or value is PydanticUndefined or isinstance(value, BaseModel):
         return "optional"
     marker = next(_markers(_full_type(field)), None)
     if marker is not None and isinstance(value, float):

@@ -57,7 +57,7 @@ class Module(BaseModel):
         0.00525, description="growth of the light current with temperature"
     )
     gap: Annotated[float, measured("J", gt=0)] = Field(
-        joule(1.121), description="band gap at 25 degC"
+        joule(1.121), description="band gap at 25 degC; 1.121 eV without it"
     )
     area: Area = Field(1.70, description="area of the module that the light falls on")
 
