@@ -239,19 +239,17 @@ class PvField(Equipment):
         return held if self.strings is None else np.minimum(self.strings * self.series, held)
 
     def _unmet(self, work: _Work, sun: Light) -> dict[str, str]:
-        """Why one case has no answer; in a batch a field that does not reach its load rests."""
-        if sun.cases is not None or sun.rate <= 0.0 or sun.irradiance <= 0.0:
-            return {}
+        """Why there is no answer; in a batch a field that does not reach its load rests."""
+        lit = (np.asarray(sun.rate) > 0.0) & (np.asarray(sun.irradiance) > 0.0)
+        area = float(np.min(np.broadcast_to(sun.area, lit.shape), where=lit, initial=np.inf))
         wanted = (self.strings or 0) * self.series * self.module.area
-        if wanted > sun.area * (1.0 + _ROUND_OFF):
+        if wanted > area * (1.0 + _ROUND_OFF):
             return {
-                "light": f"the light falls on {sun.area:.6g} m2, but {self.strings} strings of "
+                "light": f"the light falls on {area:.6g} m2, but {self.strings} strings of "
                 f"{self.series} modules have {wanted:.6g} m2: enlarge the aperture of the light, "
                 "or take fewer strings"
             }
-        if self.coupling is None:
-            return {}
-        if bool(work.found):
+        if self.coupling is None or sun.cases is not None or not lit.any() or bool(work.found):
             return {}
         assert self._load is not None
         least = self._load.least_of_a_cell * self._load.cells

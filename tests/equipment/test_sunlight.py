@@ -311,6 +311,8 @@ def test_more_modules_than_the_light_falls_on():
         "the light falls on 555.556 m2, but 30 strings of 20 modules have 1020 m2: enlarge the "
         "aperture of the light, or take fewer strings"
     )
+    batch = Light(np.array([0.0, NOON.rate]), np.array([0.0, 900.0]), 0.9, 293.15, 1.0)
+    assert piece.run({"light": batch}).unmet == outcome.unmet
 
 
 def pem(**more):
@@ -321,6 +323,24 @@ def pem(**more):
 def hanging(stack, cells=330, **more):
     field = {"model": "one-diode", "series": 20, "coupling": {"load": "stack", "cells": cells}}
     return PvField.model_validate({**field, **more}).seeing({"stack": stack})
+
+
+@pytest.mark.parametrize(
+    ("stack", "sentence"),
+    [
+        (pem(current_density="1 A/cm2"), "'stack' says itself how much it makes"),
+        (pem(rectifier="95 %"), "'stack' draws power beside that of its cells"),
+        (
+            pem(model="solid-oxide", temperature="750 degC", pressure="1 bar"),
+            "the curve of 'stack' hangs on what it is fed with",
+        ),
+        (Concentrator(temperature=1000.0), "'stack' is no electrolyser"),
+    ],
+    ids=["sized twice", "rectifier", "hot", "no stack"],
+)
+def test_what_cannot_hang_on_a_field(stack, sentence):
+    with pytest.raises(ValueError, match=sentence):
+        hanging(stack)
 
 
 def test_a_field_that_was_not_told_of_its_stack():
