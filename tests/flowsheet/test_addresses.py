@@ -241,6 +241,12 @@ NUMBERS_ALONE = (
     "share_liquid",
     "working_share",
     "share_lost_per_day",
+    "hour_of_year",
+    "modules",
+    "strings",
+    "coupling_loss",
+    "best_cells",
+    "receiver_efficiency",
 )
 
 
