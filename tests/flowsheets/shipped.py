@@ -18,6 +18,10 @@ from tests.flowsheets.ranges import RANGES
 FOLDER = Path(__file__).parents[2] / "flowsheets"
 NAMES = tuple(RANGES)
 CYCLES = ("methane-cycle", "methane-cycle-direct")
+FIRED = ("gas-turbine", "steam-cycle")  # they burn bought methane; all others live on light
+SUNNY = tuple(name for name in NAMES if name not in FIRED)
+COLD_STACKS = tuple(name for name in SUNNY if name != "steam-methane")  # at 52 kWh/kg
+HUGE = ("liquid-fuel",)  # so many components that what repeats a solve is for the slow tests
 CLOSED = {"capture": "100 %", "purge": "0 %"}
 
 
