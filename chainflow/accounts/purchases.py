@@ -20,6 +20,8 @@ from chainflow.equipment.stores import Store
 from chainflow.solver.solution import Solution
 from chainflow.thermo.streams import Stream
 
+_ROUND_OFF = 1e-13  # of the enthalpy that leaves: what is left of two that should be equal
+
 
 @dataclass(frozen=True, slots=True)
 class Purchases:
@@ -67,8 +69,14 @@ def purchases(solution: Solution) -> Purchases:
 def _duties(solution: Solution) -> Iterator[tuple[str, Duty]]:
     for name, outcome in solution.outcomes.items():
         for duty in outcome.duties:
-            if duty.met_by == "bought":
+            if duty.met_by == "bought" and abs(duty.heat) > _ROUND_OFF * _throughput(outcome):
                 yield name, duty
+
+
+def _throughput(outcome: Outcome) -> float:
+    """Enthalpy that leaves a piece of equipment, whatever its sign [W]."""
+    leaving = outcome.outlets.values()
+    return sum(abs(float(flow.enthalpy)) for flow in leaving if isinstance(flow, Stream))
 
 
 def _power(solution: Solution) -> Iterator[tuple[str, float]]:

@@ -29,6 +29,7 @@ from chainflow.thermo.validity import StateError
 LIQUEFIABLE = tuple(name for name in PURE_FLUIDS if name != "H2O")
 _FAR = 2000.0  # [J/mol] below 25 degC: with less, no gas is as cold as 200 K
 _SAME = 1e-9  # relative, of a saturation pressure
+_AT_SATURATION = 1e-7  # of the heat of evaporation: closer to it no single phase is found
 
 
 class ColdState(NamedTuple):
@@ -148,8 +149,9 @@ def cold_of_enthalpy(name: str, enthalpy: float, pressure: float) -> ColdState:
     start = None
     if pressure < found.critical_pressure:
         liquid, vapour = (saturated(name, pressure, share) for share in (0.0, 1.0))
-        if liquid.enthalpy <= enthalpy <= vapour.enthalpy:
-            share = (enthalpy - liquid.enthalpy) / (vapour.enthalpy - liquid.enthalpy)
+        share = (enthalpy - liquid.enthalpy) / (vapour.enthalpy - liquid.enthalpy)
+        if -_AT_SATURATION <= share <= 1.0 + _AT_SATURATION:
+            share = min(max(share, 0.0), 1.0)
             return saturated(name, pressure, share)._replace(vapour=share, enthalpy=enthalpy)
         start = liquid if enthalpy < liquid.enthalpy else vapour
     if name == "H2":

@@ -39,6 +39,23 @@ def test_temperature_and_phases_are_found_again_from_the_enthalpy(name):
     )
 
 
+@pytest.mark.parametrize("name", LIQUEFIABLE)
+@pytest.mark.parametrize("beyond", [1e-14, 1e-12, 1e-10, 1e-9, 1e-8, 5e-8, 1e-7, 2e-7, 1e-6])
+def test_a_state_next_to_saturation_is_found(name, beyond):
+    """Round-off beyond boiling liquid or saturated vapour is no state without an answer."""
+    for pressure in (8e5, 30e5) if name == "CO2" else (1.3e5, 3e5, 8e5):
+        liquid, vapour = (saturated(name, pressure, share) for share in (0.0, 1.0))
+        more = beyond * (vapour.enthalpy - liquid.enthalpy)
+        for enthalpy, state in (
+            (liquid.enthalpy - more, liquid),
+            (vapour.enthalpy + more, vapour),
+        ):
+            found = cold_of_enthalpy(name, enthalpy, pressure)
+            assert found.temperature == pytest.approx(state.temperature, rel=1e-5)
+            assert found.entropy == pytest.approx(state.entropy, rel=1e-5, abs=1e-4)
+            assert found.enthalpy == enthalpy
+
+
 @pytest.mark.parametrize("name", ["H2", "CH4", "N2", "O2"])
 def test_the_cold_gas_joins_the_gas_of_the_species_table(name):
     # 1 bar and 200 K; only the spins of hydrogen jump, by 2.1 kJ/kg = 4.3 J/mol

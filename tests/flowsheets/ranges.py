@@ -7,6 +7,8 @@ Range = tuple[float, float, str]
 
 SUN = {"sun": (100, 1100, "W/m2"), "aperture": (1000, 500000, "m2")}
 
+HYDROGEN: dict[str, Range] = {**SUN, "energy_use": (45, 60, "kWh/kg")}
+
 CYCLE = {
     **SUN,
     "hot": (260, 400, "degC"),
@@ -50,5 +52,51 @@ RANGES: dict[str, dict[str, Range]] = {
         "hot": (900, 1200, "degC"),
         "shift": (750, 890, "degC"),
         "spare": (1, 200, "kW"),
+    },
+    "hydrogen-fuel-cell": {
+        **HYDROGEN,
+        "keep": (50, 700, "bar"),
+        "current": (0.1, 1.2, "A/cm2"),
+        "warm": (60, 80, "degC"),
+    },
+    "hydrogen-700-bar": {**HYDROGEN, "keep": (350, 900, "bar"), "each": (55, 85, "%")},
+    "hydrogen-liquid": {
+        **HYDROGEN,
+        "machine": (15, 45, "%"),
+        "boil_off": (0, 10, "%"),
+        "current": (0.1, 1.2, "A/cm2"),
+    },
+    "steam-methane": {
+        **SUN,
+        "convert": (75, 88, "%"),
+        "hot": (260, 350, "degC"),
+        "purge": (0, 10, "%"),
+        "inert": (0, 2, "%"),
+        "keep": (50, 300, "bar"),
+    },
+    "liquid-fuel": {
+        **SUN,
+        "shift": (850, 1000, "degC"),
+        "regain": (150, 700, "degC"),
+        "growth": (80, 95, "%"),
+        "once": (40, 60, "%"),
+        "again": (0, 75, "%"),
+        "reform": (850, 1000, "degC"),
+        "purge": (0.5, 10, "%"),
+        "inert": (0, 2, "%"),
+    },
+    "gas-turbine": {
+        "fuel": (20, 5000, "kg/h"),
+        "high": (5, 30, "bar"),
+        "fire": (900, 1400, "degC"),
+        "squeeze": (78, 90, "%"),
+        "blades": (80, 92, "%"),
+    },
+    "steam-cycle": {
+        "fuel": (20, 5000, "kg/h"),
+        "steam": (10, 80, "bar"),
+        "superheat": (50, 250, "K"),
+        "blades": (70, 88, "%"),
+        "leaving": (110, 200, "degC"),
     },
 }

@@ -17,9 +17,13 @@ from tests.flowsheets.ranges import RANGES
 
 FOLDER = Path(__file__).parents[2] / "flowsheets"
 NAMES = tuple(RANGES)
-STATED = ("hydrogen-store", "methane-store", "methane-cycle", "methane-cycle-direct")
-"""Those with a field of 20 %, a stack of 52 kWh/kg and one switchboard for all."""
 CYCLES = ("methane-cycle", "methane-cycle-direct")
+FIRED = ("gas-turbine", "steam-cycle")  # they burn bought methane; all others live on light
+LIT = ("photoelectrode-hydrogen", "photoelectrode-methane")  # light makes hydrogen by itself
+APART = ("hydrogen-direct-coupled", "solar-heat-syngas")  # other fields, with a grid beside them
+SUNNY = tuple(name for name in NAMES if name not in (*FIRED, *APART))
+COLD_STACKS = tuple(name for name in SUNNY if name not in ("steam-methane", *LIT))  # 52 kWh/kg
+HUGE = ("liquid-fuel",)  # so many components that what repeats a solve is for the slow tests
 CLOSED = {"capture": "100 %", "purge": "0 %"}
 
 

@@ -18,9 +18,10 @@ from chainflow.flowsheet.building import read_text
 from chainflow.report.document import document, to_json
 from chainflow.solver.solve import solve_flowsheet
 from tests.flowsheets.ranges import RANGES
-from tests.flowsheets.shipped import NAMES, text_of
+from tests.flowsheets.shipped import HUGE, NAMES, text_of
 
 SHORT, LONG = 10, 300
+SHORT_HUGE, LONG_HUGE = 4, 100
 STEPS = 10_000
 REFUSALS = {
     "heat-short",
@@ -63,7 +64,8 @@ def attempt(name, knobs):
     assert solution.balance.elements < 1e-9
     assert solution.balance.energy < 1e-9
     found = json.loads(to_json(document(solution)))  # NaN does not get into it
-    assert None not in found["streams"]["stack.hydrogen"]["flow_mol_s"].values()
+    for stream in found["streams"].values():
+        assert None not in stream.get("flow_mol_s", {}).values()
     assert found["plant"]["efficiency"]["overall"]["LHV"] > 0
     return "solved"
 
@@ -90,7 +92,7 @@ def run(name, examples):
 
 @pytest.mark.parametrize("name", NAMES)
 def test_a_few_random_settings(name):
-    run(name, SHORT)
+    run(name, SHORT_HUGE if name in HUGE else SHORT)
 
 
 @pytest.mark.parametrize("share", ["1e-3 %", "1e-9 %", "1e-30 %", "1e-90 %"])
@@ -116,4 +118,4 @@ def test_a_share_too_small_to_mean_anything():
 @pytest.mark.slow
 @pytest.mark.parametrize("name", NAMES)
 def test_many_random_settings(name):
-    run(name, LONG)
+    run(name, LONG_HUGE if name in HUGE else LONG)
