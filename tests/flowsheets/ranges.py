@@ -18,6 +18,8 @@ CYCLE = {
     "keep": (50, 250, "bar"),
 }
 
+LIT = {**SUN, "strip": (4, 15, "%"), "onset": (0.2, 0.6, "V")}
+
 RANGES: dict[str, dict[str, Range]] = {
     "hydrogen-store": {
         **SUN,
@@ -35,4 +37,12 @@ RANGES: dict[str, dict[str, Range]] = {
     },
     "methane-cycle": {**CYCLE, "shift": (800, 1000, "degC"), "regain": (150, 700, "degC")},
     "methane-cycle-direct": CYCLE,
+    "photoelectrode-hydrogen": {**LIT, "separation": (30, 95, "%"), "keep": (50, 700, "bar")},
+    "photoelectrode-methane": {
+        **LIT,
+        "hot": (260, 450, "degC"),
+        "purge": (0, 10, "%"),
+        "inert": (0, 2, "%"),
+        "keep": (50, 300, "bar"),
+    },
 }

@@ -18,6 +18,8 @@ from tests.flowsheets.ranges import RANGES
 FOLDER = Path(__file__).parents[2] / "flowsheets"
 NAMES = tuple(RANGES)
 CYCLES = ("methane-cycle", "methane-cycle-direct")
+LIT = ("photoelectrode-hydrogen", "photoelectrode-methane")  # light makes hydrogen by itself
+COLD_STACKS = tuple(name for name in NAMES if name not in LIT)  # at 52 kWh/kg
 CLOSED = {"capture": "100 %", "purge": "0 %"}
 
 

@@ -114,7 +114,7 @@ def test_overall_efficiency_from_the_stream_table_alone(name):
     """All that the village gets over the light; nothing that is bought here burns."""
     got = light = 0.0
     for row in csv_rows(name, "streams.csv"):
-        if row["content"] == "light":
+        if row["from"] == "sun.light":
             light += float(row["rate_W"])
         if row["to"] == "village.inlet":
             got += float(row["lhv_W"] or row["rate_W"])
