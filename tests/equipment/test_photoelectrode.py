@@ -368,8 +368,11 @@ def test_a_photovoltage_beyond_the_detailed_balance_is_doubted():
 @pytest.mark.parametrize(
     ("settings", "says"),
     [
-        ({"band_gap": "2 eV"}, "wanted either 'shape'"),
-        ({**OXIDE, "curve": {"potential": [0, 1, 2], "current_density": [0, 1, 2]}}, "not both"),
+        ({"band_gap": "2 eV"}, "'shape' is missing, as {onset:"),
+        (
+            {**OXIDE, "curve": {"potential": [0, 1, 2], "current_density": [0, 1, 2]}},
+            "'shape' and 'curve' are both given",
+        ),
         ({**OXIDE, "measured_at": 900.0}, "'measured_at' is of a measured 'curve'"),
         (
             {"band_gap": "2 eV", "shape": {"onset": "0.8 V", "half_wave": "0.5 V"}},

@@ -241,6 +241,10 @@ NUMBERS_ALONE = (
     "share_liquid",
     "working_share",
     "share_lost_per_day",
+    "solar_to_hydrogen",
+    "solar_to_hydrogen_net_of_bias",
+    "current_by_electrode",
+    "current_by_cell",
 )
 
 

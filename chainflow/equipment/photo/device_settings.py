@@ -132,11 +132,11 @@ class SolarCell(BaseModel):
 
 def wrong_together(piece: Photoelectrode) -> str:
     """Say which settings do not go together; empty if all do."""
-    if (piece.shape is None) == (piece.curve is None):
-        return (
-            "wanted either 'shape', as {onset: 0.4 V, half_wave: 0.7 V}, or 'curve' with a "
-            "measured one, and not " + ("both" if piece.curve else "neither")
-        )
+    if piece.shape is None and piece.curve is None:
+        shape = "{onset: 0.4 V, half_wave: 0.7 V}"
+        return f"'shape' is missing, as {shape}, or 'curve' with a measured one"
+    if piece.shape is not None and piece.curve is not None:
+        return "'shape' and 'curve' are both given: remove one of them"
     if piece.curve is not None:
         given = [
             name
