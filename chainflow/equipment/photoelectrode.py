@@ -84,6 +84,9 @@ _POWER = Port(
 )
 
 
+USUAL_EFFICIENCY = 0.8  # of a good absorber in the light it takes, our own
+
+
 class Work(NamedTuple):
     """A device at work."""
 
@@ -133,16 +136,16 @@ class Photoelectrode(Equipment):
         "photoanode", description="whether the lit electrode makes oxygen or hydrogen"
     )
     band_gap: BandGap = Field(description="of the photoelectrode")
-    quantum_efficiency: QuantumEfficiency = Field(
-        0.8,
+    quantum_efficiency: QuantumEfficiency | None = Field(
+        None,
         description="electrons per photon that arrives above the gap, before the two factors; "
-        "a share or a CSV file by wavelength",
+        "a share or a CSV file by wavelength (80 %)",
     )
-    separation: OpenFraction = Field(
-        1.0, description="share of these charges that gets to the surface"
+    separation: OpenFraction | None = Field(
+        None, description="share of these charges that gets to the surface (100 %)"
     )
-    catalyst: OpenFraction = Field(
-        1.0, description="share of the charges at the surface that splits water"
+    catalyst: OpenFraction | None = Field(
+        None, description="share of the charges at the surface that splits water (100 %)"
     )
     reflection: Annotated[float, measured("1", ge=0, lt=1)] = Field(
         0.05, description="light that does not get in"
@@ -156,8 +159,8 @@ class Photoelectrode(Equipment):
     curve: PhotoCurveSetting | None = Field(
         None, description="current by potential in the light, measured"
     )
-    measured_at: Annotated[float, measured("W/m2", gt=0)] = Field(
-        FULL_SUN, description="irradiance of the measured curve"
+    measured_at: Annotated[float, measured("W/m2", gt=0)] | None = Field(
+        None, description="irradiance of the measured curve (1000 W/m2)"
     )
     conduction_edge: Voltage | None = Field(
         None, description="conduction band edge, to check whether water can be split at all"
@@ -222,7 +225,9 @@ class Photoelectrode(Equipment):
     def efficiency_points(self) -> float | tuple[tuple[float, ...], tuple[float, ...]]:
         """The quantum efficiency: constant, or by rising wavelength [m]."""
         given = self.quantum_efficiency
-        return given.sorted() if isinstance(given, EfficiencyCurve) else given
+        if isinstance(given, EfficiencyCurve):
+            return given.sorted()
+        return USUAL_EFFICIENCY if given is None else given
 
     @property
     def reversible(self) -> float:
@@ -259,7 +264,7 @@ class Photoelectrode(Equipment):
     def _electrode(self, irradiance: float) -> ElectrodeCurve:
         if self.curve is not None:
             points = self.curve.cleaned(self.direction)
-            return MeasuredElectrode(*points, irradiance / self.measured_at)
+            return MeasuredElectrode(*points, irradiance / (self.measured_at or FULL_SUN))
         assert self.shape is not None
         onset, half = (self.direction * v for v in (self.shape.onset, self.shape.half_wave))
         return ShapedElectrode(onset, half, self.shape.width, plateau(self) * irradiance)

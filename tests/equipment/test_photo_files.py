@@ -307,3 +307,11 @@ def test_more_electrons_than_absorbed_photons(tmp_path):
     ((path, text),) = piece.setting_faults(MATTER)
     assert path == ("quantum_efficiency",)
     assert "reaches 97 %, but only 90.25 % of the photons are absorbed" in text
+
+
+def test_a_device_is_made_again_from_its_own_settings(tmp_path):
+    written(tmp_path, CURVE)
+    by_wavelength(tmp_path, EFFICIENCY)
+    for piece in (device(tmp_path), by_wavelength(tmp_path, EFFICIENCY)):
+        again = Photoelectrode.model_validate(piece.model_dump())
+        assert results(again) == results(piece)

@@ -106,3 +106,15 @@ def test_a_bias_is_served_by_the_switchboard_and_counted_against_the_efficiency(
     assert net / gross == pytest.approx(1.0 - 0.05 / (1.2289 * 0.98), rel=1e-3)
     made = float(flow(solution, "stack.hydrogen").flow("H2"))
     assert made == pytest.approx(0.98 * found["current_A"] / (2.0 * FARADAY), rel=1e-6)
+
+
+def test_a_setting_of_the_device_holds_a_result_of_it():
+    hold = "holds:\n  - {hold: stack.solar_to_hydrogen, at: 7 %, by: stack.separation, "
+    hold += "within: [20 %, 100 %]}\nlines:"
+    solution = solved_text(text_of("photoelectrode-hydrogen").replace("\nlines:", "\n" + hold))
+    found = solution.outcomes["stack"].results
+    assert found["solar_to_hydrogen"] == pytest.approx(0.07, rel=1e-9)
+    plain = solved("photoelectrode-hydrogen").outcomes["stack"].results
+    # close to the plateau the current goes with the charges that get to the surface
+    share = solution.holds[0].value / 0.75
+    assert share == pytest.approx(0.07 / plain["solar_to_hydrogen"], rel=0.02)

@@ -138,16 +138,16 @@ def wrong_together(piece: Photoelectrode) -> str:
     if piece.shape is not None and piece.curve is not None:
         return "'shape' and 'curve' are both given: remove one of them"
     if piece.curve is not None:
-        given = [
-            name
-            for name in ("quantum_efficiency", "separation", "catalyst")
-            if name in piece.model_fields_set
-        ]
+        given = _given(piece, "quantum_efficiency", "separation", "catalyst")
         if given:
             return f"'{given[0]}' is already in the measured 'curve': remove it"
-    if piece.curve is None and "measured_at" in piece.model_fields_set:
+    elif piece.measured_at is not None:
         return "'measured_at' is of a measured 'curve': remove it"
     return _shape_trouble(piece) or _cell_trouble(piece) or _file_trouble(piece)
+
+
+def _given(piece: Photoelectrode, *names: str) -> list[str]:
+    return [name for name in names if getattr(piece, name) is not None]
 
 
 def _shape_trouble(piece: Photoelectrode) -> str:
@@ -161,7 +161,7 @@ def _shape_trouble(piece: Photoelectrode) -> str:
             f"wanted a half-wave {word} the onset of a {piece.electrode}"
         )
     if shape.saturation is not None:
-        given = [n for n in ("separation", "catalyst") if n in piece.model_fields_set]
+        given = _given(piece, "separation", "catalyst")
         if given:
             return f"'{given[0]}' is already in 'shape.saturation': remove one of them"
     return ""
@@ -233,7 +233,11 @@ def _current_faults(piece: Photoelectrode) -> Faults:
         text = _too_much(f"'shape.saturation' is {_per_area(piece.shape.saturation or 0.0)}", most)
         yield ("shape", "saturation"), text
     if piece.curve is not None:
-        reached = piece.curve.cleaned(piece.direction).densities[-1] * FULL_SUN / piece.measured_at
+        reached = (
+            piece.curve.cleaned(piece.direction).densities[-1]
+            * FULL_SUN
+            / (piece.measured_at or FULL_SUN)
+        )
         if reached > most:
             reads = f"the curve reaches {_per_area(reached)} in 1000 W/m2"
             yield ("curve",), _too_much(reads, most)
@@ -251,8 +255,11 @@ def plateau(piece: Photoelectrode) -> float:
     if piece.shape is not None and piece.shape.saturation is not None:
         return piece.shape.saturation / FULL_SUN
     if piece.curve is not None:
-        return piece.curve.cleaned(piece.direction).densities[-1] / piece.measured_at
-    return piece.separation * piece.catalyst * current_at(piece.efficiency_points, piece.band_gap)
+        return piece.curve.cleaned(piece.direction).densities[-1] / (piece.measured_at or FULL_SUN)
+    factors = (1.0 if piece.separation is None else piece.separation) * (
+        1.0 if piece.catalyst is None else piece.catalyst
+    )
+    return factors * current_at(piece.efficiency_points, piece.band_gap)
 
 
 def _per_area(density: float) -> str:
