@@ -103,6 +103,19 @@ def test_more_given_moves_the_crossing_as_its_slopes_say():
     assert circuit.by_electrode + circuit.by_cell == pytest.approx(relative, rel=1e-5)
 
 
+def test_on_a_flat_piece_of_a_measured_curve_only_light_moves_the_current():
+    from dataclasses import replace
+
+    flat = MeasuredElectrode((0.2, 0.4, 0.6, 0.8, 1.0), (0.0, 20.0, 20.0, 20.0, 40.0), 1.0)
+    circuit = Circuit(flat, 1.0, (), Overpotential(0.03, 10.0), 1e-4, 0.0, 0.6)
+    assert circuit.density == pytest.approx(20.0, rel=1e-12)
+    assert (circuit.per_volt, circuit.by_electrode, circuit.by_cell) == (0.0, 1.0, 0.0)
+    assert 0.4 < circuit.drive < 0.6  # what overpotential and drop leave of 0.6 V
+    assert replace(circuit, bias=0.62).density == pytest.approx(20.0, rel=1e-12)
+    brighter = replace(circuit, electrode=replace(flat, scale=1.01))
+    assert brighter.density == pytest.approx(20.2, rel=1e-12)
+
+
 @pytest.mark.parametrize(
     ("onset", "more", "says"),
     [
@@ -310,6 +323,17 @@ def test_the_budget_adds_up_to_light_and_bias(irradiance, bias, beside):
     total = found["light_W"] + found["bias_power_W"]
     assert sum(parts) == pytest.approx(total, rel=1e-12, abs=1e-9)
     assert min(parts) >= -1e-9 * total
+
+
+def test_a_junction_driven_through_its_shunt_keeps_the_budget():
+    """The lower junction makes less than the current that the others press through it."""
+    cell = {"gaps": ["1.3 eV", "1.25 eV"], "shunt_resistance": "30 ohm*cm2"}
+    piece = device(**{**OXIDE, "cell": cell, "bias": "1.2 V"})
+    found = results(piece)
+    assert found["current_density_A_m2"] > found["cell_limit_A_m2"]
+    parts = [found[name] for name in BUDGET]
+    assert sum(parts) == pytest.approx(found["light_W"] + found["bias_power_W"], rel=1e-12)
+    assert min(parts) >= 0.0
 
 
 def test_light_is_hydrogen_heat_and_light_passed():

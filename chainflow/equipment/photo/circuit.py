@@ -18,6 +18,7 @@ from chainflow.equipment.cells.losses import between
 from chainflow.equipment.photo.electrode_curves import ElectrodeCurve
 from chainflow.equipment.photo.junctions import Junction
 
+_STEP = 1e-7  # [V]; a crossing closes to less
 _EDGE = 1e-12  # relative gap kept to the limiting current while a crossing is looked for
 
 
@@ -97,18 +98,30 @@ class Circuit:
 
         On a plateau the current does not tell it.
         """
-        limited = self.at_limit and self._tightest < self.electrode.limit * self.part
-        if limited or not self.crosses:
+        if self._cell_limits or not self.crosses:
             return self.electrode.drive(self.density / self.part)
         return self.given(self.density) - self._beside(self.density)
 
     def voltages(self) -> tuple[float, ...]:
         """The voltage of each junction at the crossing; a limiting one takes what is left over."""
         found = [one.voltage(self.density) for one in self.junctions]
-        if self.at_limit and self._tightest < self.electrode.limit * self.part:
+        if self._cell_limits:
             place = min(range(len(found)), key=lambda i: self.junctions[i].limit)
             found[place] += self._excess(self.density)
         return tuple(found)
+
+    @property
+    def _cell_limits(self) -> bool:
+        """Whether a junction is at its limiting current and takes what voltage is left."""
+        return self.at_limit and self._tightest < self.electrode.limit * self.part
+
+    @property
+    def _on_step(self) -> bool:
+        """Whether the crossing lies where the photoelectrode's current does not follow potential.
+
+        That is a flat piece of a measured curve: only the light moves the current there.
+        """
+        return self.crosses and abs(self._excess(self.density)) > _STEP
 
     @property
     def _tightest(self) -> float:
@@ -127,15 +140,15 @@ class Circuit:
     @property
     def per_volt(self) -> float:
         """Change of the current density by a voltage given [A/(m2 V)]."""
-        return 0.0 if self.at_limit or not self.crosses else 1.0 / self.steepness
+        return 0.0 if self._on_step or not self.crosses else 1.0 / self.steepness
 
     @property
     def by_electrode(self) -> float:
         """Relative change of the current per relative change of the photoelectrode's current."""
         if not self.crosses:
             return 0.0
-        if self.at_limit:
-            return 1.0 if self.electrode.limit * self.part <= self._tightest else 0.0
+        if self._on_step:
+            return 0.0 if self._cell_limits else 1.0
         return self.electrode.steepness(self.density / self.part) / self.part / self.steepness
 
     @property
@@ -143,7 +156,7 @@ class Circuit:
         """Relative change of the current per relative change of the junctions' light currents."""
         if not self.crosses:
             return 0.0
-        if self.at_limit:
-            return 1.0 if self._tightest < self.electrode.limit * self.part else 0.0
+        if self._on_step:
+            return 1.0 if self._cell_limits else 0.0
         gained = sum(one.light * one.by_light(self.density) for one in self.junctions)
         return gained / self.density / self.steepness

@@ -138,28 +138,32 @@ def _budget(piece: Photoelectrode, work: Work) -> dict[str, float]:
     paths, rate = work.paths, work.light.rate
     count = piece.cell.in_series if piece.cell else 1
     absorbers = [(paths.electrode, 1), *((taken, count) for taken in paths.junctions)]
-    lost = [_lost(taken, times, work) for taken, times in absorbers]
-    lifted = sum(times * taken.gap for taken, times in absorbers) / ELEMENTARY_CHARGE
+    shares = [_shares(taken, times * work.current, rate) for taken, times in absorbers]
+    lost, hot, lifted = (sum(one[place] for one in shares) for place in range(3))
     bias, hydrogen = piece.bias * work.current, _work(piece, work)
     return {
         "light_W": rate,
         "bias_power_W": bias,
         "not_absorbed_W": paths.not_absorbed * rate,
         "passed_W": paths.passed * rate,
-        "not_collected_W": sum(one[0] for one in lost),
-        "thermalised_W": sum(one[1] for one in lost),
-        "voltage_not_used_W": work.current * lifted + bias - hydrogen,
+        "not_collected_W": lost,
+        "thermalised_W": hot,
+        "voltage_not_used_W": lifted + bias - hydrogen,
         "hydrogen_work_W": hydrogen,
     }
 
 
-def _lost(taken: Taken, times: int, work: Work) -> tuple[float, float]:
-    """Energy of photons that become no current, and what the others have above the gap [W]."""
-    light = taken.energy * work.light.rate
-    most = taken.photons * work.light.rate
-    used = times * work.current
+def _shares(taken: Taken, current: float, rate: float) -> tuple[float, float, float]:
+    """Split the light of an absorber [W] that drives a current [A].
+
+    Photons that become no current; what the others have above the gap; and their gaps. A junction
+    that is driven through its shunt carries more than its light.
+    """
+    light, most = taken.energy * rate, taken.photons * rate
+    used = min(current, most)
     collected = light * used / most if most > 0.0 else 0.0
-    return light - collected, collected - used * taken.gap / ELEMENTARY_CHARGE
+    lifted = used * taken.gap / ELEMENTARY_CHARGE
+    return light - collected, collected - lifted, lifted
 
 
 def _work(piece: Photoelectrode, work: Work) -> float:
