@@ -175,6 +175,83 @@ def kinds(
 
 @app.command()
 @reported
+def limits(
+    gap: Annotated[
+        list[str] | None,
+        typer.Option(
+            "--gap",
+            metavar="GAP",
+            help="Band gap, as '2.1 eV'; give it twice for two absorbers in series.",
+        ),
+    ] = None,
+    overpotential: Annotated[
+        str,
+        typer.Option(
+            "--overpotential",
+            metavar="VOLTS",
+            help="Of both electrodes and the electrolyte together.",
+        ),
+    ] = "0.8 V",
+    json: Annotated[
+        str | None,
+        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
+    ] = None,
+    rest: Annotated[list[str] | None, typer.Argument(hidden=True)] = None,
+) -> None:
+    """Print how much hydrogen one band gap, or a pair, could make of sunlight at best.
+
+    Available current, solar cell and solar-to-hydrogen efficiency in the detailed balance, without
+    overpotential and with one.
+    """
+    from chainflow.basis.names import shorten
+    from chainflow.report.writing import check_writable
+    from chainflow.studies.limits import limits as find_limits
+    from chainflow.studies.limits import limits_document
+
+    if rest:
+        raise UsageFault(
+            f"{shorten(rest[0])} stands alone: put a number and its unit in quotes, --gap '2.1 eV'"
+        )
+    if not gap:
+        raise UsageFault("no band gap is given: chainflow limits --gap '2.1 eV'")
+    if json is not None and json != STDOUT:
+        check_writable(Path(json))
+    found = find_limits([_gap(text) for text in gap], _overpotential(overpotential))
+    if json is not None:
+        from chainflow.report.document import to_json
+
+        _write_json(to_json(limits_document(found)), json)
+    if json != STDOUT:
+        from chainflow.report.limits import print_limits
+
+        print_limits(found)
+
+
+def _gap(text: str) -> float:
+    """Read a band gap [J]."""
+    from typing import get_args
+
+    from chainflow.basis.quantities import BandGap, QuantityFault
+
+    _, marker = get_args(BandGap)
+    try:
+        return float(marker.read(text))
+    except QuantityFault as fault:
+        raise UsageFault(f"--gap {fault}") from None
+
+
+def _overpotential(text: str) -> float:
+    """Read a voltage."""
+    from chainflow.basis.quantities import QuantityFault, parse
+
+    try:
+        return parse(text, "V", ge=0.0, le=3.0)
+    except QuantityFault as fault:
+        raise UsageFault(f"--overpotential {fault}") from None
+
+
+@app.command()
+@reported
 def schema() -> None:
     """Print the JSON Schema of flowsheet files, for editors."""
     import json

@@ -4,7 +4,8 @@ Overall efficiency = useful energy / (sunlight + power bought + heat bought + th
 all material bought), by LHV, HHV and exergy. Nothing is netted. *Rungs* are the ratios of
 successive cuts through the plant: what goes in, the power made from light or bought, hydrogen made
 by electrolysis, fuel made, fuel kept (see `chainflow.accounts.fuel`) and what is useful. Cuts that
-a plant does not have are left out, so the rungs multiply to the overall efficiency on each basis.
+a plant does not have are left out, so the rungs multiply to the overall efficiency on each basis;
+where light makes hydrogen without being power first, there is no cut of power.
 """
 
 from __future__ import annotations
@@ -94,7 +95,8 @@ def _cuts(
     lines = fuel_lines(solution)
     made, kept = worth_of_lines(solution, lines.made), worth_of_lines(solution, lines.kept)
     solar = _solar_power(solution)
-    if solar > 0.0 or hydrogen.positive:  # else power only drives a plant that runs on bought fuel
+    # else power only drives a plant that runs on bought fuel or makes hydrogen of light itself
+    if (solar > 0.0 or hydrogen.positive) and not _lit_hydrogen(solution):
         yield Cut("power", of_power(solar + bought.power_total))
     if hydrogen.positive:
         yield Cut("hydrogen", hydrogen)
@@ -130,6 +132,12 @@ def _solar_power(solution: Solution) -> float:
 
 def _takes_light(piece: Equipment) -> bool:
     return any(port.is_inlet and port.content == "light" for port in piece.port_list())
+
+
+def _lit_hydrogen(solution: Solution) -> bool:
+    """Whether hydrogen is made of light without being power first."""
+    pieces = solution.flowsheet.equipment.values()
+    return any(piece.makes and _takes_light(piece) for piece in pieces)
 
 
 def _hydrogen(solution: Solution) -> Iterator[Stream]:

@@ -16,6 +16,7 @@ from typing import Annotated, Any, Literal, NamedTuple
 
 from pydantic_core import PydanticCustomError, core_schema
 
+from chainflow.basis.constants import ELEMENTARY_CHARGE
 from chainflow.basis.formatting import format_number, format_quantity
 from chainflow.basis.names import shorten
 from chainflow.basis.parsing import (
@@ -45,6 +46,8 @@ from chainflow.basis.units import (
 __all__ = [
     "Amount",
     "Area",
+    "BandGap",
+    "BandGapType",
     "BasedShare",
     "CurrentDensity",
     "Energy",
@@ -103,13 +106,18 @@ class QuantityType:
 
     def checked(self, given: object) -> float:
         """Check a number from Python, already in SI."""
+        value = self.unlimited(given)
+        unit = resolve(self.unit)
+        check_range(value, self.limits, unit, plain_number(value, self.unit))
+        return value
+
+    def unlimited(self, given: object) -> float:
+        """Check that something from Python is a number, whatever its size."""
         if isinstance(given, bool) or not isinstance(given, Real):
             raise QuantityFault(f"{_shown(given)} is not a quantity: wanted {self.means()}")
         value = float(given)
         if not math.isfinite(value):
             raise QuantityFault(f"{value} is not a finite number: wanted {self.means()}")
-        unit = resolve(self.unit)
-        check_range(value, self.limits, unit, plain_number(value, self.unit))
         return value
 
     @property
@@ -261,6 +269,36 @@ class FlowType(QuantityType):
         )
 
 
+@dataclass(frozen=True, slots=True)
+class BandGapType(QuantityType):
+    """A band gap: an energy of one electron, in J inside and in eV for people."""
+
+    def means(self) -> str:
+        """Say what is wanted."""
+        return "a band gap in eV, as '1.1 eV'"
+
+    def read(self, given: object) -> object:
+        """Turn text in the grammar, or an SI number, into a checked SI value."""
+        if not isinstance(given, str):
+            value = self.unlimited(given)
+            check_range(value, self.limits, resolve("eV"), f"{resolve('eV').from_si(value):.6g} eV")
+            return value
+        if re.fullmatch(NUMBER_PATTERN, given.strip()):
+            raise QuantityFault(f"{shorten(given)} has no unit: wanted {self.means()}")
+        number, unit = read_number(given, resolve("eV"), self.means())
+        if unit.exponents != resolve("eV").exponents:
+            raise QuantityFault(
+                f"{shorten(given)} is {noun(unit.exponents)}, wanted {self.means()}"
+            )
+        value = finite(unit.to_si(number), given)
+        check_range(value, self.limits, resolve("eV"), shorten(given))
+        return value
+
+    def described(self) -> str:
+        """Return one line for help and schema."""
+        return f"{self.means()}; {self.limits.words(resolve('eV'))}"
+
+
 class BasedShare(NamedTuple):
     """A share of a heating value: 0 to 1, and which heating value if the text said so."""
 
@@ -315,5 +353,8 @@ CurrentDensity = Annotated[float, measured("A/m2", ge=0)]
 Length = Annotated[float, measured("m", ge=0)]
 Volume = Annotated[float, measured("m3", ge=0)]
 Time = Annotated[float, measured("s", ge=0)]
+BandGap = Annotated[  # the reference spectrum ends at 0.31 and 4.43 eV
+    float, BandGapType("J", Limits(ge=0.31 * ELEMENTARY_CHARGE, le=4.4 * ELEMENTARY_CHARGE))
+]
 Flow = Annotated[Amount, FlowType("mol/s", Limits(ge=0))]
 HeatingValueShare = Annotated[BasedShare, BasedShareType("1", Limits(gt=0, le=1))]

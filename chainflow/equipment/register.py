@@ -26,6 +26,7 @@ CORE: dict[str, str] = {  # module and class of each kind
     "switchboard": "power.Switchboard",
     "grid": "power.Grid",
     "electrolyser": "electrolysis.Electrolyser",
+    "photoelectrode": "photoelectrode.Photoelectrode",
     "fuel-cell": "fuel_cell.FuelCell",
     "mixer": "junctions.Mixer",
     "blend": "junctions.Blend",

@@ -47,6 +47,7 @@ _RESULT_UNITS = {  # the first end that fits counts: longer ones stand before wh
     "_K": "K",
     "_W": "W",
     "_A_m2": "A/m2",
+    "_S_m2": "S/m2",
     "_m2": "m2",
     "_A": "A",
     "_V": "V",

@@ -11,11 +11,12 @@ import numpy as np
 import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
-from pydantic import BaseModel, ValidationError
+from pydantic import BaseModel, TypeAdapter, ValidationError
 
 from chainflow.basis.constants import NORMAL_MOLAR_VOLUME, STANDARD_MOLAR_VOLUME
 from chainflow.basis.quantities import (
     Amount,
+    BandGap,
     BasedShare,
     Flow,
     Fraction,
@@ -418,3 +419,34 @@ def test_common_quantities_never_import_pint():
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=True)
     assert done.stdout.strip() == "[]"
+
+
+# --- band gaps -----------------------------------------------------------------------------------
+
+
+@pytest.mark.parametrize(
+    ("given", "says"),
+    [
+        ("2.1", "'2.1' has no unit: wanted a band gap in eV, as '1.1 eV'"),
+        ("2.1 V", "'2.1 V' is a voltage, wanted a band gap in eV, as '1.1 eV'"),
+        (
+            "200 kJ/mol",
+            "'200 kJ/mol' is an energy per amount, wanted a band gap in eV, as '1.1 eV'",
+        ),
+        ("5 eV", "'5 eV' is out of range: wanted at least 0.31 eV, at most 4.4 eV"),
+        ("2.1eV", "'2.1eV' needs a space between number and unit: write '2.1 eV'"),
+        (1e-18, "6.24151 eV is out of range: wanted at least 0.31 eV, at most 4.4 eV"),
+        (True, "true or false is not a quantity"),
+    ],
+)
+def test_what_is_said_of_a_wrong_band_gap(given, says):
+    with pytest.raises(ValidationError) as caught:
+        TypeAdapter(BandGap).validate_python(given)
+    assert says in str(caught.value)
+
+
+def test_a_band_gap_is_an_energy_in_joule():
+    # 1 eV is 1.602176634e-19 J, exact (SI brochure, 9th edition)
+    for text in ("1.1 eV", "1100 meV", "1.7623942974e-19 J"):
+        found = TypeAdapter(BandGap).validate_python(text)
+        assert found == pytest.approx(1.1 * 1.602176634e-19, rel=1e-12)

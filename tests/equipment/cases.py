@@ -13,6 +13,7 @@ from tests.equipment.cases_keeping import keeping
 from tests.equipment.cases_liquid_fuels import liquid_fuels
 from tests.equipment.cases_making_fuel import making_fuel
 from tests.equipment.cases_of_sunlight import sunlight
+from tests.equipment.cases_photo import photoelectrodes
 from tests.equipment.cases_separating import separating
 
 _PARTS = (
@@ -27,6 +28,7 @@ _PARTS = (
     cases_of_chemistry.combustion,
     cases_of_chemistry.stores,
     electrolysing,
+    photoelectrodes,
     making_fuel,
     separating,
     exchanging,

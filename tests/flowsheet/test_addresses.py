@@ -247,6 +247,10 @@ NUMBERS_ALONE = (
     "coupling_loss",
     "best_cells",
     "receiver_efficiency",
+    "solar_to_hydrogen",
+    "solar_to_hydrogen_net_of_bias",
+    "current_by_electrode",
+    "current_by_cell",
 )
 
 

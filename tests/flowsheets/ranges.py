@@ -20,6 +20,8 @@ CYCLE = {
     "keep": (50, 250, "bar"),
 }
 
+LIT = {**SUN, "strip": (4, 15, "%"), "onset": (0.2, 0.6, "V")}
+
 RANGES: dict[str, dict[str, Range]] = {
     "hydrogen-store": {
         **SUN,
@@ -70,6 +72,14 @@ RANGES: dict[str, dict[str, Range]] = {
         **SUN,
         "convert": (75, 88, "%"),
         "hot": (260, 350, "degC"),
+        "purge": (0, 10, "%"),
+        "inert": (0, 2, "%"),
+        "keep": (50, 300, "bar"),
+    },
+    "photoelectrode-hydrogen": {**LIT, "separation": (30, 95, "%"), "keep": (50, 700, "bar")},
+    "photoelectrode-methane": {
+        **LIT,
+        "hot": (260, 450, "degC"),
         "purge": (0, 10, "%"),
         "inert": (0, 2, "%"),
         "keep": (50, 300, "bar"),

@@ -28,7 +28,7 @@ from tests.flowsheets.shipped import (
     text_of,
 )
 
-MAKERS = ("methane-store", *CYCLES)  # of methane
+MAKERS = ("methane-store", *CYCLES, "photoelectrode-methane")  # of methane
 PRESSED = tuple(name for name in COLD_STACKS if "- board.press -> press.power" in text_of(name))
 LIGHT = 800 * 25000.0  # [W], irradiance by aperture
 EXPECTED_CAUTIONS = {
@@ -175,6 +175,8 @@ def test_water_back_from_the_engine_by_hand():
         ("liquid-fuel", 0.088, 0.088),
         ("gas-turbine", 0.0, 0.361),
         ("steam-cycle", 0.0, 0.256),
+        ("photoelectrode-hydrogen", 0.085, 0.0875),
+        ("photoelectrode-methane", 0.072, 0.075),
     ],
 )
 def test_headline_efficiencies_by_hand(name, to_fuel, overall):

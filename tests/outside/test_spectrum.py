@@ -50,3 +50,13 @@ def test_a_cut_outside_the_points_takes_all_or_nothing():
 def test_photon_energy_of_one_micrometre():
     # 1.239841984 eV um: CODATA 2018, h c / e
     assert gap_wavelength(1.0) == pytest.approx(1.239841984e-6, rel=1e-9)
+
+
+def test_the_file_that_pvlib_ships_is_what_pvlib_reads(monkeypatch):
+    """Where the file is not found the library is asked, and gives the same numbers."""
+    from chainflow.equipment.sun import spectrum
+
+    quick = spectrum._table("direct")
+    monkeypatch.setattr(spectrum, "find_spec", lambda name: None)
+    for one, other in zip(quick, spectrum._table("direct"), strict=True):
+        assert (one == other).all()

@@ -143,10 +143,10 @@ def rising_root(
         if high >= ceiling:
             return low
         above = function(high) - target
-    return _between(lambda x: function(x) - target, low, below, high, above)
+    return between(lambda x: function(x) - target, low, below, high, above)
 
 
-def _between(
+def between(
     function: Callable[[float], float], low: float, below: float, high: float, above: float
 ) -> float:
     """Close a bracket whose ends give a negative and a positive value."""

@@ -149,7 +149,11 @@ def temperature_trouble(piece: Electrolyser) -> str:
         return (
             "'pem.oxygen_pressure' is above 'pressure', wanted the lower pressure of the water side"
         )
-    least = oxygen_side or piece.pressure
+    return boiling_trouble(level, oxygen_side or piece.pressure)
+
+
+def boiling_trouble(level: float, least: float) -> str:
+    """Say that water is no liquid at a temperature [K] and the lowest pressure [Pa]."""
     if level > 473.15 or saturation_pressure(level) >= 0.95 * least:
         return (
             f"at {level - 273.15:.4g} degC and {least / 1e5:.4g} bar the water boils, "

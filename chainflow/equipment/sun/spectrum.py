@@ -9,6 +9,8 @@ from __future__ import annotations
 
 from dataclasses import dataclass, replace
 from functools import cache
+from importlib.util import find_spec
+from pathlib import Path
 from typing import Literal
 
 import numpy as np
@@ -19,6 +21,8 @@ SOURCE = "ASTM G173-03, reference spectra; as shipped with the library pvlib"
 _NANOMETRE = 1e-9  # [m]
 
 Column = Literal["global", "direct", "extraterrestrial"]
+_FILE = ("data", "ASTMG173.csv")
+_PLACES: dict[Column, int] = {"extraterrestrial": 1, "global": 2, "direct": 3}
 
 
 @dataclass(frozen=True, slots=True)
@@ -77,11 +81,26 @@ def reference(column: Column = "global") -> Spectrum:
     `global` (on a plane tilted by 37 deg, 1000.4 W/m2), `direct` (with the circumsolar ring,
     900.1 W/m2) or `extraterrestrial` (1347.9 W/m2 in this range).
     """
+    wavelength, irradiance = _table(column)
+    return Spectrum(wavelength * _NANOMETRE, irradiance / _NANOMETRE)
+
+
+def _table(column: Column) -> tuple[np.ndarray, np.ndarray]:
+    """Return wavelengths [nm] and spectral irradiance [W/m2 per nm] as pvlib ships them.
+
+    Its file is read without importing pvlib where it lies where it is known to lie: the import
+    takes two seconds.
+    """
+    found = find_spec("pvlib")
+    folders = (found.submodule_search_locations if found else None) or []
+    path = next((p for p in (Path(f, *_FILE) for f in folders) if p.is_file()), None)
+    if path is not None:
+        table = np.loadtxt(path, delimiter=",", skiprows=2)
+        return table[:, 0], table[:, _PLACES[column]]
     from pvlib.spectrum import get_reference_spectra
 
-    table = get_reference_spectra(standard="ASTM G173-03")
-    points = table.index.to_numpy(dtype=float) * _NANOMETRE
-    return Spectrum(points, table[column].to_numpy(dtype=float) / _NANOMETRE)
+    frame = get_reference_spectra(standard="ASTM G173-03")
+    return frame.index.to_numpy(dtype=float), frame[column].to_numpy(dtype=float)
 
 
 def of_sunlight(irradiance: float) -> Spectrum:

@@ -1,0 +1,1 @@
+"""The parts of a photoelectrochemical device: light paths, curves, junctions, the circuit."""

@@ -1,0 +1,1 @@
+"""Many solves, or many questions to one: sensitivities, reasons, comparisons."""
