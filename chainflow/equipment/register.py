@@ -24,6 +24,7 @@ CORE: dict[str, str] = {  # module and class of each kind
     "pv-field": "sunlight.PvField",
     "switchboard": "power.Switchboard",
     "grid": "power.Grid",
+    "battery": "battery.Battery",
     "electrolyser": "electrolysis.Electrolyser",
     "fuel-cell": "fuel_cell.FuelCell",
     "mixer": "junctions.Mixer",

@@ -35,4 +35,11 @@ RANGES: dict[str, dict[str, Range]] = {
     },
     "methane-cycle": {**CYCLE, "shift": (800, 1000, "degC"), "regain": (150, 700, "degC")},
     "methane-cycle-direct": CYCLE,
+    "battery": {
+        **SUN,
+        "field": (12, 28, "%"),
+        "round_trip": (70, 95, "%"),
+        "leak": (0, 5, "%/d"),
+        "hours": (1, 48, "h"),
+    },
 }
