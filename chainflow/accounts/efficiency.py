@@ -62,7 +62,7 @@ def efficiency(
     bought = bought or purchases(solution)
     delivered = delivered or deliveries(solution)
     light = sunlight(solution)
-    entering = of_light(light) + bought.worth
+    entering = of_light(light, solution.flowsheet.environment) + bought.worth
     made = worth_of_lines(solution, fuel_lines(solution).made)
     cuts = list(_cuts(solution, light, entering, bought, delivered))
     return Efficiency(
@@ -90,7 +90,8 @@ def _cuts(
     if not entering.positive:
         return
     yield Cut("light" if light > 0.0 else "input", entering)
-    hydrogen = Worth.total(of_material(gas) for gas in _hydrogen(solution))
+    air = solution.flowsheet.environment
+    hydrogen = Worth.total(of_material(gas, air) for gas in _hydrogen(solution))
     lines = fuel_lines(solution)
     made, kept = worth_of_lines(solution, lines.made), worth_of_lines(solution, lines.kept)
     solar = _solar_power(solution)

@@ -67,7 +67,10 @@ def fuel_lines(solution: Solution) -> FuelLines:
 def worth_of_lines(solution: Solution, keys: tuple[str, ...]) -> Worth:
     """Return the worth of the matter that leaves the named ports."""
     found = [stream.flow for stream in solution.streams if stream.key in keys]
-    return Worth.total(of_material(flow) for flow in found if isinstance(flow, Stream))
+    surroundings = solution.flowsheet.environment
+    return Worth.total(
+        of_material(flow, surroundings) for flow in found if isinstance(flow, Stream)
+    )
 
 
 class _Search:
@@ -77,7 +80,7 @@ class _Search:
         self.solution = solution
         self.flowsheet = solution.flowsheet
         flows = Flows(solution)
-        self.fuel = [line for line in self.flowsheet.lines if _is_fuel(flows, line)]
+        self.fuel = [line for line in self.flowsheet.lines if _carries_fuel(flows, line)]
         again = self._going_back()
         self.fuel = [line for line in self.fuel if line.number not in again]
         self.final = [line for line in self.fuel if self._is_final(line)]
@@ -220,9 +223,12 @@ class _Search:
         return tuple(found.values()) or None
 
 
-def _is_fuel(flows: Flows, line: Line) -> bool:
+def _carries_fuel(flows: Flows, line: Line) -> bool:
     stream = flows.material(line)
-    if stream is None:
-        return False
+    return stream is not None and is_fuel(stream)
+
+
+def is_fuel(stream: Stream) -> bool:
+    """Whether at least half of the exergy of matter is lower heating value."""
     worth = of_material(stream)
     return worth.lhv > 0.0 and worth.lhv >= FUEL_SHARE * worth.exergy

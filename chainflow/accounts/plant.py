@@ -11,8 +11,10 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
+from chainflow.accounts.costs import CostAccount, cost_account
 from chainflow.accounts.deliveries import Deliveries, deliveries
 from chainflow.accounts.efficiency import Efficiency, efficiency, sunlight
+from chainflow.accounts.losses import LossMap, loss_map
 from chainflow.accounts.purchases import Purchases, purchases
 from chainflow.accounts.returned import returned
 from chainflow.basis.faults import UsageFault
@@ -32,6 +34,8 @@ class PlantAccount:
     sold: Deliveries
     efficiency: Efficiency
     returned: dict[str, float | None]
+    losses: LossMap
+    costs: CostAccount | None = None
     from_air: tuple[tuple[str, Stream], ...] = ()
 
     def as_data(self) -> dict[str, Any]:
@@ -60,6 +64,9 @@ class PlantAccount:
                 {"from": rung.start, "to": rung.end, "ratio": rung.ratio} for rung in found.rungs
             ],
             "returned": dict(self.returned),
+            "exergy": self.losses.sums(),
+            "losses": self.losses.as_data(),
+            "costs": None if self.costs is None else self.costs.as_data(),
         }
 
 
@@ -71,6 +78,8 @@ def plant_account(solution: Solution) -> PlantAccount:
         bought=bought,
         sold=sold,
         efficiency=efficiency(solution, bought, sold),
+        losses=loss_map(solution, bought),
+        costs=cost_account(solution, bought, sold),
         returned={name: returned(solution, species) for name, species in RETURNED.items()},
         from_air=tuple(
             (name, stream) for name, found in solution.outcomes.items() for stream in found.taken

@@ -20,6 +20,7 @@ from chainflow.equipment.base import Equipment
 from chainflow.equipment.register import kinds
 from chainflow.flowsheet import lines as line_texts
 from chainflow.flowsheet import roles
+from chainflow.flowsheet.blocks import BLOCKS, read_blocks
 from chainflow.flowsheet.component_list import component_names
 from chainflow.flowsheet.holds import HoldReader
 from chainflow.flowsheet.messages import bare, complaints
@@ -42,7 +43,10 @@ from chainflow.thermo.components import (
     known_components,
 )
 
-_TOP = ("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds")
+_TOP = (
+    *("title", "basis", "ambient", "components", "knobs", "equipment", "lines", "holds"),
+    *BLOCKS,
+)
 _REQUIRED = {
     "equipment": "'equipment:' and below it names with their kind, as in 'town: {kind: product}'",
     "lines": "'lines:' and below it a list, as in '- stack.hydrogen -> dry'",
@@ -143,6 +147,8 @@ class _Builder:
         broken = self._broken(pieces)
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
+        starts = frozenset(f"{line.source}.{line.outlet.name}" for line in joined)
+        blocks = read_blocks(self.root, pieces, broken, known, starts, self.faults)
         self.stop_on_faults()
         return Flowsheet(
             title,
@@ -156,6 +162,7 @@ class _Builder:
             tuple(self.remarks),
             self.tree.sha256,
             self.path,
+            blocks,
         )
 
     # --- the small entries -------------------------------------------------------------------

@@ -10,7 +10,9 @@ from dataclasses import dataclass, field
 
 from chainflow.basis.faults import Fault, Place
 from chainflow.equipment.base import Equipment
+from chainflow.flowsheet.blocks import Blocks
 from chainflow.thermo.components import Matter
+from chainflow.thermo.exergy import Environment
 
 
 @dataclass(frozen=True, slots=True)
@@ -68,6 +70,7 @@ class Flowsheet:
     remarks: tuple[Fault, ...] = ()  # what is odd but no fault
     sha256: str = ""
     path: str = ""
+    blocks: Blocks = field(default_factory=Blocks)  # how the answer is accounted for
 
     _at: Mapping[tuple[str, ...], tuple[Line, ...]] = field(init=False, repr=False, compare=False)
 
@@ -83,6 +86,11 @@ class Flowsheet:
             ):
                 at.setdefault(key, []).append(line)
         object.__setattr__(self, "_at", {key: tuple(lines) for key, lines in at.items()})
+
+    @property
+    def environment(self) -> Environment:
+        """The surroundings that exergy is counted against."""
+        return self.blocks.environment
 
     @property
     def matter(self) -> Matter:

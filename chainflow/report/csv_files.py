@@ -101,17 +101,18 @@ def _plant_rows(account: PlantAccount) -> Iterator[Row]:
 def _energies(account: PlantAccount) -> Iterator[tuple[str, str, Worth]]:
     """Yield all that goes in and all that is useful."""
     bought, sold = account.bought, account.sold
-    yield "input", "sunlight", of_light(account.sunlight)
+    air = bought.environment
+    yield "input", "sunlight", of_light(account.sunlight, air)
     for name, power in bought.power.items():
         yield "input", f"power of {name}", of_power(power)
     for name, duty in bought.heat:
         heat = Heat(duty.heat, duty.start, duty.end, duty.mean)
-        yield "input", f"heat of {name}, {duty.purpose}", of_heat(heat)
+        yield "input", f"heat of {name}, {duty.purpose}", of_heat(heat, air)
     for name, stream in bought.material.items():
-        yield "input", f"material of {name}", of_material(stream)
+        yield "input", f"material of {name}", of_material(stream, air)
     for name, power in sold.power:
         yield "useful", f"power to {name}", of_power(power)
     for name, heat in sold.heat:
-        yield "useful", f"heat to {name}", of_heat(heat)
+        yield "useful", f"heat to {name}", of_heat(heat, air)
     for name, stream in sold.material:
-        yield "useful", f"material to {name}", of_material(stream)
+        yield "useful", f"material to {name}", of_material(stream, air)
