@@ -100,4 +100,4 @@ def test_the_two_commands_do_their_whole_setup():
 
 def test_numbers_of_things():
     assert f"{len(kinds())} kinds of\nequipment" in README
-    assert len(list((TOP / "flowsheets").glob("*.yaml"))) == 5
+    assert len(list((TOP / "flowsheets").glob("*.yaml"))) == 4
