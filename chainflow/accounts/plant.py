@@ -61,7 +61,16 @@ class PlantAccount:
             },
             "sunlight_share": found.sunlight_share,
             "rungs": [
-                {"from": rung.start, "to": rung.end, "ratio": rung.ratio} for rung in found.rungs
+                {
+                    "from": rung.start,
+                    "to": rung.end,
+                    "ratio": rung.ratio,
+                    "uses": [
+                        {"equipment": use.equipment, "what": use.what, "rate_W": use.rate}
+                        for use in rung.uses
+                    ],
+                }
+                for rung in found.rungs
             ],
             "returned": dict(self.returned),
             "exergy": self.losses.sums(),
