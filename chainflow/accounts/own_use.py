@@ -2,7 +2,7 @@
 
 Every piece of equipment belongs to one rung: the first of whose upper cut the lines lead to it,
 followed through lines whose amount the sender sets and not across the rung's lower cut; then what
-draws matter from a store there; equipment that only serves others (a pump on a called line, a
+draws fuel from a store there; equipment that only serves others (a pump on a called line, a
 supply) belongs to the rung of what it serves.
 What nothing of this reaches belongs to the first rung.
 
@@ -17,10 +17,12 @@ from collections.abc import Iterator
 from dataclasses import dataclass
 
 from chainflow.accounts.cuts import Cut
+from chainflow.accounts.fuel import is_fuel
 from chainflow.accounts.purchases import Purchases
 from chainflow.equipment.ports import rate_of
 from chainflow.flowsheet.network import Flowsheet, Line
 from chainflow.solver.solution import Solution
+from chainflow.thermo.streams import Stream
 
 _LEAST = 1e-9  # of the cut above; less is how far the loops close
 
@@ -40,7 +42,7 @@ def uses_by_rung(
     """Return the uses on each rung, in the order of the rungs."""
     if len(cuts) < 2:
         return ()
-    places = _rung_of_each(solution.flowsheet, cuts)
+    places = _rung_of_each(solution, cuts)
     making = {
         port.partition(".")[0] for cut in cuts if cut.name == "hydrogen" for port in cut.ports
     }
@@ -68,15 +70,16 @@ def _bought(bought: Purchases) -> Iterator[Use]:
         yield Use(name, "bought material", float(stream.lhv))
 
 
-def _rung_of_each(sheet: Flowsheet, cuts: tuple[Cut, ...]) -> dict[str, int]:
+def _rung_of_each(solution: Solution, cuts: tuple[Cut, ...]) -> dict[str, int]:
     """Return the rung of each piece of equipment, from 0; unreached equipment is left out."""
-    places: dict[str, int] = {}
+    sheet, places = solution.flowsheet, dict[str, int]()
+    fuel = {s.key for s in solution.streams if isinstance(s.flow, Stream) and is_fuel(s.flow)}
     stops = [frozenset(cut.ports) for cut in cuts[1:]]
     for rung, above in enumerate(cuts[:-1]):
         starts = [line for line in sheet.lines if line.start in above.ports]
         _follow(sheet, starts if rung else _first(sheet), rung, stops[rung], places)
     for rung, stop in enumerate(stops):
-        while calling := _behind_stores(sheet, places, rung, stop):
+        while calling := _behind_stores(sheet, places, rung, fuel - stop):
             _follow(sheet, calling, rung, stop, places)
     _place_servants(sheet, places)
     return places
@@ -100,16 +103,12 @@ def _first(sheet: Flowsheet) -> list[Line]:
 
 
 def _behind_stores(
-    sheet: Flowsheet, places: dict[str, int], rung: int, stop: frozenset[str]
+    sheet: Flowsheet, places: dict[str, int], rung: int, fuel: set[str]
 ) -> list[Line]:
-    """Return lines by which equipment without a rung draws matter from this rung's equipment."""
-    found = []
-    for line in sheet.lines:
-        if line.called and line.content == "material" and places.get(line.source) == rung:
-            last = _end_of_call(sheet, line)
-            if last.target not in places and not {line.start, last.start} & stop:
-                found.append(last)
-    return found
+    """Return the last lines by which equipment without a rung draws fuel from this rung."""
+    called = [line for line in sheet.lines if line.called and line.start in fuel]
+    ends = [_end_of_call(sheet, line) for line in called if places.get(line.source) == rung]
+    return [line for line in ends if line.target not in places and line.start in fuel]
 
 
 def _end_of_call(sheet: Flowsheet, line: Line) -> Line:
