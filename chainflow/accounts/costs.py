@@ -23,7 +23,7 @@ from typing import Any
 from chainflow.accounts.deliveries import Deliveries, deliveries
 from chainflow.accounts.fuel import fuel_lines, is_fuel, worth_of_lines
 from chainflow.accounts.purchases import Purchases, purchases
-from chainflow.accounts.using import using_part
+from chainflow.accounts.using import PARTS, part_of, using_part
 from chainflow.flowsheet.cost_plan import CostPlan, Measure, PieceFigures, without_figures
 from chainflow.flowsheet.money import Money
 from chainflow.solver.lookup import value_at
@@ -31,7 +31,6 @@ from chainflow.solver.solution import Solution
 from chainflow.thermo.streams import Stream
 
 KWH = 3.6e6  # [J]
-PARTS = ("making", "using")
 Item = tuple[str, str]  # what it is ("power", "material.carbon"), and the part it belongs to
 
 
@@ -181,7 +180,7 @@ def cost_account(
         interest=plan.interest,
         hours=hours,
         pieces={
-            one.name: _piece(solution, plan, one, "using" if one.name in using else "making")
+            one.name: _piece(solution, plan, one, part_of(one.name, using))
             for one in plan.pieces
             if one.name in solution.outcomes
         },
@@ -234,15 +233,14 @@ def _bought(
     rates += [("cold", name, -duty.heat) for name, duty in bought.cold]
     for what, name, rate in rates:
         price: Money | None = getattr(prices, what)
-        yield (what, _part(name, using)), None if price is None else price.value * rate * plan.hours
+        yield (
+            (what, part_of(name, using)),
+            None if price is None else price.value * rate * plan.hours,
+        )
     for name, stream in bought.material.items():
         price = prices.material.get(name)
         cost = None if price is None else price.value * _amount(stream, price) * plan.hours
-        yield (f"material.{name}", _part(name, using)), cost
-
-
-def _part(name: str, using: frozenset[str]) -> str:
-    return "using" if name in using else "making"
+        yield (f"material.{name}", part_of(name, using)), cost
 
 
 def _amount(stream: Stream, price: Money) -> float:
@@ -256,14 +254,14 @@ def _credits(plan: CostPlan, sold: Deliveries, using: frozenset[str]) -> dict[It
     prices, found = plan.sold, list[tuple[Item, float]]()
     if prices.power is not None:
         for name, power in sold.power:
-            found.append((("power", _part(name, using)), prices.power.value * power))
+            found.append((("power", part_of(name, using)), prices.power.value * power))
     if prices.heat is not None:
         for name, heat in sold.heat:
-            found.append((("heat", _part(name, using)), prices.heat.value * heat.rate))
+            found.append((("heat", part_of(name, using)), prices.heat.value * heat.rate))
     for name, stream in sold.material:
         price = prices.material.get(name)
         if price is not None:
-            item = (f"material.{name}", _part(name, using))
+            item = (f"material.{name}", part_of(name, using))
             found.append((item, price.value * _amount(stream, price)))
     return {item: rate * plan.hours for item, rate in _summed(found).items()}
 

@@ -16,6 +16,13 @@ from chainflow.equipment.stores import Store
 from chainflow.flowsheet.network import Flowsheet
 from chainflow.solver.solution import Solution
 
+PARTS = ("making", "using")
+
+
+def part_of(name: str, using: frozenset[str]) -> str:
+    """Return which part of the plant a piece of equipment belongs to."""
+    return "using" if name in using else "making"
+
 
 def using_part(solution: Solution) -> frozenset[str]:
     """Return the names of the equipment that uses the fuel kept; empty if no fuel is kept."""
