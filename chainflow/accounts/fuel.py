@@ -26,6 +26,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from weakref import WeakKeyDictionary
 
 from chainflow.accounts.border import Flows
 from chainflow.accounts.worth import Worth, of_material
@@ -55,13 +56,20 @@ class FuelLines:
     kept: tuple[str, ...]
 
 
+_FOUND: WeakKeyDictionary[Solution, FuelLines] = WeakKeyDictionary()  # every account asks for it
+
+
 def fuel_lines(solution: Solution) -> FuelLines:
     """Return which lines carry the fuel made and the fuel kept."""
-    search = _Search(solution)
-    return FuelLines(
-        made=tuple(line.start for line in search.made()),
-        kept=tuple(line.start for line in search.kept()),
-    )
+    found = _FOUND.get(solution)
+    if found is None:
+        search = _Search(solution)
+        found = FuelLines(
+            made=tuple(line.start for line in search.made()),
+            kept=tuple(line.start for line in search.kept()),
+        )
+        _FOUND[solution] = found
+    return found
 
 
 def worth_of_lines(solution: Solution, keys: tuple[str, ...]) -> Worth:

@@ -26,8 +26,8 @@ def part_of(name: str, using: frozenset[str]) -> str:
 
 def using_part(solution: Solution) -> frozenset[str]:
     """Return the names of the equipment that uses the fuel kept; empty if no fuel is kept."""
-    sheet = solution.flowsheet
-    kept = [line for line in sheet.lines if line.start in fuel_lines(solution).kept]
+    sheet, keys = solution.flowsheet, fuel_lines(solution).kept
+    kept = [line for line in sheet.lines if line.start in keys]
     reached: set[str] = set()
     queue = [line.target for line in kept]
     while queue:
