@@ -69,7 +69,7 @@ class MoneyType:
         if self.form == "yearly":
             if unit.exponents != _YEAR.exponents:
                 raise QuantityFault(
-                    f"{shorten(text)} is not a year's, wanted {self.means(currency)}"
+                    f"{shorten(text)} is not for a year, wanted {self.means(currency)}"
                 )
             return Money(number / unit.to_si(1.0) * _YEAR.to_si(1.0), "a")
         return Money(number / (unit.to_si(1.0) - unit.offset), si_unit(unit.exponents))

@@ -128,8 +128,11 @@ class RungReader:
         words = [cut for cut in found if cut.word]
         for before, after in pairwise(words):
             if WORDS.index(before.word) > WORDS.index(after.word):
-                text = f"'{after.name}' ({after.word}) comes before '{before.name}' ({before.word})"
-                self._fault("bad-rung", f"{text}: turn them round", node.entries[after.name][0])
+                text = (
+                    f"'{after.name}' ({after.word}) is passed before '{before.name}' "
+                    f"({before.word}): turn them round"
+                )
+                self._fault("bad-rung", text, node.entries[after.name][0])
         for place, word, end in ((0, FIRST, "first"), (-1, LAST, "last")):
             for cut in found:
                 if cut.word == word and cut is not found[place]:

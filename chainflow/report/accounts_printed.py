@@ -112,8 +112,8 @@ def _carbon(carbon: CarbonAccount) -> Iterator[str]:
         ("power", carbon.emission("making", "using"), carbon.power),
     ):
         if mass is not None and rate > 0.0:
-            shown = f"{format_number(1e3 * mass / rate * KWH, 4)} g/kWh of {what}, building the plant left out"
-            yield _line("CO2 intensity", shown)
+            shown = f"{format_number(1e3 * mass / rate * KWH, 4)} g/kWh of {what}"
+            yield _line("CO2 intensity", f"{shown}, building the plant left out")
 
 
 def _water(water: WaterAccount) -> Iterator[str]:
