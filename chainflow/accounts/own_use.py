@@ -3,7 +3,7 @@
 Every piece of equipment belongs to one rung: the first of whose upper cut the lines lead to it,
 followed through lines whose amount the sender sets and not across the rung's lower cut; then what
 draws fuel from a store there; equipment that only serves others (a pump on a called line, a
-supply) belongs to the rung of what it serves.
+supply) belongs to the rung of what it serves, and what is left to that of what it draws from.
 What nothing of this reaches belongs to the first rung.
 
 *Own power* is what a piece asks for at a power inlet that calls, [W]; what hydrogen is made of is
@@ -122,12 +122,13 @@ def _end_of_call(sheet: Flowsheet, line: Line) -> Line:
 
 
 def _place_servants(sheet: Flowsheet, places: dict[str, int]) -> None:
-    """Give what only serves others the first rung of those it serves."""
+    """Give what only serves others their first rung, and what only draws from others their last."""
     waiting = True
     while waiting:
         waiting = False
         for name in sheet.equipment:
             served = [places[line.target] for line in sheet.out_of(name) if line.target in places]
-            if name not in places and served:
-                places[name] = min(served)
+            drawn = [places[line.source] for line in sheet.into(name) if line.source in places]
+            if name not in places and (served or drawn):
+                places[name] = min(served) if served else max(drawn)
                 waiting = True
