@@ -32,7 +32,7 @@ def test_rungs_losses_carbon_and_water():
     assert re.search(r"fuel kept -> power out .* co2press .* kW own power", text)
     assert re.search(r"field +destroyed in it +37.29 MW +78.5 %", text)
     assert re.search(r"capture.stackgas +thrown away with a stream", text)
-    assert "CO2 intensity              not known: no origin for material of bought" in text
+    assert "not known: no origin for heat of fuel, material of bought" in text
 
 
 def test_every_loss_is_printed_or_summed():
@@ -46,9 +46,9 @@ def test_every_loss_is_printed_or_summed():
     assert all(re.search(rf"^{x.where} ", text, re.MULTILINE) for x in large)
 
 
-def test_a_plant_without_sunlight_and_fuel_shows_no_shares():
+def test_a_plant_without_sunlight_shows_no_share_of_it():
     text = accounts(solved(BOUGHT))
-    assert re.search(r"all that enters .* +- +-", text)
+    assert re.search(r"all that enters .* MW +- +1.05", text)
     assert "not known: no origin for power of press, heat of warm, material of gas" in text
 
 
