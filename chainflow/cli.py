@@ -120,6 +120,13 @@ def solve(
         typer.Option("--csv", metavar="DIR", help="Write four CSV files: streams, ..."),
     ] = None,
     set_: SetOption = None,
+    accounts: Annotated[
+        bool,
+        typer.Option(
+            "--accounts",
+            help="Print where it goes, too: rungs with own use, losses, carbon and water.",
+        ),
+    ] = False,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print no answer, only errors.")] = False,
 ) -> None:
     """Close the balance of a flowsheet and print the answer.
@@ -137,6 +144,10 @@ def solve(
         from chainflow.report.printed import print_answer
 
         print_answer(solution)
+        if accounts:
+            from chainflow.report.accounts_printed import print_accounts
+
+            print_accounts(solution)
 
 
 @app.command()

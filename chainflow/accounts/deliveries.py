@@ -17,6 +17,7 @@ from chainflow.equipment.ports import Heat, rate_of
 from chainflow.equipment.power import Grid, Switchboard
 from chainflow.flowsheet.network import Line
 from chainflow.solver.solution import Solution
+from chainflow.thermo.exergy import STANDARD_ENVIRONMENT, Environment
 from chainflow.thermo.streams import Stream
 
 
@@ -27,6 +28,7 @@ class Deliveries:
     power: tuple[tuple[str, float], ...]  # [W]
     heat: tuple[tuple[str, Heat], ...]
     material: tuple[tuple[str, Stream], ...]
+    environment: Environment = STANDARD_ENVIRONMENT
 
     @property
     def power_total(self) -> float:
@@ -41,8 +43,12 @@ class Deliveries:
     @property
     def worth(self) -> Worth:
         """All of it, on the three bases."""
-        parts = [of_power(self.power_total), *(of_heat(heat) for _, heat in self.heat)]
-        return Worth.total([*parts, *(of_material(stream) for _, stream in self.material)])
+        parts = [
+            of_power(self.power_total),
+            *(of_heat(heat, self.environment) for _, heat in self.heat),
+        ]
+        streams = (of_material(stream, self.environment) for _, stream in self.material)
+        return Worth.total([*parts, *streams])
 
 
 def deliveries(solution: Solution) -> Deliveries:
@@ -53,6 +59,7 @@ def deliveries(solution: Solution) -> Deliveries:
         power=tuple(_power(solution, flows)),
         heat=tuple((line.target, flow) for line, flow in into if isinstance(flow, Heat)),
         material=tuple((line.target, flow) for line, flow in into if isinstance(flow, Stream)),
+        environment=solution.flowsheet.environment,
     )
 
 

@@ -2,48 +2,39 @@
 
 Overall efficiency = useful energy / (sunlight + power bought + heat bought + the heating value of
 all material bought), by LHV, HHV and exergy. Nothing is netted. *Rungs* are the ratios of
-successive cuts through the plant: what goes in, the power made from light or bought, hydrogen made
-by electrolysis, fuel made, fuel kept (see `chainflow.accounts.fuel`) and what is useful. Cuts that
-a plant does not have are left out, so the rungs multiply to the overall efficiency on each basis;
-where light makes hydrogen without being power first, there is no cut of power.
+successive cuts through the plant (`chainflow.accounts.cuts`); they multiply to the overall
+efficiency on each basis. Each rung lists the power that its equipment draws for itself and what is
+bought for it (`chainflow.accounts.own_use`).
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterator
 from dataclasses import dataclass
 from itertools import pairwise
 
-from chainflow.accounts.border import leaving
+from chainflow.accounts.cuts import Cut, cuts, sunlight
 from chainflow.accounts.deliveries import Deliveries, deliveries
 from chainflow.accounts.fuel import fuel_lines, worth_of_lines
+from chainflow.accounts.own_use import Use, uses_by_rung
 from chainflow.accounts.purchases import Purchases, purchases
-from chainflow.accounts.worth import Worth, of_light, of_material, of_power
-from chainflow.equipment.base import Equipment
-from chainflow.equipment.ports import rate_of
-from chainflow.equipment.sunlight import Sunlight
+from chainflow.accounts.worth import of_light
 from chainflow.solver.solution import Solution
-from chainflow.thermo.streams import Stream
 
-_SAME = 1e-12  # relative; two cuts through the same lines differ by round-off only
 ByBasis = dict[str, float | None]
 
 
 @dataclass(frozen=True, slots=True)
-class Cut:
-    """The energy that passes one cut through the plant."""
-
-    name: str
-    worth: Worth
-
-
-@dataclass(frozen=True, slots=True)
 class Rung:
-    """The ratio of two successive cuts, on each basis."""
+    """The ratio of two successive cuts, on each basis, and what enters on the way."""
 
     start: str
     end: str
     ratio: ByBasis
+    uses: tuple[Use, ...] = ()
+
+    def total(self, what: str) -> float:
+        """What is drawn or bought of one thing on this rung [W]: "own power", "bought heat", ..."""
+        return sum(use.rate for use in self.uses if use.what == what)
 
 
 @dataclass(frozen=True, slots=True)
@@ -63,87 +54,20 @@ def efficiency(
     bought = bought or purchases(solution)
     delivered = delivered or deliveries(solution)
     light = sunlight(solution)
-    entering = of_light(light) + bought.worth
+    entering = of_light(light, solution.flowsheet.environment) + bought.worth
     made = worth_of_lines(solution, fuel_lines(solution).made)
-    cuts = list(_cuts(solution, light, entering, bought, delivered))
     return Efficiency(
         overall=delivered.worth.over(entering),
         sunlight_to_fuel=made.over(entering),
         sunlight_share=light / entering.lhv if entering.lhv > 0.0 else None,
-        rungs=tuple(Rung(a.name, b.name, b.worth.over(a.worth)) for a, b in pairwise(cuts)),
+        rungs=_rungs(solution, cuts(solution, entering, bought, delivered), bought),
     )
 
 
-def sunlight(solution: Solution) -> float:
-    """Return the light that falls on all apertures [W]."""
-    pieces = solution.flowsheet.equipment
-    return sum(
-        rate_of(stream.flow)
-        for stream in solution.streams
-        if stream.content == "light" and isinstance(pieces[stream.source], Sunlight)
-    )
+def _rungs(solution: Solution, found: tuple[Cut, ...], bought: Purchases) -> tuple[Rung, ...]:
+    uses = uses_by_rung(solution, found, bought)
+    pairs = zip(pairwise(found), uses, strict=True)
+    return tuple(Rung(a.name, b.name, b.worth.over(a.worth), use) for (a, b), use in pairs)
 
 
-def _cuts(
-    solution: Solution, light: float, entering: Worth, bought: Purchases, delivered: Deliveries
-) -> Iterator[Cut]:
-    """Yield the cuts that this plant has, in order; each is more than nothing but the last."""
-    if not entering.positive:
-        return
-    yield Cut("light" if light > 0.0 else "input", entering)
-    hydrogen = Worth.total(of_material(gas) for gas in _hydrogen(solution))
-    lines = fuel_lines(solution)
-    made, kept = worth_of_lines(solution, lines.made), worth_of_lines(solution, lines.kept)
-    solar = _solar_power(solution)
-    # else power only drives a plant that runs on bought fuel or makes hydrogen of light itself
-    if (solar > 0.0 or hydrogen.positive) and not _lit_hydrogen(solution):
-        yield Cut("power", of_power(solar + bought.power_total))
-    if hydrogen.positive:
-        yield Cut("hydrogen", hydrogen)
-    if made.positive:
-        yield Cut("fuel made", made)
-    if made.positive and kept.positive:
-        yield Cut("fuel kept", kept)
-    if not (made.positive and _same(kept, delivered.worth)):
-        yield Cut(_last_name(delivered), delivered.worth)
-
-
-def _last_name(delivered: Deliveries) -> str:
-    matter = any(float(stream.total) > 0.0 for _, stream in delivered.material)
-    only_power = delivered.power_total > 0.0 and not delivered.heat_total and not matter
-    return "power out" if only_power else "useful"
-
-
-def _same(first: Worth, second: Worth) -> bool:
-    pairs = zip(first.by_basis.values(), second.by_basis.values(), strict=True)
-    return all(abs(a - b) <= _SAME * abs(a) for a, b in pairs)
-
-
-def _solar_power(solution: Solution) -> float:
-    """Return the power that leaves equipment which takes light [W]."""
-    return sum(
-        rate_of(stream.flow)
-        for name, piece in solution.flowsheet.equipment.items()
-        if _takes_light(piece)
-        for stream in leaving(solution, name)
-        if stream.content == "power"
-    )
-
-
-def _takes_light(piece: Equipment) -> bool:
-    return any(port.is_inlet and port.content == "light" for port in piece.port_list())
-
-
-def _lit_hydrogen(solution: Solution) -> bool:
-    """Whether hydrogen is made of light without being power first."""
-    pieces = solution.flowsheet.equipment.values()
-    return any(piece.makes and _takes_light(piece) for piece in pieces)
-
-
-def _hydrogen(solution: Solution) -> Iterator[Stream]:
-    """Yield what leaves the hydrogen outlets of equipment that makes it."""
-    for name, piece in solution.flowsheet.equipment.items():
-        if piece.makes:
-            for stream in leaving(solution, name):
-                if stream.outlet == "hydrogen" and isinstance(stream.flow, Stream):
-                    yield stream.flow
+__all__ = ["ByBasis", "Efficiency", "Rung", "efficiency", "sunlight"]

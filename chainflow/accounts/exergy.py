@@ -1,27 +1,42 @@
 """Where is the ability to do work destroyed?
 
 Exergy destroyed in each piece of equipment [W] = exergy that enters - exergy that leaves, in the
-environment of 298.15 K and 1.01325 bar. Streams count physical plus chemical exergy, power counts
+environment that the flowsheet names. Streams count physical plus chemical exergy, power counts
 fully, light by Petela's formula, heat by Carnot's factor at its entropy-mean temperature. Heat
-given to the ambient, or at an outlet without a line, carries nothing out: it is lost where it is
-given off. The plant's border (sunlight, supply, product, vent, grid) destroys nothing.
+given to the ambient, or at an outlet without a line, carries nothing out here: it is lost where it
+is given off (`chainflow.accounts.losses` tells it apart). The plant's border (sunlight, supply,
+product, vent, grid) destroys nothing.
 """
 
 from __future__ import annotations
 
 from chainflow.accounts.border import leaving
 from chainflow.accounts.purchases import topped_up
-from chainflow.basis.constants import T_REFERENCE
 from chainflow.equipment.boundary import Product, Supply, Vent
 from chainflow.equipment.ports import Flow, Heat, arriving, rate_of
 from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.equipment.sunlight import Sunlight
 from chainflow.solver.solution import Solution
-from chainflow.thermo.exergy import heat_exergy, solar_exergy_factor
+from chainflow.thermo.exergy import Environment, heat_exergy, solar_exergy_factor
 from chainflow.thermo.streams import Stream
 
-_BORDER = (Sunlight, Supply, Product, Vent, Grid)
+BORDER = (Sunlight, Supply, Product, Vent, Grid)
+
+
+def flow_exergy(flow: Flow, content: str, environment: Environment) -> float:
+    """Return the exergy of what passes a port [W]; power counts fully."""
+    if isinstance(flow, Stream):
+        return float(flow.exergy(environment))
+    if isinstance(flow, Heat):
+        return carnot(flow.rate, flow.mean, environment)
+    factor = solar_exergy_factor(environment.temperature) if content == "light" else 1.0
+    return rate_of(flow) * factor
+
+
+def carnot(heat: float, mean: float, environment: Environment) -> float:
+    """Return the exergy of heat at its entropy-mean temperature [W], negative below T0."""
+    return float(heat_exergy(heat, mean, environment.temperature)) if heat else 0.0
 
 
 def exergy_destroyed(solution: Solution) -> dict[str, float]:
@@ -32,48 +47,33 @@ def exergy_destroyed(solution: Solution) -> dict[str, float]:
 def destroyed_in(solution: Solution, name: str) -> float:
     """Return the exergy destroyed in one piece of equipment [W]; zero at the plant's border."""
     piece = solution.flowsheet.equipment[name]
-    if isinstance(piece, _BORDER):
+    if isinstance(piece, BORDER):
         return 0.0
+    surroundings = solution.flowsheet.environment
     outcome = solution.outcomes[name]
-    entering = outcome.power + _bought_heat(solution, name) + _fed(solution, name)
-    entering += sum(float(stream.exergy()) for stream in outcome.taken)
+    bought = (d for d in outcome.duties if d.met_by == "bought")
+    entering = outcome.power + sum(carnot(d.heat, d.mean, surroundings) for d in bought)
+    entering += _fed(solution, name, surroundings)
+    entering += sum(float(stream.exergy(surroundings)) for stream in outcome.taken)
     if isinstance(piece, Store) and not solution.flowsheet.line_into(name, "make_up"):
-        entering += float(topped_up(solution, name, piece).exergy())
-    return entering - _sent(solution, name)
+        entering += float(topped_up(solution, name, piece).exergy(surroundings))
+    return entering - _sent(solution, name, surroundings)
 
 
-def _bought_heat(solution: Solution, name: str) -> float:
-    """Return the exergy of heat and cold that come from outside [W]."""
-    duties = solution.outcomes[name].duties
-    return sum(_carnot(duty.heat, duty.mean) for duty in duties if duty.met_by == "bought")
-
-
-def _fed(solution: Solution, name: str) -> float:
-    """Return the exergy of streams, heat and light that arrive [W]."""
+def _fed(solution: Solution, name: str, environment: Environment) -> float:
+    """Return the exergy of streams, heat and light that arrive [W]; power is in the outcome."""
     feeds, total = solution.feeds[name], 0.0
     contents = {line.inlet: line.content for line in solution.flowsheet.into(name)}
     for port, content in contents.items():
-        total += sum(_exergy(flow, content) for flow in arriving(feeds, port))
+        if content != "power":
+            total += sum(flow_exergy(f, content, environment) for f in arriving(feeds, port))
     return total
 
 
-def _sent(solution: Solution, name: str) -> float:
+def _sent(solution: Solution, name: str, environment: Environment) -> float:
     """Return the exergy of streams, heat and light that leave [W]."""
     total = 0.0
     for stream in leaving(solution, name):
-        if stream.targets or isinstance(stream.flow, Stream):
-            total += _exergy(stream.flow, stream.content)
+        if stream.content != "power" and (stream.targets or isinstance(stream.flow, Stream)):
+            total += flow_exergy(stream.flow, stream.content, environment)
     return total
-
-
-def _exergy(flow: Flow, content: str) -> float:
-    """Return the exergy of a flow [W]; power is left out, it is in the outcome's net power."""
-    if isinstance(flow, Stream):
-        return float(flow.exergy())
-    if isinstance(flow, Heat):
-        return _carnot(flow.rate, flow.mean)
-    return rate_of(flow) * solar_exergy_factor(T_REFERENCE) if content == "light" else 0.0
-
-
-def _carnot(heat: float, mean: float) -> float:
-    return float(heat_exergy(heat, mean, T_REFERENCE)) if heat else 0.0

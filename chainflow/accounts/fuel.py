@@ -26,6 +26,7 @@ from __future__ import annotations
 
 from collections.abc import Iterator
 from dataclasses import dataclass
+from weakref import WeakKeyDictionary
 
 from chainflow.accounts.border import Flows
 from chainflow.accounts.worth import Worth, of_material
@@ -55,19 +56,29 @@ class FuelLines:
     kept: tuple[str, ...]
 
 
+_FOUND: WeakKeyDictionary[Solution, FuelLines] = WeakKeyDictionary()  # every account asks for it
+
+
 def fuel_lines(solution: Solution) -> FuelLines:
     """Return which lines carry the fuel made and the fuel kept."""
-    search = _Search(solution)
-    return FuelLines(
-        made=tuple(line.start for line in search.made()),
-        kept=tuple(line.start for line in search.kept()),
-    )
+    found = _FOUND.get(solution)
+    if found is None:
+        search = _Search(solution)
+        found = FuelLines(
+            made=tuple(line.start for line in search.made()),
+            kept=tuple(line.start for line in search.kept()),
+        )
+        _FOUND[solution] = found
+    return found
 
 
 def worth_of_lines(solution: Solution, keys: tuple[str, ...]) -> Worth:
     """Return the worth of the matter that leaves the named ports."""
     found = [stream.flow for stream in solution.streams if stream.key in keys]
-    return Worth.total(of_material(flow) for flow in found if isinstance(flow, Stream))
+    surroundings = solution.flowsheet.environment
+    return Worth.total(
+        of_material(flow, surroundings) for flow in found if isinstance(flow, Stream)
+    )
 
 
 class _Search:
@@ -77,7 +88,7 @@ class _Search:
         self.solution = solution
         self.flowsheet = solution.flowsheet
         flows = Flows(solution)
-        self.fuel = [line for line in self.flowsheet.lines if _is_fuel(flows, line)]
+        self.fuel = [line for line in self.flowsheet.lines if _carries_fuel(flows, line)]
         again = self._going_back()
         self.fuel = [line for line in self.fuel if line.number not in again]
         self.final = [line for line in self.fuel if self._is_final(line)]
@@ -220,9 +231,12 @@ class _Search:
         return tuple(found.values()) or None
 
 
-def _is_fuel(flows: Flows, line: Line) -> bool:
+def _carries_fuel(flows: Flows, line: Line) -> bool:
     stream = flows.material(line)
-    if stream is None:
-        return False
+    return stream is not None and is_fuel(stream)
+
+
+def is_fuel(stream: Stream) -> bool:
+    """Whether at least half of the exergy of matter is lower heating value."""
     worth = of_material(stream)
     return worth.lhv > 0.0 and worth.lhv >= FUEL_SHARE * worth.exergy

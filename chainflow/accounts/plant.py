@@ -11,11 +11,16 @@ from collections.abc import Mapping
 from dataclasses import dataclass
 from typing import Any
 
+from chainflow.accounts.carbon import CarbonAccount, carbon_account
+from chainflow.accounts.costs import CostAccount, cost_account
 from chainflow.accounts.deliveries import Deliveries, deliveries
 from chainflow.accounts.efficiency import Efficiency, efficiency, sunlight
 from chainflow.accounts.heat import HeatAccount, heat_account
+from chainflow.accounts.leaving import Purge, purges
+from chainflow.accounts.losses import LossMap, loss_map
 from chainflow.accounts.purchases import Purchases, purchases
 from chainflow.accounts.returned import returned
+from chainflow.accounts.water import WaterAccount, water_account
 from chainflow.basis.faults import UsageFault
 from chainflow.basis.names import suggest
 from chainflow.solver.solution import Solution
@@ -34,6 +39,11 @@ class PlantAccount:
     efficiency: Efficiency
     returned: dict[str, float | None]
     heat: HeatAccount
+    losses: LossMap
+    carbon: CarbonAccount
+    water: WaterAccount
+    purges: tuple[Purge, ...] = ()
+    costs: CostAccount | None = None
     from_air: tuple[tuple[str, Stream], ...] = ()
 
     def as_data(self) -> dict[str, Any]:
@@ -59,10 +69,25 @@ class PlantAccount:
             },
             "sunlight_share": found.sunlight_share,
             "rungs": [
-                {"from": rung.start, "to": rung.end, "ratio": rung.ratio} for rung in found.rungs
+                {
+                    "from": rung.start,
+                    "to": rung.end,
+                    "ratio": rung.ratio,
+                    "uses": [
+                        {"equipment": use.equipment, "what": use.what, "rate_W": use.rate}
+                        for use in rung.uses
+                    ],
+                }
+                for rung in found.rungs
             ],
             "returned": dict(self.returned),
             "heat": self.heat.as_data(),
+            "exergy": self.losses.sums(),
+            "losses": self.losses.as_data(),
+            "carbon": self.carbon.as_data(),
+            "water": self.water.as_data(),
+            "purges": [_purge_data(purge) for purge in self.purges],
+            "costs": None if self.costs is None else self.costs.as_data(),
         }
 
 
@@ -74,12 +99,28 @@ def plant_account(solution: Solution) -> PlantAccount:
         bought=bought,
         sold=sold,
         efficiency=efficiency(solution, bought, sold),
+        losses=loss_map(solution, bought),
+        carbon=carbon_account(solution, bought, sold),
+        water=water_account(solution, bought),
+        purges=purges(solution),
+        costs=cost_account(solution, bought, sold),
         returned={name: returned(solution, species) for name, species in RETURNED.items()},
         heat=heat_account(solution),
         from_air=tuple(
             (name, stream) for name, found in solution.outcomes.items() for stream in found.taken
         ),
     )
+
+
+def _purge_data(purge: Purge) -> dict[str, Any]:
+    stream = purge.stream
+    names = zip(stream.matter.components, stream.flows.tolist(), strict=True)
+    return {
+        "stream": purge.key,
+        "flow_mol_s": {name: flow for name, flow in names if flow > 0.0},
+        "lhv_W": float(stream.lhv),
+        "share_of_fuel": purge.share_of_fuel,
+    }
 
 
 def by_species(streams: Any) -> dict[str, dict[str, float]]:

@@ -18,6 +18,7 @@ from chainflow.equipment.ports import Heat, Role
 from chainflow.equipment.power import Grid
 from chainflow.equipment.stores import Store
 from chainflow.solver.solution import Solution
+from chainflow.thermo.exergy import STANDARD_ENVIRONMENT, Environment
 from chainflow.thermo.streams import Stream
 
 _ROUND_OFF = 1e-13  # of the enthalpy that leaves: what is left of two that should be equal
@@ -31,6 +32,7 @@ class Purchases:
     heat: tuple[tuple[str, Duty], ...]  # needs that nothing meets
     cold: tuple[tuple[str, Duty], ...]  # heat to take away below the ambient, negative
     material: dict[str, Stream]
+    environment: Environment = STANDARD_ENVIRONMENT
 
     @property
     def power_total(self) -> float:
@@ -51,8 +53,9 @@ class Purchases:
     def worth(self) -> Worth:
         """What counts against the plant: power, heat and the worth of all material."""
         heats = (Heat(duty.heat, duty.start, duty.end, duty.mean) for _, duty in self.heat)
-        parts = [of_power(self.power_total), *map(of_heat, heats)]
-        return Worth.total([*parts, *map(of_material, self.material.values())])
+        parts = [of_power(self.power_total), *(of_heat(h, self.environment) for h in heats)]
+        streams = (of_material(s, self.environment) for s in self.material.values())
+        return Worth.total([*parts, *streams])
 
 
 def purchases(solution: Solution) -> Purchases:
@@ -63,6 +66,7 @@ def purchases(solution: Solution) -> Purchases:
         heat=tuple((name, duty) for name, duty in bought if duty.heat > 0.0),
         cold=tuple((name, duty) for name, duty in bought if duty.heat < 0.0),
         material=dict(_material(solution)),
+        environment=solution.flowsheet.environment,
     )
 
 

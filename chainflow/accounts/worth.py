@@ -1,8 +1,8 @@
 """How much energy is in what passes the plant's border, on three bases side by side?
 
 Power in [W] by lower heating value, upper heating value and exergy. Electricity counts fully on
-all three, heat and light count their energy on the heating-value bases. The environment of all
-exergies is 298.15 K and 1.01325 bar.
+all three, heat and light count their energy on the heating-value bases. Exergies are counted
+against the environment that the flowsheet names, 298.15 K and 1.01325 bar by default.
 """
 
 from __future__ import annotations
@@ -10,9 +10,13 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable
 from dataclasses import dataclass
 
-from chainflow.basis.constants import T_REFERENCE
 from chainflow.equipment.ports import Heat
-from chainflow.thermo.exergy import heat_exergy, solar_exergy_factor
+from chainflow.thermo.exergy import (
+    STANDARD_ENVIRONMENT,
+    Environment,
+    heat_exergy,
+    solar_exergy_factor,
+)
 from chainflow.thermo.streams import Stream
 
 BASES = ("LHV", "HHV", "exergy")
@@ -61,17 +65,17 @@ def of_power(power: float) -> Worth:
     return Worth(power, power, power)
 
 
-def of_light(light: float) -> Worth:
+def of_light(light: float, environment: Environment = STANDARD_ENVIRONMENT) -> Worth:
     """Return the worth of sunlight [W], its exergy by Petela's formula."""
-    return Worth(light, light, light * solar_exergy_factor(T_REFERENCE))
+    return Worth(light, light, light * solar_exergy_factor(environment.temperature))
 
 
-def of_heat(heat: Heat) -> Worth:
-    """Return the worth of heat [W]; heat at or below 25 degC has no exergy here."""
-    exergy = float(heat_exergy(heat.rate, heat.mean, T_REFERENCE))
+def of_heat(heat: Heat, environment: Environment = STANDARD_ENVIRONMENT) -> Worth:
+    """Return the worth of heat [W]; at or below the environment it has no exergy here."""
+    exergy = float(heat_exergy(heat.rate, heat.mean, environment.temperature))
     return Worth(heat.rate, heat.rate, max(exergy, 0.0))
 
 
-def of_material(stream: Stream) -> Worth:
+def of_material(stream: Stream, environment: Environment = STANDARD_ENVIRONMENT) -> Worth:
     """Return the worth of matter: heating values at 25 degC, physical plus chemical exergy."""
-    return Worth(float(stream.lhv), float(stream.hhv), float(stream.exergy()))
+    return Worth(float(stream.lhv), float(stream.hhv), float(stream.exergy(environment)))

@@ -14,6 +14,12 @@ from pydantic import Field
 from chainflow.basis.quantities import Flow as FlowSetting
 from chainflow.basis.quantities import Pressure, Temperature
 from chainflow.equipment.base import Array, Equipment, Flow, Outcome, Port, Role, Site
+from chainflow.equipment.origins import (
+    MATERIAL_INTENSITY,
+    ORIGIN,
+    MaterialIntensity,
+    Origin,
+)
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.shares import Shares, fractions, resolved
 from chainflow.thermo.components import Matter
@@ -36,6 +42,8 @@ class Supply(Equipment):
     temperature: Temperature = Field(description="temperature of what is bought")
     pressure: Pressure = Field(description="absolute pressure of what is bought")
     flow: FlowSetting | None = Field(None, description="molar, mass or normal-volume flow offered")
+    origin: Origin | None = Field(None, description=ORIGIN)
+    carbon_intensity: MaterialIntensity | None = Field(None, description=MATERIAL_INTENSITY)
 
     def port_list(self) -> tuple[Port, ...]:
         if self.flow is None:

@@ -6,8 +6,10 @@ from collections.abc import Mapping
 from typing import Any, ClassVar
 
 import numpy as np
+from pydantic import Field
 
 from chainflow.equipment.base import Array, Equipment, Outcome, Port, Role, Site, rate
+from chainflow.equipment.origins import POWER_INTENSITY, PowerIntensity
 from chainflow.equipment.ports import ANY_NAME, Feeds, as_number
 
 
@@ -64,6 +66,8 @@ class Grid(Equipment):
             "power", "power", Role.SERVES, many=True, optional=True, main=True, means="power bought"
         ),
     )
+
+    carbon_intensity: PowerIntensity | None = Field(None, description=POWER_INTENSITY)
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         bought = float(asked.get("power", 0.0))

@@ -25,6 +25,7 @@ CORE: dict[str, str] = {  # module and class of each kind
     "concentrator": "concentrator.Concentrator",
     "switchboard": "power.Switchboard",
     "grid": "power.Grid",
+    "battery": "battery.Battery",
     "electrolyser": "electrolysis.Electrolyser",
     "photoelectrode": "photoelectrode.Photoelectrode",
     "fuel-cell": "fuel_cell.FuelCell",

@@ -30,6 +30,12 @@ from chainflow.equipment.base import (
     Site,
 )
 from chainflow.equipment.junctions import joined
+from chainflow.equipment.origins import (
+    MATERIAL_INTENSITY,
+    ORIGIN,
+    MaterialIntensity,
+    Origin,
+)
 from chainflow.equipment.ports import ANY_NAME, Feeds, arriving
 from chainflow.equipment.pressures import lower_feed
 from chainflow.equipment.shares import Shares, fractions, resolved
@@ -141,6 +147,8 @@ class Store(Equipment):
     loss: Annotated[float, measured("1/s", ge=0)] | None = Field(
         None, description="contents lost per time, 0.1 %/d (default: that of `vessel`)"
     )
+    origin: Origin | None = Field(None, description=ORIGIN)
+    carbon_intensity: MaterialIntensity | None = Field(None, description=MATERIAL_INTENSITY)
 
     def component_names(self) -> Iterator[tuple[tuple[str, ...], str]]:
         return ((("contents", name), name) for name in self.contents)

@@ -40,6 +40,7 @@ _RESULT_UNITS = {  # the first end that fits counts: longer ones stand before wh
     "_mol_m2_s": "mol/(m2*s)",
     "_m3_s": "m3/s",
     "_kg_m3": "kg/m3",
+    "_J": "J",
     "_kg": "kg",
     "_m3": "m3",
     "_W_K": "W/K",

@@ -20,6 +20,7 @@ from chainflow.equipment.base import Equipment
 from chainflow.equipment.register import kinds
 from chainflow.flowsheet import lines as line_texts
 from chainflow.flowsheet import roles
+from chainflow.flowsheet.blocks import BLOCKS, read_blocks
 from chainflow.flowsheet.component_list import component_names
 from chainflow.flowsheet.holds import HoldReader
 from chainflow.flowsheet.messages import bare, complaints
@@ -44,15 +45,9 @@ from chainflow.thermo.components import (
 )
 
 _TOP = (
-    "title",
-    "basis",
-    "ambient",
-    "approach",
-    "components",
-    "knobs",
-    "equipment",
-    "lines",
+    *("title", "basis", "ambient", "approach", "components", "knobs", "equipment", "lines"),
     "holds",
+    *BLOCKS,
 )
 _REQUIRED = {
     "equipment": "'equipment:' and below it names with their kind, as in 'town: {kind: product}'",
@@ -157,6 +152,8 @@ class _Builder:
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
         used = Sight(used, lines, holds, self.fault, self._spot).seeing()
+        starts = frozenset(f"{line.source}.{line.outlet.name}" for line in joined)
+        blocks = read_blocks(self.root, pieces, broken, known, starts, self.faults)
         self.stop_on_faults()
         return Flowsheet(
             title,
@@ -171,6 +168,7 @@ class _Builder:
             self.tree.sha256,
             self.path,
             approach,
+            blocks,
         )
 
     # --- the small entries -------------------------------------------------------------------

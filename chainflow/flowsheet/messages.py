@@ -157,11 +157,14 @@ def _fields(model: type[BaseModel], path: tuple[str | int, ...]) -> list[str]:
 
 def _model_at(model: type[BaseModel], path: tuple[str | int, ...]) -> type[BaseModel] | None:
     current: type[BaseModel] | None = model
+    free = False  # whether any name may stand here
     for part in path:
-        if isinstance(part, int):
+        if isinstance(part, int) or free:
+            free = False
             continue
         info = current.model_fields.get(part) if current is not None else None
         current = _nested(info.annotation) if info is not None else None
+        free = info is not None and typing.get_origin(info.annotation) is dict
     return current
 
 

@@ -10,7 +10,9 @@ from dataclasses import dataclass, field
 
 from chainflow.basis.faults import Fault, Place
 from chainflow.equipment.base import Equipment
+from chainflow.flowsheet.blocks import Blocks
 from chainflow.thermo.components import Matter
+from chainflow.thermo.exergy import Environment
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,6 +71,7 @@ class Flowsheet:
     sha256: str = ""
     path: str = ""
     approach: float = 10.0  # of the heat account: least difference between heats that meet [K]
+    blocks: Blocks = field(default_factory=Blocks)  # how the answer is accounted for
 
     _at: Mapping[tuple[str, ...], tuple[Line, ...]] = field(init=False, repr=False, compare=False)
 
@@ -84,6 +87,11 @@ class Flowsheet:
             ):
                 at.setdefault(key, []).append(line)
         object.__setattr__(self, "_at", {key: tuple(lines) for key, lines in at.items()})
+
+    @property
+    def environment(self) -> Environment:
+        """The surroundings that exergy is counted against."""
+        return self.blocks.environment
 
     @property
     def matter(self) -> Matter:

@@ -7,12 +7,16 @@ from __future__ import annotations
 
 from typing import Any, get_args
 
+from pydantic import BaseModel
 from pydantic.json_schema import GenerateJsonSchema
 
 from chainflow.basis.names import NAME_PATTERN
 from chainflow.basis.quantities import Temperature
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.register import kinds
+from chainflow.flowsheet.costs import CostBlock
+from chainflow.flowsheet.environment import Surroundings
+from chainflow.flowsheet.rungs import WORDS
 from chainflow.thermo.components import known_components
 
 DIALECT = "https://json-schema.org/draft/2020-12/schema"
@@ -59,6 +63,9 @@ def json_schema() -> dict[str, Any]:
                 "items": {"type": "string", "pattern": "->", "description": "from -> to"},
             },
             "holds": {"type": "array", "items": _hold()},
+            "environment": _block(Surroundings, definitions),
+            "rungs": _rungs(),
+            "costs": _block(CostBlock, definitions),
         },
         "$defs": definitions,
     }
@@ -79,6 +86,25 @@ def _kind(cls: type[Equipment], definitions: dict[str, Any]) -> dict[str, Any]:
             "required": schema.get("required", []),
             "additionalProperties": False,
         },
+    }
+
+
+def _block(cls: type[BaseModel], definitions: dict[str, Any]) -> dict[str, Any]:
+    """One optional block at the top, from its model."""
+    schema = cls.model_json_schema(
+        ref_template="#/$defs/{model}", schema_generator=GenerateJsonSchema
+    )
+    definitions |= {name: _loose(part) for name, part in schema.pop("$defs", {}).items()}
+    return {**_loose(schema), "additionalProperties": False}
+
+
+def _rungs() -> dict[str, Any]:
+    ports = {"type": "array", "items": {"type": "string", "pattern": r"\."}, "minItems": 1}
+    return {
+        "type": "object",
+        "description": "names of cuts in the order of the chain",
+        "propertyNames": _NAME_KEYS,
+        "additionalProperties": {"anyOf": [{"enum": list(WORDS)}, ports]},
     }
 
 

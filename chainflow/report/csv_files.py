@@ -12,6 +12,7 @@ import io
 from collections.abc import Iterable, Iterator, Mapping, Sequence
 from typing import Any
 
+from chainflow.accounts.costs import CostAccount
 from chainflow.accounts.plant import PlantAccount, plant_account
 from chainflow.accounts.worth import BASES, Worth, of_heat, of_light, of_material, of_power
 from chainflow.equipment.ports import Heat
@@ -96,22 +97,36 @@ def _plant_rows(account: PlantAccount) -> Iterator[Row]:
             yield ["rung", f"{rung.start} -> {rung.end}", basis, ratio, "1"]
     for name, share in account.returned.items():
         yield ["returned", name, "", share, "1"]
+    for loss in account.losses.losses:
+        yield ["loss", f"{loss.where} {loss.cause}", "exergy", loss.exergy, "W"]
+    if account.costs is not None:
+        yield from _cost_rows(account.costs)
+
+
+def _cost_rows(costs: CostAccount) -> Iterator[Row]:
+    """Yield levelised costs and what each piece costs in a year."""
+    for product, values in costs.as_data()["levelised"].items():
+        for per, value in values.items():
+            yield ["cost", product, per.replace("_", " "), value, costs.currency]
+    for name, piece in costs.pieces.items():
+        yield ["cost", name, "a year", piece.yearly, costs.currency]
 
 
 def _energies(account: PlantAccount) -> Iterator[tuple[str, str, Worth]]:
     """Yield all that goes in and all that is useful."""
     bought, sold = account.bought, account.sold
-    yield "input", "sunlight", of_light(account.sunlight)
+    air = bought.environment
+    yield "input", "sunlight", of_light(account.sunlight, air)
     for name, power in bought.power.items():
         yield "input", f"power of {name}", of_power(power)
     for name, duty in bought.heat:
         heat = Heat(duty.heat, duty.start, duty.end, duty.mean)
-        yield "input", f"heat of {name}, {duty.purpose}", of_heat(heat)
+        yield "input", f"heat of {name}, {duty.purpose}", of_heat(heat, air)
     for name, stream in bought.material.items():
-        yield "input", f"material of {name}", of_material(stream)
+        yield "input", f"material of {name}", of_material(stream, air)
     for name, power in sold.power:
         yield "useful", f"power to {name}", of_power(power)
     for name, heat in sold.heat:
-        yield "useful", f"heat to {name}", of_heat(heat)
+        yield "useful", f"heat to {name}", of_heat(heat, air)
     for name, stream in sold.material:
-        yield "useful", f"material to {name}", of_material(stream)
+        yield "useful", f"material to {name}", of_material(stream, air)

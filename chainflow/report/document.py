@@ -24,6 +24,7 @@ from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Heat, Light
 from chainflow.flowsheet.network import Flowsheet
 from chainflow.solver.solution import HoldResult, Solution, SolvedStream
+from chainflow.thermo.exergy import STANDARD_ENVIRONMENT, Environment
 from chainflow.thermo.streams import Stream
 
 FORMAT = 1
@@ -41,7 +42,9 @@ def document(solution: Solution) -> Document:
         "balance": {"elements": solution.balance.elements, "energy": solution.balance.energy},
         "problem": None,
         "faults": [],
-        "streams": {stream.key: stream_entry(stream) for stream in solution.streams},
+        "streams": {
+            s.key: stream_entry(s, solution.flowsheet.environment) for s in solution.streams
+        },
         "equipment": {
             name: _equipment_entry(
                 solution.flowsheet.equipment[name].kind, outcome, destroyed[name]
@@ -109,14 +112,14 @@ def _digest(path: Path) -> str | None:
         return None
 
 
-def stream_entry(stream: SolvedStream) -> Document:
+def stream_entry(stream: SolvedStream, environment: Environment = STANDARD_ENVIRONMENT) -> Document:
     """Return one stream: where it goes and what it is."""
     targets = stream.targets
     to = None if not targets else targets[0] if len(targets) == 1 else list(targets)
     entry = {"tag": stream.tag, "to": to, "content": stream.content}
     flow = stream.flow
     if isinstance(flow, Stream):
-        return entry | _material_entry(flow)
+        return entry | _material_entry(flow, environment)
     if isinstance(flow, Heat):
         return entry | {"rate_W": flow.rate, "from_K": flow.start, "to_K": flow.end}
     if isinstance(flow, Light):
@@ -129,8 +132,8 @@ def _light_entry(light: Light) -> Document:
     return dict(zip(names, light.numbers, strict=True))
 
 
-def _material_entry(stream: Stream) -> Document:
-    worth = of_material(stream)
+def _material_entry(stream: Stream, environment: Environment) -> Document:
+    worth = of_material(stream, environment)
     return {
         "temperature_K": stream.temperature,
         "pressure_Pa": stream.pressure,

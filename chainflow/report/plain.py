@@ -7,10 +7,11 @@ encoding does not know become question marks.
 from __future__ import annotations
 
 import sys
-from typing import IO, TYPE_CHECKING, TextIO
+from typing import IO, TYPE_CHECKING, Literal, TextIO
 
 if TYPE_CHECKING:
     from rich.console import Console
+    from rich.table import Table
 
 _PIPE_WIDTH = 1000  # characters; a pipe has no edge to wrap at
 
@@ -58,3 +59,15 @@ def console(out: TextIO | None = None) -> Console:
         markup=False,
         emoji=False,
     )
+
+
+def plain_table(*columns: str, right: tuple[str, ...] = (), whole: tuple[str, ...] = ()) -> Table:
+    """Return an empty table; columns in `whole` are not wrapped."""
+    from rich import box
+    from rich.table import Table
+
+    table = Table(box=box.SIMPLE_HEAD, pad_edge=False, show_edge=False)
+    for name in columns:
+        justify: Literal["left", "right"] = "right" if name in right else "left"
+        table.add_column(name, justify=justify, overflow="fold", no_wrap=name in whole)
+    return table

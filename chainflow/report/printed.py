@@ -7,8 +7,9 @@ engineering units.
 from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
-from typing import TYPE_CHECKING, Literal, TextIO
+from typing import TYPE_CHECKING, TextIO
 
+from chainflow.accounts.costs import cost_account
 from chainflow.accounts.exergy import exergy_destroyed
 from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
 from chainflow.accounts.heat import HeatAccount
@@ -18,7 +19,8 @@ from chainflow.basis.formatting import format_quantity
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Heat, Light, rate_of
 from chainflow.report import numbers
-from chainflow.report.plain import console, encoding_of, printable
+from chainflow.report.accounts_printed import print_costs
+from chainflow.report.plain import console, encoding_of, plain_table, printable
 from chainflow.solver.solution import HoldResult, Solution, SolvedStream
 from chainflow.thermo.streams import Stream
 
@@ -41,6 +43,8 @@ def print_answer(solution: Solution, out: TextIO | None = None) -> None:
     screen.print(printable(solution.flowsheet.title or "untitled", encoding), style="bold")
     for line in _short_answer(solution):
         screen.print(line, soft_wrap=True)
+    if costs := cost_account(solution):
+        print_costs(screen, costs)
     _print_tables(screen, solution)
     _print_remarks(screen, "Idealisations", idealisations(solution))
     _print_remarks(screen, "Cautions", cautions(solution))
@@ -184,23 +188,13 @@ def _print_tables(screen: Console, solution: Solution) -> None:
             screen.print(table)
 
 
-def _table(*columns: str, right: tuple[str, ...] = (), whole: tuple[str, ...] = ()) -> Table:
-    """Return an empty table; columns in `whole` are not wrapped."""
-    from rich import box
-    from rich.table import Table
-
-    table = Table(box=box.SIMPLE_HEAD, pad_edge=False, show_edge=False)
-    for name in columns:
-        justify: Literal["left", "right"] = "right" if name in right else "left"
-        table.add_column(name, justify=justify, overflow="fold", no_wrap=name in whole)
-    return table
-
-
 def _stream_table(streams: list[SolvedStream], width: int) -> Table:
     """Return the table of matter; on a narrow screen without mass and phase."""
     columns = ["tag", "from -> to", "composition, mol %", "degC", "bar", "mol/s", "kg/h", "phase"]
     shown = columns[: _NARROW_COLUMNS if width < _NARROW else len(columns)]
-    table = _table(*shown, right=("tag", "degC", "bar", "mol/s", "kg/h"), whole=("from -> to",))
+    table = plain_table(
+        *shown, right=("tag", "degC", "bar", "mol/s", "kg/h"), whole=("from -> to",)
+    )
     for stream in streams:
         flow = stream.flow
         if isinstance(flow, Stream):
@@ -219,7 +213,7 @@ def _stream_table(streams: list[SolvedStream], width: int) -> Table:
 
 
 def _energy_table(streams: list[tuple[SolvedStream, Heat | Light | float]]) -> Table:
-    table = _table("tag", "from -> to", "content", "rate", "degC", right=("tag", "rate"))
+    table = plain_table("tag", "from -> to", "content", "rate", "degC", right=("tag", "rate"))
     for stream, flow in streams:
         if isinstance(flow, Heat):
             span = f"{numbers.celsius(flow.start)} to {numbers.celsius(flow.end)}"
@@ -231,7 +225,7 @@ def _energy_table(streams: list[tuple[SolvedStream, Heat | Light | float]]) -> T
 
 
 def _hold_table(holds: tuple[HoldResult, ...]) -> Table:
-    table = _table("held", "wanted", "reached", "by", "value")
+    table = plain_table("held", "wanted", "reached", "by", "value")
     for hold in holds:
         table.add_row(
             hold.hold,

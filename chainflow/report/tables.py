@@ -23,7 +23,10 @@ def streams_table(solution: Solution) -> pd.DataFrame:
     """
     import pandas as pd
 
-    rows = {stream.key: _flat(stream_entry(stream)) for stream in solution.streams}
+    rows = {
+        stream.key: _flat(stream_entry(stream, solution.flowsheet.environment))
+        for stream in solution.streams
+    }
     table = pd.DataFrame.from_dict(rows, orient="index")
     table.index.name = "stream"
     return table

@@ -53,9 +53,9 @@ class HoldResult:
     by_unit: str
 
 
-@dataclass(frozen=True, slots=True)
+@dataclass(frozen=True, slots=True, eq=False, weakref_slot=True)
 class Solution:
-    """One steady state of a flowsheet."""
+    """One steady state of a flowsheet; equal only to itself, so that accounts can be kept by it."""
 
     flowsheet: Flowsheet
     outcomes: Mapping[str, Outcome]  # by equipment, in file order

@@ -11,11 +11,13 @@ Chemical and Metallurgical Processes (1988), from memory.
 from dataclasses import dataclass
 from functools import cache
 from math import log
+from typing import Final
 
 import numpy as np
 
 from chainflow.basis.constants import ATMOSPHERE, GAS_CONSTANT, P_REFERENCE, T_REFERENCE
 from chainflow.thermo.components import Array, Matter
+from chainflow.thermo.saturation import saturation_pressure
 from chainflow.thermo.species import polynomial
 from chainflow.thermo.streams import Stream, Value
 
@@ -45,6 +47,58 @@ class Environment:
                     f"environment: {name} is {getattr(self, name):g}, wanted a value above zero"
                 )
 
+    @classmethod
+    def at(
+        cls,
+        temperature: float = T_REFERENCE,
+        pressure: float = ATMOSPHERE,
+        carbon_dioxide: float | None = None,
+        humidity: float | None = None,
+    ) -> "Environment":
+        """Return the usual air at another temperature [K] and pressure [Pa].
+
+        Parameters
+        ----------
+        carbon_dioxide : mole fraction in the air; the usual partial pressure, in proportion to
+            `pressure`, if None.
+        humidity : partial pressure of water by its saturation pressure; that of the usual
+            surroundings at 25 degC (0.69) if None.
+
+        Raises `ValueError` for water above the air's own pressure or no saturation pressure.
+        """
+        usual = cls()
+        if (temperature, pressure, carbon_dioxide, humidity) == (
+            usual.temperature,
+            usual.pressure,
+            None,
+            None,
+        ):
+            return usual
+        share = pressure / usual.pressure
+        relative = humidity
+        if relative is None:
+            relative = usual.water / saturation_pressure(usual.temperature)
+        water = relative * saturation_pressure(temperature)
+        if water >= pressure:
+            raise ValueError(
+                f"water alone has {water / 1e5:.4g} bar there, "
+                f"the air {pressure / 1e5:.4g} bar: take a lower temperature or humidity"
+            )
+        return cls(
+            temperature=temperature,
+            pressure=pressure,
+            nitrogen=usual.nitrogen * share,
+            oxygen=usual.oxygen * share,
+            argon=usual.argon * share,
+            carbon_dioxide=(
+                usual.carbon_dioxide * share
+                if carbon_dioxide is None
+                else carbon_dioxide * pressure
+            ),
+            water=water,
+            helium=usual.helium * share,
+        )
+
     def element_potentials(self) -> dict[str, float]:
         """Return the Gibbs energy of each element's atoms in the reference gases [J/mol]."""
         return dict(_element_potentials(self))
@@ -67,7 +121,7 @@ def _element_potentials(air: Environment) -> tuple[tuple[str, float], ...]:
     )
 
 
-STANDARD_ENVIRONMENT = Environment()
+STANDARD_ENVIRONMENT: Final = Environment()
 
 
 def stream_exergy(stream: Stream, environment: Environment = STANDARD_ENVIRONMENT) -> Value:

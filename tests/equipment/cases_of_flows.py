@@ -45,6 +45,17 @@ def power(add):
     )
     add("20 %", "pv-field", {"efficiency": "20 %"}, {"light": NOON})
     add("all of it", "pv-field", {"efficiency": 1}, {"light": NOON})
+    plain = {"efficiency": "86 %", "duration": "4 h"}
+    add("for an evening", "battery", plain, {"charge": (3e6,)})
+    leaking = {
+        **plain,
+        "self_discharge": "3 %/d",
+        "kept_for": "2 d",
+        "usable": "90 %",
+        "mass": "9 kg/kWh",
+        "volume": "4 L/kWh",
+    }
+    add("leaking, two senders", "battery", leaking, {"charge": (3e6, 1e5)})
     served = {"pump": 2e3, "press": 5e4}
     add("with a rest", "switchboard", {}, {"supply": (1e5, 2e4)}, served, outlets=("rest",))
     add("short, nothing behind it", "switchboard", {}, {"supply": (1e4,)}, served)

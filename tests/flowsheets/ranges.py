@@ -109,4 +109,11 @@ RANGES: dict[str, dict[str, Range]] = {
         "blades": (70, 88, "%"),
         "leaving": (110, 200, "degC"),
     },
+    "battery": {
+        **SUN,
+        "field": (12, 28, "%"),
+        "round_trip": (70, 95, "%"),
+        "leak": (0, 5, "%/d"),
+        "hours": (1, 48, "h"),
+    },
 }

@@ -13,12 +13,13 @@ import pytest
 from hypothesis import HealthCheck, given, settings
 from hypothesis import strategies as st
 
+from chainflow.accounts.losses import loss_map
 from chainflow.basis.faults import ChainflowError, FlowsheetFault, NotSolved, UsageFault
 from chainflow.flowsheet.building import read_text
 from chainflow.report.document import document, to_json
 from chainflow.solver.solve import solve_flowsheet
 from tests.flowsheets.ranges import RANGES
-from tests.flowsheets.shipped import HUGE, NAMES, text_of
+from tests.flowsheets.shipped import HUGE, NAMES, SHIPPED, text_of
 
 SHORT, LONG = 10, 300
 SHORT_HUGE, LONG_HUGE = 4, 100
@@ -119,3 +120,53 @@ def test_a_share_too_small_to_mean_anything():
 @pytest.mark.parametrize("name", NAMES)
 def test_many_random_settings(name):
     run(name, LONG_HUGE if name in HUGE else LONG)
+
+
+# --- the loss map ------------------------------------------------------------------------------
+
+
+def run_losses(name, examples):
+    """The exergy that enters is found again, at random settings and in random surroundings."""
+    seen = Counter()
+    surroundings = st.fixed_dictionaries(
+        {
+            "temperature": st.integers(-100, 450).map(lambda tenth: f"{tenth / 10} degC"),
+            "pressure": st.integers(600, 1050).map(lambda mbar: f"{mbar} mbar"),
+            "carbon_dioxide": st.integers(280, 800).map(lambda ppm: f"{ppm} ppm"),
+            "humidity": st.integers(5, 100).map(lambda share: f"{share} %"),
+        }
+    )
+
+    @settings(
+        max_examples=examples,
+        derandomize=True,
+        deadline=None,
+        database=None,
+        suppress_health_check=list(HealthCheck),
+    )
+    @given(knobs_of(name), surroundings)
+    def close_one(knobs, there):
+        block = ", ".join(f"{key}: {value}" for key, value in there.items())
+        text = f"{text_of(name)}\nenvironment: {{{block}}}\n"
+        try:
+            solution = solve_flowsheet(read_text(text, knobs))
+        except (NotSolved, FlowsheetFault):
+            seen["refused"] += 1
+            return
+        found = loss_map(solution)
+        assert found.closure < 1e-9
+        seen["solved"] += 1
+
+    close_one()
+    assert seen["solved"] >= 0.6 * examples, seen
+
+
+@pytest.mark.parametrize("name", SHIPPED)
+def test_losses_close_at_a_few_random_settings(name):
+    run_losses(name, 3)
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("name", SHIPPED)
+def test_losses_close_at_many_random_settings(name):
+    run_losses(name, LONG_HUGE if name in HUGE else LONG)
