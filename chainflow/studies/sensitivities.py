@@ -1,8 +1,8 @@
 """How much does each result move when a setting or a knob moves a little?
 
 From the solver's own derivatives at the solution (`chainflow.solver.linearised`), without solving
-again; holds stay held. Against solving again they agree to 1e-5, except at kinks, where both sides of
-a setting differ and these are of one side, or their mean.
+again; holds stay held. Against solving again they agree to 1e-5, except at kinks, where both sides
+of a setting differ and these are of one side, or their mean.
 """
 
 from __future__ import annotations
