@@ -189,7 +189,7 @@ class Linearised:
         )
 
     def gradient(self, results: Results) -> np.ndarray:
-        """Slopes of the results by all variables, settings kept; shape (results, variables' numbers)."""
+        """Slopes of the results by all variables, settings kept; shape (results, numbers)."""
         start = results(self.solution_of(self.finish))
         found = np.zeros((len(start), self.size))
         for key, names in self._readers.items():
