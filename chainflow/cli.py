@@ -23,6 +23,7 @@ from chainflow.basis.faults import ChainflowError, Fault, FileFault, FlowsheetFa
 if TYPE_CHECKING:
     from chainflow.flowsheet.network import Flowsheet
     from chainflow.solver.solution import Solution
+    from chainflow.studies.why import Why
 
 BUG = 70
 INTERRUPTED = 130
@@ -128,6 +129,10 @@ def solve(
         ),
     ] = False,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print no answer, only errors.")] = False,
+    why: Annotated[
+        bool,
+        typer.Option("--why", help="Say where most is lost and which settings matter most."),
+    ] = False,
 ) -> None:
     """Close the balance of a flowsheet and print the answer.
 
@@ -139,11 +144,12 @@ def solve(
     solution = _solved(file, overrides, json)
     if not quiet:
         _say_faults(solution.remarks, file, "remark: ")
-    _write(solution, json, csv)
+    reasons = _reasons(solution) if why else None
+    _write(solution, json, csv, reasons)
     if not quiet and json != STDOUT:
         from chainflow.report.printed import print_answer
 
-        print_answer(solution)
+        print_answer(solution, reasons=reasons)
         if accounts:
             from chainflow.report.accounts_printed import print_accounts
 
@@ -324,7 +330,15 @@ def _write_failure(
     _write_json(to_json(found), json)
 
 
-def _write(solution: Solution, json: str | None, csv: Path | None) -> None:
+def _reasons(solution: Solution) -> Why:
+    from chainflow.studies.why import why
+
+    return why(solution)
+
+
+def _write(
+    solution: Solution, json: str | None, csv: Path | None, reasons: Why | None = None
+) -> None:
     """Write the files that are asked for; all texts are made before the first is written."""
     from chainflow.report.writing import write_all
 
@@ -332,7 +346,7 @@ def _write(solution: Solution, json: str | None, csv: Path | None) -> None:
     if json is not None:
         from chainflow.report.document import document, to_json
 
-        text = to_json(document(solution))
+        text = to_json(document(solution, reasons))
     if csv is not None:
         from chainflow.report.csv_files import csv_texts
 

@@ -12,7 +12,7 @@ import json
 import math
 from collections.abc import Iterable, Mapping
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from chainflow.accounts.exergy import exergy_destroyed
 from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
@@ -27,12 +27,15 @@ from chainflow.solver.solution import HoldResult, Solution, SolvedStream
 from chainflow.thermo.exergy import STANDARD_ENVIRONMENT, Environment
 from chainflow.thermo.streams import Stream
 
+if TYPE_CHECKING:
+    from chainflow.studies.why import Why
+
 FORMAT = 1
 Document = dict[str, Any]
 
 
-def document(solution: Solution) -> Document:
-    """Return everything about a solution as plain data."""
+def document(solution: Solution, reasons: Why | None = None) -> Document:
+    """Return everything about a solution as plain data, with the reasons if there are any."""
     destroyed = exergy_destroyed(solution)
     found = _head(_sheet(solution.flowsheet)) | {
         "solved": True,
@@ -59,6 +62,8 @@ def document(solution: Solution) -> Document:
         "sources": sources(solution.flowsheet),
         "notice": CLOSING_SENTENCE,
     }
+    if reasons is not None:
+        found["why"] = reasons.as_data()
     return _clean(found)
 
 
