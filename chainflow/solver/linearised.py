@@ -37,6 +37,8 @@ from chainflow.thermo.streams import Stream, enthalpy_slopes
 from chainflow.thermo.validity import StateError
 
 _STEP = 1e-5  # relative step of differences; central, so the error is its square
+_TRACE_STEP = 3e-3  # of a trace
+_REST_STEP = 1e-3  # of what a share leaves
 _CHORDS = 3  # steps to the temperature of a nudged gas; each gains five digits
 _ENDS = (0.0, 1.0)  # values at which a way may open that was closed
 
@@ -260,7 +262,7 @@ class Linearised:
     def _sides(self, lever: Lever) -> tuple[_Side, _Side]:
         if lever.elsewhere:
             raise Unmovable(f"it also stands at {', '.join(lever.elsewhere)}")
-        step = _STEP * (abs(lever.value) or _size_of(lever.unit))
+        step = _lever_step(lever)
         allowed = [by for by in (-step, step) if is_allowed(self.flowsheet, lever, by)]
         if not allowed:
             raise Unmovable("it cannot be moved alone: what stands beside it must follow")
@@ -369,10 +371,22 @@ def _still_gas(before: Stream, after: Stream) -> Stream:
 
 
 def _step_of(variable: Variable, base: np.ndarray, column: int) -> float:
+    """A small step of one number; a trace moves by a part of itself."""
     if variable.form == "matter":
         total = float(base[:-1].sum())
-        return _STEP * total * (ENTHALPY_SCALE if column == variable.size - 1 else 1.0)
+        if column == variable.size - 1:
+            return _STEP * total * ENTHALPY_SCALE
+        trace = _TRACE_STEP * float(base[column])
+        return min(_STEP * total, trace) if trace > 0.0 else _STEP * total
     return _STEP * (abs(float(base[column])) or 1.0)
+
+
+def _lever_step(lever: Lever) -> float:
+    """A small step of a setting; a share close to one moves by a part of what it leaves."""
+    step = _STEP * (abs(lever.value) or _size_of(lever.unit))
+    if lever.unit == "1" and 0.5 < lever.value < 1.0:
+        return min(step, _REST_STEP * (1.0 - lever.value))
+    return step
 
 
 def _size_of(unit: str) -> float:

@@ -151,7 +151,7 @@ def why(solution: Solution) -> Why:
 
 
 def rung_losses(rungs: tuple[Rung, ...], basis: str) -> Iterator[RungLoss]:
-    """Yield what each rung loses as a share of all that goes in; with the rest they add up to one."""
+    """Yield what each rung loses as a share of all that goes in; with the end they make one."""
     left = 1.0
     for rung in rungs:
         after = left * (rung.ratio[basis] or 0.0)

@@ -26,6 +26,8 @@ USUAL = {"Pa": 1e5, "J/mol": 1e4, "J/kg": 1e6, "W": 1e3}  # sizes of settings th
 def solved_again(flowsheet, one, results, start):
     """Slopes by solving at both sides, or at one side of the second order at an end."""
     step = STEP * (abs(one.value) or USUAL.get(one.unit, 1.0))
+    if one.unit == "1" and 0.5 < one.value < 1.0:  # what a recovery leaves goes by its logarithm
+        step = min(step, 1e-3 * (1.0 - one.value))
     at = {
         k: results(solve_flowsheet(moved(flowsheet, one, k * step)))
         for k in (-2, -1, 1, 2)
