@@ -13,9 +13,12 @@ from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
-from chainflow.accounts.efficiency import efficiency
-from chainflow.accounts.fuel import FuelLines, fuel_lines
+from chainflow.accounts.cuts import sunlight
+from chainflow.accounts.deliveries import deliveries
+from chainflow.accounts.fuel import FuelLines, fuel_lines, worth_of_lines
 from chainflow.accounts.plant import plant_account, plant_value
+from chainflow.accounts.purchases import purchases
+from chainflow.accounts.worth import of_light
 from chainflow.basis.faults import UsageFault
 from chainflow.flowsheet.addresses import AddressError
 from chainflow.flowsheet.movable import Lever, lever, levers
@@ -147,8 +150,11 @@ class Evaluation:
         if not self._efficiency_only:
             return plant_account(solution).as_data()
         self._lines = self._lines or fuel_lines(solution)
-        found = efficiency(solution, lines=self._lines)
-        named = {"sunlight_to_fuel": found.sunlight_to_fuel, "overall": found.overall}
+        entering = of_light(sunlight(solution), solution.flowsheet.environment)
+        entering += purchases(solution).worth
+        made = worth_of_lines(solution, self._lines.made)
+        delivered = deliveries(solution).worth
+        named = {"sunlight_to_fuel": made.over(entering), "overall": delivered.over(entering)}
         return {"efficiency": named}
 
 

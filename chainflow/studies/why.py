@@ -160,7 +160,8 @@ def rung_losses(rungs: tuple[Rung, ...], basis: str) -> Iterator[RungLoss]:
 
 
 def _pieces(solution: Solution, account: PlantAccount) -> Iterator[PieceLoss]:
-    entering = (of_light(account.sunlight) + account.bought.worth).exergy
+    light = of_light(account.sunlight, solution.flowsheet.environment)
+    entering = (light + account.bought.worth).exergy
     lost = sorted(exergy_destroyed(solution).items(), key=lambda pair: -pair[1])
     for name, value in lost:
         if value > 0.0 and entering > 0.0:
