@@ -14,7 +14,7 @@ what is served, on the equipment that gets the new pressure or the new mol.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator
 from dataclasses import dataclass, replace
 from typing import Any
 
@@ -128,38 +128,46 @@ class Linearised:
     ) -> dict[tuple[str, str], np.ndarray]:
         start = {w: self.variables[w].pack(written[w]) for w in step.writes}
         found = {(w, key): np.zeros((len(start[w]), self.variables[key].size)) for w in step.writes}
-        for column, width, sides in self._nudges(key):
-            ends = []
-            for side in sides:
-                run = step.run({**self.values, key: side}) if side is not None else written
-                ends.append({w: self.variables[w].pack(run[w]) for w in step.writes})
-            for w in step.writes:
-                found[w, key][:, column] = (ends[1][w] - ends[0][w]) / width
+        at = np.cumsum([0, *(len(start[w]) for w in step.writes)])
+
+        def packed(run: Values) -> np.ndarray:
+            return np.concatenate([self.variables[w].pack(run[w]) for w in step.writes])
+
+        def moved_by(value: Flow) -> np.ndarray:
+            return packed(step.run({**self.values, key: value}))
+
+        for column, slope in self._slopes_by(key, moved_by, packed(written)):
+            for place, w in enumerate(step.writes):
+                found[w, key][:, column] = slope[at[place] : at[place + 1]]
         return found
 
-    def _nudges(self, key: str) -> Sequence[tuple[int, float, tuple[Flow | None, Flow | None]]]:
-        """Each number of a variable a little lower and higher: (column, width, both values).
+    def _slopes_by(
+        self, key: str, outcome: Callable[[Flow], np.ndarray], still: np.ndarray
+    ) -> Iterator[tuple[int, np.ndarray]]:
+        """Slopes of an outcome by each number of a variable: (column, slope).
 
-        None stands for the value itself, where the number cannot go lower.
+        Central differences; one-sided where a number cannot go lower, or where one side of a state
+        is not described (a saturated vapour a little colder).  Matter that does not flow has none.
         """
         variable, value = self.variables[key], self.values[key]
-        base = variable.pack(value)
         if isinstance(value, Stream) and float(value.total) == 0.0:
-            return []
-        found = []
+            return
+        base = variable.pack(value)
         for column in range(variable.size):
             step = _step_of(variable, base, column)
             lowest = variable.form == "matter" and column < variable.size - 1
-            one_sided = lowest and base[column] < step
-            down = None if one_sided else self._moved_value(key, base, column, -step)
-            up = self._moved_value(key, base, column, step)
-            found.append((column, step if one_sided else 2.0 * step, (down, up)))
-        return found
-
-    def _moved_value(self, key: str, base: np.ndarray, column: int, by: float) -> Flow:
-        changed = base.copy()
-        changed[column] += by
-        return self._unpacked(key, changed, self.variables[key].pressure)
+            ends = [(0.0, still)]
+            for by in (step,) if lowest and base[column] < step else (-step, step):
+                changed = base.copy()
+                changed[column] += by
+                try:
+                    nudged = self._unpacked(key, changed, variable.pressure)
+                    ends.append((by, outcome(nudged)))
+                except (NotSolved, StateError):
+                    continue
+            low, high = min(ends, key=_by), max(ends, key=_by)
+            if high[0] > low[0]:
+                yield column, (high[1] - low[1]) / (high[0] - low[0])
 
     def _unpacked(self, key: str, numbers: np.ndarray, pressure: float) -> Flow:
         variable, value = self.variables[key], self.values[key]
@@ -197,11 +205,12 @@ class Linearised:
         for key, names in self._readers.items():
             if key not in self.variables or not self._is_felt(key, names, results, start):
                 continue
-            for column, width, (down, up) in self._nudges(key):
-                low = start if down is None else results(self._nudged(key, down, names))
-                assert up is not None
-                high = results(self._nudged(key, up, names))
-                found[:, self.places[key].start + column] = (high - low) / width
+
+            def outcome(value: Flow, key: str = key, names: tuple[str, ...] = names) -> np.ndarray:
+                return results(self._nudged(key, value, names))
+
+            for column, slope in self._slopes_by(key, outcome, start):
+                found[:, self.places[key].start + column] = slope
         return found
 
     def _is_felt(
@@ -214,8 +223,11 @@ class Linearised:
         base = variable.pack(value)
         uneven = 1.0 + 0.37 * np.arange(variable.size)
         steps = np.array([_step_of(variable, base, c) for c in range(variable.size)])
-        probe = self._unpacked(key, base + uneven * steps, variable.pressure)
-        return bool((results(self._nudged(key, probe, names)) != start).any())
+        try:
+            probe = self._unpacked(key, base + uneven * steps, variable.pressure)
+            return bool((results(self._nudged(key, probe, names)) != start).any())
+        except (NotSolved, StateError):
+            return True
 
     def _nudged(self, key: str, value: Flow, names: tuple[str, ...]) -> Solution:
         finish = self.finish.again(self.program, {**self.values, key: value}, names)
@@ -379,6 +391,10 @@ def _step_of(variable: Variable, base: np.ndarray, column: int) -> float:
         trace = _TRACE_STEP * float(base[column])
         return min(_STEP * total, trace) if trace > 0.0 else _STEP * total
     return _STEP * (abs(float(base[column])) or 1.0)
+
+
+def _by(end: tuple[float, np.ndarray]) -> float:
+    return end[0]
 
 
 def _lever_step(lever: Lever) -> float:
