@@ -158,6 +158,70 @@ def solve(
 
 @app.command()
 @reported
+def compare(
+    files: Annotated[
+        list[Path], typer.Argument(metavar="FILE ...", help="Flowsheet files (YAML).")
+    ],
+    basis: Annotated[
+        str | None,
+        typer.Option("--basis", metavar="BASIS", help="LHV, HHV or exergy; that of the files."),
+    ] = None,
+    energy: Annotated[
+        str, typer.Option("--energy", metavar="ENERGY", help="What the stores are sized for.")
+    ] = "100 MWh",
+    set_: SetOption = None,
+    json: Annotated[
+        str | None,
+        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
+    ] = None,
+    csv: Annotated[
+        Path | None, typer.Option("--csv", metavar="PATH", help="Write the table as a CSV file.")
+    ] = None,
+) -> None:
+    """Put flowsheets side by side on the same sunlight and the same basis.
+
+    A file that fails does not stop the others: its column says why, and the exit code is that of
+    the first that failed. --set changes the files that know the name.
+    """
+    from chainflow.report.compared import comparison_csv, comparison_document, print_comparison
+    from chainflow.report.document import to_json
+    from chainflow.report.writing import check_writable, write_whole
+    from chainflow.studies.compare import compare as compared
+
+    overrides = _overrides(set_)
+    for file in files:
+        _check_outputs(file, json, None)
+    if csv is not None:
+        if csv.resolve() in {file.resolve() for file in files}:
+            raise UsageFault(f"--csv {csv} is one of the flowsheets: name another file")
+        check_writable(csv)
+    found = compared(files, overrides, basis, _energy(energy))
+    if csv is not None:
+        write_whole(csv, comparison_csv(found))
+    if json is not None:
+        _write_json(to_json(comparison_document(found)), json)
+    if json != STDOUT:
+        print_comparison(found)
+    for route in found.routes:
+        if not route.solved:
+            _say(f"{route.path}: {route.why_not}")
+    if found.exit_code:
+        sys.stdout.flush()
+        raise typer.Exit(found.exit_code)
+
+
+def _energy(text: str) -> float:
+    from chainflow.basis.quantities import QuantityFault, parse
+    from chainflow.basis.units import UnitFault
+
+    try:
+        return parse(text, "J", gt=0.0)
+    except (QuantityFault, UnitFault) as problem:
+        raise UsageFault(f"--energy: {problem}") from None
+
+
+@app.command()
+@reported
 def check(file: FileArgument, set_: SetOption = None) -> None:
     """Check a flowsheet without solving it: who sets each amount, and which loops there are."""
     from chainflow.flowsheet.building import read_flowsheet

@@ -64,12 +64,12 @@ def document(solution: Solution, reasons: Why | None = None) -> Document:
     }
     if reasons is not None:
         found["why"] = reasons.as_data()
-    return _clean(found)
+    return clean(found)
 
 
 def faults_document(path: Path | str, faults: Iterable[Fault]) -> Document:
     """Return the document of a file that is wrong."""
-    return _clean(
+    return clean(
         _head(_unread(path))
         | {"solved": False, "problem": None, "faults": [fault_entry(fault) for fault in faults]}
     )
@@ -81,7 +81,7 @@ def problem_document(path: Path | str, problem: Exception, flowsheet: Flowsheet 
     if isinstance(problem, NotSolved):
         entry |= {"code": problem.code, "details": problem.details}
     sheet = _unread(path) if flowsheet is None else _sheet(flowsheet)
-    return _clean(_head(sheet) | {"solved": False, "problem": entry, "faults": []})
+    return clean(_head(sheet) | {"solved": False, "problem": entry, "faults": []})
 
 
 def to_json(found: Document) -> str:
@@ -202,16 +202,16 @@ def sources(flowsheet: Flowsheet) -> list[str]:
     return list(dict.fromkeys(named))
 
 
-def _clean(value: Any) -> Any:
+def clean(value: Any) -> Any:
     """Return plain data: numpy numbers as numbers, NaN and infinity as None, no negative zero."""
     if isinstance(value, Mapping):
-        return {str(key): _clean(one) for key, one in value.items()}
+        return {str(key): clean(one) for key, one in value.items()}
     if isinstance(value, list | tuple | set | frozenset):
-        return [_clean(one) for one in value]
+        return [clean(one) for one in value]
     if value is None or isinstance(value, str | bool | int):
         return value
     if hasattr(value, "tolist"):
-        return _clean(value.tolist())
+        return clean(value.tolist())
     if isinstance(value, float):
         return value + 0.0 if math.isfinite(value) else None
     return str(value)
