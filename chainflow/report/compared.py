@@ -126,7 +126,7 @@ def _cell(row: Figure, value: Value) -> str:
     if isinstance(value, str):
         return value if value != "no" else _NOTHING
     if row.group == "lost":
-        return f"{100 * value:.2f}"
+        return f"{100 * value if abs(value) >= _SMALL else 0.0:.2f}"
     if row.unit == "share":
         return numbers.percent(value)
     if row.unit == "money":
