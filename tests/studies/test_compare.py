@@ -124,7 +124,7 @@ def test_settings_go_where_they_are_known(three):
     assert value(found, "light -> power", 0) == pytest.approx(0.10)
     assert value(found, "light -> power", 1) == value(three, "light -> power", 1)
     assert found.notes == ("field is set in hydrogen-store only: methane-store has no such name",)
-    with pytest.raises(UsageFault, match="none of the flowsheets has it .did you mean 'field'"):
+    with pytest.raises(UsageFault, match=r"none of the flowsheets has it .did you mean 'field'"):
         compare([STORE, GAS], {"fild": "10 %"})
     with pytest.raises(UsageFault, match="hydrogen-store"):
         compare([STORE, GAS], {"field": "10 bar"})
