@@ -1,4 +1,4 @@
-"""Whole chains of the shipped flowsheets against published ranges and against what cannot be beaten.
+"""Whole chains of the shipped flowsheets against published ranges and against their upper bounds.
 
 Sources: Sterner, Jentsch, Holzhammer, Fraunhofer IWES study 2011 (from memory): electricity to gas
 with compression to 0-200 bar 54-77 % for hydrogen, 49-65 % for methane; electricity to gas to
