@@ -129,7 +129,7 @@ def _cell(row: Figure, value: Value) -> str:
         return f"{100 * value if abs(value) >= _SMALL else 0.0:.2f}"
     if row.unit == "share":
         return numbers.percent(value)
-    if row.unit == "money":
+    if row.unit in ("money", "number"):
         return format_number(value, 3)
     if row.unit in ("J/m3", "J/kg"):
         return f"{format_number(value / KWH, 4)} kWh/{row.unit.removeprefix('J/')}"
@@ -238,7 +238,7 @@ def comparison_csv(found: Comparison) -> str:
     writer = csv.writer(out, lineterminator="\n")
     writer.writerow(["group", "figure", "unit", *(route.name for route in found.routes)])
     for row in figures(found):
-        unit = {"share": "1", "text": "", "money": "currency"}.get(row.unit, row.unit)
+        unit = {"share": "1", "number": "", "text": "", "money": "currency"}.get(row.unit, row.unit)
         writer.writerow([row.group, row.key, unit, *row.values])
     writer.writerow(["answer", "problem", "", *(route.why_not for route in found.routes)])
     return out.getvalue()

@@ -24,7 +24,7 @@ class Figure:
     group: str
     key: str  # dotted, ends in its unit as in the document
     label: str
-    unit: str  # SI; "share" for what is shown in per cent, "text" for words
+    unit: str  # SI; "share" for what is shown in per cent, "number", "text", "money"
     values: tuple[Value, ...]
 
 
@@ -156,6 +156,8 @@ def _needs(found: Comparison) -> Iterator[Figure]:
         ("power_W", "power bought", "W"),
         ("heat_W", "heat bought", "W"),
         ("cold_W", "cooling bought", "W"),
+        ("water_kg_kWh_fuel", "water, kg a kWh of fuel", "number"),
+        ("carbon_efficiency", "carbon that ends in fuel", "share"),
         ("water_returned", "water returned", "share"),
         ("CO2_returned", "CO2 returned", "share"),
     )
@@ -164,7 +166,7 @@ def _needs(found: Comparison) -> Iterator[Figure]:
 
         def need(route: Route, key: str = key, unit: str = unit) -> Value:
             value = known[route.name][key]
-            scaled = value is not None and unit != "share"
+            scaled = value is not None and unit not in ("share", "number")
             return value * found.scales[route.name] if scaled and value is not None else value
 
         yield _row(found, "needs", key, label, unit, need)

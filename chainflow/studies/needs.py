@@ -24,6 +24,8 @@ def needs(account: PlantAccount) -> dict[str, float | None]:
         "power_W": bought.power_total,
         "heat_W": bought.heat_total,
         "cold_W": bought.cold_total,
+        "water_kg_kWh_fuel": account.water.as_data()["top_up_kg_kWh_fuel"],
+        "carbon_efficiency": account.carbon.efficiency,
         "water_returned": account.returned["water"],
         "CO2_returned": account.returned["CO2"],
     }
