@@ -1,12 +1,13 @@
 """Sensitivities against solving again, over the shipped flowsheets and all their settings."""
 
+import contextlib
 from pathlib import Path
 
 import numpy as np
 import pytest
 
 import chainflow
-from chainflow.basis.faults import UsageFault
+from chainflow.basis.faults import NotSolved, UsageFault
 from chainflow.flowsheet.building import read_flowsheet
 from chainflow.flowsheet.movable import is_allowed, lever, levers, moved
 from chainflow.solver.solve import solve_flowsheet
@@ -24,33 +25,39 @@ USUAL = {"Pa": 1e5, "J/mol": 1e4, "J/kg": 1e6, "W": 1e3}  # sizes of settings th
 
 
 def solved_again(flowsheet, one, results, start):
-    """Slopes by solving at both sides, or at one side of the second order at an end."""
+    """Slopes by solving at both sides, or at one side of the second order; None if none solves."""
     step = STEP * (abs(one.value) or USUAL.get(one.unit, 1.0))
     if one.unit == "1" and 0.5 < one.value < 1.0:  # what a recovery leaves goes by its logarithm
         step = min(step, 1e-3 * (1.0 - one.value))
-    at = {
-        k: results(solve_flowsheet(moved(flowsheet, one, k * step)))
-        for k in (-2, -1, 1, 2)
-        if is_allowed(flowsheet, one, k * step)
-    }
-    if 1 in at and -1 in at:
+    at = {}
+
+    def solves(k):
+        if is_allowed(flowsheet, one, k * step):
+            with contextlib.suppress(NotSolved):
+                at[k] = results(solve_flowsheet(moved(flowsheet, one, k * step)))
+        return k in at
+
+    if solves(1) and solves(-1):
         return (at[1] - at[-1]) / (2 * step)
     sign = 1 if 1 in at else -1
+    if not (solves(sign) and solves(2 * sign)):
+        return None
     return sign * (4 * at[sign] - at[2 * sign] - 3 * start) / (2 * step)
 
 
-def disagreements(path):
-    """Settings whose slopes are not those of solving again, with both."""
+def disagreements(path, every=1):
+    """Settings whose slopes are not those of solving again, with both; looked at one of `every`."""
     flowsheet = read_flowsheet(path)
     solution = solve_flowsheet(flowsheet)
     found, results = sensitivities(solution, RESULTS), Evaluation(RESULTS)
     assert len(found.by) + len(found.left_out) == len(levers(flowsheet))
     assert len(found.by) > 3 * len(found.left_out)
-    for place, one in enumerate(found.by):
+    for place, one in list(enumerate(found.by))[::every]:
         again = solved_again(flowsheet, one, results, found.values)
         mine = found.slopes[:, place]
         usual = found.values / (abs(one.value) or USUAL.get(one.unit, 1.0))
-        if (np.abs(mine - again) > AGREE * np.abs(again) + NOTHING * np.abs(usual)).any():
+        near = AGREE * np.abs(again) + NOTHING * np.abs(usual) if again is not None else 0.0
+        if again is None or (np.abs(mine - again) > near).any():
             yield one.name, mine, again
 
 
@@ -61,7 +68,8 @@ def test_slopes_are_those_of_solving_again():
 @pytest.mark.slow
 @pytest.mark.parametrize("path", sorted(SHIPPED.glob("*.yaml")), ids=lambda p: p.stem)
 def test_slopes_of_every_shipped_flowsheet(path):
-    assert list(disagreements(path)) == []
+    every = 8 if path.stem == "liquid-fuel" else 1  # it takes seconds to solve
+    assert list(disagreements(path, every)) == []
 
 
 @pytest.fixture(scope="module")
