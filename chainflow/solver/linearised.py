@@ -223,11 +223,14 @@ class Linearised:
         base = variable.pack(value)
         uneven = 1.0 + 0.37 * np.arange(variable.size)
         steps = np.array([_step_of(variable, base, c) for c in range(variable.size)])
-        try:
-            probe = self._unpacked(key, base + uneven * steps, variable.pressure)
-            return bool((results(self._nudged(key, probe, names)) != start).any())
-        except (NotSolved, StateError):
-            return True
+        for sign in (1.0, -1.0):  # on a kink only one side may be felt
+            try:
+                probe = self._unpacked(key, base + sign * uneven * steps, variable.pressure)
+                if (results(self._nudged(key, probe, names)) != start).any():
+                    return True
+            except (NotSolved, StateError):
+                return True
+        return False
 
     def _nudged(self, key: str, value: Flow, names: tuple[str, ...]) -> Solution:
         finish = self.finish.again(self.program, {**self.values, key: value}, names)
