@@ -191,13 +191,12 @@ def _heat(found: Comparison) -> Iterator[Figure]:
 
 
 def _hazards(found: Comparison) -> Iterator[Figure]:
-    codes = dict.fromkeys(code for route in found.routes for code in route.hazards)
-    for code in codes:
+    for hazard in dict.fromkeys(one for route in found.routes for one in route.hazards):
 
-        def there(route: Route, code: str = code) -> Value:
-            return "yes" if code in route.hazards else "no"
+        def there(route: Route, hazard: str = hazard) -> Value:
+            return "yes" if hazard in route.hazards else "no"
 
-        yield _row(found, "hazards", code, code, "text", there)
+        yield _row(found, "hazards", hazard, hazard, "text", there)
 
 
 def _costs(found: Comparison) -> Iterator[Figure]:
