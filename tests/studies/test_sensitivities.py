@@ -51,7 +51,7 @@ def disagreements(path, every=1):
     solution = solve_flowsheet(flowsheet)
     found, results = sensitivities(solution, RESULTS), Evaluation(RESULTS)
     assert len(found.by) + len(found.left_out) == len(levers(flowsheet))
-    assert len(found.by) > 3 * len(found.left_out)
+    assert len(found.by) > 2 * len(found.left_out)  # a field has a dozen for other models
     for place, one in list(enumerate(found.by))[::every]:
         again = solved_again(flowsheet, one, results, found.values)
         mine = found.slopes[:, place]
