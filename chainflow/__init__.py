@@ -14,7 +14,7 @@ from importlib import import_module
 from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
-    from collections.abc import Mapping
+    from collections.abc import Iterable, Mapping, Sequence
     from pathlib import Path
 
     from chainflow.basis.faults import (
@@ -28,6 +28,7 @@ if TYPE_CHECKING:
     from chainflow.equipment.base import Equipment
     from chainflow.flowsheet.network import Flowsheet
     from chainflow.report.answer import Answer
+    from chainflow.studies.sensitivities import Sensitivities
     from chainflow.thermo.components import Matter
     from chainflow.thermo.streams import Stream
 
@@ -43,6 +44,7 @@ _FROM = {
     "FlowsheetFault": "chainflow.basis.faults",
     "Matter": "chainflow.thermo.components",
     "NotSolved": "chainflow.basis.faults",
+    "Sensitivities": "chainflow.studies.sensitivities",
     "Stream": "chainflow.thermo.streams",
     "UsageFault": "chainflow.basis.faults",
 }
@@ -57,10 +59,12 @@ __all__ = [
     "FlowsheetFault",
     "Matter",
     "NotSolved",
+    "Sensitivities",
     "Stream",
     "UsageFault",
     "__version__",
     "read",
+    "sensitivities",
     "solve",
 ]
 
@@ -98,6 +102,25 @@ def solve(flowsheet: Flowsheet | str | Path, set: Mapping[str, str] | None = Non
             raise UsageFault("'set' changes what is read from a file: give it to read() instead")
         return Answer(solve_flowsheet(flowsheet))
     return Answer(solve_flowsheet(read(flowsheet, set)))
+
+
+def sensitivities(
+    answer: Answer, of: str | Sequence[str], by: Iterable[str] | None = None
+) -> Sensitivities:
+    """Return how results of a solved flowsheet move with its settings and knobs, holds kept.
+
+    Parameters
+    ----------
+    answer : what `solve` returned; nothing is solved again.
+    of : address or addresses of results, ``"plant.efficiency.overall.LHV"``.
+    by : names of knobs and addresses of settings, ``["field", "press.efficiency"]``; all of them
+        if left out.
+
+    ``.table()`` makes a pandas table; ``["plant.efficiency.overall.LHV", "field"]`` reads one.
+    """
+    from chainflow.studies.sensitivities import sensitivities as found
+
+    return found(answer.solution, of, by)
 
 
 def __getattr__(name: str) -> Any:

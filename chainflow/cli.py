@@ -23,6 +23,7 @@ from chainflow.basis.faults import ChainflowError, Fault, FileFault, FlowsheetFa
 if TYPE_CHECKING:
     from chainflow.flowsheet.network import Flowsheet
     from chainflow.solver.solution import Solution
+    from chainflow.studies.why import Why
 
 BUG = 70
 INTERRUPTED = 130
@@ -128,6 +129,10 @@ def solve(
         ),
     ] = False,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print no answer, only errors.")] = False,
+    why: Annotated[
+        bool,
+        typer.Option("--why", help="Say where most is lost and which settings matter most."),
+    ] = False,
 ) -> None:
     """Close the balance of a flowsheet and print the answer.
 
@@ -139,15 +144,80 @@ def solve(
     solution = _solved(file, overrides, json)
     if not quiet:
         _say_faults(solution.remarks, file, "remark: ")
-    _write(solution, json, csv)
+    reasons = _reasons(solution) if why else None
+    _write(solution, json, csv, reasons)
     if not quiet and json != STDOUT:
         from chainflow.report.printed import print_answer
 
-        print_answer(solution)
+        print_answer(solution, reasons=reasons)
         if accounts:
             from chainflow.report.accounts_printed import print_accounts
 
             print_accounts(solution)
+
+
+@app.command()
+@reported
+def compare(
+    files: Annotated[
+        list[Path], typer.Argument(metavar="FILE ...", help="Flowsheet files (YAML).")
+    ],
+    basis: Annotated[
+        str | None,
+        typer.Option("--basis", metavar="BASIS", help="LHV, HHV or exergy; that of the files."),
+    ] = None,
+    energy: Annotated[
+        str, typer.Option("--energy", metavar="ENERGY", help="What the stores are sized for.")
+    ] = "100 MWh",
+    set_: SetOption = None,
+    json: Annotated[
+        str | None,
+        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
+    ] = None,
+    csv: Annotated[
+        Path | None, typer.Option("--csv", metavar="PATH", help="Write the table as a CSV file.")
+    ] = None,
+) -> None:
+    """Put flowsheets side by side on the same sunlight and the same basis.
+
+    A file that fails does not stop the others: its column says why, and the exit code is that of
+    the first that failed. --set changes the files that know the name.
+    """
+    from chainflow.report.compared import comparison_csv, comparison_document, print_comparison
+    from chainflow.report.document import to_json
+    from chainflow.report.writing import check_writable, write_whole
+    from chainflow.studies.compare import compare as compared
+
+    overrides = _overrides(set_)
+    for file in files:
+        _check_outputs(file, json, None)
+    if csv is not None:
+        if csv.resolve() in {file.resolve() for file in files}:
+            raise UsageFault(f"--csv {csv} is one of the flowsheets: name another file")
+        check_writable(csv)
+    found = compared(files, overrides, basis, _energy(energy))
+    if csv is not None:
+        write_whole(csv, comparison_csv(found))
+    if json is not None:
+        _write_json(to_json(comparison_document(found)), json)
+    if json != STDOUT:
+        print_comparison(found)
+    for route in found.routes:
+        if not route.solved:
+            _say(f"{route.path}: {route.why_not}")
+    if found.exit_code:
+        sys.stdout.flush()
+        raise typer.Exit(found.exit_code)
+
+
+def _energy(text: str) -> float:
+    from chainflow.basis.quantities import QuantityFault, parse
+    from chainflow.basis.units import UnitFault
+
+    try:
+        return parse(text, "J", gt=0.0)
+    except (QuantityFault, UnitFault) as problem:
+        raise UsageFault(f"--energy: {problem}") from None
 
 
 @app.command()
@@ -324,7 +394,15 @@ def _write_failure(
     _write_json(to_json(found), json)
 
 
-def _write(solution: Solution, json: str | None, csv: Path | None) -> None:
+def _reasons(solution: Solution) -> Why:
+    from chainflow.studies.why import why
+
+    return why(solution)
+
+
+def _write(
+    solution: Solution, json: str | None, csv: Path | None, reasons: Why | None = None
+) -> None:
     """Write the files that are asked for; all texts are made before the first is written."""
     from chainflow.report.writing import write_all
 
@@ -332,7 +410,7 @@ def _write(solution: Solution, json: str | None, csv: Path | None) -> None:
     if json is not None:
         from chainflow.report.document import document, to_json
 
-        text = to_json(document(solution))
+        text = to_json(document(solution, reasons))
     if csv is not None:
         from chainflow.report.csv_files import csv_texts
 

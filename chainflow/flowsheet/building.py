@@ -23,6 +23,7 @@ from chainflow.flowsheet import roles
 from chainflow.flowsheet.blocks import BLOCKS, read_blocks
 from chainflow.flowsheet.component_list import component_names
 from chainflow.flowsheet.holds import HoldReader
+from chainflow.flowsheet.knobs import knob_places
 from chainflow.flowsheet.messages import bare, complaints
 from chainflow.flowsheet.network import Flowsheet, Line
 from chainflow.flowsheet.overrides import blamed, with_settings
@@ -169,6 +170,7 @@ class _Builder:
             self.path,
             approach,
             blocks,
+            knob_places(self.root),
         )
 
     # --- the small entries -------------------------------------------------------------------

@@ -60,6 +60,46 @@ def substitute_knobs(tree: Tree, overrides: AnyMapping[str, str] | None = None) 
     return replace(tree, root=root, remarks=(*tree.remarks, *_unused(knobs, substitution.used)))
 
 
+def knob_places(root: Mapping) -> dict[str, tuple[str, ...]]:
+    """Return where each knob acts in a tree whose knobs are written out, in file order.
+
+    A place is the address of a setting (``stack.energy_use``), or the words down to another entry
+    (``holds.0.at``, counted from 0). A knob that names another one acts where that one's name
+    stands too.
+    """
+    places: dict[str, list[str]] = {name: [] for name in _knobs_of(root, [])}
+    named = {name: _named_by(node) for name, (_, node) in _knobs_of(root, []).items()}
+    for key, (_, node) in root.entries.items():
+        if key not in _UNTOUCHED:
+            for knob, words in _uses(node, () if key == "equipment" else (key,)):
+                seen: list[str] = []
+                while knob in places and knob not in seen:
+                    places[knob].append(".".join(words))
+                    seen.append(knob)
+                    knob = named[knob]
+    return {name: tuple(found) for name, found in places.items()}
+
+
+def _named_by(node: Node) -> str:
+    """Return the knob that another knob stands for, if it stands for one."""
+    match = _KNOB.fullmatch(node.value) if isinstance(node, Text) and node.value else None
+    return match[1] if match else ""
+
+
+def _uses(node: Node, words: tuple[str, ...]) -> Iterator[tuple[str, tuple[str, ...]]]:
+    if isinstance(node, Text):
+        if node.knob:
+            yield node.knob, words
+        return
+    children = (
+        ((str(place), item) for place, item in enumerate(node.items))
+        if isinstance(node, Sequence)
+        else ((key, child) for key, (_, child) in node.entries.items())
+    )
+    for key, child in children:
+        yield from _uses(child, (*words, key))
+
+
 def _knobs_of(root: Mapping, faults: list[Fault]) -> dict[str, tuple[Place, Node]]:
     """Return the entries under ``knobs``; wrong names are faults."""
     node = root.get("knobs")

@@ -72,6 +72,7 @@ class Flowsheet:
     path: str = ""
     approach: float = 10.0  # of the heat account: least difference between heats that meet [K]
     blocks: Blocks = field(default_factory=Blocks)  # how the answer is accounted for
+    knob_places: Mapping[str, tuple[str, ...]] = field(default_factory=dict)  # where each acts
 
     _at: Mapping[tuple[str, ...], tuple[Line, ...]] = field(init=False, repr=False, compare=False)
 

@@ -12,7 +12,7 @@ import json
 import math
 from collections.abc import Iterable, Mapping
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 from chainflow.accounts.exergy import exergy_destroyed
 from chainflow.accounts.hazards import CLOSING_SENTENCE, Remark, cautions, idealisations
@@ -27,12 +27,15 @@ from chainflow.solver.solution import HoldResult, Solution, SolvedStream
 from chainflow.thermo.exergy import STANDARD_ENVIRONMENT, Environment
 from chainflow.thermo.streams import Stream
 
+if TYPE_CHECKING:
+    from chainflow.studies.why import Why
+
 FORMAT = 1
 Document = dict[str, Any]
 
 
-def document(solution: Solution) -> Document:
-    """Return everything about a solution as plain data."""
+def document(solution: Solution, reasons: Why | None = None) -> Document:
+    """Return everything about a solution as plain data, with the reasons if there are any."""
     destroyed = exergy_destroyed(solution)
     found = _head(_sheet(solution.flowsheet)) | {
         "solved": True,
@@ -59,12 +62,14 @@ def document(solution: Solution) -> Document:
         "sources": sources(solution.flowsheet),
         "notice": CLOSING_SENTENCE,
     }
-    return _clean(found)
+    if reasons is not None:
+        found["why"] = reasons.as_data()
+    return clean(found)
 
 
 def faults_document(path: Path | str, faults: Iterable[Fault]) -> Document:
     """Return the document of a file that is wrong."""
-    return _clean(
+    return clean(
         _head(_unread(path))
         | {"solved": False, "problem": None, "faults": [fault_entry(fault) for fault in faults]}
     )
@@ -76,7 +81,7 @@ def problem_document(path: Path | str, problem: Exception, flowsheet: Flowsheet 
     if isinstance(problem, NotSolved):
         entry |= {"code": problem.code, "details": problem.details}
     sheet = _unread(path) if flowsheet is None else _sheet(flowsheet)
-    return _clean(_head(sheet) | {"solved": False, "problem": entry, "faults": []})
+    return clean(_head(sheet) | {"solved": False, "problem": entry, "faults": []})
 
 
 def to_json(found: Document) -> str:
@@ -197,16 +202,16 @@ def sources(flowsheet: Flowsheet) -> list[str]:
     return list(dict.fromkeys(named))
 
 
-def _clean(value: Any) -> Any:
+def clean(value: Any) -> Any:
     """Return plain data: numpy numbers as numbers, NaN and infinity as None, no negative zero."""
     if isinstance(value, Mapping):
-        return {str(key): _clean(one) for key, one in value.items()}
+        return {str(key): clean(one) for key, one in value.items()}
     if isinstance(value, list | tuple | set | frozenset):
-        return [_clean(one) for one in value]
+        return [clean(one) for one in value]
     if value is None or isinstance(value, str | bool | int):
         return value
     if hasattr(value, "tolist"):
-        return _clean(value.tolist())
+        return clean(value.tolist())
     if isinstance(value, float):
         return value + 0.0 if math.isfinite(value) else None
     return str(value)

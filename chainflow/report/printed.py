@@ -28,6 +28,8 @@ if TYPE_CHECKING:
     from rich.console import Console
     from rich.table import Table
 
+    from chainflow.studies.why import Why
+
 _MOST_LOSSES = 5
 _ROUND_OFF = 1e-9  # of the largest stream: what is bought below it is how far the loops close
 _LABEL = 18  # characters
@@ -36,13 +38,18 @@ _NARROW_COLUMNS = 6
 _TWO_LINES = 130  # characters; below, the two ends of a stream stand below each other
 
 
-def print_answer(solution: Solution, out: TextIO | None = None) -> None:
-    """Print the whole answer."""
+def print_answer(solution: Solution, out: TextIO | None = None, reasons: Why | None = None) -> None:
+    """Print the whole answer; the reasons, if there are any, stand behind the short answer."""
     screen = console(out)
     encoding = encoding_of(screen.file)
     screen.print(printable(solution.flowsheet.title or "untitled", encoding), style="bold")
     for line in _short_answer(solution):
         screen.print(line, soft_wrap=True)
+    if reasons is not None:
+        screen.print()
+        screen.print("Why", style="bold")
+        for sentence in reasons.sentences():
+            screen.print(f"- {sentence}", soft_wrap=True)
     if costs := cost_account(solution):
         print_costs(screen, costs)
     _print_tables(screen, solution)

@@ -2,8 +2,9 @@
 
 from __future__ import annotations
 
+import copy
 import heapq
-from collections.abc import Mapping
+from collections.abc import Collection, Mapping
 
 import networkx as nx
 
@@ -24,17 +25,58 @@ class Finish:
         self.program, self.flowsheet, self.values = program, program.flowsheet, values
         self.outcomes: dict[str, Outcome] = {}
         self.feeds: dict[str, Feeds] = {}
-        pieces = self._pieces()
+        self._order = flow_order(self.flowsheet)
+        self._settled = self._with_choices(self.flowsheet)
+        self.pieces = self._pieces()
         for name in self.flowsheet.equipment:
-            self._operate(name, pieces[name])
+            self._operate(name, self.pieces[name])
         self.streams = self._streams()
 
-    def _pieces(self) -> dict[str, Equipment]:
-        """Equipment with its settled choices and held settings."""
-        pieces = dict(self.flowsheet.equipment)
+    def again(self, program: Program, values: Values, names: Collection[str]) -> Finish:
+        """The same for slightly other values or settings, with only some equipment run anew.
+
+        Parameters
+        ----------
+        program, values : as before, with the same lines.
+        names : equipment whose settings or arriving flows are others.
+        """
+        other = copy.copy(self)
+        other.program, other.flowsheet, other.values = program, program.flowsheet, values
+        other.outcomes, other.feeds = dict(self.outcomes), dict(self.feeds)
+        if program is not self.program:
+            other._settled = dict(program.flowsheet.equipment)
+        other.pieces = other._pieces()
+        for name in names:
+            other._operate(name, other.pieces[name])
+        other.streams = other._streams()
+        return other
+
+    def reads(self, name: str) -> set[str]:
+        """The variables that a piece of equipment is run on."""
+        keys = {key for key, hold in self.program.settings.items() if hold.piece == name}
+        for line in self.flowsheet.into(name):
+            if not line.called:
+                keys.add(line.start)
+                continue
+            keys.add(amount_key(line))
+            if line.content == "material":
+                keys.update(self.state(line).keys)
+        for line in self.flowsheet.out_of(name):
+            if line.called:
+                keys.add(amount_key(line))
+        return keys
+
+    def _with_choices(self, flowsheet: Flowsheet) -> dict[str, Equipment]:
+        """Equipment with its settled choices."""
+        pieces = dict(flowsheet.equipment)
         for step in self.program.steps:
             if isinstance(step, EquipmentStep) and step.equipment is not None:
                 pieces[step.name] = step.equipment
+        return pieces
+
+    def _pieces(self) -> dict[str, Equipment]:
+        """Equipment with its settled choices and held settings."""
+        pieces = dict(self._settled)
         for setting, hold in self.program.settings.items():
             number = self.values[setting]
             assert isinstance(number, float)
@@ -70,9 +112,10 @@ class Finish:
         """What equipment gets at an inlet: the flow, or one mol of it where it calls."""
         if not line.called:
             return self.values[line.start]
-        return self._state(line).of(self.values) if line.content == "material" else None
+        return self.state(line).of(self.values) if line.content == "material" else None
 
-    def _state(self, line: Line) -> Source:
+    def state(self, line: Line) -> Source:
+        """Where one mol of a called material line comes from."""
         states = self.program.states
         return (
             states[(line.source, line.outlet)]
@@ -90,7 +133,7 @@ class Finish:
         amount = self._amount(line)
         if line.content != "material":
             return amount
-        one = self._state(line).of(self.values)
+        one = self.state(line).of(self.values)
         assert isinstance(one, Stream) and isinstance(amount, float)
         return one.scaled(amount)
 
@@ -113,7 +156,7 @@ class Finish:
 
     def _streams(self) -> tuple[SolvedStream, ...]:
         found = []
-        for name in flow_order(self.flowsheet):
+        for name in self._order:
             for outlet, flow in self.outcomes[name].outlets.items():
                 lines = self.flowsheet.line_from(name, outlet)
                 if not lines and not _flows(flow):

@@ -9,7 +9,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, field
 
 from chainflow.basis.faults import Fault
-from chainflow.equipment.base import Outcome
+from chainflow.equipment.base import Equipment, Outcome
 from chainflow.equipment.ports import Feeds, Flow
 from chainflow.flowsheet.network import Flowsheet
 
@@ -67,6 +67,8 @@ class Solution:
     holds: tuple[HoldResult, ...] = ()
     remarks: tuple[Fault, ...] = ()
     error_estimate: float = 0.0  # the last Newton step, relative
+    pieces: Mapping[str, Equipment] = field(default_factory=dict)  # with choices and held settings
+    values: Mapping[str, Flow] = field(default_factory=dict)  # of the solver's variables
 
     def stream(self, key: str) -> SolvedStream:
         """The stream that leaves the port `key` ("stack.hydrogen"); KeyError if there is none."""

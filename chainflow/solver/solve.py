@@ -65,7 +65,7 @@ def solve_flowsheet(flowsheet: Flowsheet) -> Solution:
     return Prepared(flowsheet).solve()
 
 
-def _with_open_holds(flowsheet: Flowsheet) -> Flowsheet:
+def with_open_holds(flowsheet: Flowsheet) -> Flowsheet:
     """The flowsheet with every held setting in the middle of its range.
 
     Structure is judged there: at an end, a share of zero seems to let nothing through.
@@ -92,7 +92,7 @@ class Prepared:
     def __init__(self, flowsheet: Flowsheet) -> None:
         self.flowsheet = flowsheet
         self.pressures = settle_pressures(flowsheet)
-        opened = _with_open_holds(flowsheet)
+        opened = with_open_holds(flowsheet)
         presence = find_presence(opened)
         self.conditional = check_inventories(opened, presence)
         with _states_explained():
@@ -120,6 +120,8 @@ class Prepared:
             self._hold_results(closed),
             (*self.flowsheet.remarks, *self.remarks),
             closed.error,
+            finish.pieces,
+            closed.values,
         )
 
     def _closed(self) -> Closed:

@@ -8,6 +8,13 @@ Range = tuple[float, float, str]
 SUN = {"sun": (100, 1100, "W/m2"), "aperture": (1000, 500000, "m2")}
 
 HYDROGEN: dict[str, Range] = {**SUN, "energy_use": (45, 60, "kWh/kg")}
+METHANE = {
+    **SUN,
+    "energy_use": (45, 60, "kWh/kg"),
+    "hot": (260, 450, "degC"),
+    "purge": (0, 10, "%"),
+    "inert": (0, 2, "%"),
+}
 
 CYCLE = {
     **SUN,
@@ -36,6 +43,17 @@ RANGES: dict[str, dict[str, Range]] = {
         "purge": (0, 10, "%"),
         "inert": (0, 2, "%"),
         "keep": (50, 300, "bar"),
+    },
+    "methane-compressed": {
+        **METHANE,
+        "keep": (50, 300, "bar"),
+        "engine": (30, 48, "% LHV"),
+    },
+    "methane-liquid": {
+        **METHANE,
+        "machine": (15, 50, "%"),
+        "boil_off": (0, 10, "%"),
+        "engine": (30, 48, "% LHV"),
     },
     "methane-cycle": {**CYCLE, "shift": (800, 1000, "degC"), "regain": (150, 700, "degC")},
     "methane-cycle-direct": CYCLE,
