@@ -294,6 +294,10 @@ class BandGapType(QuantityType):
         check_range(value, self.limits, resolve("eV"), shorten(given))
         return value
 
+    def shown(self, value: float) -> str:
+        """Return a value [J] as text for people: "1.1 eV"."""
+        return f"{format_number(resolve('eV').from_si(value))} eV"
+
     def described(self) -> str:
         """Return one line for help and schema."""
         return f"{self.means()}; {self.limits.words(resolve('eV'))}"

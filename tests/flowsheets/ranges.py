@@ -65,6 +65,16 @@ RANGES: dict[str, dict[str, Range]] = {
         "keep": (50, 500, "bar"),
         "engine": (30, 48, "% LHV"),
     },
+    "methane-direct-coupled": {
+        "sun": (200, 1100, "W/m2"),
+        "aperture": (10000, 40000, "m2"),
+        "air": (0, 40, "degC"),
+        "cells": (100, 250, "m2"),
+        "hot": (260, 450, "degC"),
+        "purge": (0, 10, "%"),
+        "inert": (0, 2, "%"),
+        "keep": (50, 300, "bar"),
+    },
     "solar-heat-syngas": {
         "beam": (400, 1000, "W/m2"),
         "sun": (200, 1100, "W/m2"),

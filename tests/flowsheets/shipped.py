@@ -21,7 +21,8 @@ NAMES = tuple(name for name in SHIPPED if name != "battery")  # those that make 
 CYCLES = ("methane-cycle", "methane-cycle-direct")
 FIRED = ("gas-turbine", "steam-cycle")  # they burn bought methane; all others live on light
 LIT = ("photoelectrode-hydrogen", "photoelectrode-methane")  # light makes hydrogen by itself
-APART = ("hydrogen-direct-coupled", "solar-heat-syngas")  # other fields, with a grid beside them
+COUPLED = ("hydrogen-direct-coupled", "methane-direct-coupled")  # fields straight on their stacks
+APART = (*COUPLED, "solar-heat-syngas")  # power that is not all for one stack
 SUNNY = tuple(name for name in NAMES if name not in (*FIRED, *APART))
 COLD_STACKS = tuple(name for name in SUNNY if name not in ("steam-methane", *LIT))  # 52 kWh/kg
 HUGE = ("liquid-fuel",)  # so many components that what repeats a solve is for the slow tests

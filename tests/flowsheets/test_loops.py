@@ -22,6 +22,7 @@ from tests.flowsheets.shipped import (
 
 ALSO_AMOUNTS = {  # knobs beside the aperture, a thousand times as large
     "hydrogen-direct-coupled": {"cells": "150000 m2"},
+    "methane-direct-coupled": {"cells": "150000 m2"},
     "solar-heat-syngas": {"spare": "20 MW"},
 }
 

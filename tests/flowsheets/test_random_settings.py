@@ -1,5 +1,7 @@
 """Random settings of the shipped flowsheets: solved with closed balances, or refused by name.
 
+Each is looked at from random surroundings, in which the exergy that enters has to be found again.
+
 Settings are drawn from the ranges that stand in the files, ends included, in steps of a
 ten-thousandth of each range: nobody types a purge of 1e-200 %.  What is said to such a purge is
 tested apart.
@@ -19,7 +21,7 @@ from chainflow.flowsheet.building import read_text
 from chainflow.report.document import document, to_json
 from chainflow.solver.solve import solve_flowsheet
 from tests.flowsheets.ranges import RANGES
-from tests.flowsheets.shipped import HUGE, NAMES, SHIPPED, text_of
+from tests.flowsheets.shipped import HUGE, SHIPPED, text_of
 
 SHORT, LONG = 10, 300
 SHORT_HUGE, LONG_HUGE = 4, 100
@@ -49,10 +51,22 @@ def as_typed(low, high, unit, step):
     return f"{low + (high - low) * step / STEPS:.6g} {unit}"
 
 
-def attempt(name, knobs):
+SURROUNDINGS = st.fixed_dictionaries(
+    {
+        "temperature": st.integers(-100, 450).map(lambda tenth: f"{tenth / 10} degC"),
+        "pressure": st.integers(600, 1050).map(lambda mbar: f"{mbar} mbar"),
+        "carbon_dioxide": st.integers(280, 800).map(lambda ppm: f"{ppm} ppm"),
+        "humidity": st.integers(5, 100).map(lambda share: f"{share} %"),
+    }
+)
+
+
+def attempt(name, knobs, there):
     """Solve once, check what must hold, and return 'solved' or the code of the refusal."""
+    block = ", ".join(f"{key}: {value}" for key, value in there.items())
+    text = f"{text_of(name)}\nenvironment: {{{block}}}\n"
     try:
-        solution = solve_flowsheet(read_text(text_of(name), knobs))
+        solution = solve_flowsheet(read_text(text, knobs))
     except NotSolved as problem:
         assert problem.code in REFUSALS, f"{problem.code}: {problem.text}"
         assert problem.text
@@ -68,6 +82,7 @@ def attempt(name, knobs):
     for stream in found["streams"].values():
         assert None not in stream.get("flow_mol_s", {}).values()
     assert found["plant"]["efficiency"]["overall"]["LHV"] > 0
+    assert loss_map(solution).closure < 1e-9  # all the exergy that enters is found again
     return "solved"
 
 
@@ -81,9 +96,9 @@ def run(name, examples):
         database=None,
         suppress_health_check=list(HealthCheck),
     )
-    @given(knobs_of(name))
-    def solve_one(knobs):
-        seen[attempt(name, knobs)] += 1
+    @given(knobs_of(name), SURROUNDINGS)
+    def solve_one(knobs, there):
+        seen[attempt(name, knobs, there)] += 1
 
     solve_one()
     assert seen.total() >= examples
@@ -91,7 +106,7 @@ def run(name, examples):
     return seen
 
 
-@pytest.mark.parametrize("name", NAMES)
+@pytest.mark.parametrize("name", SHIPPED)
 def test_a_few_random_settings(name):
     run(name, SHORT_HUGE if name in HUGE else SHORT)
 
@@ -117,56 +132,6 @@ def test_a_share_too_small_to_mean_anything():
 
 
 @pytest.mark.slow
-@pytest.mark.parametrize("name", NAMES)
+@pytest.mark.parametrize("name", SHIPPED)
 def test_many_random_settings(name):
     run(name, LONG_HUGE if name in HUGE else LONG)
-
-
-# --- the loss map ------------------------------------------------------------------------------
-
-
-def run_losses(name, examples):
-    """The exergy that enters is found again, at random settings and in random surroundings."""
-    seen = Counter()
-    surroundings = st.fixed_dictionaries(
-        {
-            "temperature": st.integers(-100, 450).map(lambda tenth: f"{tenth / 10} degC"),
-            "pressure": st.integers(600, 1050).map(lambda mbar: f"{mbar} mbar"),
-            "carbon_dioxide": st.integers(280, 800).map(lambda ppm: f"{ppm} ppm"),
-            "humidity": st.integers(5, 100).map(lambda share: f"{share} %"),
-        }
-    )
-
-    @settings(
-        max_examples=examples,
-        derandomize=True,
-        deadline=None,
-        database=None,
-        suppress_health_check=list(HealthCheck),
-    )
-    @given(knobs_of(name), surroundings)
-    def close_one(knobs, there):
-        block = ", ".join(f"{key}: {value}" for key, value in there.items())
-        text = f"{text_of(name)}\nenvironment: {{{block}}}\n"
-        try:
-            solution = solve_flowsheet(read_text(text, knobs))
-        except (NotSolved, FlowsheetFault):
-            seen["refused"] += 1
-            return
-        found = loss_map(solution)
-        assert found.closure < 1e-9
-        seen["solved"] += 1
-
-    close_one()
-    assert seen["solved"] >= 0.6 * examples, seen
-
-
-@pytest.mark.parametrize("name", SHIPPED)
-def test_losses_close_at_a_few_random_settings(name):
-    run_losses(name, 3)
-
-
-@pytest.mark.slow
-@pytest.mark.parametrize("name", SHIPPED)
-def test_losses_close_at_many_random_settings(name):
-    run_losses(name, LONG_HUGE if name in HUGE else LONG)

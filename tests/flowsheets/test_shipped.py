@@ -167,6 +167,7 @@ def test_water_back_from_the_engine_by_hand():
         ("methane-cycle", 0.099, 0.036),
         ("methane-cycle-direct", 0.104, 0.037),
         ("hydrogen-direct-coupled", 0.1085, 0.0514),
+        ("methane-direct-coupled", 0.089, 0.0997),
         ("solar-heat-syngas", 0.132, 0.132),
         ("hydrogen-fuel-cell", 0.121, 0.069),
         ("hydrogen-700-bar", 0.123, 0.123),

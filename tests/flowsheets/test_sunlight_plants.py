@@ -7,7 +7,7 @@ from chainflow.accounts.plant import plant_account
 from chainflow.basis.faults import NotSolved
 from chainflow.equipment.ports import Light
 from chainflow.flowsheet.building import read_text
-from tests.flowsheets.shipped import flow, rate, solved, solved_text, text_of
+from tests.flowsheets.shipped import COUPLED, flow, rate, solved, solved_text, text_of
 
 DIRECT, SYNGAS = "hydrogen-direct-coupled", "solar-heat-syngas"
 
@@ -19,9 +19,10 @@ def results(solution, name):
 # --- the stack straight on the field ---------------------------------------------------------
 
 
+@pytest.mark.parametrize("name", COUPLED)
 @pytest.mark.parametrize("sun", ["300 W/m2", "800 W/m2", "1100 W/m2"])
-def test_stack_and_field_share_one_current_and_one_voltage(sun):
-    solution = solved(DIRECT, sun=sun)
+def test_stack_and_field_share_one_current_and_one_voltage(name, sun):
+    solution = solved(name, sun=sun)
     field, stack = results(solution, "modules"), results(solution, "stack")
     assert stack["current_A"] / 330 == pytest.approx(field["field_current_A"], rel=1e-10)
     assert stack["voltage_V"] * 330 == pytest.approx(field["field_voltage_V"], rel=1e-10)

@@ -16,7 +16,7 @@ from pydantic import BaseModel, ConfigDict, Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from chainflow.basis.names import shorten
-from chainflow.basis.quantities import Area, measured
+from chainflow.basis.quantities import Area, BandGap, measured
 from chainflow.equipment.sun.one_diode import Diode, joule, translated
 
 if TYPE_CHECKING:
@@ -56,9 +56,7 @@ class Module(BaseModel):
     current_coefficient: Annotated[float, measured("A/K")] = Field(
         0.00525, description="growth of the light current with temperature"
     )
-    gap: Annotated[float, measured("J", gt=0)] = Field(
-        joule(1.121), description="band gap at 25 degC; 1.121 eV without it"
-    )
+    gap: BandGap = Field(joule(1.121), description="band gap at 25 degC")
     area: Area = Field(1.70, description="area of the module that the light falls on")
 
     @model_validator(mode="before")
