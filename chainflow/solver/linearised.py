@@ -28,18 +28,14 @@ from chainflow.solver.finishing import Finish
 from chainflow.solver.inventories import find_presence
 from chainflow.solver.linear import Singular
 from chainflow.solver.nodes import EquipmentStep, Source, Step, Values
+from chainflow.solver.nudging import condenses, is_bent, lever_step, step_of, still_gas
 from chainflow.solver.pressures import Pressures, inlet_pressures, settle_pressures
 from chainflow.solver.program import Program, build_program
 from chainflow.solver.solution import Solution
 from chainflow.solver.solve import with_open_holds
-from chainflow.solver.variables import ENTHALPY_SCALE, Variable
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
-_STEP = 1e-5  # relative step of differences; central, so the error is its square
-_TRACE_STEP = 3e-3  # of a trace
-_REST_STEP = 1e-3  # of what a share leaves
-_CHORDS = 3  # steps to the temperature of a nudged gas; each gains five digits
 _ENDS = (0.0, 1.0)  # values at which a way may open that was closed
 
 Results = Callable[[Solution], np.ndarray]
@@ -85,6 +81,7 @@ class Linearised:
         self._factors = self._factorised()
         self.finish = Finish(self.program, self.values)
         self._readers = self._equipment_by_variable()
+        self._bends: dict[str, tuple[str, ...]] = {}  # variables at which results bend, and readers
 
     # --- the system --------------------------------------------------------------------------
 
@@ -136,25 +133,30 @@ class Linearised:
         def moved_by(value: Flow) -> np.ndarray:
             return packed(step.run({**self.values, key: value}))
 
-        for column, slope in self._slopes_by(key, moved_by, packed(written)):
+        for column, slope in self._slopes_by(key, moved_by, packed(written), []):
             for place, w in enumerate(step.writes):
                 found[w, key][:, column] = slope[at[place] : at[place + 1]]
         return found
 
     def _slopes_by(
-        self, key: str, outcome: Callable[[Flow], np.ndarray], still: np.ndarray
+        self,
+        key: str,
+        outcome: Callable[[Flow], np.ndarray],
+        still: np.ndarray,
+        bent: list[int],
     ) -> Iterator[tuple[int, np.ndarray]]:
         """Slopes of an outcome by each number of a variable: (column, slope).
 
         Central differences; one-sided where a number cannot go lower, or where one side of a state
         is not described (a saturated vapour a little colder).  Matter that does not flow has none.
+        Numbers by which the outcome bends are noted in `bent`.
         """
         variable, value = self.variables[key], self.values[key]
         if isinstance(value, Stream) and float(value.total) == 0.0:
             return
         base = variable.pack(value)
         for column in range(variable.size):
-            step = _step_of(variable, base, column)
+            step = step_of(variable, base, column)
             lowest = variable.form == "matter" and column < variable.size - 1
             ends = [(0.0, still)]
             for by in (step,) if lowest and base[column] < step else (-step, step):
@@ -167,6 +169,8 @@ class Linearised:
                     continue
             low, high = min(ends, key=_by), max(ends, key=_by)
             if high[0] > low[0]:
+                if len(ends) == 3 and is_bent(low[1], still, high[1]):
+                    bent.append(column)
                 yield column, (high[1] - low[1]) / (high[0] - low[0])
 
     def _unpacked(self, key: str, numbers: np.ndarray, pressure: float) -> Flow:
@@ -176,7 +180,7 @@ class Linearised:
         variable = replace(variable, pressure=pressure)
         found = variable.unpack(numbers, self.matter, float(value.temperature))
         assert isinstance(found, Stream)
-        return _still_gas(value, found) if _condenses(value, found) else found
+        return still_gas(value, found) if condenses(value, found) else found
 
     def _equipment_by_variable(self) -> dict[str, tuple[str, ...]]:
         readers: dict[str, list[str]] = {}
@@ -209,8 +213,36 @@ class Linearised:
             def outcome(value: Flow, key: str = key, names: tuple[str, ...] = names) -> np.ndarray:
                 return results(self._nudged(key, value, names))
 
-            for column, slope in self._slopes_by(key, outcome, start):
+            bent: list[int] = []
+            for column, slope in self._slopes_by(key, outcome, start, bent):
                 found[:, self.places[key].start + column] = slope
+            if bent:  # it counts by the way it really goes, see `along_bends`
+                found[:, self.places[key]] = 0.0
+                self._bends[key] = names
+        return found
+
+    def along_bends(self, pushed: np.ndarray, results: Results) -> np.ndarray:
+        """What a push does to the results through variables at which they bend.
+
+        A store that takes back just what fits it neither heats nor cools: a bend for each number
+        of what returns alone, none for all of them as they go together.
+        """
+        found = np.zeros(len(results(self.solution_of(self.finish))))
+        way = self._factors.solve(pushed) if self._bends else pushed
+        for key, names in self._bends.items():
+            variable, value = self.variables[key], self.values[key]
+            base, by = variable.pack(value), way[self.places[key]]
+            steps = np.array([step_of(variable, base, c) for c in range(variable.size)])
+            most = float((np.abs(by) / steps).max())
+            if most == 0.0:
+                continue
+            ends = [
+                results(
+                    self._nudged(key, self._unpacked(key, base + side, variable.pressure), names)
+                )
+                for side in (-by / most, by / most)
+            ]
+            found += (ends[1] - ends[0]) * (0.5 * most)
         return found
 
     def _is_felt(
@@ -222,7 +254,7 @@ class Linearised:
             return False
         base = variable.pack(value)
         uneven = 1.0 + 0.37 * np.arange(variable.size)
-        steps = np.array([_step_of(variable, base, c) for c in range(variable.size)])
+        steps = np.array([step_of(variable, base, c) for c in range(variable.size)])
         for sign in (1.0, -1.0):  # on a kink only one side may be felt
             try:
                 probe = self._unpacked(key, base + sign * uneven * steps, variable.pressure)
@@ -254,19 +286,17 @@ class Linearised:
         Unmovable
             If it can be moved in no direction, or if moving it opens a way that was closed.
         """
-        low, high = self._sides(lever)
-        width = high.by - low.by
+        sides = self._sides(lever)
         pushed = np.zeros(self.size)
         for place in lever.holds:
             pushed[self.places[self.program.holds[place][1]]] = 1.0
-        for place in sorted({*low.steps, *high.steps}):
-            ends = [self._run(side, place) for side in (low, high)]
+        for place in sorted({place for side, _ in sides for place in side.steps}):
+            runs = [(self._run(side, place), weight) for side, weight in sides]
             for key in self.program.steps[place].writes:
-                variable = self.variables[key]
-                change = variable.pack(ends[1][key]) - variable.pack(ends[0][key])
-                pushed[self.places[key]] = change / width
-        seen = [results(self._sided(side)) for side in (low, high)]
-        return pushed, (seen[1] - seen[0]) / width
+                pack = self.variables[key].pack
+                pushed[self.places[key]] = sum(weight * pack(run[key]) for run, weight in runs)
+        seen = [weight * results(self._sided(side)) for side, weight in sides]
+        return pushed, np.sum(seen, axis=0)
 
     def _run(self, side: _Side, place: int) -> Values:
         return side.program.steps[place].run(side.values) if side.by else self._written[place]
@@ -274,19 +304,25 @@ class Linearised:
     def _sided(self, side: _Side) -> Solution:
         return self.solution_of(self.finish.again(side.program, side.values, side.pieces))
 
-    def _sides(self, lever: Lever) -> tuple[_Side, _Side]:
+    def _sides(self, lever: Lever) -> tuple[tuple[_Side, float], ...]:
+        """The flowsheet moved, and with which weights the ends make a slope of second order."""
         if lever.elsewhere:
             raise Unmovable(f"it also stands at {', '.join(lever.elsewhere)}")
-        step = _lever_step(lever)
+        step = lever_step(lever)
         allowed = [by for by in (-step, step) if is_allowed(self.flowsheet, lever, by)]
         if not allowed:
             raise Unmovable("it cannot be moved alone: what stands beside it must follow")
         ends = lever.value in _ENDS or len(allowed) == 1
-        sides = [self._side(lever, by, look=ends) for by in allowed]
-        if len(sides) == 1:
-            still = _Side(0.0, self.program, self.values, (), ())
-            sides.insert(0 if sides[0].by > 0.0 else 1, still)
-        return sides[0], sides[1]
+        if len(allowed) == 2:
+            low, high = (self._side(lever, by, look=ends) for by in allowed)
+            return (low, -0.5 / step), (high, 0.5 / step)
+        (by,) = allowed
+        still = _Side(0.0, self.program, self.values, (), ())
+        near = self._side(lever, by, look=ends)
+        if not is_allowed(self.flowsheet, lever, 2.0 * by):
+            return (still, -1.0 / by), (near, 1.0 / by)
+        far = self._side(lever, 2.0 * by, look=ends)
+        return (still, -1.5 / by), (near, 2.0 / by), (far, -0.5 / by)
 
     def _side(self, lever: Lever, by: float, *, look: bool) -> _Side:
         flowsheet = moved(self.flowsheet, lever, by)
@@ -365,52 +401,8 @@ class Linearised:
         return values, other
 
 
-def _condenses(before: Stream, after: Stream) -> bool:
-    """Whether a gas at its dew point lets something fall when it is nudged."""
-    liquid = float(after.water.sum() + after.liquid.sum())
-    return liquid > 0.0 and not before.water.any() and not before.liquid.any()
-
-
-def _still_gas(before: Stream, after: Stream) -> Stream:
-    """The nudged stream without what falls, at its own flows, enthalpy and pressure.
-
-    A gas that leaves a condenser stands on the kink between two branches.  Both describe how it
-    moves along its dew line; all its derivatives have to be of the same one.
-    """
-    matter, flows, pressure = after.matter, after.flows, float(after.pressure)
-    level, capacity = float(before.temperature), enthalpy_slopes(before)[1]
-    for _ in range(_CHORDS):
-        missing = float(after.enthalpy) - matter.gas_enthalpy(flows, level, pressure)
-        level += missing / capacity
-    return Stream.gaseous(matter, flows, level, pressure)
-
-
-def _step_of(variable: Variable, base: np.ndarray, column: int) -> float:
-    """A small step of one number; a trace moves by a part of itself."""
-    if variable.form == "matter":
-        total = float(base[:-1].sum())
-        if column == variable.size - 1:
-            return _STEP * total * ENTHALPY_SCALE
-        trace = _TRACE_STEP * float(base[column])
-        return min(_STEP * total, trace) if trace > 0.0 else _STEP * total
-    return _STEP * (abs(float(base[column])) or 1.0)
-
-
 def _by(end: tuple[float, np.ndarray]) -> float:
     return end[0]
-
-
-def _lever_step(lever: Lever) -> float:
-    """A small step of a setting; a share close to one moves by a part of what it leaves."""
-    step = _STEP * (abs(lever.value) or _size_of(lever.unit))
-    if lever.unit == "1" and 0.5 < lever.value < 1.0:
-        return min(step, _REST_STEP * (1.0 - lever.value))
-    return step
-
-
-def _size_of(unit: str) -> float:
-    """What counts as a usual size of a setting that stands at zero, in its SI unit."""
-    return {"Pa": 1e5, "J/mol": 1e4, "J/kg": 1e6, "W": 1e3}.get(unit, 1.0)
 
 
 def _is_of(step: Step, names: tuple[str, ...]) -> bool:

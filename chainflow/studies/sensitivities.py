@@ -119,7 +119,7 @@ def sensitivities(
             left_out[one.name] = str(problem)
             continue
         moved.append(one)
-        slopes.append(seen + weights @ pushed)
+        slopes.append(seen + weights @ pushed + linear.along_bends(pushed, results))
     matrix = np.array(slopes).T if slopes else np.zeros((len(wanted), 0))
     return Sensitivities(wanted, values, tuple(moved), matrix, left_out)
 

@@ -10,7 +10,10 @@ from chainflow.flowsheet.building import read_text
 from chainflow.solver.solve import solve_flowsheet
 from tests.flowsheets.shipped import HUGE, NAMES, numbers, solved, text_of
 
-LONG = ("methane-cycle", *HUGE)  # many lines, each one a solve
+LONG = (  # many lines, each one a solve
+    *("methane-cycle", "methane-cycle-direct", "methane-liquid", "hydrogen-liquid"),
+    *("steam-methane", "solar-heat-syngas", *HUGE),
+)
 IDLE = ("title", "basis", "components")  # the defaults of these are what the files say, or names
 
 

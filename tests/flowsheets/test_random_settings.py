@@ -23,8 +23,8 @@ from chainflow.solver.solve import solve_flowsheet
 from tests.flowsheets.ranges import RANGES
 from tests.flowsheets.shipped import HUGE, SHIPPED, text_of
 
-SHORT, LONG = 10, 300
-SHORT_HUGE, LONG_HUGE = 4, 100
+SHORT, LONG = 6, 300
+SHORT_HUGE, LONG_HUGE = 2, 100
 STEPS = 10_000
 REFUSALS = {
     "heat-short",
