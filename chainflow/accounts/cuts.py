@@ -152,7 +152,7 @@ def _solar_power(solution: Solution) -> Iterator[SolvedStream]:
 
 
 def _is_sun_heated(sheet: Flowsheet, name: str) -> bool:
-    """Whether all that arrives at a piece comes from receivers of light, be it through a network."""
+    """Whether all that arrives at a piece is from receivers of light, be it through a network."""
     for line in sheet.into(name):
         source = sheet.equipment[line.source]
         passes_on = isinstance(source, HeatNetwork | Splitter) and sheet.into(line.source)

@@ -318,5 +318,10 @@ def test_a_weather_file_that_is_not_there(run, file):
     result = run("solve", file)
     assert result.exit_code == 4
     assert result.stdout == ""
-    said = "cannot read the weather file 'hill.epw': No such file or directory"
-    assert said in " ".join(result.stderr.split())
+    said = "sun: cannot read the weather file 'hill.epw': No such file or directory"
+    assert f":{text[: text.index('weather: hill')].count(chr(10)) + 1}:3: {said}" in result.stderr
+    file.write_text(text.replace("kind: pump, ", "kind: pump, stages: 3, "))
+    result = run("solve", file)  # with everything else that is wrong
+    assert result.exit_code == 1
+    assert said in result.stderr
+    assert "there is no setting 'stages'" in result.stderr
