@@ -167,6 +167,9 @@ _NAMED: Final = (
     ("kg/J", "a mass per energy", "kg/kWh"),
     ("m3/J", "a volume per energy", "L/kWh"),
     ("s-1", "a rate", "%/d"),
+    ("m/s", "a speed", "m/s"),
+    ("ohm", "a resistance", "ohm"),
+    ("W/(m2*K)", "a heat transfer coefficient", "W/(m2*K)"),
     ("J/(mol*K)", "a molar heat capacity", "J/(mol*K)"),
 )
 
