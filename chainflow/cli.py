@@ -204,7 +204,7 @@ def compare(
         print_comparison(found)
     for route in found.routes:
         if not route.solved:
-            _say(f"{route.path}: {route.why_not}")
+            _say(route.told)
     if found.exit_code:
         sys.stdout.flush()
         raise typer.Exit(found.exit_code)
@@ -394,10 +394,15 @@ def _write_failure(
     _write_json(to_json(found), json)
 
 
-def _reasons(solution: Solution) -> Why:
+def _reasons(solution: Solution) -> Why | None:
+    """What lies behind the efficiency; None, and a word on stderr, if there is no efficiency."""
     from chainflow.studies.why import why
 
-    return why(solution)
+    try:
+        return why(solution)
+    except UsageFault as nothing:
+        _say(f"--why: {nothing}")
+        return None
 
 
 def _write(

@@ -24,9 +24,13 @@ from chainflow.accounts.worth import Worth, of_material, of_power
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.battery import Battery
 from chainflow.equipment.boundary import Product
+from chainflow.equipment.heat import HeatEngine
+from chainflow.equipment.heat_network import HeatNetwork
+from chainflow.equipment.junctions import Splitter
 from chainflow.equipment.ports import rate_of
 from chainflow.equipment.power import Grid, Switchboard
 from chainflow.equipment.sunlight import Sunlight
+from chainflow.flowsheet.network import Flowsheet
 from chainflow.flowsheet.rungs import FIRST, LAST, NamedCut
 from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.streams import Stream
@@ -139,10 +143,22 @@ def _same(first: Worth, second: Worth) -> bool:
 
 
 def _solar_power(solution: Solution) -> Iterator[SolvedStream]:
-    """Yield the power that leaves equipment which takes light."""
-    for name, piece in solution.flowsheet.equipment.items():
-        if _takes_light(piece):
+    """Yield the power that leaves equipment which takes light, or heat of sunlight alone."""
+    sheet = solution.flowsheet
+    for name, piece in sheet.equipment.items():
+        heated = sheet.into(name) and isinstance(piece, HeatEngine) and _is_sun_heated(sheet, name)
+        if _takes_light(piece) or heated:
             yield from (s for s in leaving(solution, name) if s.content == "power")
+
+
+def _is_sun_heated(sheet: Flowsheet, name: str) -> bool:
+    """Whether all that arrives at a piece is from receivers of light, be it through a network."""
+    for line in sheet.into(name):
+        source = sheet.equipment[line.source]
+        passes_on = isinstance(source, HeatNetwork | Splitter) and sheet.into(line.source)
+        if not (_takes_light(source) or (passes_on and _is_sun_heated(sheet, line.source))):
+            return False
+    return True
 
 
 def _takes_light(piece: Equipment) -> bool:

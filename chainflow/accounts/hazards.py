@@ -13,6 +13,7 @@ from typing import NamedTuple
 
 from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, NO_GAS, Mixture, gas_mixture
 from chainflow.basis.constants import ICE_POINT
+from chainflow.basis.formatting import format_quantity
 from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.densities import liquefying
 from chainflow.thermo.species import species_of
@@ -155,7 +156,9 @@ def _toxic(stream: Stream) -> Finding | None:
     over = {name: share for name, share in shares.items() if share > EXPOSURE_LIMITS[name].limit}
     if not over:
         return None
-    note = ", ".join(f"{name} {1e6 * share:.3g} ppm" for name, share in over.items())
+    note = ", ".join(
+        f"{name} {format_quantity(share, '1', digits=3)}" for name, share in over.items()
+    )
     return Finding(max(share / EXPOSURE_LIMITS[name].limit for name, share in over.items()), note)
 
 

@@ -24,7 +24,11 @@ _SCALES: Final = (
     ("mol/s", ("mol/s", "mmol/s")),
     ("J/kg", ("kWh/kg", "kJ/kg")),
     ("J/mol", ("kJ/mol",)),
-    ("A/m2", ("A/cm2", "A/m2")),
+    ("A/m2", ("A/cm2", "mA/cm2", "A/m2")),
+    ("ohm*m2", ("ohm*cm2",)),
+    ("kg/J", ("kg/kWh",)),
+    ("m3/J", ("L/kWh",)),
+    ("s-1", ("%/d",)),
     ("rad", ("deg",)),
     ("1", ("%", "ppm")),
 )

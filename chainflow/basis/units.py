@@ -164,6 +164,12 @@ _NAMED: Final = (
     ("A/m2", "a current density", "A/cm2"),
     ("mol/(m2*s*Pa)", "a permeance", "GPU"),
     ("ohm*m2", "an area resistance", "ohm*cm2"),
+    ("kg/J", "a mass per energy", "kg/kWh"),
+    ("m3/J", "a volume per energy", "L/kWh"),
+    ("s-1", "a rate", "%/d"),
+    ("m/s", "a speed", "m/s"),
+    ("ohm", "a resistance", "ohm"),
+    ("W/(m2*K)", "a heat transfer coefficient", "W/(m2*K)"),
     ("J/(mol*K)", "a molar heat capacity", "J/(mol*K)"),
 )
 

@@ -309,7 +309,7 @@ class Photoelectrode(Equipment):
             results, cautions = device_report.report(self, work, material(feeds, "water"))
         return Outcome(
             {**made.gases, **given},
-            drawn | ({"power": power} if "power" in site.inlets else {}),
+            drawn | ({"power": power} if self.bias else {}),
             duties,
             power=power,
             results=results,

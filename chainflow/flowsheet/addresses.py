@@ -184,7 +184,7 @@ def _own(name: str, result: str, piece: Equipment, address: str) -> ResultAddres
     for full in piece.gives:
         if result in (full, short_name(full)):
             return ResultAddress(name, "own", full, unit=unit_of_result(full))
-    known = [short_name(full) for full in piece.gives]
+    known = _known_results(piece)
     listed = (
         f"; it has {', '.join(known)}"
         if known
@@ -194,6 +194,14 @@ def _own(name: str, result: str, piece: Equipment, address: str) -> ResultAddres
         f"'{address}': {name} ({piece.kind}) has no result '{result}'"
         f"{suggest(result, known)}{listed}"
     )
+
+
+def _known_results(piece: Equipment) -> list[str]:
+    """Results without their unit, or with it where two would have one name."""
+    short = [short_name(full) for full in piece.gives]
+    return [
+        full if short.count(one) > 1 else one for full, one in zip(piece.gives, short, strict=True)
+    ]
 
 
 def _check_property(words: list[str], address: str, components: tuple[str, ...]) -> str:

@@ -13,7 +13,7 @@ from typing import Any
 
 from pydantic import ValidationError
 
-from chainflow.basis.faults import Fault, FlowsheetFault, Place
+from chainflow.basis.faults import Fault, FileFault, FlowsheetFault, Place
 from chainflow.basis.names import name_trouble, shorten, suggest
 from chainflow.basis.quantities import QuantityFault, parse
 from chainflow.equipment.base import Equipment
@@ -126,6 +126,7 @@ class _Builder:
         self.folder = str(Path(path).parent) if path else ""  # files that settings name are here
         self.overrides = knobs
         self.faults: list[Fault] = []
+        self.unread: list[Fault] = []  # files named in settings that cannot be read
         self.remarks: list[Fault] = list(tree.remarks)
 
     def fault(self, code: str, text: str, place: Place | None) -> None:
@@ -133,7 +134,9 @@ class _Builder:
 
     def stop_on_faults(self) -> None:
         if self.faults:
-            raise FlowsheetFault(self.faults)
+            raise FlowsheetFault([*self.faults, *self.unread])
+        if self.unread:
+            raise FileFault("; ".join(f"{self.path}:{fault}" for fault in self.unread))
 
     def flowsheet(self) -> Flowsheet:
         self._top_keys()
@@ -311,6 +314,9 @@ class _Builder:
         del settings["kind"]
         try:
             return cls.model_validate(settings, context={"folder": self.folder})
+        except FileFault as problem:
+            self.unread.append(Fault("wrong-setting", f"{name}: {problem}").located(place))
+            return None
         except ValidationError as problem:
             for complaint in complaints(problem, cls, name):
                 spot = (

@@ -14,7 +14,7 @@ from typing import Literal
 from chainflow.basis.faults import Fault, Place
 from chainflow.basis.names import shorten, suggest
 from chainflow.basis.quantities import QuantityFault, parse
-from chainflow.basis.units import resolve
+from chainflow.basis.units import resolve, usual_unit
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.boundary import Product, Supply
 from chainflow.equipment.power import Grid
@@ -220,7 +220,11 @@ class CostReader:
             reference = self._reference(name, cost.reference, size)
             return None if reference is None else (reference, cost.purchase.value)
         if resolve(cost.purchase.per).exponents != resolve(size.unit).exponents:
-            text = f"a cost per {cost.purchase.per} does not fit the size {shown}"
+            per = usual_unit(resolve(size.unit).exponents)
+            text = (
+                f"a cost per {cost.purchase.per} does not fit the size {shown}: "
+                f"write it per {per}, or as one amount with the 'reference' size it is for"
+            )
             self._fault("wrong-quantity", text, *path, "purchase")
             return None
         if cost.reference is None:

@@ -86,9 +86,13 @@ def _loss_table(losses: LossMap) -> Table:
     shown = [loss for loss in losses.losses if abs(loss.exergy) >= least]
     for loss in shown:
         row(loss.where, _CAUSES[loss.cause], loss.exergy)
-    small = [loss for loss in losses.losses if abs(loss.exergy) < least]
+    small = [loss for loss in losses.losses if 0.0 < abs(loss.exergy) < least]
     if small:
-        row(f"{len(small)} smaller ones", "", sum(loss.exergy for loss in small))
+        row(
+            f"{len(small)} smaller" + (" ones" if len(small) > 1 else " one"),
+            "",
+            sum(loss.exergy for loss in small),
+        )
     for name, exergy in losses.products.items():
         row(name, "useful", exergy)
     row("all that enters", "", losses.entering_total)

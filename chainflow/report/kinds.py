@@ -12,7 +12,7 @@ import typing
 from collections.abc import Iterator, Mapping
 from typing import TYPE_CHECKING, Annotated, Any
 
-from pydantic import BaseModel
+from pydantic import BaseModel, WithJsonSchema
 from pydantic.fields import FieldInfo
 from pydantic_core import PydanticUndefined
 
@@ -128,8 +128,11 @@ def _takes(annotation: Any) -> Iterator[str]:
     """Yield in words what a setting accepts."""
     marker = _marker(annotation)
     origin = typing.get_origin(annotation)
+    in_words = _schema_words(annotation)
     if marker is not None:
         yield marker.described()
+    elif in_words:
+        yield in_words
     elif origin is Annotated:
         yield from _takes(annotation.__origin__)
     elif origin in _UNIONS:
@@ -150,6 +153,13 @@ def _takes(annotation: Any) -> Iterator[str]:
 def _marker(annotation: Any) -> QuantityType | None:
     notes = getattr(annotation, "__metadata__", ())
     return next((note for note in notes if isinstance(note, QuantityType)), None)
+
+
+def _schema_words(annotation: Any) -> str:
+    """Return what a setting that is read in its own way says of itself in the schema."""
+    notes = getattr(annotation, "__metadata__", ())
+    schemas = (note.json_schema or {} for note in notes if isinstance(note, WithJsonSchema))
+    return next((str(schema["description"]) for schema in schemas if "description" in schema), "")
 
 
 def _plain_type(annotation: Any) -> str:

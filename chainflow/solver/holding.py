@@ -53,7 +53,7 @@ class Holding:
         missing = np.array([hold.at for hold, _, _ in self.holds]) - reached - seen
         spans = np.array([hold.high - hold.low for hold, _, _ in self.holds])
         sizes = np.array(
-            [_size(hold, now) for (hold, _, _), now in zip(self.holds, reached, strict=True)]
+            [size_of(hold, now) for (hold, _, _), now in zip(self.holds, reached, strict=True)]
         )
         unable = np.abs(effects * spans).max(axis=1) < _NO_EFFECT * sizes
         steps, bound = self._steps(
@@ -113,11 +113,11 @@ class Holding:
         for hold, setting, result in self.holds:
             if setting not in aside:
                 reached = as_number(values[result])
-                miss = (hold.at - reached) / _size(hold, reached)
+                miss = (hold.at - reached) / size_of(hold, reached)
                 shown[self.places[setting]] = miss * (hold.high - hold.low)
         return shown
 
 
-def _size(hold: Hold, reached: float) -> float:
+def size_of(hold: Hold, reached: float) -> float:
     """What counts as large for a held result."""
     return abs(hold.at) or abs(reached) or (1.0 if hold.unit == "1" else _SMALLEST_SIZE)

@@ -12,6 +12,7 @@ from chainflow.equipment.power import Switchboard
 from chainflow.flowsheet.network import Flowsheet, Hold
 from chainflow.solver.audit import audit
 from chainflow.solver.finishing import Finish
+from chainflow.solver.holding import size_of
 from chainflow.solver.idle_heat import part_idle_heat
 from chainflow.solver.inventories import Conditional, check_inventories, find_presence
 from chainflow.solver.newton import FLOOR, Closed, Newton, short_of_power
@@ -26,6 +27,7 @@ from chainflow.thermo.validity import StateError
 _SOLVED = 1e-9  # largest relative balance error of what is called solved
 _ROUND_OFF = 1e-9
 _SAME = 1e-9  # relative: results of a hold this close do not count as moved
+_MET = 1e-6  # relative: a held result further off is not met
 _NEVER_CLOSED = ("not-converged", "grows", "undetermined")
 
 
@@ -166,6 +168,29 @@ class Prepared:
                 raise self._unable(hold, setting, result, closed)
             if why == "bound":
                 raise self._out_of_reach(hold, setting, result, closed)
+        self._refuse_misses(closed)
+
+    def _refuse_misses(self, closed: Closed) -> None:
+        """Settings that stand still may have met nothing: two of them may move the same."""
+        found = [(hold, _number(closed, result)) for hold, _, result in self.program.holds]
+        missed = [
+            (hold, now) for hold, now in found if abs(hold.at - now) > _MET * size_of(hold, now)
+        ]
+        if not missed:
+            return
+        comes = " and ".join(
+            f"{hold.text} comes to {_shown(now, hold.unit)} where {_shown(hold.at, hold.unit)} "
+            "is wanted"
+            for hold, now in missed
+        )
+        if len(missed) > 1:
+            text = (
+                f"holds that cannot be met together: {comes}; what is moved does the same to "
+                "all of them: leave one out, or move another setting"
+            )
+        else:
+            text = f"hold {comes}: {missed[0][0].by} moves it no nearer; begin at another value"
+        raise NotSolved("holds-at-odds", text, {"holds": [hold.text for hold, _ in missed]})
 
     def _unable(self, hold: Hold, setting: str, result: str, closed: Closed) -> NotSolved:
         """A setting that moves nothing where it stands: here only, or anywhere in its range?"""

@@ -14,7 +14,7 @@ from pathlib import Path
 from chainflow.accounts.hazards import cautions
 from chainflow.accounts.plant import PlantAccount, plant_account
 from chainflow.accounts.worth import BASES
-from chainflow.basis.faults import ChainflowError, FlowsheetFault, NotSolved, UsageFault
+from chainflow.basis.faults import ChainflowError, FileFault, FlowsheetFault, NotSolved, UsageFault
 from chainflow.basis.names import shorten, suggest
 from chainflow.flowsheet.building import read_flowsheet
 from chainflow.flowsheet.network import Flowsheet
@@ -64,6 +64,14 @@ class Route:
             more = f" (and {len(faults) - 1} more)" if len(faults) > 1 else ""
             return first + more
         return " ".join(str(self.problem).split()) if self.problem else ""
+
+    @property
+    def told(self) -> str:
+        """`why_not` behind file, line and column, as an editor follows them."""
+        if isinstance(self.problem, FileFault):
+            return self.why_not  # it names the file
+        has_place = isinstance(self.problem, FlowsheetFault) and self.problem.faults[0].place
+        return f"{self.path}:{'' if has_place else ' '}{self.why_not}"
 
 
 @dataclass(frozen=True, slots=True)

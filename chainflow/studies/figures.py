@@ -227,7 +227,7 @@ def _costs(found: Comparison) -> Iterator[Figure]:
         return value * found.scales[route.name] if isinstance(value, float) else None
 
     yield _row(found, "cost", "installed", "installed", "money", installed)
-    if len(currencies) > 1:
+    if currencies:
         yield _row(
             found,
             "cost",

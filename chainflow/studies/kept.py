@@ -24,7 +24,7 @@ class Kept:
 
     store: str
     content: str
-    phase: str
+    phase: str | None  # None for electricity
     temperature: float | None
     pressure: float | None
     per_mass: float  # [J/kg]
@@ -97,7 +97,7 @@ def _in_battery(solution: Solution, name: str) -> Kept:
     return Kept(
         store=name,
         content="electricity",
-        phase="-",
+        phase=None,
         temperature=None,
         pressure=None,
         per_mass=results["energy_J_kg"],

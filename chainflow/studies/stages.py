@@ -26,7 +26,8 @@ NAMES = {  # by the cut that a stage ends at
     "power out": "use",
     "useful": "use",
 }
-ORDER = tuple(dict.fromkeys(NAMES.values()))
+LIT_HYDROGEN = "making hydrogen from light"
+ORDER = tuple(dict.fromkeys((NAMES["power"], LIT_HYDROGEN, *NAMES.values())))
 KEPT = ("fuel kept", "power kept")
 _DRAWN = ("own power", "bought power")
 _HEATED = "bought heat"
@@ -54,7 +55,7 @@ def stages(solution: Solution, account: PlantAccount, basis: str) -> Stages:
     left, kept = 1.0, None
     for rung, extra in zip(rungs, drawn, strict=True):
         after = left * (rung.ratio[basis] or 0.0)
-        name = NAMES.get(rung.end, f"{rung.start} to {rung.end}")
+        name = _name(rung)
         lost[name] = lost.get(name, 0.0) + left - after + extra
         to_store[name] = to_store.get(name, 0.0) + (
             extra if kept is not None else left - after + extra
@@ -64,6 +65,13 @@ def stages(solution: Solution, account: PlantAccount, basis: str) -> Stages:
             kept = left
     only_power = bool(rungs) and account.sold.power_total > 0.0 and not _sells_else(account)
     return Stages(lost, left if rungs else 0.0, to_store, kept, only_power)
+
+
+def _name(rung: Rung) -> str:
+    """The stage of a rung; hydrogen made straight from light is no electrolysis."""
+    if (rung.start, rung.end) == ("light", "hydrogen"):
+        return LIT_HYDROGEN
+    return NAMES.get(rung.end, f"{rung.start} to {rung.end}")
 
 
 def _sells_else(account: PlantAccount) -> bool:

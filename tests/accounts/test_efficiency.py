@@ -72,6 +72,32 @@ lines:
     assert names(text) == ["light", "power", "power out"]
 
 
+def test_power_of_a_sun_heated_engine_is_power_made_from_light():
+    # 600 kW x 20 % = 120 kW; 400 kW on mirrors drive an engine: both make one cut, so that no
+    # rung makes power out of nothing
+    text = """
+equipment:
+  sun:     {kind: sunlight, irradiance: 1000 W/m2, direct: 100 %, aperture: 1000 m2}
+  part:    {kind: splitter, shares: {field: 60 %, mirrors: rest}}
+  field:   {kind: pv-field, efficiency: 20 %}
+  mirrors: {kind: concentrator, temperature: 500 degC}
+  warm:    {kind: heat-network}
+  engine:  {kind: heat-engine, share_of_carnot: 60 %, sink: 40 degC}
+  town:    {kind: product}
+lines:
+  - sun -> part
+  - part.field -> field -> town
+  - part.mirrors -> mirrors -> ENGINE -> town
+"""
+    for way in ("engine", "warm.supply\n  - warm.rest -> engine"):
+        plant = solved(text.replace("ENGINE", way))
+        first, last = efficiency(plant).rungs
+        power = 120e3 - plant.outcomes["engine"].power
+        assert (first.end, last.end) == ("power", "power out")
+        assert first.ratio["LHV"] == pytest.approx(power / 1e6, rel=1e-12)
+        assert last.ratio["LHV"] == pytest.approx(1.0, rel=1e-12)
+
+
 def test_nothing_goes_in():
     found = efficiency(solved(HYDROGEN, sun="0 W/m2"))
     assert found.overall == {"LHV": None, "HHV": None, "exergy": None}

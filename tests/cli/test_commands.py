@@ -318,5 +318,28 @@ def test_a_weather_file_that_is_not_there(run, file):
     result = run("solve", file)
     assert result.exit_code == 4
     assert result.stdout == ""
-    said = "cannot read the weather file 'hill.epw': No such file or directory"
-    assert said in " ".join(result.stderr.split())
+    said = "sun: cannot read the weather file 'hill.epw': No such file or directory"
+    assert f":{text[: text.index('weather: hill')].count(chr(10)) + 1}:3: {said}" in result.stderr
+    file.write_text(text.replace("kind: pump, ", "kind: pump, stages: 3, "))
+    result = run("solve", file)  # with everything else that is wrong
+    assert result.exit_code == 1
+    assert said in result.stderr
+    assert "there is no setting 'stages'" in result.stderr
+
+
+def test_why_without_an_efficiency_keeps_the_answer(run, file, tmp_path):
+    written = tmp_path / "night.json"
+    result = run("solve", file, "--set", "sun=0 W/m2", "--why", "--json", written)
+    assert result.exit_code == 0
+    assert "--why: nothing useful comes out" in result.stderr
+    assert "Streams" in result.stdout
+    assert json.loads(written.read_text())["solved"] is True
+
+
+def test_compare_says_places_as_an_editor_follows_them(run, file, tmp_path):
+    wrong, missing = tmp_path / "wrong.yaml", tmp_path / "missing.yaml"
+    wrong.write_text("- a list\n")
+    result = run("compare", wrong, missing, file)
+    assert result.exit_code == 1
+    assert f"chainflow: {wrong}:1:1: wanted a map" in result.stderr
+    assert f"chainflow: cannot read '{missing}': No such file" in result.stderr

@@ -108,6 +108,14 @@ def test_a_bias_is_served_by_the_switchboard_and_counted_against_the_efficiency(
     assert made == pytest.approx(0.98 * found["current_A"] / (2.0 * FARADAY), rel=1e-6)
 
 
+def test_a_bias_without_a_line_is_bought():
+    text = text_of("photoelectrode-hydrogen")
+    solution = solved_text(text.replace("    faraday", "    bias: 50 mV\n    faraday", 1))
+    current = solution.outcomes["stack"].results["current_A"]
+    bought = plant_account(solution).bought.power["stack"]
+    assert bought == pytest.approx(0.05 * current, rel=1e-12)
+
+
 def test_a_setting_of_the_device_holds_a_result_of_it():
     hold = "holds:\n  - {hold: stack.solar_to_hydrogen, at: 7 %, by: stack.separation, "
     hold += "within: [20 %, 100 %]}\nlines:"

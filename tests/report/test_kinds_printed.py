@@ -54,3 +54,17 @@ def test_the_list_has_one_line_for_each_kind():
     lines = out.getvalue().splitlines()
     assert [line.split()[0] for line in lines] == list(kinds())
     assert all(len(line.split(maxsplit=1)[1]) > 10 for line in lines)
+
+
+def test_units_that_a_reader_would_write():
+    battery = printed(kinds()["battery"])
+    assert "mass (default 5.479 kg/kWh)" in battery
+    assert "volume (default 2.105 L/kWh)" in battery
+    assert "self_discharge (default 0 %/d)" in battery
+    assert "module.gap (default 1.121 eV)" in printed(kinds()["pv-field"])
+    assert "cell.series_resistance (default 1 ohm*cm2)" in printed(kinds()["photoelectrode"])
+
+
+def test_settings_that_name_a_file_say_which():
+    assert "[weather file: EPW, TMY3 (CSV) or TM2]" in printed(kinds()["sunlight"])
+    assert "or a CSV file: wavelength [nm]" in printed(kinds()["photoelectrode"])

@@ -227,3 +227,25 @@ lines:
     with pytest.raises(NotSolved, match="out of reach") as problem:
         solve_flowsheet(read_text(text))
     assert problem.value.code == "hold-out-of-reach"
+
+
+def test_holds_that_cannot_be_met_together_are_not_called_solved() -> None:
+    """The mass of a battery is its capacity times 5.48 kg/kWh: 1 MWh never weighs 10 t."""
+    text = """
+equipment:
+  sun:     {kind: sunlight, irradiance: 800 W/m2, aperture: 1000 m2}
+  field:   {kind: pv-field, efficiency: 20 %}
+  battery: {kind: battery, efficiency: 90 %, duration: 4 h}
+  town:    {kind: product}
+lines:
+  - sun -> field -> battery -> town
+holds:
+  - {hold: battery.capacity, at: 1 MWh, by: battery.duration, within: [1 h, 20 h]}
+  - {hold: battery.MASS, by: sun.aperture, within: [1 m2, 20000 m2]}
+"""
+    with pytest.raises(NotSolved, match="cannot be met together") as problem:
+        solve_flowsheet(read_text(text.replace("MASS", "mass, at: 10 t")))
+    assert problem.value.code == "holds-at-odds"
+    assert "where 10 t is wanted" in str(problem.value)
+    solution = solve_flowsheet(read_text(text.replace("MASS", "discharge.rate, at: 100 kW")))
+    assert [h.reached for h in solution.holds] == pytest.approx([3.6e9, 1e5], rel=1e-9)
