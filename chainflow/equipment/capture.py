@@ -20,6 +20,7 @@ from chainflow.basis.quantities import Flow as FlowSetting
 from chainflow.basis.quantities import Fraction, OpenFraction, Pressure, Temperature, measured
 from chainflow.equipment.base import (
     HEAT_PORTS,
+    Array,
     Caution,
     Duty,
     Equipment,
@@ -31,10 +32,11 @@ from chainflow.equipment.base import (
     material,
 )
 from chainflow.equipment.capture_figures import SOLVENTS, SORBENTS, CaptureFigures, Solvent, Sorbent
+from chainflow.equipment.cooling_slopes import carried_at_fixed_temperatures
 from chainflow.equipment.parting import free_separation, minimum_work, worth_of
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
-from chainflow.thermo.streams import Stream
+from chainflow.thermo.streams import Stream, enthalpy_slopes
 from chainflow.thermo.water import saturation_pressure
 
 SpecificUse = Annotated[float, measured("J/kg", ge=0)]
@@ -213,6 +215,51 @@ class Absorber(_Capture):
             self._set.heat(content) if self.heat_use is None else self.heat_use
         )
         return replace(outcome, cautions=self._cautions(feed))
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        feed, matter = material(feeds, "feed"), site.matter
+        co2, clean = outcome.outlets["co2"], outcome.outlets["clean"]
+        assert isinstance(co2, Stream) and isinstance(clean, Stream)
+        if float(feed.total) == 0.0:
+            return {}
+        size, place = len(matter.components), matter.index["CO2"]
+        kept = np.zeros((size, size + 1))
+        kept[place, place] = self.share
+        if matter.water is not None:
+            wet = self._moisture() * self.share  # water that leaves with the CO2, as far as it goes
+            enough = wet * feed.flows[place] < feed.flows[matter.water]
+            kept[matter.water, place if enough else matter.water] = wet if enough else 1.0
+        left = np.eye(size, size + 1) - kept
+        by_co2, _ = enthalpy_slopes(co2)
+        by_clean, _ = enthalpy_slopes(clean)
+        blocks = {
+            "co2": np.vstack([kept, by_co2 @ kept]),
+            "clean": np.vstack([left, by_clean @ left]),
+        }
+        change = blocks["co2"][-1] + blocks["clean"][-1]
+        change[-1] -= 1.0
+        carried = self._energy_slopes(feed, change, site, outcome)
+        return {} if carried is None else {"feed": blocks | carried}
+
+    def _energy_slopes(
+        self, feed: Stream, change: Array, site: Site, outcome: Outcome
+    ) -> dict[str, Array] | None:
+        """Slopes of heat and power at the ports; None where its own heat meets a need."""
+        size, place = len(feed.flows), site.matter.index["CO2"]
+        content = float(feed.fraction("CO2"))
+        by_content = np.append((np.arange(size) == place) - content, 0.0) / float(feed.total)
+        mass = np.zeros(size + 1)
+        mass[place] = self.share * _co2_mass()
+        heat_use, power_use, _ = self._needs(1.0, content)
+        heat = heat_use * mass
+        if self.heat_use is None:
+            captured = float(mass[:-1] @ feed.flows)
+            heat = heat + self._set.heat_slope(content) * captured * by_content
+        power = power_use * mass
+        rates = {"regeneration": heat, "waste heat": change - heat - power}
+        return carried_at_fixed_temperatures(rates, power, site, outcome)
 
     def _moisture(self) -> float:
         """Water per mol of CO2 at saturation [-]."""

@@ -45,6 +45,12 @@ class CaptureFigures:
         share = min(max((content - low) / (high - low), 0.0), 1.0)
         return self.heats[0] + share * (self.heats[1] - self.heats[0])
 
+    def heat_slope(self, content: float) -> float:
+        """Return how the heat [J/kg] moves with the CO2 content; zero where it is constant."""
+        if len(self.heats) == 1 or not self.contents[0] <= content < self.contents[1]:
+            return 0.0
+        return (self.heats[1] - self.heats[0]) / (self.contents[1] - self.contents[0])
+
 
 def _fixed(heat: float, power: float, temperature: float) -> CaptureFigures:
     return CaptureFigures((0.1,), (heat,), power, temperature)

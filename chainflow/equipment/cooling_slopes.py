@@ -61,6 +61,33 @@ def add_heat_slopes(
     return {"inlet": blocks}
 
 
+def carried_at_fixed_temperatures(
+    rates: dict[str, Array], power: Array, site: Site, outcome: Outcome
+) -> dict[str, Array] | None:
+    """Slopes of what the linked `heat` and `power` ports carry for duties at fixed temperatures.
+
+    `rates` holds the slopes of each duty's heat by its purpose, `power` those of power that is
+    drawn whatever the heat needs.  None where a duty was parted or two share the `heat` inlet.
+    """
+    purposes = [duty.purpose for duty in outcome.duties]
+    called = [d for d in outcome.duties if d.met_by == "heat" and d.heat > 0.0]
+    given = [d for d in outcome.duties if d.met_by == "heat" and d.heat < 0.0]
+    if len(set(purposes)) < len(purposes) or max(len(called), len(given)) > 1:
+        return None
+    drawn = power + sum(rates[d.purpose] for d in outcome.duties if d.met_by == "power")
+    carried = {"drawn:power": drawn[None, :]}
+    none = np.zeros((4, len(power)))
+    if "heat" in site.inlets:
+        carried["drawn:heat"] = none.copy()
+        for duty in called:
+            carried["drawn:heat"][0] = rates[duty.purpose]
+    if "heat" in site.outlets:
+        carried["heat"] = none.copy()
+        for duty in given:
+            carried["heat"][0] = -rates[duty.purpose]
+    return carried
+
+
 class _End(NamedTuple):
     """One end of a part of the heat: its state, and its slopes by the inlet."""
 

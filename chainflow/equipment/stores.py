@@ -42,6 +42,8 @@ from chainflow.equipment.shares import Shares, fractions, resolved
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream, enthalpy_slopes
 
+_ROUND_OFF = 1e-14  # of what is asked
+
 
 @dataclass(frozen=True, slots=True)
 class Turnover:
@@ -188,7 +190,7 @@ class Store(Equipment):
         drawn = float(sum(asked.values()))
         if self.pure:
             return self._pure_turnover(returned, fresh, drawn, site)
-        balance = drawn - float(returned.sum())
+        balance = _less(drawn, float(returned.sum()))
         made_up, surplus = max(balance, 0.0), max(-balance, 0.0)
         mixed = returned + made_up * fresh
         total = float(mixed.sum())
@@ -198,7 +200,7 @@ class Store(Equipment):
     def _pure_turnover(self, returned: Array, fresh: Array, drawn: float, site: Site) -> Turnover:
         contents = fractions(self.contents, site.matter)
         kept = _amount_of(contents, returned)
-        balance = drawn - kept
+        balance = _less(drawn, kept)
         per_mol = _amount_of(contents, fresh)
         made_up = max(balance, 0.0) / per_mol if per_mol > 0.0 else 0.0
         refused = returned - kept * contents + made_up * (fresh - per_mol * contents)
@@ -386,6 +388,12 @@ class _StoreSlopes:
         if "make_up" in self.feeds:
             column["drawn:make_up"] = made_up[None, :]
         return column
+
+
+def _less(asked: float, returned: float) -> float:
+    """Return the difference of two amounts; nothing where it is round-off of sums of flows."""
+    difference = asked - returned
+    return difference if abs(difference) > _ROUND_OFF * asked else 0.0
 
 
 def _amount_of(contents: Array, flows: Array) -> float:

@@ -1,7 +1,9 @@
 """How far a Newton step may go: no negative flow, no nonsense temperature.
 
 A flow that would go below zero is set to 0.05 of its old value and takes its enthalpy along; then
-the temperature moves at most 400 K and stays inside the species data.
+the temperature moves at most 400 K and stays inside the species data.  No flow grows in one step
+far beyond all that flows in the plant: where an inventory has almost no way out until it condenses
+the slopes of the dry side ask for that.
 """
 
 from __future__ import annotations
@@ -16,18 +18,26 @@ from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
 _KEPT = 0.05
-_ROUND_OFF = 1e-6  # of a flow's old value
+_ROUND_OFF = 1e-9  # of a flow's old value
 _LARGEST_CHANGE = 400.0  # [K]
 _SETTING_STEP = 0.3  # of its range
 
 
 def damped(
-    variable: Variable, old: Flow, change: np.ndarray, matter: Matter, hold: Hold | None
+    variable: Variable,
+    old: Flow,
+    change: np.ndarray,
+    matter: Matter,
+    hold: Hold | None,
+    most: float,
 ) -> Flow:
-    """The value after a step, held back where it would leave what is possible."""
+    """The value after a step, held back where it would leave what is possible.
+
+    `most` [mol/s] is what a flow may grow to.
+    """
     if variable.form == "matter":
         assert isinstance(old, Stream)
-        return _damped_stream(variable, old, change, matter)
+        return _damped_stream(variable, old, change, matter, most)
     numbers = variable.pack(old)
     wanted = numbers + change
     if hold is not None:
@@ -36,19 +46,24 @@ def damped(
         return float(min(max(numbers[0] + step, hold.low), hold.high))
     if wanted[0] < 0.0:
         wanted[0] = _KEPT * max(numbers[0], 0.0)
+    elif variable.content == "material":  # an amount that is asked
+        wanted[0] = min(wanted[0], max(numbers[0], most))
     return variable.unpack(wanted, matter)
 
 
-def _damped_stream(variable: Variable, old: Stream, change: np.ndarray, matter: Matter) -> Stream:
+def _damped_stream(
+    variable: Variable, old: Stream, change: np.ndarray, matter: Matter, most: float
+) -> Stream:
     assert variable.places is not None
     flows_before = old.flows[variable.places]
     wanted = flows_before + change[:-1]
     wanted[np.abs(wanted) <= _ROUND_OFF * flows_before] = 0.0  # a flow that goes to nothing
-    below = wanted < 0.0
+    below, beyond = wanted < 0.0, wanted > np.maximum(flows_before, most)
     flows_after = np.where(below, _KEPT * flows_before, wanted)
+    flows_after[beyond] = np.maximum(flows_before, most)[beyond]
     enthalpy = float(old.enthalpy) + float(change[-1])
     level = float(old.temperature)
-    if below.any():
+    if below.any() or beyond.any():
         added = np.zeros(len(matter.components))
         added[variable.places] = flows_after - wanted
         enthalpy += float(matter.ideal_enthalpies(level) @ added)

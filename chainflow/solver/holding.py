@@ -25,6 +25,7 @@ class Holding:
         self, holds: Sequence[tuple[Hold, str, str]], places: Mapping[str, slice], size: int
     ) -> None:
         self.holds, self.places, self.size = list(holds), places, size
+        self._largest: dict[str, float] = {}  # of each result that is held at zero, so far
 
     @property
     def results(self) -> list[str]:
@@ -52,9 +53,7 @@ class Holding:
         reached = [as_number(values[result]) for result in self.results]
         missing = np.array([hold.at for hold, _, _ in self.holds]) - reached - seen
         spans = np.array([hold.high - hold.low for hold, _, _ in self.holds])
-        sizes = np.array(
-            [size_of(hold, now) for (hold, _, _), now in zip(self.holds, reached, strict=True)]
-        )
+        sizes = np.array([self._size(hold, result, values) for hold, _, result in self.holds])
         unable = np.abs(effects * spans).max(axis=1) < _NO_EFFECT * sizes
         steps, bound = self._steps(
             effects * spans / sizes[:, None], missing / sizes, spans, np.flatnonzero(~unable), torn
@@ -112,12 +111,21 @@ class Holding:
         shown = residual.copy()
         for hold, setting, result in self.holds:
             if setting not in aside:
-                reached = as_number(values[result])
-                miss = (hold.at - reached) / size_of(hold, reached)
+                miss = self._miss(hold, result, values)
                 shown[self.places[setting]] = miss * (hold.high - hold.low)
         return shown
 
+    def misses(self, values: Mapping[str, Flow]) -> dict[str, float]:
+        """How far each held result is from what is wanted, relative to its size."""
+        return {result: self._miss(hold, result, values) for hold, _, result in self.holds}
 
-def size_of(hold: Hold, reached: float) -> float:
-    """What counts as large for a held result."""
-    return abs(hold.at) or abs(reached) or (1.0 if hold.unit == "1" else _SMALLEST_SIZE)
+    def _miss(self, hold: Hold, result: str, values: Mapping[str, Flow]) -> float:
+        return (hold.at - as_number(values[result])) / self._size(hold, result, values)
+
+    def _size(self, hold: Hold, result: str, values: Mapping[str, Flow]) -> float:
+        """What counts as large for a held result: of one held at zero, the most it has been."""
+        if hold.at != 0.0:
+            return abs(hold.at)
+        reached = abs(as_number(values[result]))
+        largest = self._largest[result] = max(self._largest.get(result, 0.0), reached)
+        return largest or (1.0 if hold.unit == "1" else _SMALLEST_SIZE)

@@ -22,7 +22,10 @@ class Singular(ArithmeticError):
 
 
 class Linear:
-    """(I - dy/dx) d = r for the torn variables, with what follows for other variables."""
+    """(I - dy/dx) d = r for the torn variables, with what follows for other variables.
+
+    With a `leak` that share of each torn variable gets lost on its way.
+    """
 
     def __init__(
         self,
@@ -31,11 +34,12 @@ class Linear:
         tears: Sequence[str],
         watched: Sequence[str],
         variables: Mapping[str, Variable],
+        leak: float = 0.0,
     ) -> None:
         self.tears, self.watched, self.variables = tears, watched, variables
         self.places = _places(tears, variables)
         self.size = sum(variables[key].size for key in tears)
-        self._many = self.size > _DENSE_UP_TO
+        self._many, self._leak = self.size > _DENSE_UP_TO, leak
         if self._many:
             self._assemble(steps, blocks)
         else:
@@ -60,7 +64,7 @@ class Linear:
             unit[:, self.places[key]] = np.eye(self.variables[key].size)
             response[key] = unit
         torn = set(self.tears)
-        matrix = np.eye(self.size)
+        matrix = (1.0 + self._leak) * np.eye(self.size)
         for step in steps:
             for written in step.writes:
                 row: np.ndarray | None = None
@@ -91,7 +95,9 @@ class Linear:
         inside = list(dict.fromkeys([*self.tears, *(w for step in steps for w in step.writes)]))
         places = _places(inside, self.variables)
         total = sum(self.variables[key].size for key in inside)
-        rows, columns, data = [np.arange(total)], [np.arange(total)], [np.ones(total)]
+        diagonal = np.ones(total)
+        diagonal[: self.size] += self._leak  # the torn variables come first
+        rows, columns, data = [np.arange(total)], [np.arange(total)], [diagonal]
         for (written, read), block in blocks.items():
             if written in places and read in places:
                 row, column = np.arange(total)[places[written]], np.arange(total)[places[read]]

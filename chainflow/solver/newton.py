@@ -16,6 +16,7 @@ from chainflow.equipment.ports import Flow, Light, as_number, rate_of
 from chainflow.solver.damping import damped
 from chainflow.solver.holding import Holding
 from chainflow.solver.linear import Linear, Singular
+from chainflow.solver.mixing import anderson
 from chainflow.solver.nodes import Blocks, EquipmentStep, Step, Values, outside_the_data
 from chainflow.solver.order import Order
 from chainflow.solver.program import Program
@@ -36,6 +37,8 @@ _WARM_PASSES = 10
 _SHORT_PASSES = 5
 _MOST_HALVINGS = 4
 _GROWN = 1e8
+_LEAK = 1e-12  # share of every torn variable that gets lost where the equations are singular
+_GROWTH = 1e3  # of the largest flow of a pass: to what a flow may grow in one step
 
 
 @dataclass
@@ -47,6 +50,8 @@ class Closed:
     error: float = 0.0
     # holds set aside: setting -> "bound" or "unable"
     aside: dict[str, str] = field(default_factory=dict)
+    # relative misses of held results
+    misses: dict[str, float] = field(default_factory=dict)
 
 
 @dataclass
@@ -57,6 +62,7 @@ class _State:
     values: Values
     back: Values  # the torn variables as the pass computed them
     residual: np.ndarray
+    plant: dict[str, float]  # the largest flow [mol/s] and the largest power [W] of the pass
 
 
 class Newton:
@@ -69,6 +75,7 @@ class Newton:
         self.variables, self.matter = program.variables, program.flowsheet.matter
         self.fixed = fixed or {}  # settings kept at a value instead of being solved
         self.passes = 0
+        self.most = np.inf  # [mol/s], what a flow may grow to in the next step
         self.constants: Values = {}
         self.at_first: dict[str, float] | None = None  # plant sizes when Newton begins
         self.places: dict[str, slice] = {}
@@ -124,7 +131,9 @@ class Newton:
         for key in torn:
             if key in back:
                 residual[self.places[key]] = self._pack(key, back[key]) - self._pack(key, torn[key])
-        return _State(torn, values, back, residual)
+        plant = self._plant_sizes(values)
+        self.most = _GROWTH * max(plant["material"], plant["power"] / ENTHALPY_SCALE) or np.inf
+        return _State(torn, values, back, residual, plant)
 
     def _pack(self, key: str, value: Flow) -> np.ndarray:
         return self.variables[key].pack(value)
@@ -187,12 +196,17 @@ class Newton:
     def _iterate(self, torn: Values) -> Closed:
         best, bad, before = np.inf, 0, np.inf
         short = 0
-        settled = mixed = False
+        settled = mixed = leaked = False
         come_from: tuple[Values, np.ndarray] | None = None
         while self.passes < _MOST_PASSES:
             state, blocks = self._evaluate_near(torn, come_from)
             torn, scales = state.torn, self.scales(state)
             step = self._step(state, blocks)
+            if step is None and not leaked:  # what has no way out here may condense further on
+                step, leaked, come_from = self._step(state, blocks, _LEAK), True, None
+                if step is not None:
+                    torn = self._moved(torn, step[0])
+                    continue
             if step is None and not mixed:  # perhaps only singular here
                 torn, mixed, come_from = self._mix(torn), True, None
                 continue
@@ -240,7 +254,8 @@ class Newton:
         self, state: _State, change: np.ndarray, error: float, aside: dict[str, str]
     ) -> Closed:
         last = self.evaluate(self._moved(state.torn, change))
-        return Closed({**last.values, **last.torn}, error=error, aside=aside)
+        misses = self.holding.misses(last.values)
+        return Closed({**last.values, **last.torn}, error=error, aside=aside, misses=misses)
 
     def _moved(self, torn: Values, change: np.ndarray) -> Values:
         settings = self.program.settings
@@ -248,12 +263,19 @@ class Newton:
             key: value
             if key in self.fixed
             else damped(
-                self.variables[key], value, change[self.places[key]], self.matter, settings.get(key)
+                self.variables[key],
+                value,
+                change[self.places[key]],
+                self.matter,
+                settings.get(key),
+                self.most,
             )
             for key, value in torn.items()
         }
 
-    def _step(self, state: _State, blocks: Blocks) -> tuple[np.ndarray, dict[str, str]] | None:
+    def _step(
+        self, state: _State, blocks: Blocks, leak: float = 0.0
+    ) -> tuple[np.ndarray, dict[str, str]] | None:
         """The Newton change of all torn numbers, and the holds that are set aside this time.
 
         None where the equations of the loop are singular.
@@ -262,8 +284,9 @@ class Newton:
         for key in self.program.settings:
             right[self.places[key]] = 0.0
         try:
+            watched = self.holding.results
             linear = Linear(
-                self.order.loop, blocks, self.order.tears, self.holding.results, self.variables
+                self.order.loop, blocks, self.order.tears, watched, self.variables, leak
             )
             change, seen = linear.solve(right)
             step = self.holding.step(linear, state.torn, state.values, change, seen)
@@ -283,7 +306,7 @@ class Newton:
 
     def scales(self, state: _State) -> np.ndarray:
         """What counts as large, for every torn number."""
-        plant = self._plant_sizes(state.values)
+        plant = state.plant
         scales = np.ones(self.size)
         for key in self.order.tears:
             scales[self.places[key]] = self._scale(self.variables[key], state, plant)
@@ -383,7 +406,7 @@ class Newton:
             points.append(np.concatenate([self._pack(key, torn[key]) for key in self.order.tears]))
             images.append(points[-1] + state.residual)
             points, images = points[-_DEPTH - 1 :], images[-_DEPTH - 1 :]
-            torn = self._moved(torn, _anderson(points, images, scales) - points[-1])
+            torn = self._moved(torn, anderson(points, images, scales) - points[-1])
         return torn
 
     def _not_converged(self, state: _State, scales: np.ndarray) -> NotSolved:
@@ -417,16 +440,3 @@ def _largest(change: np.ndarray, scales: np.ndarray) -> float:
         return float("inf")
     moving = change != 0.0
     return float((np.abs(change[moving]) / np.maximum(scales[moving], 1e-300)).max(initial=0.0))
-
-
-def _anderson(points: list[np.ndarray], images: list[np.ndarray], scales: np.ndarray) -> np.ndarray:
-    """Next point from the last ones: least squares over their residuals."""
-    residuals = [(y - x) / np.maximum(scales, 1e-300) for x, y in zip(points, images, strict=True)]
-    if len(points) == 1:
-        return images[-1]
-    differences = np.array([residuals[-1] - r for r in residuals[:-1]]).T
-    weights, *_ = np.linalg.lstsq(differences, residuals[-1], rcond=1e-12)
-    return images[-1] - sum(
-        (w * (images[-1] - y) for w, y in zip(weights, images[:-1], strict=True)),
-        np.zeros_like(images[-1]),
-    )

@@ -6,7 +6,7 @@ Built once per topology from the lines, the settled pressures and the species th
 from __future__ import annotations
 
 from collections.abc import Callable, Iterable
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 
@@ -262,6 +262,14 @@ class _Builder:
             assert isinstance(step, ThroughStateStep)
             step.main_inlet, step.main_outlet = feeding.inlet, main.name
             step.state, step.results = state.key, {}
+            assert step.site is not None
+            step.site = replace(  # what heat and power the way takes is the amounts' affair
+                step.site,
+                inlets=frozenset({feeding.inlet}),
+                outlets=frozenset({main.name}),
+                electric=frozenset(),
+                detail=False,
+            )
             self._close(step, [state.key])
         amounts = self._common(name, piece, ThroughAmountStep)
         assert isinstance(amounts, ThroughAmountStep)

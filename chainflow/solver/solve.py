@@ -12,7 +12,6 @@ from chainflow.equipment.power import Switchboard
 from chainflow.flowsheet.network import Flowsheet, Hold
 from chainflow.solver.audit import audit
 from chainflow.solver.finishing import Finish
-from chainflow.solver.holding import size_of
 from chainflow.solver.idle_heat import part_idle_heat
 from chainflow.solver.inventories import Conditional, check_inventories, find_presence
 from chainflow.solver.newton import FLOOR, Closed, Newton, short_of_power
@@ -172,9 +171,10 @@ class Prepared:
 
     def _refuse_misses(self, closed: Closed) -> None:
         """Settings that stand still may have met nothing: two of them may move the same."""
-        found = [(hold, _number(closed, result)) for hold, _, result in self.program.holds]
         missed = [
-            (hold, now) for hold, now in found if abs(hold.at - now) > _MET * size_of(hold, now)
+            (hold, _number(closed, result))
+            for hold, _, result in self.program.holds
+            if abs(closed.misses.get(result, 0.0)) > _MET
         ]
         if not missed:
             return

@@ -22,6 +22,14 @@ def _capture(add):
         inlets=("power", "heat"),
     )
     add(
+        "between two pilots, heat linked both ways",
+        "absorber",
+        {"figures": "amp-hmda-pilot"},
+        {"feed": stream({"CO2": 0.7, "N2": 8.0, "O2": 0.4, "H2O": 0.6}, 40.0, 1.05)},
+        inlets=("power", "heat"),
+        outlets=("co2", "clean", "heat"),
+    )
+    add(
         "electric heat, own figures",
         "absorber",
         {"heat_use": "3 GJ/t", "power_use": "80 kWh/t", "share": "95 %", "pressure": "1.5 bar"},

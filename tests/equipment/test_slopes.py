@@ -187,4 +187,5 @@ def test_slopes_are_given_where_they_pay():
         "pressure-swing",
         "water-treatment",
         "heat-exchanger",
+        "absorber",
     }

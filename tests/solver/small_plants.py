@@ -112,3 +112,33 @@ def chain_of_loops(count: int, *, joined: bool = False) -> str:
         lines.append(f"  - {before} -> end")
     head = ["title: Loops (invented)", "components: [H2, CO2, H2O]"]
     return "\n".join([*head, "equipment:", *pieces, "lines:", *lines])
+
+
+def wet_gas_loop(*, purge: str, water: str, kept: str) -> str:
+    """Hydrogen round a membrane; its water hardly gets out before it condenses."""
+    return f"""
+title: Wet gas round a membrane (invented)
+components: [H2, H2O]
+equipment:
+  made:
+    kind: supply
+    composition: {{H2O: {water}, H2: rest}}
+    temperature: 40 degC
+    pressure: 5 bar
+    flow: 10 mol/s
+  meet:   {{kind: mixer}}
+  sieve:  {{kind: separator, recovery: {{H2: {kept}}}}}
+  knock:  {{kind: condenser, temperature: 30 degC, pressure_drop: 0.1 bar}}
+  back:   {{kind: splitter, shares: {{onward: rest, purge: {purge}}}}}
+  blower: {{kind: compressor, pressure: 5 bar, stages: 1}}
+  used:   {{kind: product}}
+  drain:  {{kind: vent}}
+  flare:  {{kind: vent}}
+lines:
+  - made -> meet -> sieve
+  - sieve.kept -> used
+  - sieve.passed -> knock -> back
+  - knock.liquid -> drain
+  - back.onward -> blower -> meet
+  - back.purge -> flare
+"""

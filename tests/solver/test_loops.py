@@ -12,7 +12,12 @@ from chainflow.solver.lookup import value_at
 from chainflow.solver.solution import Solution
 from chainflow.solver.solve import inspect, solve_flowsheet
 from chainflow.thermo.streams import Stream
-from tests.solver.small_plants import chain_of_loops, hydrogen_plant, methane_loop
+from tests.solver.small_plants import (
+    chain_of_loops,
+    hydrogen_plant,
+    methane_loop,
+    wet_gas_loop,
+)
 
 
 def solved(text: str, **settings: str) -> Solution:
@@ -199,3 +204,23 @@ def test_surplus_with_nowhere_to_go_is_not_solved() -> None:
     with pytest.raises(NotSolved, match="nowhere to go") as problem:
         solved(text, stack__hydrogen="1 kg/h")
     assert problem.value.code == "surplus-power"
+
+
+@pytest.mark.parametrize("purge", ["0 %", "0.0000000001 %", "0.000001 %", "0.1 %"])
+@pytest.mark.parametrize("water", ["0.0001 %", "0.1 %"])
+@pytest.mark.parametrize("kept", ["50 %", "99 %"])
+def test_water_that_leaves_only_by_condensing_finds_its_level(
+    purge: str, water: str, kept: str
+) -> None:
+    """The slopes of the dry loop ask for up to 1e10 mol/s of water, or have no answer at all.
+
+    Saturation at 30 degC: 4.2470 kPa (IAPWS-95 tables, from memory), at 4.9 bar.
+    """
+    solution = solved(wet_gas_loop(purge=purge, water=water, kept=kept))
+    hydrogen, there = (value_at(solution, f"knock.gas.flow.{name}") for name in ("H2", "H2O"))
+    if value_at(solution, "knock.liquid.flow") > 0.0:
+        assert there / hydrogen == pytest.approx(4.2470 / (490.0 - 4.2470), rel=1e-3)
+    else:  # the purge takes all of it
+        assert value_at(solution, "back.purge.flow.H2O") == pytest.approx(1e-5, rel=1e-9)
+        assert (purge, water, kept) == ("0.1 %", "0.0001 %", "50 %")
+    assert solution.passes <= 9

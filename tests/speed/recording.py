@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import sys
 import time
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
@@ -81,4 +82,14 @@ def seconds(work: Callable[[], Any]) -> float:
     return time.process_time() - start
 
 
-__all__ = ["recorded", "replay", "seconds"]
+def forget() -> None:
+    """Drop the states and equilibria that are kept from one call to the next, no fixed tables."""
+    for name, module in list(sys.modules.items()):
+        if not name.startswith("chainflow."):
+            continue
+        for found in list(vars(module).values()):
+            if hasattr(found, "cache_info") and found.cache_info().maxsize is not None:
+                found.cache_clear()
+
+
+__all__ = ["forget", "recorded", "replay", "seconds"]

@@ -22,7 +22,7 @@ from chainflow.solver.newton import Newton
 from chainflow.solver.solve import Prepared
 from chainflow.thermo.species import gas_phase
 from tests.solver.small_plants import chain_of_loops, methane_loop
-from tests.speed.recording import recorded, replay, seconds
+from tests.speed.recording import forget, recorded, replay, seconds
 
 pytestmark = pytest.mark.speed
 FLOWSHEETS = Path(__file__).parents[2] / "flowsheets"
@@ -44,30 +44,35 @@ def raw_equilibria(count: int = 1000) -> float:
     return time.process_time() - start
 
 
-def test_solver_time_over_raw_cantera_calls(benchmark: Any) -> None:
-    """Closing the loops against the same Cantera calls alone, and against a fixed yardstick.
+@pytest.mark.parametrize(
+    ("name", "most"), [("methane-cycle", 16.0), ("liquid-fuel", 15.0), ("steam-methane", 5.5)]
+)
+def test_solver_time_over_raw_equilibria(name: str, most: float, benchmark: Any) -> None:
+    """Closing the loops, nothing kept from before, against a fixed yardstick.
 
-    The first ratio grows when calls are saved, so it is shown and not judged: of the calls that
-    it once was 5.4 times of, more than half of the time went into flames that Cantera could not
-    solve.  The second falls only if closing the loops gets faster.
+    The ratio to the same Cantera calls alone grows when calls are saved, so it is shown and not
+    judged here; `test_passes.py` judges it for one pass.  The limits are about 1.6 times what was
+    measured.
     """
-    flowsheet = read_flowsheet(FLOWSHEETS / "methane-cycle.yaml")
-    Prepared(flowsheet).close()  # warm caches
+    flowsheet = read_flowsheet(FLOWSHEETS / f"{name}.yaml")
+    Prepared(flowsheet).close()  # imports and fixed tables
+    forget()
     prepared = Prepared(flowsheet)
     with recorded(flowsheet.matter) as log:
         prepared.close()
     ratios, fixed = [], []
     for _ in range(RUNS):
+        forget()
         prepared = Prepared(flowsheet)
         took = seconds(prepared.close)
         ratios.append(took / replay(log))
         fixed.append(took / raw_equilibria())
     ratio, judged = statistics.median(ratios), statistics.median(fixed)
-    say(f"solver over raw Cantera calls: {ratio:.2f} ({len(log)} calls)")
-    say(f"solver over 1000 raw equilibria: {judged:.2f}")
+    say(f"{name}: closing over its raw Cantera calls {ratio:.2f} ({len(log)} calls)")
+    say(f"{name}: closing over 1000 raw equilibria {judged:.2f}")
     benchmark.extra_info["ratio"] = ratio
     benchmark.pedantic(lambda: Prepared(flowsheet).close(), rounds=3)
-    assert judged < 15.0
+    assert judged < most
 
 
 def substitution_passes(newton: Newton, most: int = 5000) -> int:
