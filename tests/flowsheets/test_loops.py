@@ -11,6 +11,7 @@ from tests.flowsheets.shipped import (
     HUGE,
     NAMES,
     flow,
+    heat_behind,
     largest_difference,
     numbers,
     renamed,
@@ -119,7 +120,8 @@ def test_nitrogen_in_the_recycle_leaves_as_fast_as_it_comes():
 def test_any_order_of_the_file_gives_the_same_answer(name, key):
     other = solved_text(shuffled(text_of(name), key))
     assert list(other.flowsheet.equipment) != list(solved(name).flowsheet.equipment)
-    assert largest_difference(numbers(solved(name)), numbers(other)) < 1e-12
+    own = solved(name)
+    assert largest_difference(numbers(own), numbers(other), heat_behind(own)) < 1e-12
 
 
 @pytest.mark.parametrize("name", NAMES)
@@ -132,7 +134,8 @@ def test_new_names_in_a_new_order_change_no_number(name):
     for key, values in other.items():
         piece, _, port = key.partition(".")
         back[f"{old[piece]}.{port}"] = values
-    assert largest_difference(numbers(solved(name)), back) < 1e-12
+    own = solved(name)
+    assert largest_difference(numbers(own), back, heat_behind(own)) < 1e-12
 
 
 @pytest.mark.parametrize("name", NAMES)

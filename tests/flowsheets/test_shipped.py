@@ -172,7 +172,7 @@ def test_water_back_from_the_engine_by_hand():
         ("hydrogen-fuel-cell", 0.121, 0.069),
         ("hydrogen-700-bar", 0.123, 0.123),
         ("hydrogen-liquid", 0.104, 0.059),
-        ("steam-methane", 0.146, 0.146),
+        ("steam-methane", 0.148, 0.148),
         ("liquid-fuel", 0.088, 0.088),
         ("gas-turbine", 0.0, 0.361),
         ("steam-cycle", 0.0, 0.256),
