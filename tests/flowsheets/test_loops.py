@@ -80,6 +80,15 @@ def test_nitrogen_without_a_way_out_is_named_before_anything_is_solved(name):
     assert "open a purge" in caught.value.text
 
 
+@pytest.mark.parametrize("name", ["methane-compressed", "methane-liquid"])
+def test_nitrogen_that_leaves_with_the_flue_gas_does_not_help_that_of_the_recycle(name):
+    """Water of the flue gas ties both into one loop, but no nitrogen gets from one to the other."""
+    with pytest.raises(NotSolved, match=r"^N \(as N2\) enters at bought\.outlet and has") as caught:
+        inspect(read_text(text_of(name), {"purge": "0 %"}))
+    assert caught.value.code == "no-way-out"
+    inspect(read_text(text_of(name), {"purge": "0 %", "inert": "0 %"}))  # clean: nothing builds up
+
+
 def test_nitrogen_without_a_way_out_of_a_recycle_is_named():
     with pytest.raises(NotSolved, match=r"^N \(as N2\) enters at bought\.outlet"):
         solved("methane-store", purge="0 %")
