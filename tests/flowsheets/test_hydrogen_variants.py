@@ -5,7 +5,6 @@ from CoolProp.CoolProp import PropsSI
 
 from chainflow.accounts.fuel import fuel_lines
 from chainflow.accounts.plant import plant_account
-from chainflow.basis.faults import NotSolved
 from tests.flowsheets.shipped import flow, rate, solved
 
 LHV_PER_MASS = 33.33  # [kWh/kg] of hydrogen
@@ -186,4 +185,3 @@ def test_the_last_degrees_of_the_steam_are_always_electric():
     solution = solved("steam-methane", convert="85 %")
     steam = float(flow(solution, "raise.outlet").total)
     assert rate(solution, "board.heat") == pytest.approx(steam * 10 * 41.8, rel=0.02)
-

@@ -173,7 +173,7 @@ def test_water_back_from_the_engine_by_hand():
         ("hydrogen-700-bar", 0.123, 0.123),
         ("hydrogen-liquid", 0.104, 0.059),
         ("steam-methane", 0.148, 0.148),
-        ("liquid-fuel", 0.088, 0.088),
+        ("liquid-fuel", 0.087, 0.0365),
         ("gas-turbine", 0.0, 0.361),
         ("steam-cycle", 0.0, 0.256),
         ("photoelectrode-hydrogen", 0.085, 0.0875),
