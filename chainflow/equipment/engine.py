@@ -104,12 +104,13 @@ class Engine(Combustion):
         amount, unmet = oxidiser_needed(Oxygen.at(self.excess, matter), given, oxidiser)
         entering = [*given, oxidiser.scaled(amount)]
         flows = np.sum([s.flows for s in entering], axis=0)
-        value = matter.hhv if self.efficiency.basis == "HHV" else matter.lhv
-        power = self.efficiency.value * float(value @ flows)
+        upper = self.efficiency.basis == "HHV"
+        fuel = float(sum(s.hhv if upper else s.lhv for s in entering))
+        power = self.efficiency.value * fuel
         pressure = min(float(s.pressure) for s in entering)
         flue = Stream.at(matter, np.maximum(burnt(matter) @ flows, 0.0), self.temperature, pressure)
         heat = float(flue.enthalpy) + power - float(sum(s.enthalpy for s in entering))
-        needs, results, missing = self._heat(flue, heat, float(value @ flows), site)
+        needs, results, missing = self._heat(flue, heat, fuel, site)
         duties, _, drawn, given_off = self.settle(needs, site)
         outlets: dict[str, Flow] = {"flue": flue, "power": power, **given_off}
         return Outcome(
@@ -117,7 +118,7 @@ class Engine(Combustion):
             drawn | {"oxidiser": amount},
             duties,
             power=-power,
-            results={"fuel_W": float(value @ flows)} | results,
+            results={"fuel_W": fuel} | results,
             cautions=_too_good(heat, missing, power),
             unmet=unmet,
         )

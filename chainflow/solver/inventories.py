@@ -257,7 +257,7 @@ class _Loop:
         ]
         columns = [self._column({s: 1.0}) for s in dict.fromkeys(s for _, _, s in exits)]
         columns += [self._column(pin) for pin in (*pinned, *one_way)]
-        return self._trapped(exits, pinned, one_way, elements) or self._unpinned(columns, elements)
+        return self._trapped(exits, pinned, elements) or self._unpinned(columns, elements)
 
     def _holds(self, species: str, element: str) -> bool:
         matter = self.flowsheet.matter
@@ -304,13 +304,14 @@ class _Loop:
         self,
         exits: set[Spot],
         pinned: list[dict[str, float]],
-        one_way: list[dict[str, float]],
         elements: list[str],
     ) -> tuple[str, str] | None:
-        """An element that enters where no exit and no pin of it can be reached."""
-        pins = [*pinned, *one_way]
+        """An element that enters where no exit can be reached, and that no store lets out.
+
+        A call only brings in: the nitrogen of an engine's air is no way out for that of a recycle.
+        """
         for element in elements:
-            if any(self._holds(s, element) for pin in pins for s in pin):
+            if any(self._holds(s, element) for pin in pinned for s in pin):
                 continue
             free = {spot for spot in exits if self._holds(spot[2], element)}
             waiting = list(free)
@@ -325,11 +326,13 @@ class _Loop:
 
     def _no_way_out(self, element: str, stuck: list[Spot]) -> str:
         species = sorted({s for _, _, s in stuck}, key=self.flowsheet.components.index)
+        graph = self.presence.graph
+        before = set(stuck).union(*(nx.ancestors(graph, spot) for spot in stuck))
         sources = [
             f"{li.source}.{li.outlet}"
             for li in self._entering()
             if any(
-                self._holds(s, element)
+                self._holds(s, element) and (li.source, li.outlet, s) in before
                 for s in self.presence.species.get((li.source, li.outlet), ())
             )
         ]

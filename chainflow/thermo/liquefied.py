@@ -29,7 +29,9 @@ from chainflow.thermo.validity import StateError
 LIQUEFIABLE = tuple(name for name in PURE_FLUIDS if name != "H2O")
 _FAR = 2000.0  # [J/mol] below 25 degC: with less, no gas is as cold as 200 K
 _SAME = 1e-9  # relative, of a saturation pressure
+_TOO_NEAR = 5e-8  # relative: so near to saturation the reference fluids name no phase
 _AT_SATURATION = 1e-7  # of the heat of evaporation: closer to it no single phase is found
+_BESIDE = 1e-5  # relative, of a temperature: where a slope is looked for
 
 
 class ColdState(NamedTuple):
@@ -112,7 +114,11 @@ def saturation(name: str, pressure: float) -> float:
 
 
 def cold_at(name: str, temperature: float, pressure: float) -> ColdState:
-    """Return one mol at a temperature and pressure; exactly at saturation it is liquid."""
+    """Return one mol at a temperature and pressure; exactly at saturation it is liquid.
+
+    Next to saturation, where the reference fluid itself leaves it open, the side decides: below
+    the saturation pressure it is vapour.
+    """
     found = _fluid(name)
     if temperature < found.lowest:
         raise StateError(
@@ -123,12 +129,27 @@ def cold_at(name: str, temperature: float, pressure: float) -> ColdState:
         fluid = found.fluid
         if temperature < found.critical_temperature:
             fluid.TQ = temperature, 0.0
-            if abs(fluid.P - pressure) <= _SAME * pressure:
+            above = pressure / float(fluid.P) - 1.0
+            if abs(above) <= _TOO_NEAR:
+                fluid.TQ = temperature, 1.0 if above < -_SAME else 0.0
                 return
         fluid.TP = temperature, pressure
 
     _guarded(name, at, f"at {temperature:g} K and {pressure:g} Pa")
     return found.state()
+
+
+def _beside(name: str, temperature: float, vapour: float) -> float:
+    """Return a temperature [K] next to that of a gas or liquid at which it is in the same phase.
+
+    A gas is warmed and a liquid cooled: the other way may lead over saturation, where the slope
+    would be that of evaporation.
+    """
+    found = _fluid(name)
+    colder = temperature * (1.0 - _BESIDE)
+    if vapour > 0.0 or temperature >= found.critical_temperature or colder < found.lowest:
+        return temperature * (1.0 + _BESIDE)
+    return colder
 
 
 def saturated(name: str, pressure: float, vapour: float, *, converted: bool = True) -> ColdState:
@@ -174,9 +195,9 @@ def _hydrogen(enthalpy: float, pressure: float, start: ColdState | None) -> Cold
     level, step = 0.5 * (low + high), 0.0
     for _ in range(100):
         state = cold_at("H2", level, pressure)
-        near = cold_at("H2", level * 1.00001, pressure)
+        near = cold_at("H2", _beside("H2", level, state.vapour), pressure)
         low, high = (low, level) if state.enthalpy > enthalpy else (level, high)
-        slope = (near.enthalpy - state.enthalpy) / (1e-5 * level)
+        slope = (near.enthalpy - state.enthalpy) / (near.temperature - level)
         step = (enthalpy - state.enthalpy) / slope if slope > 0.0 else 0.0
         better = level + step
         if not low < better < high:
@@ -264,6 +285,6 @@ def cold_slopes(matter: Matter, flows: Array, enthalpy: float, pressure: float) 
     entropies[matter.index[name]] = state.entropy
     if 0.0 < state.vapour < 1.0:
         return ColdSlopes(by_flow, np.inf, entropies, np.inf)
-    near = cold_at(name, state.temperature * (1.0 - 1e-5), pressure)
+    near = cold_at(name, _beside(name, state.temperature, state.vapour), pressure)
     capacity = (state.enthalpy - near.enthalpy) / (state.temperature - near.temperature)
     return ColdSlopes(by_flow, total * capacity, entropies, total * capacity / state.temperature)

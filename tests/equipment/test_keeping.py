@@ -56,6 +56,58 @@ def test_a_state_next_to_saturation_is_found(name, beyond):
             assert found.enthalpy == enthalpy
 
 
+@pytest.mark.parametrize("name", LIQUEFIABLE)
+@pytest.mark.parametrize("beside", [1e-11, 1e-9, 3e-9, 1e-8, 1e-7, 1e-6])
+def test_a_temperature_next_to_boiling_has_a_phase(name, beside):
+    """Colder it is liquid, warmer vapour; with no more than round-off between, liquid."""
+    pressure = 8e5 if name == "CO2" else 1.3e5
+    liquid, vapour = (saturated(name, pressure, share) for share in (0.0, 1.0))
+    colder = cold_at(name, liquid.temperature * (1.0 - beside), pressure)
+    warmer = cold_at(name, liquid.temperature * (1.0 + beside), pressure)
+    little = 1e-3 + 150.0 * beside * liquid.temperature  # 150 J/mol/K is more than any of them has
+    assert colder.enthalpy == pytest.approx(liquid.enthalpy, abs=little)
+    assert colder.vapour == 0.0
+    after = liquid if beside < 1e-10 else vapour
+    assert warmer.enthalpy == pytest.approx(after.enthalpy, abs=little)
+    assert warmer.vapour == after.vapour
+
+
+@pytest.mark.parametrize(
+    ("name", "bar", "vapour", "capacity"),
+    [
+        ("CH4", 1.01325, 0.0, 55.9),  # 3.48 kJ/kg/K
+        ("CH4", 1.01325, 1.0, 35.4),  # 2.21
+        ("N2", 1.01325, 0.0, 57.2),  # 2.04
+        ("N2", 1.01325, 1.0, 31.5),  # 1.12
+        ("H2", 1.01325, 0.0, 19.5),  # 9.66
+        ("H2", 1.01325, 1.0, 24.4),  # 12.1
+    ],
+)
+def test_heat_capacity_at_saturation(name, bar, vapour, capacity):
+    """A saturated vapour warms, a boiling liquid cools: neither slope is that of evaporation.
+
+    Heat capacities of handbooks [J/mol/K], from memory; the fluids of 1979 are within a tenth, the
+    liquid hydrogen within a seventh.
+    """
+    state = saturated(name, bar * 1e5, vapour)
+    flows = MATTER.vector({name: 2.0})
+    for more in (0.0, 1e-6, 1e-5, 1.00001e-5, 1e-4):
+        beside = state.temperature * (1.0 + (more if vapour else -more))
+        enthalpy = cold_at(name, beside, bar * 1e5).enthalpy if more else state.enthalpy
+        found = Stream.from_enthalpy(MATTER, flows, 2.0 * enthalpy, bar * 1e5)
+        slope = enthalpy_slopes(found)[1] / 2.0
+        assert slope == pytest.approx(capacity, rel=0.15 if name == "H2" else 0.1)
+
+
+def test_hydrogen_just_below_boiling_has_its_temperature():
+    """The search for it must not look over saturation, where any step seems small enough."""
+    liquid, vapour = (saturated("H2", 1.3e5, share) for share in (0.0, 1.0))
+    colder = cold_of_enthalpy("H2", liquid.enthalpy - 1e-3, 1.3e5)
+    assert liquid.temperature - colder.temperature == pytest.approx(1e-3 / 22.2, rel=0.01)  # pin
+    warmer = cold_of_enthalpy("H2", vapour.enthalpy + 1e-3, 1.3e5)
+    assert warmer.temperature - vapour.temperature == pytest.approx(1e-3 / 27.0, rel=0.01)  # pin
+
+
 @pytest.mark.parametrize("name", ["H2", "CH4", "N2", "O2"])
 def test_the_cold_gas_joins_the_gas_of_the_species_table(name):
     # 1 bar and 200 K; only the spins of hydrogen jump, by 2.1 kJ/kg = 4.3 J/mol

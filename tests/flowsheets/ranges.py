@@ -122,6 +122,7 @@ RANGES: dict[str, dict[str, Range]] = {
         "reform": (850, 1000, "degC"),
         "purge": (0.5, 10, "%"),
         "inert": (0, 2, "%"),
+        "engine": (30, 48, "% LHV"),
     },
     "gas-turbine": {
         "fuel": (20, 5000, "kg/h"),

@@ -2,8 +2,10 @@
 
 import io
 import random
+from collections.abc import Callable, Mapping
 from functools import cache
 from pathlib import Path
+from types import MappingProxyType
 from typing import Any
 
 from ruamel.yaml import YAML
@@ -74,18 +76,37 @@ def numbers(solution: Solution) -> dict[str, list[float]]:
     return found
 
 
-def largest_difference(first: dict[str, list[float]], second: dict[str, list[float]]) -> float:
+def heat_behind(solution: Solution) -> dict[str, float]:
+    """Return the heat fed to a network [W], by the keys of its shortage and of its rest.
+
+    Both are differences of large heats, so their round-off goes by those.
+    """
+    lines, pieces = solution.flowsheet.lines, solution.flowsheet.equipment
+    fed: dict[str, float] = {}
+    for line in lines:
+        if line.inlet == "supply" and pieces[line.target].kind == "heat-network":
+            fed[line.target] = fed.get(line.target, 0.0) + rate(solution, line.start)
+    short = {line.start: fed[line.target] for line in lines if line.inlet == "shortage"}
+    return short | {f"{network}.rest": heat for network, heat in fed.items()}
+
+
+def largest_difference(
+    first: dict[str, list[float]],
+    second: dict[str, list[float]],
+    behind: Mapping[str, float] = MappingProxyType({}),
+) -> float:
     """Return the largest relative difference of two sets of numbers.
 
     Flows count by their stream's total, rates by themselves but at least by a thousandth of the
-    plant's largest: a pump's power is a small difference of large enthalpies.
+    plant's largest: a pump's power is a small difference of large enthalpies. `behind` names rates
+    that are small differences of larger ones still.
     """
     assert first.keys() == second.keys()
     least = 1e-3 * max(abs(one[0]) for one in first.values() if len(one) == 1)
     worst = 0.0
     for key, one in first.items():
         if len(one) == 1:
-            sizes = [max(abs(one[0]), least)]
+            sizes = [max(abs(one[0]), least, behind.get(key, 0.0))]
         else:
             sizes = [sum(one[:-2]) or 1.0] * (len(one) - 2) + one[-2:]
         pairs = zip(one, second[key], sizes, strict=True)
@@ -141,4 +162,30 @@ def renamed(text: str) -> tuple[str, dict[str, str]]:
     data["lines"] = [" -> ".join(map(address, line.split("->"))) for line in data["lines"]]
     for hold in data.get("holds", []):
         hold["hold"], hold["by"] = address(hold["hold"]), address(hold["by"])
+    if "costs" in data:
+        data["costs"] = _renamed_costs(data["costs"], names, address)
+    if "rungs" in data:
+        data["rungs"] = {
+            cut: [address(port) for port in ports] if isinstance(ports, list) else ports
+            for cut, ports in data["rungs"].items()
+        }
     return as_text(data), names
+
+
+def _renamed_costs(
+    costs: dict[str, Any], names: dict[str, str], address: Callable[[str], str]
+) -> dict[str, Any]:
+    """Return the costs with their equipment, addresses and prices of material renamed."""
+    renamed = dict(costs)
+    renamed["equipment"] = {
+        names[old]: {
+            key: address(value) if key in ("size", "per") else value for key, value in one.items()
+        }
+        for old, one in costs.get("equipment", {}).items()
+    }
+    for side in ("bought", "sold"):
+        prices = costs.get(side, {})
+        if "material" in prices:
+            material = {names[old]: price for old, price in prices["material"].items()}
+            renamed[side] = {**prices, "material": material}
+    return renamed

@@ -5,7 +5,6 @@ from CoolProp.CoolProp import PropsSI
 
 from chainflow.accounts.fuel import fuel_lines
 from chainflow.accounts.plant import plant_account
-from chainflow.basis.faults import NotSolved
 from tests.flowsheets.shipped import flow, rate, solved
 
 LHV_PER_MASS = 33.33  # [kWh/kg] of hydrogen
@@ -136,15 +135,23 @@ def test_hydrogen_from_steam_by_hand():
     assert per_mass == pytest.approx(36.0, abs=0.3)
 
 
-def test_steam_is_raised_by_methanation_alone():
-    """No heat is bought; evaporation takes 2257 to 1940 kJ/kg at 100 to 200 degC (steam tables)."""
+def test_steam_is_raised_by_heat_of_the_plant():
+    """Steam of 10 bar and 800 degC is 4157 kJ/kg, water of 25 degC 105 kJ/kg (steam tables).
+
+    No heat is bought, and no more than the pinch asks for is electric: the hand check of the file,
+    1240 less 1225 kW, good to 1 % of either.
+    """
     solution = solved("steam-methane")
     assert plant_account(solution).bought.heat_total == 0
     water = float(flow(solution, "raise.outlet").mass_flow)
     asked = float(solution.stream("warmth.raise").flow.rate)
-    assert 1.99e6 < asked / water < 2.10e6  # 2009 at 182 degC, 4 degC of water, gas model 2 %
+    assert asked / water == pytest.approx(4157e3 - 105e3, rel=0.005)
     given = float(solution.stream("reactor.heat").flow.rate)
-    assert given == pytest.approx(178e3 * 3.66 - 31e3, rel=0.02)
+    assert given == pytest.approx(178e3 * 3.70 - 31e3, rel=0.02)
+    found = results("steam-methane", "warmth")
+    assert rate(solution, "board.heat") == pytest.approx(found["shortage_W"], rel=1e-9)
+    assert found["shortage_W"] == pytest.approx(15e3, abs=12e3)
+    assert found["pinch_given_K"] - 273.15 == pytest.approx(157, abs=1.5)  # 5.76 bar, steam tables
 
 
 def test_the_sister_with_cold_electrolysis_makes_less():
@@ -157,7 +164,24 @@ def test_the_sister_with_cold_electrolysis_makes_less():
     assert 0.76 < hot["HHV"] / 0.20 < 0.85  # a pilot reached 0.76 (HELMETH 2017; M)
 
 
-def test_more_steam_than_methanation_can_raise_is_named():
-    with pytest.raises(NotSolved, match=r"warmth\.shortage.*cannot be met") as caught:
-        solved("steam-methane", convert="60 %")
-    assert caught.value.code == "heat-short"
+def test_more_steam_than_the_plant_can_raise_takes_power():
+    """At 75 % of conversion a mol of hydrogen takes 1 / 0.75 mol of steam, not 1 / 0.80.
+
+    The 0.083 mol between need 55.5 kJ/mol above the pinch (evaporation, superheating, feed water;
+    the hand check of the file) and bring 643 K x 38.6 J/mol/K back behind the stack.
+    """
+    least, more = (solved("steam-methane", convert=share) for share in ("80 %", "75 %"))
+    each = [
+        rate(one, "board.heat") / float(flow(one, "stack.hydrogen").flow("H2"))
+        for one in (least, more)
+    ]
+    steam = 1 / 0.75 - 1 / 0.80
+    wanted = steam * (1240e3 - 63e3) / 18.5 - steam * 643 * 38.6
+    assert each[1] - each[0] == pytest.approx(wanted, rel=0.05)
+
+
+def test_the_last_degrees_of_the_steam_are_always_electric():
+    """No gas is hotter than 800 degC, so the approach of 10 K is left: 41.8 J/mol/K (tables)."""
+    solution = solved("steam-methane", convert="85 %")
+    steam = float(flow(solution, "raise.outlet").total)
+    assert rate(solution, "board.heat") == pytest.approx(steam * 10 * 41.8, rel=0.02)

@@ -246,3 +246,62 @@ def test_wrong_usage(more, code, said):
 
 def test_no_file_is_wrong_usage():
     assert run().exit_code == 2
+
+
+# --- costs -----------------------------------------------------------------------------------
+
+PRICED = """
+costs:
+  currency: {currency}
+  interest: 0 %
+  lifetime: 20 a
+  hours: 2000 h
+  equipment:
+    field: {{size: field.power.rate, purchase: 1000 {currency}/kW}}
+"""
+
+
+@pytest.fixture(scope="module")
+def priced(tmp_path_factory):
+    """Two of one size in two currencies, a third ten times as large, a fourth without costs."""
+    folder = tmp_path_factory.mktemp("priced")
+    texts = {
+        "crowns": METHANE + PRICED.format(currency="crowns"),
+        "marks": METHANE + PRICED.format(currency="marks"),
+        "large": METHANE.replace("6000 m2", "60000 m2") + PRICED.format(currency="crowns"),
+        "free": METHANE,
+    }
+    for name, text in texts.items():
+        (folder / f"{name}.yaml").write_text(text, encoding="utf-8")
+    return {name: folder / f"{name}.yaml" for name in texts}
+
+
+def test_costs_side_by_side_by_hand(priced):
+    """850 W/m2 x 6000 m2 x 20 % = 1020 kW at 1000 each; 1/20 of it a year, over 2000 h."""
+    found = compare([priced["crowns"], priced["large"], priced["free"]], basis="LHV")
+    assert value(found, "installed", 0) == pytest.approx(1.02e6, rel=1e-12)
+    assert value(found, "installed", 1) == pytest.approx(1.02e6, rel=1e-9)  # on the same sunlight
+    assert value(found, "installed", 2) is None
+    sold = found.routes[0].account.sold.material
+    fuel = sum(float(stream.lhv) for _, stream in sold) / 1e3 * 2000  # [kWh] a year
+    for place in (0, 1):
+        assert value(found, "fuel_per_kWh", place) == pytest.approx(1.02e6 / 20 / fuel, rel=1e-9)
+    assert value(found, "fuel_per_kWh", 2) is None
+    assert "currency" not in {row.key for row in figures(found)}
+
+
+def test_costs_on_the_upper_heating_value(priced):
+    lower, upper = (compare([priced["crowns"]], basis=basis) for basis in ("LHV", "HHV"))
+    ratio = value(lower, "fuel_per_kWh", 0) / value(upper, "fuel_per_kWh", 0)
+    assert ratio == pytest.approx(890.6 / 802.3, rel=2e-3)  # methane, ISO 6976
+
+
+def test_two_currencies_are_named_and_nothing_is_exchanged(priced, capsys):
+    found = compare([priced["crowns"], priced["marks"]])
+    assert [value(found, "currency", place) for place in (0, 1)] == ["crowns", "marks"]
+    assert value(found, "installed", 0) == value(found, "installed", 1)
+    print_comparison(found)
+    (line,) = [row for row in capsys.readouterr().out.splitlines() if row.startswith("currency")]
+    assert line.split() == ["currency", "crowns", "marks"]
+    entries = comparison_document(found)["routes"]
+    assert [entry["cost"]["currency"] for entry in entries] == ["crowns", "marks"]
