@@ -39,6 +39,10 @@ app = typer.Typer(
 )
 
 FileArgument = Annotated[Path, typer.Argument(metavar="FILE", help="Flowsheet file (YAML).")]
+JsonOption = Annotated[
+    str | None,
+    typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
+]
 SetOption = Annotated[
     list[str] | None,
     typer.Option(
@@ -112,10 +116,7 @@ def common(
 @reported
 def solve(
     file: FileArgument,
-    json: Annotated[
-        str | None,
-        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
-    ] = None,
+    json: JsonOption = None,
     csv: Annotated[
         Path | None,
         typer.Option("--csv", metavar="DIR", help="Write four CSV files: streams, ..."),
@@ -127,6 +128,10 @@ def solve(
             "--accounts",
             help="Print where it goes, too: rungs with own use, losses, carbon and water.",
         ),
+    ] = False,
+    results: Annotated[
+        bool,
+        typer.Option("--results", help="Print what each piece of equipment found, too."),
     ] = False,
     quiet: Annotated[bool, typer.Option("--quiet", help="Print no answer, only errors.")] = False,
     why: Annotated[
@@ -150,6 +155,10 @@ def solve(
         from chainflow.report.printed import print_answer
 
         print_answer(solution, reasons=reasons)
+        if results:
+            from chainflow.report.results_printed import print_results
+
+            print_results(solution)
         if accounts:
             from chainflow.report.accounts_printed import print_accounts
 
@@ -170,10 +179,7 @@ def compare(
         str, typer.Option("--energy", metavar="ENERGY", help="What the stores are sized for.")
     ] = "100 MWh",
     set_: SetOption = None,
-    json: Annotated[
-        str | None,
-        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
-    ] = None,
+    json: JsonOption = None,
     csv: Annotated[
         Path | None, typer.Option("--csv", metavar="PATH", help="Write the table as a CSV file.")
     ] = None,
@@ -183,6 +189,7 @@ def compare(
     A file that fails does not stop the others: its column says why, and the exit code is that of
     the first that failed. --set changes the files that know the name.
     """
+    from chainflow.basis.quantities import parse
     from chainflow.report.compared import comparison_csv, comparison_document, print_comparison
     from chainflow.report.document import to_json
     from chainflow.report.writing import check_writable, write_whole
@@ -195,7 +202,9 @@ def compare(
         if csv.resolve() in {file.resolve() for file in files}:
             raise UsageFault(f"--csv {csv} is one of the flowsheets: name another file")
         check_writable(csv)
-    found = compared(files, overrides, basis, _energy(energy))
+    found = compared(
+        files, overrides, basis, _option("--energy", lambda: parse(energy, "J", gt=0.0))
+    )
     if csv is not None:
         write_whole(csv, comparison_csv(found))
     if json is not None:
@@ -208,16 +217,6 @@ def compare(
     if found.exit_code:
         sys.stdout.flush()
         raise typer.Exit(found.exit_code)
-
-
-def _energy(text: str) -> float:
-    from chainflow.basis.quantities import QuantityFault, parse
-    from chainflow.basis.units import UnitFault
-
-    try:
-        return parse(text, "J", gt=0.0)
-    except (QuantityFault, UnitFault) as problem:
-        raise UsageFault(f"--energy: {problem}") from None
 
 
 @app.command()
@@ -273,10 +272,7 @@ def limits(
             help="Of both electrodes and the electrolyte together.",
         ),
     ] = "0.8 V",
-    json: Annotated[
-        str | None,
-        typer.Option("--json", metavar="PATH", help="Write everything as JSON, '-' for stdout."),
-    ] = None,
+    json: JsonOption = None,
     rest: Annotated[list[str] | None, typer.Argument(hidden=True)] = None,
 ) -> None:
     """Print how much hydrogen one band gap, or a pair, could make of sunlight at best.
@@ -285,6 +281,7 @@ def limits(
     overpotential and with one.
     """
     from chainflow.basis.names import shorten
+    from chainflow.basis.quantities import parse
     from chainflow.report.writing import check_writable
     from chainflow.studies.limits import limits as find_limits
     from chainflow.studies.limits import limits_document
@@ -297,7 +294,8 @@ def limits(
         raise UsageFault("no band gap is given: chainflow limits --gap '2.1 eV'")
     if json is not None and json != STDOUT:
         check_writable(Path(json))
-    found = find_limits([_gap(text) for text in gap], _overpotential(overpotential))
+    volts = _option("--overpotential", lambda: parse(overpotential, "V", ge=0.0, le=3.0))
+    found = find_limits([_gap(text) for text in gap], volts)
     if json is not None:
         from chainflow.report.document import to_json
 
@@ -312,23 +310,21 @@ def _gap(text: str) -> float:
     """Read a band gap [J]."""
     from typing import get_args
 
-    from chainflow.basis.quantities import BandGap, QuantityFault
+    from chainflow.basis.quantities import BandGap
 
     _, marker = get_args(BandGap)
-    try:
-        return float(marker.read(text))
-    except QuantityFault as fault:
-        raise UsageFault(f"--gap {fault}") from None
+    return _option("--gap", lambda: marker.read(text))
 
 
-def _overpotential(text: str) -> float:
-    """Read a voltage."""
-    from chainflow.basis.quantities import QuantityFault, parse
+def _option(name: str, read: Callable[[], Any]) -> float:
+    """Read a quantity that stands behind an option."""
+    from chainflow.basis.quantities import QuantityFault
+    from chainflow.basis.units import UnitFault
 
     try:
-        return parse(text, "V", ge=0.0, le=3.0)
-    except QuantityFault as fault:
-        raise UsageFault(f"--overpotential {fault}") from None
+        return float(read())
+    except (QuantityFault, UnitFault) as problem:
+        raise UsageFault(f"{name} {problem}") from None
 
 
 @app.command()

@@ -5,6 +5,7 @@ import pytest
 from chainflow.accounts.hazards import CLOSING_SENTENCE
 from chainflow.report.plain import printable
 from chainflow.report.printed import print_answer
+from chainflow.report.results_printed import print_results
 from tests.plants import BOUGHT, CYCLE, HYDROGEN, METHANE, solved
 
 
@@ -122,3 +123,25 @@ def test_control_characters_of_a_title_are_not_printed_raw():
 
 def test_lone_surrogates_can_be_printed():
     assert printable("a\ud800b") == "a\\ud800b"
+
+
+def test_results_of_equipment_in_usual_units():
+    """20 % of 800 W/m2 on 5000 m2 at 53 kWh/kg: 15.1 kg/h, 1.4 V and 39.39 kWh/kg aside."""
+    text = """\
+equipment:
+  sun: {kind: sunlight, irradiance: 800 W/m2, aperture: 5000 m2}
+  field: {kind: pv-field, efficiency: 20 %}
+  water: {kind: store, contents: {H2O: 1}, temperature: 25 degC, pressure: 1 bar}
+  stack: {kind: electrolyser, energy_use: 53 kWh/kg, temperature: 60 degC, pressure: 1 bar}
+  town: {kind: product}
+lines:
+  - sun -> field -> stack.power
+  - water.draw -> stack.water
+  - stack.hydrogen -> town
+"""
+    out = io.StringIO()
+    print_results(solved(text), out)
+    shown = [" ".join(line.split()) for line in out.getvalue().splitlines()]
+    assert "Results of the equipment" in shown
+    assert "hydrogen 15.09 kg/h" in shown  # 800 kW / 53 kWh/kg
+    assert "direct current 800 kW" in shown
