@@ -23,7 +23,8 @@ class Battery(Equipment):
     """Battery: takes power, keeps it, and offers what its round trip and its leakage leave.
 
     Its size is what delivers the mean power for `duration` out of the `usable` part of the
-    capacity. Masses and volumes are of bare lithium-ion cells unless given.
+    capacity. Masses and volumes are of bare lithium-ion cells unless given; with packs, racks and
+    housing they are larger by `mass_share` and `volume_share`.
     """
 
     kind: ClassVar[str] = "battery"
@@ -34,6 +35,8 @@ class Battery(Equipment):
         "volume_m3",
         "energy_J_kg",
         "energy_J_m3",
+        "energy_with_housing_J_kg",
+        "energy_with_housing_J_m3",
         "lost_W",
     )
     ports: ClassVar[tuple[Port, ...]] = (
@@ -44,6 +47,7 @@ class Battery(Equipment):
         "discharge = efficiency * exp(-self_discharge * kept_for) * charge",
         "capacity = discharge * duration / usable; mass and volume are per capacity",
         "energy per mass and volume: usable / mass, usable / volume",
+        "with housing: times mass share, volume share",
     )
     sources: ClassVar[tuple[str, ...]] = (
         "lithium-ion cells 100 to 265 Wh/kg, 250 to 700 Wh/L: web comparison (read); cells only",
@@ -67,6 +71,13 @@ class Battery(Equipment):
     )
     volume: Annotated[float, measured("m3/J", gt=0)] = Field(
         lithium_ion_ranges.VOLUME, description="volume per capacity, as '4 L/kWh'"
+    )
+
+    mass_share: OpenFraction | None = Field(
+        None, description="cells per cells and housing, by mass (default: no housing is counted)"
+    )
+    volume_share: OpenFraction | None = Field(
+        None, description="cells per cells and housing, by volume (default: none is counted)"
     )
 
     @property
@@ -93,6 +104,8 @@ class Battery(Equipment):
             "volume_m3": capacity * self.volume,
             "energy_J_kg": self.usable / self.mass,
             "energy_J_m3": self.usable / self.volume,
+            "energy_with_housing_J_kg": (self.mass_share or 1.0) * self.usable / self.mass,
+            "energy_with_housing_J_m3": (self.volume_share or 1.0) * self.usable / self.volume,
             "lost_W": charge - discharge,
         }
         return Outcome(

@@ -93,7 +93,9 @@ def _keys(solution: Solution) -> set[str]:
 
 
 def _in_battery(solution: Solution, name: str) -> Kept:
-    results = solution.outcomes[name].results
+    results, piece = solution.outcomes[name].results, solution.pieces[name]
+    assert isinstance(piece, Battery)
+    by_mass, by_volume = piece.mass_share is not None, piece.volume_share is not None
     return Kept(
         store=name,
         content="electricity",
@@ -102,7 +104,7 @@ def _in_battery(solution: Solution, name: str) -> Kept:
         pressure=None,
         per_mass=results["energy_J_kg"],
         per_volume=results["energy_J_m3"],
-        vessel=None,
-        per_mass_with_vessel=None,
-        per_volume_with_vessel=None,
+        vessel="housing" if by_mass or by_volume else None,
+        per_mass_with_vessel=results["energy_with_housing_J_kg"] if by_mass else None,
+        per_volume_with_vessel=results["energy_with_housing_J_m3"] if by_volume else None,
     )

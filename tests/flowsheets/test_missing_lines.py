@@ -23,12 +23,17 @@ def without(text: str, place: int) -> str:
 
 
 def entries(name: str, *, joining: bool) -> list[int]:
-    """Return places of written lines: those under `lines`, or all the others."""
+    """Return places of written lines: those under `lines`, or all the others.
+
+    Those under `costs` are left out: most of them may be missing, and what costs nothing is named.
+    """
     found, section = [], ""
     for place, line in enumerate(text_of(name).split("\n")):
         if not line.strip() or line.strip().startswith("#"):
             continue
         section = line.split(":")[0] if not line.startswith(" ") else section
+        if section == "costs" and line.startswith(" "):
+            continue
         is_joining = section == "lines" and line.startswith(" ")
         if is_joining == joining:
             found.append(place)

@@ -71,6 +71,17 @@ def test_energy_densities_by_hand(three):
     assert value(three, "volume_m3", 2) == pytest.approx(1e5 / (475 * 0.9), rel=1e-6)
 
 
+def test_with_vessel_by_hand(three):
+    """Bottles of 5 % by mass and 80 % by volume, cells of 67 and 33 % of their housing."""
+    for key, shares in (("mass", (0.05, 0.67)), ("volume", (0.80, 0.33))):
+        unit = {"mass": "kg", "volume": "m3"}[key]
+        for place, share in zip((0, 2), shares, strict=True):
+            bare = value(three, f"{key}_{unit}", place)
+            assert value(three, f"{key}_with_vessel_{unit}", place) == pytest.approx(bare / share)
+    assert value(three, "vessel", 0) == "hydrogen-350"
+    assert value(three, "vessel", 2) == "housing"
+
+
 def test_size_for_another_energy(three):
     other = compare([STORE], energy=1e3 * KWH)
     assert value(other, "mass_kg", 0) == pytest.approx(value(three, "mass_kg", 0) / 100)
