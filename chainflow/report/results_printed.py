@@ -5,6 +5,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, TextIO
 
 from chainflow.basis.formatting import format_number, format_quantity
+from chainflow.basis.units import is_named, resolve
 from chainflow.flowsheet.addresses import short_name, unit_of_result
 from chainflow.report.plain import console, plain_table
 from chainflow.solver.solution import Solution
@@ -34,4 +35,8 @@ def _shown(value: float, result: str) -> str:
     unit = unit_of_result(result)
     if value != value:  # a result that has no value here
         return "-"
-    return format_number(value) if unit == "1" else format_quantity(value, unit)
+    if unit == "1":
+        return format_number(value)
+    if unit == "J/m3" or is_named(resolve(unit).exponents):
+        return format_quantity(value, unit)
+    return f"{format_number(value)} {unit}"

@@ -91,6 +91,14 @@ def test_curves_are_monotone(circuit):
     assert (np.diff(offered) <= 1e-12).all()
 
 
+def test_an_unlit_junction_that_leaks_is_monotone():
+    """Driven backwards its diode passes J_0 and its shunt the rest: V = -(J - J_0) R far below."""
+    junction = Junction(light=0.0, dark=1.0, level=0.0625, series=0.0, shunt=10.0)
+    volts = [junction.voltage(density) for density in np.linspace(0.0, 3.0, 301)]
+    assert (np.diff(volts) < 0.0).all()
+    assert volts[-1] == pytest.approx(-(3.0 - 1.0) * 10.0, rel=1e-12)
+
+
 def test_more_given_moves_the_crossing_as_its_slopes_say():
     from dataclasses import replace
 

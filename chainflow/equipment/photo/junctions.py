@@ -50,12 +50,12 @@ class Junction:
         """The voltage of the diode that `left` of the light current passes through [V]."""
         if self.shunt == inf:
             return self.level * log1p(left / self.dark)
-        if left <= 0.0:  # the diode blocks but for J_0
-            return self._newton(left, left * self.shunt)
+        if left <= 0.0:  # the diode blocks but for J_0, and its voltage is below zero
+            return self._newton(left, 0.0)
         return self._newton(left, min(self.level * log1p(left / self.dark), left * self.shunt))
 
     def _newton(self, left: float, start: float) -> float:
-        """Newton's method on a convex rising function, from above or from below."""
+        """Newton's method on a convex rising function, from above: no step passes the root."""
         inner = start
         for _ in range(_MOST_STEPS):
             grown = exp(min(inner / self.level, 700.0))
