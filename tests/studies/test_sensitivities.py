@@ -22,7 +22,7 @@ AGREE = 1e-5  # relative
 # elasticity below which a slope is nothing: the differences of two solves, and those on one piece,
 # each end at round-off (1e-13 of the result) over their step
 NOTHING = 2e-8
-# Where 1e-5 is not reached, the largest difference in elasticity seen, rounded up (a pin): what acts
+# Where 1e-5 is not reached, the largest difference in elasticity seen, rounded up (pins): what acts
 # through the shape of condensing heat in a network (steam-methane, blend.ratio 1.9e-4), the
 # ratio that moves two loops at once (cycles, 3e-6), round-off of 36 components (liquid-fuel, 3e-8).
 NOT_REACHED = {
