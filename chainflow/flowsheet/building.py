@@ -155,6 +155,10 @@ class _Builder:
         broken = self._broken(pieces)
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
+        for hold in holds:
+            if hold.piece in pieces and hold.piece not in used:
+                text = f"{hold.text}: no line touches {hold.piece}, whose setting is to be moved"
+                self.fault("bad-hold", f"{text}: link it, or take the hold out", hold.place)
         used = Sight(used, lines, holds, self.fault, self._spot).seeing()
         starts = frozenset(f"{line.source}.{line.outlet.name}" for line in joined)
         blocks = read_blocks(self.root, pieces, broken, known, starts, self.faults)

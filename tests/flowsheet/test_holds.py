@@ -104,3 +104,21 @@ def test_the_range_is_inside_what_the_setting_may_be(within, shares, says):
 )
 def test_what_is_held_has_a_value_of_its_kind(hold, at, says):
     assert says in fault_of(hold, at, "split.shares.back", "10 %, 90 %")
+
+
+def test_a_hold_by_equipment_that_no_line_touches():
+    text = """\
+equipment:
+  gas: {kind: supply, composition: {H2: 1}, temperature: 25 degC, pressure: 1 bar, flow: 1 mol/s}
+  spare: {kind: supply, composition: {H2: 1}, temperature: 25 degC, pressure: 1 bar, flow: 1 mol/s}
+  town: {kind: product}
+lines:
+  - gas -> town
+holds:
+  - {hold: gas.outlet.flow.H2, at: 2 mol/s, by: spare.flow, within: [1 mol/s, 3 mol/s]}
+"""
+    with pytest.raises(FlowsheetFault) as caught:
+        read_text(text)
+    (fault,) = caught.value.faults
+    assert (fault.code, fault.place.line) == ("bad-hold", 8)
+    assert "no line touches spare" in fault.text
