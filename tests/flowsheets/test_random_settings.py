@@ -24,7 +24,7 @@ from tests.flowsheets.ranges import RANGES
 from tests.flowsheets.shipped import HUGE, SHIPPED, text_of
 
 SHORT, LONG = 6, 300
-SHORT_HUGE, LONG_HUGE = 2, 100
+SHORT_HUGE, LONG_HUGE = 6, 100
 STEPS = 10_000
 REFUSALS = {
     "heat-short",
