@@ -55,11 +55,11 @@ def recorded(matter: Matter) -> Iterator[list[tuple[Any, str, str, Any]]]:
         finally:
             self._alone, self._diluted = alone, diluted
 
-    Reactants.balance = balance  # type: ignore[method-assign] # put back below
+    Reactants.balance = balance  # put back below
     try:
         yield log
     finally:
-        matter._gas, Reactants.balance = kept, original  # type: ignore[method-assign] # as it was
+        matter._gas, Reactants.balance = kept, original  # as it was
 
 
 def replay(log: list[tuple[Any, str, str, Any]]) -> float:
