@@ -24,8 +24,9 @@ from chainflow.flowsheet.blocks import BLOCKS, read_blocks
 from chainflow.flowsheet.component_list import component_names
 from chainflow.flowsheet.holds import HoldReader
 from chainflow.flowsheet.knobs import knob_places
+from chainflow.flowsheet.linkage import LINE_FAULTS, Linkage
 from chainflow.flowsheet.messages import bare, complaints
-from chainflow.flowsheet.network import Flowsheet, Line
+from chainflow.flowsheet.network import Flowsheet
 from chainflow.flowsheet.overrides import blamed, with_settings
 from chainflow.flowsheet.reading import (
     Mapping,
@@ -147,18 +148,20 @@ class _Builder:
         if components is not None:
             self._check_components(pieces, components)
         joined = self._joined(pieces)
-        self._required_ports(pieces, joined)
+        linkage = Linkage(pieces, joined, self.fault, self.remark, self._spot)
+        if whole := self._lines_are_whole(pieces):
+            linkage.missing_lines()
         contents = roles.contents(joined, self.faults)
         roles.check_counts(joined, self.faults)
         lines = roles.assign(joined, contents, pieces, self.faults)
-        used = self._used(pieces, lines)
+        ends = {name for line in lines for name in (line.source, line.target)}
+        used = {name: piece for name, piece in pieces.items() if name in ends}
+        linkage.idle(used)
         broken = self._broken(pieces)
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
-        for hold in holds:
-            if hold.piece in pieces and hold.piece not in used:
-                text = f"{hold.text}: no line touches {hold.piece}, whose setting is to be moved"
-                self.fault("bad-hold", f"{text}: link it, or take the hold out", hold.place)
+        if whole:
+            linkage.unmoved(holds, used)
         used = Sight(used, lines, holds, self.fault, self._spot).seeing()
         starts = frozenset(f"{line.source}.{line.outlet.name}" for line in joined)
         blocks = read_blocks(self.root, pieces, broken, known, starts, self.faults)
@@ -392,55 +395,11 @@ class _Builder:
         """Equipment that could not be made."""
         return frozenset(self.all_names) - frozenset(pieces)
 
-    def _required_ports(
-        self, pieces: AnyMapping[str, Equipment], joined: list[line_texts.JoinedPorts]
-    ) -> None:
-        """A required inlet without a line is a fault, an outlet without one a remark."""
-        if len(pieces) < len(self.all_names) or any(
-            f.code in ("bad-line", "unknown-port", "unknown-equipment") for f in self.faults
-        ):
-            return  # lines may be missing only because something else is wrong
-        ends = {(line.target, line.inlet.name) for line in joined}
-        starts = {(line.source, line.outlet.name) for line in joined}
-        touched = {name for name, _ in ends | starts}
-        for name, piece in pieces.items():
-            if name not in touched:
-                continue
-            for port in piece.port_list():
-                if (
-                    port.optional
-                    or port.any_name
-                    or (name, port.name) in (ends if port.is_inlet else starts)
-                ):
-                    continue
-                if port.is_inlet:
-                    self.fault(
-                        "missing-line",
-                        f"{name}: no line arrives at '{name}.{port.name}' ({port.means}): "
-                        f"write '- ... -> {name}.{port.name}' under lines",
-                        self._spot(name, ()),
-                    )
-                else:
-                    self.remark(
-                        "unlinked-outlet",
-                        f"{name}: '{name}.{port.name}' is not linked, "
-                        "what comes there leaves the plant",
-                        self._spot(name, ()),
-                    )
+    def _lines_are_whole(self, pieces: AnyMapping[str, Equipment]) -> bool:
+        """Whether every line was read: if not, one may seem missing for another fault's sake."""
+        return len(pieces) == len(self.all_names) and not any(
+            f.code in LINE_FAULTS for f in self.faults
+        )
 
     def remark(self, code: str, text: str, place: Place | None) -> None:
         self.remarks.append(Fault(code, text).located(place))
-
-    def _used(self, pieces: AnyMapping[str, Equipment], lines: list[Line]) -> dict[str, Equipment]:
-        touched = {name for line in lines for name in (line.source, line.target)}
-        used = {}
-        for name, piece in pieces.items():
-            if name in touched:
-                used[name] = piece
-            else:
-                self.remark(
-                    "unused-equipment",
-                    f"{name}: no line touches it, it takes no part",
-                    self._spot(name, ()),
-                )
-        return used
