@@ -6,7 +6,7 @@ sunlight.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterator
+from collections.abc import Callable, Container, Iterator, Mapping, Sequence
 from dataclasses import dataclass
 from functools import partial
 
@@ -162,14 +162,7 @@ def _needs(found: Comparison) -> Iterator[Figure]:
         ("CO2_returned", "CO2 returned", "share"),
     )
     known = {r.name: needs(r.account) for r in found.solved if r.account is not None}
-    for key, label, unit in rows:
-
-        def need(route: Route, key: str = key, unit: str = unit) -> Value:
-            value = known[route.name][key]
-            scaled = value is not None and unit not in ("share", "number")
-            return value * found.scales[route.name] if scaled and value is not None else value
-
-        yield _row(found, "needs", key, label, unit, need)
+    yield from _amounts(found, "needs", rows, known, fixed=("share", "number"))
 
 
 def _heat(found: Comparison) -> Iterator[Figure]:
@@ -181,13 +174,24 @@ def _heat(found: Comparison) -> Iterator[Figure]:
         ("hottest_K", "hottest need", "K"),
     )
     known = {r.name: heat_needs(r.solution) for r in found.solved if r.solution is not None}
+    yield from _amounts(found, "heat", rows, known, fixed=("K",))
+
+
+def _amounts(
+    found: Comparison,
+    group: str,
+    rows: Sequence[tuple[str, str, str]],
+    known: Mapping[str, Mapping[str, float | None]],
+    fixed: Container[str],
+) -> Iterator[Figure]:
+    """Rows (key, label, unit) of amounts known by route, scaled unless their unit is `fixed`."""
     for key, label, unit in rows:
 
-        def heat(route: Route, key: str = key, unit: str = unit) -> Value:
+        def amount(route: Route, key: str = key, unit: str = unit) -> Value:
             value = known[route.name][key]
-            return value * found.scales[route.name] if value is not None and unit == "W" else value
+            return value if value is None or unit in fixed else value * found.scales[route.name]
 
-        yield _row(found, "heat", key, label, unit, heat)
+        yield _row(found, group, key, label, unit, amount)
 
 
 def _hazards(found: Comparison) -> Iterator[Figure]:
