@@ -110,6 +110,7 @@ def _carbon(carbon: CarbonAccount) -> Iterator[str]:
         yield _line("", f"{format_quantity(flow, 'mol/s')} out at {key}")
     if carbon.unknown:
         yield _line("CO2 intensity", f"not known: no origin for {', '.join(carbon.unknown)}")
+        yield _line("", _how_to_know(carbon.unknown))
         return
     for what, mass, rate in (
         ("fuel", carbon.emission("making"), carbon.fuel_lhv),
@@ -118,6 +119,17 @@ def _carbon(carbon: CarbonAccount) -> Iterator[str]:
         if mass is not None and rate > 0.0:
             shown = f"{format_number(1e3 * mass / rate * KWH, 4)} g/kWh of {what}"
             yield _line("CO2 intensity", f"{shown}, building the plant left out")
+
+
+def _how_to_know(unknown: tuple[str, ...]) -> str:
+    """What to write into the file so that the intensity is known."""
+    settings = {
+        "material": "'origin: fossil' (or biogenic, air) to the supply or store",
+        "power": "'carbon_intensity: 100 g/kWh' to the grid",
+        "heat": "the heat needs power or a heat-network, bought heat has no intensity",
+    }
+    kinds = dict.fromkeys(text.partition(" ")[0] for text in unknown)
+    return f"give {'; '.join(settings[kind] for kind in kinds)}"
 
 
 def _water(water: WaterAccount) -> Iterator[str]:

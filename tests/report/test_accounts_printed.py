@@ -33,6 +33,7 @@ def test_rungs_losses_carbon_and_water():
     assert re.search(r"field +destroyed in it +37.29 MW +78.5 %", text)
     assert re.search(r"capture.stackgas +thrown away with a stream", text)
     assert "not known: no origin for heat of fuel, material of bought" in text
+    assert "'origin: fossil' (or biogenic, air) to the supply or store" in text
 
 
 def test_every_loss_is_printed_or_summed():
