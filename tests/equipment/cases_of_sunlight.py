@@ -44,6 +44,8 @@ def field(add):
         {"light": NOON},
         extensive=(("strings",),),
     )
+    roof = {"model": "back-of-module", "mounting": "roof", "front_over_back": "2 K"}
+    add("one diode on a roof", "pv-field", {**diode, "cell_temperature": roof}, {"light": NOON})
     stack = Electrolyser.model_validate({"model": "voltage", "voltage": "1.9 V", **WARM})
     hung = {**diode, "series": 10, "coupling": {"load": "stack", "cells": 155}}
     add("on a stack", "pv-field", hung, {"light": NOON}, others={"stack": stack})

@@ -295,6 +295,17 @@ def test_a_leap_day_is_left_out(folder):
             {"model": "one-diode", "cell_temperature": {"model": "noct", "noct": "15 degC"}},
             "'noct' is not above the 20 degC",
         ),
+        (
+            {"model": "one-diode", "cell_temperature": {"mounting": "roof"}},
+            "'mounting' is of another model than faiman: remove it",
+        ),
+        (
+            {
+                "model": "one-diode",
+                "cell_temperature": {"model": "back-of-module", "mounting": "garage"},
+            },
+            "'open-rack', 'open-rack-glass', 'roof' or 'insulated'",
+        ),
         ({"model": "one-diode", "module": {"table": "no such *"}}, "fits no module of the table"),
         ({"model": "one-diode", "module": {"table": "*"}}, "modules of the table: "),
         ({"model": "one-diode", "module": {"table": 7}}, "'table' is a pattern of names in quotes"),
@@ -422,6 +433,30 @@ def test_a_year_at_once_is_its_hours_one_by_one():
     )
 
 
+def test_a_year_on_a_roof_is_its_hours_one_by_one():
+    """Every hour of the year at once, and the roof is never cooler than the open rack."""
+    year = sky(plane={"tilt": "36 deg"}).year()
+    roof, rack = (
+        PvField.model_validate(
+            {
+                "model": "one-diode",
+                "cell_temperature": {"model": "back-of-module", "mounting": mounting},
+            }
+        )
+        for mounting in ("roof", "open-rack")
+    )
+    together = roof.run({"light": year})
+    for hour in range(0, HOURS, 97):
+        alone = roof.run({"light": year.case(hour)})
+        for name in ("cell_temperature_K", "maximum_power_W"):
+            assert together.results[name][hour] == pytest.approx(
+                alone.results[name], rel=1e-14, abs=1e-9
+            )
+    cooler = rack.run({"light": year})
+    assert (together.results["cell_temperature_K"] >= cooler.results["cell_temperature_K"]).all()
+    assert together.outlets["power"].sum() < cooler.outlets["power"].sum()
+
+
 @pytest.mark.parametrize("hung", [True, False], ids=["on a stack", "at maximum power"])
 @pytest.mark.parametrize(
     "more",
@@ -429,10 +464,11 @@ def test_a_year_at_once_is_its_hours_one_by_one():
         {},
         {"strings": 8},
         {"cell_temperature": {"model": "noct"}},
+        {"cell_temperature": {"model": "back-of-module", "mounting": "roof"}},
         {"cell_temperature": {"model": "loss-factor"}},
         {"cell_temperature": {"model": "as-air"}},
     ],
-    ids=["faiman", "strings", "noct", "loss factor", "as air"],
+    ids=["faiman", "strings", "noct", "back of module", "loss factor", "as air"],
 )
 def test_slopes_of_one_diode_agree_with_differences(hung, more):
     """By rate, irradiance, beam, air and wind; on a stack whose voltage grows with current."""
