@@ -26,6 +26,13 @@ def sunlight(add):
         {**clear, "hour": "typical", "plane": {"mount": "single-axis", "ground_cover": "40 %"}},
         **sized,
     )
+    glass = {"tilt": "30 deg", "cover": {"coating": 1.29}}
+    add(
+        "clear sky, through glass",
+        "sunlight",
+        {**clear, "hour": "21 Dec 10:00", "plane": glass},
+        **sized,
+    )
     add("clear sky, at night", "sunlight", {**clear, "hour": "3 Mar 2:00"}, **sized)
     field(add)
     concentrator(add)

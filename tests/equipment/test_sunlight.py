@@ -107,6 +107,9 @@ def test_what_means_nothing_is_refused(settings, sentence):
         ({"tilt": "30"}, "has no unit"),
         ({"mount": "single-axis", "tilt": "30 deg"}, "'tilt' means nothing with mount single-axis"),
         ({"mount": "fixed", "ground_cover": 0.4}, "'ground_cover' means nothing with mount fixed"),
+        ({"cover": {"slant_loss": 0.1}}, "'slant_loss' is of another model than fresnel"),
+        ({"cover": {"model": "ashrae", "index": 1.5}}, "'index' is of another model than ashrae"),
+        ({"cover": {"coating": 1.6}}, "wanted a lower index, as 1.29"),
     ],
 )
 def test_planes_that_cannot_be(plane, sentence):
