@@ -10,6 +10,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from pydantic import ValidationError
 
+from chainflow.basis.faults import FileFault
 from chainflow.equipment.csv_points import CurveFault
 from chainflow.equipment.photo.cell_curve import CellCurve, MeasuredCell
 from chainflow.equipment.photoelectrode import Photoelectrode
@@ -220,7 +221,7 @@ def test_scatter_is_levelled(tmp_path, plain):
     assert density(piece) == pytest.approx(plain, rel=0.03)
 
 
-@settings(max_examples=150, deadline=None, derandomize=True)
+@settings(max_examples=300, deadline=None, derandomize=True)
 @given(
     st.lists(
         st.tuples(st.integers(-10, 40), st.floats(-60.0, 60.0, allow_nan=False)),
@@ -270,6 +271,14 @@ def test_any_points_become_a_curve_that_falls_or_are_refused(points):
 )
 def test_curves_that_cannot_be(tmp_path, rows, says):
     assert said(tmp_path, rows).startswith(says)
+
+
+def test_a_curve_that_is_not_there(tmp_path):
+    with pytest.raises(
+        FileFault, match=r"cannot read the curve 'cell\.csv': No such file"
+    ) as caught:
+        device(tmp_path)
+    assert caught.value.exit_code == 4
 
 
 @pytest.mark.parametrize(

@@ -34,6 +34,8 @@ from chainflow.equipment.photo.measured_points import (
 
 FALL = 1e-7  # [1/V], of the short-circuit current: what a flat piece falls at least, our own
 _NEAR = 1e-9  # relative
+_LEAST = 1e-3  # [A/m2], a current that counts as none
+_NOTHING = 1e-6  # of the largest current, beyond open circuit: no light fell on the cell
 _CURVE = Form(
     {
         "voltage": Wanted("V", "a voltage in V"),
@@ -189,7 +191,7 @@ def _between_circuits(points: list[CurvePoint], prefix: str) -> list[CurvePoint]
     least = max((-p.drive for p in points if p.drive >= 0.0), default=-points[-1].drive)
     inside = [point for point in points if -point.drive >= least]
     highest = max(point.density for point in inside)
-    if highest <= 0.0:
+    if highest <= max(_LEAST, _NOTHING * max(abs(point.density) for point in inside)):
         raise CurveFault(
             f"{prefix}no current flows at short circuit, wanted the curve in the light"
         )
@@ -213,9 +215,10 @@ def _trimmed(falling: list[tuple[float, float]], prefix: str) -> CellPoints:
         (v, j), (w, k) = steep[second - 1], steep[second]
         steep = [(0.0, j + (k - j) * v / (v - w)), *(p for p in steep[second:] if p[0] > 0.0)]
     end = next((i for i, (_, j) in enumerate(steep) if j <= 0.0), None)
-    if end is not None and end > 0:
-        (v, j), (w, k) = steep[end - 1], steep[end]
-        steep = [*steep[:end], (v + (w - v) * j / (j - k), 0.0)]
-    if len(steep) < 2 or steep[-1][0] <= 0.0:
+    if end == 0 or steep[-1][0] <= 0.0:
         raise CurveFault(f"{prefix}no current flows at any voltage above zero: it gives no power")
+    if end is not None:
+        (v, j), (w, k) = steep[end - 1], steep[end]
+        opened = v + (w - v) * j / (j - k)
+        steep = [*steep[: end if opened > v else end - 1], (opened, 0.0)]
     return CellPoints(tuple(v for v, _ in steep), tuple(j for _, j in steep))
