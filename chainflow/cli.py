@@ -291,7 +291,8 @@ def limits(
 
     if context.args:
         raise UsageFault(
-            f"{shorten(context.args[0])} stands alone: put a number and its unit in quotes, --gap '2.1 eV'"
+            f"{shorten(context.args[0])} stands alone: put a number and its unit in quotes, "
+            "--gap '2.1 eV'"
         )
     if not gap:
         raise UsageFault("no band gap is given: chainflow limits --gap '2.1 eV'")

@@ -310,12 +310,23 @@ def test_a_leap_day_is_left_out(folder):
             "'open-rack', 'open-rack-glass', 'roof' or 'insulated'",
         ),
         ({"model": "one-diode", "module": {"table": "no such *"}}, "fits no module of the table"),
-        ({"model": "one-diode", "module": {"table": "*"}}, "modules of the table: "),
+        (
+            {"model": "one-diode", "module": {"table": "*"}},
+            "modules of the table, wanted one: narrow it with more of the name",
+        ),
         ({"model": "one-diode", "module": {"table": 7}}, "'table' is a pattern of names in quotes"),
     ],
 )
 def test_fields_that_cannot_be(settings, sentence):
     assert sentence in said(settings, PvField)
+
+
+def test_a_pattern_that_fits_many_modules_names_none_of_them():
+    table = pvlib.pvsystem.retrieve_sam("CECMod").columns
+    text = said({"model": "one-diode", "module": {"table": "*a*"}}, PvField)
+    many = sum("a" in name.lower() for name in table)
+    assert text.startswith(f"'*a*' fits {many} modules of the table")
+    assert not any(name in text or name.partition("_")[0] in text.split() for name in table)
 
 
 def test_more_modules_than_the_light_falls_on():
