@@ -11,6 +11,7 @@ import contextlib
 import functools
 import os
 import sys
+import warnings
 from collections.abc import Callable, Iterable
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any
@@ -58,6 +59,8 @@ def main() -> None:
     # None if the caller closed them; open for the whole run
     sys.stdout = sys.stdout or open(os.devnull, "w")  # noqa: SIM115
     sys.stderr = sys.stderr or open(os.devnull, "w")  # noqa: SIM115
+    # pvlib still uses a name that pandas gives up: nothing that a user could mend
+    warnings.filterwarnings("ignore", r"DatetimeIndex\.dayofyear", DeprecationWarning, r"pvlib\.")
     try:
         app()
     except KeyboardInterrupt:
