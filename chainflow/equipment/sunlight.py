@@ -208,6 +208,7 @@ class Sunlight(Equipment):
     def year(self) -> Light:
         """Return the light of all 8760 hours as a batch: five arrays of shape (8760,).
 
+        With a cover on the plane it is what gets through it.
         ``field.run({"light": sun.year()})`` is a year of a field. ValueError if the irradiance is
         stated: one number has no year.
         """
