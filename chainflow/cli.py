@@ -11,6 +11,7 @@ import contextlib
 import functools
 import os
 import sys
+import warnings
 from collections.abc import Callable, Iterable
 from pathlib import Path
 from typing import TYPE_CHECKING, Annotated, Any
@@ -58,6 +59,8 @@ def main() -> None:
     # None if the caller closed them; open for the whole run
     sys.stdout = sys.stdout or open(os.devnull, "w")  # noqa: SIM115
     sys.stderr = sys.stderr or open(os.devnull, "w")  # noqa: SIM115
+    # pvlib still uses a name that pandas gives up: nothing that a user could mend
+    warnings.filterwarnings("ignore", r"DatetimeIndex\.dayofyear", DeprecationWarning, r"pvlib\.")
     try:
         app()
     except KeyboardInterrupt:
@@ -253,9 +256,13 @@ def kinds(
         raise UsageFault(f"there is no kind {shorten(kind)}{hint}")
 
 
-@app.command()
+@app.command(
+    options_metavar="--gap GAP [--gap GAP] [OPTIONS]",
+    context_settings={"allow_extra_args": True},  # told below, what a unit without quotes leaves
+)
 @reported
 def limits(
+    context: typer.Context,
     gap: Annotated[
         list[str] | None,
         typer.Option(
@@ -273,7 +280,6 @@ def limits(
         ),
     ] = "0.8 V",
     json: JsonOption = None,
-    rest: Annotated[list[str] | None, typer.Argument(hidden=True)] = None,
 ) -> None:
     """Print how much hydrogen one band gap, or a pair, could make of sunlight at best.
 
@@ -286,9 +292,10 @@ def limits(
     from chainflow.studies.limits import limits as find_limits
     from chainflow.studies.limits import limits_document
 
-    if rest:
+    if context.args:
         raise UsageFault(
-            f"{shorten(rest[0])} stands alone: put a number and its unit in quotes, --gap '2.1 eV'"
+            f"{shorten(context.args[0])} stands alone: put a number and its unit in quotes, "
+            "--gap '2.1 eV'"
         )
     if not gap:
         raise UsageFault("no band gap is given: chainflow limits --gap '2.1 eV'")

@@ -12,6 +12,7 @@ from dataclasses import dataclass
 from typing import NamedTuple
 
 from chainflow.accounts.flammability import ALARM_SHARE, LIMITS, NO_GAS, Mixture, gas_mixture
+from chainflow.accounts.mirrors import mirrors_astray
 from chainflow.basis.constants import ICE_POINT
 from chainflow.basis.formatting import format_quantity
 from chainflow.solver.solution import Solution, SolvedStream
@@ -73,6 +74,9 @@ def cautions(solution: Solution) -> tuple[Remark, ...]:
         Remark(caution.code, name, caution.text)
         for name, outcome in solution.outcomes.items()
         for caution in outcome.cautions
+    ]
+    own += [
+        Remark("sun-not-followed", name, text) for name, text in mirrors_astray(solution.flowsheet)
     ]
     return (*own, *_dusting(solution), *stream_cautions(solution))
 

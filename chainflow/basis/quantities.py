@@ -122,9 +122,10 @@ class QuantityType:
 
     @property
     def is_factor(self) -> bool:
-        """Whether it is a plain number that may be above one, so that per cent would mislead."""
+        """Whether it is a plain number that may be above one or below zero: no per cent."""
         above_one = self.limits.lt is None and (self.limits.le is None or self.limits.le > 1.0)
-        return above_one and not any(resolve(self.unit).exponents)
+        below_zero = self.limits.ge is not None and self.limits.ge < 0.0
+        return (above_one or below_zero) and not any(resolve(self.unit).exponents)
 
     def means(self) -> str:
         """Say what is wanted, with the range: "a pressure in bar or another such unit"."""

@@ -15,6 +15,7 @@ from collections.abc import Mapping
 from pathlib import Path
 from typing import NamedTuple
 
+from chainflow.basis.faults import FileFault
 from chainflow.basis.names import shorten
 from chainflow.basis.units import Unit, UnitFault, noun, resolve
 
@@ -59,7 +60,8 @@ class _Column(NamedTuple):
 def read_points(name: str, folder: str | Path, form: Form) -> list[Point]:
     """Return the points of a CSV file in its order.
 
-    A relative name counts from `folder`. Raises `CurveFault`.
+    A relative name counts from `folder`. Raises `FileFault` if there is no such file, `CurveFault`
+    if it is no curve.
     """
     shown = shorten(name, 100)
     rows = _rows(Path(folder) / name, shown)
@@ -82,7 +84,7 @@ def _rows(path: Path, shown: str) -> list[tuple[int, list[str]]]:
             content = file.read(LARGEST + 1)
     except (OSError, ValueError) as error:
         reason = getattr(error, "strerror", None) or "it is no path of a file"
-        raise CurveFault(f"cannot read the curve {shown}: {reason}") from None
+        raise FileFault(f"cannot read the curve {shown}: {reason}") from None
     if len(content) > LARGEST:
         raise CurveFault(f"{shown} is larger than {LARGEST} bytes: leave points out")
     try:

@@ -42,6 +42,7 @@ from chainflow.equipment.base import (
 from chainflow.equipment.cells.gases import LiquidFed, Made
 from chainflow.equipment.cells.losses import Share
 from chainflow.equipment.photo import device_report
+from chainflow.equipment.photo.cell_curve import MeasuredCell
 from chainflow.equipment.photo.circuit import Circuit
 from chainflow.equipment.photo.device_formulas import FORMULAS, SOURCES
 from chainflow.equipment.photo.device_settings import (
@@ -51,6 +52,7 @@ from chainflow.equipment.photo.device_settings import (
     ElectrodeShape,
     Resistance,
     SolarCell,
+    light_of_cell,
     plateau,
     setting_faults,
     wrong_together,
@@ -60,7 +62,7 @@ from chainflow.equipment.photo.electrode_curves import (
     MeasuredElectrode,
     ShapedElectrode,
 )
-from chainflow.equipment.photo.junctions import Junction
+from chainflow.equipment.photo.junctions import Junction, Source
 from chainflow.equipment.photo.light_paths import Paths, current_above, light_paths
 from chainflow.equipment.photo.measured_points import (
     EfficiencyCurve,
@@ -269,15 +271,17 @@ class Photoelectrode(Equipment):
         onset, half = (self.direction * v for v in (self.shape.onset, self.shape.half_wave))
         return ShapedElectrode(onset, half, self.shape.width, plateau(self) * irradiance)
 
-    def _junctions(self, irradiance: float) -> tuple[Junction, ...]:
+    def _junctions(self, irradiance: float) -> tuple[Source, ...]:
         cell = self.cell
         if cell is None:
             return ()
+        if cell.curve is not None:
+            return (self._measured_cell(cell, irradiance),)
         count, part = cell.in_series, cell.beside or 1.0
         level = cell.ideality * thermal_voltage(self.temperature)
         wide = count * count / part  # a cell has `part / count` of the aperture, `count` add up
         shunt = inf if cell.shunt_resistance is None else cell.shunt_resistance * wide
-        found = []
+        found: list[Source] = []
         for taken in self.paths.junctions:
             full = FULL_SUN * current_above(taken.gap)
             dark = emission(taken.gap, self.temperature) / cell.radiative_efficiency
@@ -286,6 +290,15 @@ class Photoelectrode(Equipment):
             series = cell.series_resistance * wide
             found.append(Junction(made, dark * part / count, level * count, series, shunt))
         return tuple(found)
+
+    def _measured_cell(self, cell: SolarCell, irradiance: float) -> MeasuredCell:
+        """A measured cell in its light: of all its junctions that with the fewest photons tells."""
+        assert cell.curve is not None
+        part = cell.beside or 1.0
+        now = min(taken.photons for taken in self.paths.junctions) / part * irradiance
+        then = light_of_cell(self) * (cell.measured_at or FULL_SUN)
+        resistance = cell.series_resistance
+        return MeasuredCell(cell.curve.cleaned(), now / then, cell.in_series, part, resistance)
 
     def operate(self, feeds: Feeds, asked: Mapping[str, Any], site: Site) -> Outcome:
         arriving = light(feeds)

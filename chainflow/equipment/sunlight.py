@@ -27,7 +27,7 @@ from chainflow.basis.constants import T_REFERENCE
 from chainflow.basis.names import shorten
 from chainflow.basis.quantities import Area, Fraction, Irradiance, Temperature, measured
 from chainflow.equipment.base import Caution, Equipment, Light, Outcome, Port, Role, Site
-from chainflow.equipment.ports import Feeds
+from chainflow.equipment.ports import Feeds, Flow
 from chainflow.equipment.setting_numbers import stated
 from chainflow.equipment.sun import plane, sky, spectrum
 from chainflow.equipment.sun.hours import HourFault, hour_of, name_of
@@ -66,6 +66,13 @@ def _hour(given: str) -> str:
     return given
 
 
+_REFLECTED = Port(
+    "reflected",
+    "light",
+    Role.OFFERS,
+    optional=True,
+    means="slanting light that the plane's cover turns back",
+)
 WeatherFile = Annotated[
     InstanceOf[Weather],
     BeforeValidator(_weather),
@@ -113,6 +120,10 @@ class Sunlight(Equipment):
 
     An hour is named by its end in local standard time, as weather files stamp it; the sun counts
     where it stands half an hour before. The spectrum has the shape of ASTM G173-03, global, always.
+
+    With a `cover` on the plane `light` is what gets through it, and what it turns back because it
+    slants leaves as `reflected`; without one, the default, no light is lost for its angle. The hour
+    is chosen by all that falls.
     """
 
     kind: ClassVar[str] = "sunlight"
@@ -124,6 +135,7 @@ class Sunlight(Equipment):
         "incidence_rad",
         "year_in_plane_J_m2",
         "year_direct_in_plane_J_m2",
+        "year_reflected_J_m2",
         "year_horizontal_J_m2",
         "year_direct_J_m2",
         "year_diffuse_J_m2",
@@ -133,9 +145,10 @@ class Sunlight(Equipment):
     )
     ports: ClassVar[tuple[Port, ...]] = (
         Port("light", "light", Role.OFFERS, main=True, means="light on the aperture"),
+        _REFLECTED,
     )
     formulas: ClassVar[tuple[str, ...]] = (
-        "light = irradiance * aperture",
+        "light + reflected = irradiance * aperture",
         "irradiance in the plane = beam * cos(incidence) + sky + ground",
         "year = sum over 8760 hours of irradiance * 3600 s",
     )
@@ -178,6 +191,10 @@ class Sunlight(Equipment):
             raise PydanticCustomError("sunlight", "{text}", {"text": text})
         return self
 
+    def port_list(self) -> tuple[Port, ...]:
+        covered = self.plane is not None and self.plane.cover is not None
+        return self.ports if covered else tuple(p for p in self.ports if p is not _REFLECTED)
+
     # --- the year ----------------------------------------------------------------------------
 
     @property
@@ -191,6 +208,7 @@ class Sunlight(Equipment):
     def year(self) -> Light:
         """Return the light of all 8760 hours as a batch: five arrays of shape (8760,).
 
+        With a cover on the plane it is what gets through it.
         ``field.run({"light": sun.year()})`` is a year of a field. ValueError if the irradiance is
         stated: one number has no year.
         """
@@ -198,9 +216,9 @@ class Sunlight(Equipment):
         if weather is None:
             raise ValueError("a stated irradiance has no year: give 'weather' or 'place'")
         found = self._in_plane(weather)
-        rates = found.total * self.aperture
+        rates = found.admitted * self.aperture
         return Light(  # arrays in the place of single numbers
-            *_untyped(rates, found.total, found.direct, weather.air, weather.wind)
+            *_untyped(rates, found.admitted, found.direct, weather.air, weather.wind)
         )
 
     def _in_plane(self, weather: Weather) -> InPlane:
@@ -226,22 +244,24 @@ class Sunlight(Equipment):
             )
         found = self._in_plane(weather)
         hour = self._chosen(found.total)
-        light = Light(
-            float(found.total[hour]) * self.aperture,
-            float(found.total[hour]),
-            float(found.direct[hour]),
-            float(weather.air[hour]),
-            float(weather.wind[hour]),
-        )
+        admitted, total = float(found.admitted[hour]), float(found.total[hour])
+        air, wind = float(weather.air[hour]), float(weather.wind[hour])
+        light = Light(admitted * self.aperture, admitted, float(found.direct[hour]), air, wind)
+        outlets: dict[str, Flow] = {"light": light}
+        if _REFLECTED in self.port_list():
+            beam = float(found.beam[hour] - found.admitted_beam[hour])
+            lost = total - admitted
+            share = beam / lost if lost > 0.0 else 0.0
+            outlets["reflected"] = Light(lost * self.aperture, lost, share, air, wind)
         dark = Caution(
             "dark-hour", f"in the hour that ends at {name_of(hour)} no light falls on the aperture"
         )
         return Outcome(
-            {"light": light},
+            outlets,
             results={"hour_of_year": float(hour + 1)}
             | _angles(found, hour)
             | _sums(weather, found),
-            cautions=() if light.rate > 0.0 else (dark,),
+            cautions=() if total > 0.0 else (dark,),
         )
 
 
@@ -268,6 +288,7 @@ def _sums(weather: Weather, found: InPlane) -> dict[str, float]:
     sums = {
         "year_in_plane_J_m2": found.total,
         "year_direct_in_plane_J_m2": found.beam,
+        "year_reflected_J_m2": found.total - found.admitted,
         "year_horizontal_J_m2": weather.horizontal,
         "year_direct_J_m2": weather.direct,
         "year_diffuse_J_m2": weather.diffuse,

@@ -153,16 +153,16 @@ class _Builder:
             linkage.missing_lines()
         contents = roles.contents(joined, self.faults)
         roles.check_counts(joined, self.faults)
-        lines = roles.assign(joined, contents, pieces, self.faults)
+        broken = self._broken(pieces)
+        lines = roles.assign(joined, contents, pieces, self.faults, complete=not broken)
         ends = {name for line in lines for name in (line.source, line.target)}
         used = {name: piece for name, piece in pieces.items() if name in ends}
         linkage.idle(used)
-        broken = self._broken(pieces)
         known = components or DEFAULT_COMPONENTS
         holds = HoldReader(pieces, broken, known, self.faults).read(self.root.get("holds"))
         if whole:
             linkage.unmoved(holds, used)
-        used = Sight(used, lines, holds, self.fault, self._spot).seeing()
+        used = Sight(used, lines, holds, broken, self.fault, self._spot).seeing()
         starts = frozenset(f"{line.source}.{line.outlet.name}" for line in joined)
         blocks = read_blocks(self.root, pieces, broken, known, starts, self.faults)
         self.stop_on_faults()

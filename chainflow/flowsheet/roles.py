@@ -75,11 +75,15 @@ def assign(
     kinds: Sequence[str],
     equipment: Mapping[str, Equipment],
     faults: list[Fault],
+    complete: bool = True,
 ) -> list[Line]:
-    """Decide for each line whether it is called, and refuse ends that do not agree."""
+    """Decide for each line whether it is called, and refuse ends that do not agree.
+
+    Where equipment is missing that could not be made it is not `complete`.
+    """
     called = _called(joined, kinds, equipment, faults)
     lines = []
-    sound = not faults  # a call may be missing only because something else is wrong
+    sound = complete and not faults  # a call may be missing only because something else is wrong
     for i, line in enumerate(joined):
         if sound and not called[i] and line.outlet.role is Role.SERVES:
             faults.append(_nobody_sets(line, equipment))

@@ -25,10 +25,12 @@ class Sight:
         pieces: Mapping[str, Equipment],
         lines: Sequence[Line],
         holds: Sequence[Hold],
+        broken: frozenset[str],
         fault: Callable[[str, str, Place | None], None],
         spot: Callable[[str, Path], Place | None],
     ) -> None:
         self.pieces, self.lines, self.holds = pieces, lines, holds
+        self.broken = broken  # pieces with faults of their own: nothing is said of them here
         self.fault, self.spot = fault, spot
 
     def seeing(self) -> dict[str, Equipment]:
@@ -38,6 +40,8 @@ class Sight:
     def _seeing(self, name: str, piece: Equipment) -> Equipment:
         seen: dict[str, Equipment] = {}
         for path, other, outlet in piece.sees():
+            if other in self.broken:
+                return piece
             code, trouble = self._trouble(name, piece, other, outlet)
             if trouble:
                 self.fault(code, f"{name}: {'.'.join(path)}: {trouble}", self.spot(name, path))

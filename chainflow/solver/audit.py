@@ -145,9 +145,7 @@ def _crossing(finish: Finish) -> list[tuple[float, Flow]]:
         if extra is not None:
             found.append((1.0, extra))
     for stream in finish.streams:
-        if not stream.targets and not isinstance(
-            flowsheet.equipment[stream.source], Supply | Sunlight | Grid
-        ):
+        if not stream.targets and not isinstance(flowsheet.equipment[stream.source], Supply | Grid):
             found.append((-1.0, stream.flow))
     return found
 

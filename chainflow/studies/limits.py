@@ -134,7 +134,7 @@ def limits_document(found: Limits) -> dict[str, Any]:
         "irradiance_W_m2": found.irradiance,
         "temperature_K": T_REFERENCE,
         "absorbers": [_absorber_entry(one) for one in found.absorbers],
-        "best_cell": _best_entry(found.best_cell),
+        "best_cell": _best_entry(found.best_cell, "efficiency"),
         "splitting": [_splitting_entry(one) for one in found.splitting],
     }
 
@@ -176,10 +176,10 @@ def _splitting_entry(one: Splitting) -> dict[str, Any]:
     }
 
 
-def _best_entry(best: Best | None) -> dict[str, Any] | None:
+def _best_entry(best: Best | None, name: str = "solar_to_hydrogen") -> dict[str, Any] | None:
     if best is None:
         return None
-    return {"gaps_eV": [in_volts(gap) for gap in best.gaps], "efficiency": best.efficiency}
+    return {"gaps_eV": [in_volts(gap) for gap in best.gaps], name: best.efficiency}
 
 
 def in_volts(gap: float) -> float:

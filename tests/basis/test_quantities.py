@@ -306,6 +306,7 @@ def test_the_marker_can_be_found_on_the_model():
     ("marker", "value", "shown", "takes"),
     [
         (measured("1", gt=1, le=30), 22.0, "22", "a number; above 1, at most 30"),
+        (measured("1", ge=-6, le=0), -3.5, "-3.5", "a number; at least -6, at most 0"),
         (
             measured("1", ge=0, le=1),
             0.3,

@@ -327,6 +327,79 @@ def test_a_weather_file_that_is_not_there(run, file):
     assert "there is no setting 'stages'" in result.stderr
 
 
+LIT = """
+equipment:
+  sun: {kind: sunlight, irradiance: 800 W/m2, aperture: 10 m2}
+  water: {kind: store, contents: {H2O: 1}, temperature: 25 degC, pressure: 1 bar}
+  device:
+    kind: photoelectrode
+    band_gap: 2.0 eV
+    %s
+  fuel: {kind: product}
+lines:
+  - sun.light -> device.light
+  - water.draw -> device.water
+  - device.hydrogen -> fuel
+"""
+SHAPE = "shape: {onset: 0.5 V, half_wave: 0.8 V}"
+
+
+@pytest.mark.parametrize(
+    "settings",
+    [
+        "curve: none.csv",
+        f"quantum_efficiency: none.csv\n    {SHAPE}",
+        f"{SHAPE}\n    cell: {{gaps: [1.1 eV], curve: none.csv}}",
+    ],
+    ids=["electrode", "quantum efficiency", "cell"],
+)
+def test_a_curve_that_is_not_there(run, file, settings):
+    """As a weather file that is not there: a file cannot be read, 4."""
+    file.write_text(LIT % settings)
+    result = run("solve", file)
+    assert result.exit_code == 4
+    said = "device: cannot read the curve 'none.csv': No such file or directory"
+    assert f":5:3: {said}" in result.stderr
+    assert len(result.stderr.splitlines()) == 1
+
+
+HUNG = """
+equipment:
+  sun: {kind: sunlight, irradiance: 800 W/m2, aperture: 1000 m2}
+  field: {kind: pv-field, model: one-diode, coupling: {load: stack, cells: 300}}
+  water: {kind: store, contents: {H2O: 1}, temperature: 25 degC, pressure: 2 bar}
+  stack:
+    {kind: electrolyser, model: measured, curve: none.csv, cell_area: 1 m2, pressure: 1 bar,
+     temperature: 60 degC}
+  fuel: {kind: product}
+lines:
+  - sun.light -> field.light
+  - field.power -> stack.power
+  - water.draw -> stack.water
+  - stack.hydrogen -> fuel
+"""
+
+
+def test_a_field_that_hangs_on_a_stack_whose_curve_is_not_there(run, file):
+    """That the stack could not be made is no second fault."""
+    file.write_text(HUNG)
+    result = run("check", file)
+    assert result.exit_code == 4
+    assert result.stderr.count("\n") == 1
+    assert ":6:3: stack: cannot read the curve 'none.csv'" in result.stderr
+
+
+def test_a_stack_s_curve_that_is_not_there(run, file):
+    """What hangs on the missing piece, as the call of its pump, is no fault of its own."""
+    stated = "energy_use: 52 kWh/kg,"
+    assert stated in HYDROGEN
+    file.write_text(HYDROGEN.replace(stated, "model: measured, curve: none.csv, cell_area: 1 m2,"))
+    result = run("solve", file)
+    assert result.exit_code == 4
+    assert "stack: cannot read the curve 'none.csv': No such file" in result.stderr
+    assert len(result.stderr.splitlines()) == 1
+
+
 def test_why_without_an_efficiency_keeps_the_answer(run, file, tmp_path):
     written = tmp_path / "night.json"
     result = run("solve", file, "--set", "sun=0 W/m2", "--why", "--json", written)

@@ -50,6 +50,11 @@ def test_json_to_a_file_beside_the_answer(run, tmp_path):
     assert json.loads((tmp_path / "a.json").read_text())["absorbers"][0]["gap_eV"] == 2.0
 
 
+def test_the_usage_says_what_is_typed(run):
+    usage = run("limits", "--help").stdout.splitlines()[0]
+    assert usage.endswith("limits --gap GAP [--gap GAP] [OPTIONS]")
+
+
 @pytest.mark.parametrize(
     ("words", "says"),
     [

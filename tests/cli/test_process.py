@@ -97,3 +97,22 @@ def test_the_front_is_cheap_to_import(code):
         [sys.executable, "-c", code], capture_output=True, text=True, timeout=60
     )
     assert result.stdout == "[]\n"
+
+
+CLEAR = """
+equipment:
+  sun: {kind: sunlight, place: {latitude: 46 deg, longitude: 9 deg}, aperture: 1000 m2}
+  field: {kind: pv-field, efficiency: 20 %}
+  out: {kind: product}
+lines:
+  - sun.light -> field.light
+  - field.power -> out
+"""
+
+
+@pytest.mark.parametrize("shown", ["", "default", "error::DeprecationWarning:pvlib.tools"])
+def test_names_that_libraries_give_up_are_no_word_to_the_user(file, shown):
+    """Whatever warnings he has Python show; pvlib warns of pandas when it computes the sky."""
+    file.write_text(CLEAR)
+    result = run("solve", file, PYTHONWARNINGS=shown)
+    assert (result.returncode, result.stderr) == (0, "")

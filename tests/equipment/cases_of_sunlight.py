@@ -26,6 +26,13 @@ def sunlight(add):
         {**clear, "hour": "typical", "plane": {"mount": "single-axis", "ground_cover": "40 %"}},
         **sized,
     )
+    glass = {"tilt": "30 deg", "cover": {"coating": 1.29}}
+    add(
+        "clear sky, through glass",
+        "sunlight",
+        {**clear, "hour": "21 Dec 10:00", "plane": glass},
+        **sized,
+    )
     add("clear sky, at night", "sunlight", {**clear, "hour": "3 Mar 2:00"}, **sized)
     field(add)
     concentrator(add)
@@ -44,6 +51,8 @@ def field(add):
         {"light": NOON},
         extensive=(("strings",),),
     )
+    roof = {"model": "back-of-module", "mounting": "roof", "front_over_back": "2 K"}
+    add("one diode on a roof", "pv-field", {**diode, "cell_temperature": roof}, {"light": NOON})
     stack = Electrolyser.model_validate({"model": "voltage", "voltage": "1.9 V", **WARM})
     hung = {**diode, "series": 10, "coupling": {"load": "stack", "cells": 155}}
     add("on a stack", "pv-field", hung, {"light": NOON}, others={"stack": stack})

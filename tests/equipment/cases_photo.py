@@ -13,6 +13,12 @@ EFFICIENCY = {
     "wavelength": ["350 nm", "400 nm", "450 nm", "500 nm", "540 nm"],
     "efficiency": ["60 %", "75 %", "70 %", "40 %", "5 %"],
 }
+CELL = {
+    "voltage": ["0 V", "0.2 V", "0.4 V", "0.5 V", "0.55 V", "0.6 V", "0.64 V", "0.67 V"],
+    "current_density": [
+        f"{j} mA/cm2" for j in ("38", "37.9", "37.6", "36.2", "33.5", "26", "13", "-2")
+    ],
+}
 OXIDE = {"band_gap": "2.0 eV", "shape": {"onset": "0.5 V", "half_wave": "0.8 V"}}
 TANDEM = {**OXIDE, "cell": {"gaps": ["1.1 eV"], "in_series": 2}}
 
@@ -62,6 +68,18 @@ def photoelectrodes(add):
             "counter_electrode": {"tafel_slope": "60 mV", "exchange_current": "1e-6 A/m2"},
         },
         {"light": NOON, "water": water},
+    )
+    add(
+        "measured cell",
+        "photoelectrode",
+        {**OXIDE, "cell": {"gaps": ["1.1 eV"], "in_series": 2, "curve": CELL}},
+        noon,
+    )
+    add(
+        "measured cell beside",
+        "photoelectrode",
+        {**OXIDE, "cell": {"gaps": ["1.1 eV"], "place": "beside", "in_series": 3, "curve": CELL}},
+        noon,
     )
     add(
         "by wavelength, bias bought",

@@ -4,6 +4,7 @@ import numpy as np
 import pytest
 from pydantic import ValidationError
 
+from chainflow.basis.faults import FileFault
 from chainflow.equipment.cells.measured import MeasuredCurve
 from chainflow.thermo.components import Matter
 from tests.equipment.feeds import MATTER
@@ -104,7 +105,7 @@ def test_a_file_that_is_too_large_or_no_text_is_refused(tmp_path):
     path.write_bytes(b"\xff\xfe\x00i")
     with pytest.raises(ValidationError, match="is not UTF-8 text"):
         measured(path)
-    with pytest.raises(ValidationError, match="cannot read the curve"):
+    with pytest.raises(FileFault, match="cannot read the curve"):
         measured(tmp_path)
 
 

@@ -8,6 +8,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from pydantic import ValidationError
 
+from chainflow.basis.faults import FileFault
 from chainflow.equipment.photo.measured_points import PhotoCurve
 from chainflow.equipment.photoelectrode import Photoelectrode
 from tests.equipment.photo import codes, results
@@ -216,7 +217,7 @@ def test_a_value_that_is_no_number_is_named_by_line(tmp_path):
 def test_too_few_points_or_none_that_works(tmp_path):
     assert "2 potentials are given, wanted at least three" in said(tmp_path, CURVE[:2])
     assert "every current is zero" in said(tmp_path, [(v, 0.0) for v, _ in CURVE])
-    with pytest.raises(ValidationError, match="cannot read the curve"):
+    with pytest.raises(FileFault, match=r"cannot read the curve 'nowhere\.csv': No such file"):
         device(tmp_path, curve="nowhere.csv")
 
 

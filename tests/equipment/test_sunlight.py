@@ -107,6 +107,9 @@ def test_what_means_nothing_is_refused(settings, sentence):
         ({"tilt": "30"}, "has no unit"),
         ({"mount": "single-axis", "tilt": "30 deg"}, "'tilt' means nothing with mount single-axis"),
         ({"mount": "fixed", "ground_cover": 0.4}, "'ground_cover' means nothing with mount fixed"),
+        ({"cover": {"slant_loss": 0.1}}, "'slant_loss' is of another model than fresnel"),
+        ({"cover": {"model": "ashrae", "index": 1.5}}, "'index' is of another model than ashrae"),
+        ({"cover": {"coating": 1.6}}, "wanted a lower index, as 1.29"),
     ],
 )
 def test_planes_that_cannot_be(plane, sentence):
@@ -295,13 +298,35 @@ def test_a_leap_day_is_left_out(folder):
             {"model": "one-diode", "cell_temperature": {"model": "noct", "noct": "15 degC"}},
             "'noct' is not above the 20 degC",
         ),
+        (
+            {"model": "one-diode", "cell_temperature": {"mounting": "roof"}},
+            "'mounting' is of another model than faiman: remove it",
+        ),
+        (
+            {
+                "model": "one-diode",
+                "cell_temperature": {"model": "back-of-module", "mounting": "garage"},
+            },
+            "'open-rack', 'open-rack-glass', 'roof' or 'insulated'",
+        ),
         ({"model": "one-diode", "module": {"table": "no such *"}}, "fits no module of the table"),
-        ({"model": "one-diode", "module": {"table": "*"}}, "modules of the table: "),
+        (
+            {"model": "one-diode", "module": {"table": "*"}},
+            "modules of the table, wanted one: narrow it with more of the name",
+        ),
         ({"model": "one-diode", "module": {"table": 7}}, "'table' is a pattern of names in quotes"),
     ],
 )
 def test_fields_that_cannot_be(settings, sentence):
     assert sentence in said(settings, PvField)
+
+
+def test_a_pattern_that_fits_many_modules_names_none_of_them():
+    table = pvlib.pvsystem.retrieve_sam("CECMod").columns
+    text = said({"model": "one-diode", "module": {"table": "*a*"}}, PvField)
+    many = sum("a" in name.lower() for name in table)
+    assert text.startswith(f"'*a*' fits {many} modules of the table")
+    assert not any(name in text or name.partition("_")[0] in text.split() for name in table)
 
 
 def test_more_modules_than_the_light_falls_on():
@@ -422,6 +447,30 @@ def test_a_year_at_once_is_its_hours_one_by_one():
     )
 
 
+def test_a_year_on_a_roof_is_its_hours_one_by_one():
+    """Every hour of the year at once, and the roof is never cooler than the open rack."""
+    year = sky(plane={"tilt": "36 deg"}).year()
+    roof, rack = (
+        PvField.model_validate(
+            {
+                "model": "one-diode",
+                "cell_temperature": {"model": "back-of-module", "mounting": mounting},
+            }
+        )
+        for mounting in ("roof", "open-rack")
+    )
+    together = roof.run({"light": year})
+    for hour in range(0, HOURS, 97):
+        alone = roof.run({"light": year.case(hour)})
+        for name in ("cell_temperature_K", "maximum_power_W"):
+            assert together.results[name][hour] == pytest.approx(
+                alone.results[name], rel=1e-14, abs=1e-9
+            )
+    cooler = rack.run({"light": year})
+    assert (together.results["cell_temperature_K"] >= cooler.results["cell_temperature_K"]).all()
+    assert together.outlets["power"].sum() < cooler.outlets["power"].sum()
+
+
 @pytest.mark.parametrize("hung", [True, False], ids=["on a stack", "at maximum power"])
 @pytest.mark.parametrize(
     "more",
@@ -429,10 +478,11 @@ def test_a_year_at_once_is_its_hours_one_by_one():
         {},
         {"strings": 8},
         {"cell_temperature": {"model": "noct"}},
+        {"cell_temperature": {"model": "back-of-module", "mounting": "roof"}},
         {"cell_temperature": {"model": "loss-factor"}},
         {"cell_temperature": {"model": "as-air"}},
     ],
-    ids=["faiman", "strings", "noct", "loss factor", "as air"],
+    ids=["faiman", "strings", "noct", "back of module", "loss factor", "as air"],
 )
 def test_slopes_of_one_diode_agree_with_differences(hung, more):
     """By rate, irradiance, beam, air and wind; on a stack whose voltage grows with current."""

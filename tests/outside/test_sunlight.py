@@ -142,6 +142,50 @@ def test_cell_temperature(settings, light, celsius):
     assert float(found) - 273.15 == pytest.approx(celsius, abs=0.05)
 
 
+BACK = {  # our name, pvlib's key: the constants of King, Boyson and Kratochvil (2004)
+    "open-rack": "open_rack_glass_polymer",
+    "open-rack-glass": "open_rack_glass_glass",
+    "roof": "close_mount_glass_glass",
+    "insulated": "insulated_back_glass_polymer",
+}
+
+
+@pytest.mark.parametrize("mounting", BACK)
+def test_back_of_module_is_that_of_pvlib(mounting):
+    constants = pvlib.temperature.TEMPERATURE_MODEL_PARAMETERS["sapm"][BACK[mounting]]
+    light, wind = np.array([0.0, 120.0, 800.0, 1000.0]), np.array([3.0, 0.0, 1.0, 7.5])
+    theirs = pvlib.temperature.sapm_cell(light, 18.0, wind, **constants)
+    model = CellTemperature(model="back-of-module", mounting=mounting)
+    assert model.of(light, 18.0 + 273.15, wind) - 273.15 == pytest.approx(theirs, rel=1e-12)
+
+
+def test_back_of_module_by_hand():
+    """1000 W/m2, 20 degC, 2 m/s: exp(-3.56 - 0.150) = 0.024478, so 24.5 K and 3 K more: 47.5."""
+    rack = CellTemperature(model="back-of-module")
+    assert rack.of(1000.0, 293.15, 2.0) - 273.15 == pytest.approx(47.48, abs=0.01)
+    own = CellTemperature.model_validate(
+        {
+            "model": "back-of-module",
+            "exponent": -3.0,  # exp(-3 - 0.1 * 5) = 0.030197: 24.16 K at 800 W/m2, and 0.8 * 4 K
+            "wind_exponent": "-0.1 s/m",
+            "front_over_back": "4 K",
+        }
+    )
+    assert own.of(800.0, 283.15, 5.0) - 273.15 == pytest.approx(10 + 24.158 + 3.2, abs=1e-3)
+
+
+@pytest.mark.parametrize("losses", [{}, {"still_air_loss": 30.02, "wind_loss": 6.28}])
+def test_faiman_is_that_of_pvlib(losses):
+    """Also with other constants than the defaults."""
+    light, wind = np.array([0.0, 120.0, 800.0, 1000.0]), np.array([3.0, 0.0, 1.0, 7.5])
+    names = {"still_air_loss": "u0", "wind_loss": "u1"}
+    theirs = pvlib.temperature.faiman(
+        light, 18.0, wind, **{names[name]: value for name, value in losses.items()}
+    )
+    found = CellTemperature(**losses).of(light, 18.0 + 273.15, wind)
+    assert found - 273.15 == pytest.approx(theirs, rel=1e-12)
+
+
 # ------------------------------------------------------------------------------ direct coupling
 class Battery:
     """Cells of 1.50 V and 0.02 ohm each, as a curve over a current density."""

@@ -83,4 +83,16 @@ def test_the_document_says_it_all():
     real = found["splitting"][1]
     assert real["tandem"]["gaps_eV"] == [1.7, 1.1]
     assert real["best_behind"] is None
-    assert 0.0 < real["tandem"]["solar_to_hydrogen"] < real["best_tandem"]["efficiency"]
+    assert 0.0 < real["tandem"]["solar_to_hydrogen"] < real["best_tandem"]["solar_to_hydrogen"]
+
+
+def test_what_makes_hydrogen_is_named_alike_everywhere():
+    """`efficiency` is that of solar cells alone."""
+    one, pair = (limits_document(limits([g * EV for g in gaps], 0.5)) for gaps in ([2.2], [1.7, 1]))
+    for found, names in ((one, ("best_behind", "best_in_front")), (pair, ("tandem",))):
+        for split in found["splitting"]:
+            entries = [*split["one_absorber"], split["best_one_absorber"], split["best_tandem"]]
+            for entry in [*entries, *(split[name] for name in names)]:
+                assert "solar_to_hydrogen" in entry
+                assert "efficiency" not in entry
+        assert set(found["best_cell"]) == {"gaps_eV", "efficiency"}

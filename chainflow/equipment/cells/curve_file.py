@@ -27,7 +27,8 @@ _FORM = Form(
 def read_curve(name: str, folder: str | Path = "") -> tuple[dict[str, Any], ...]:
     """Return the points of a CSV file, one map of lists in SI for each temperature.
 
-    A relative name counts from `folder`. Raises `CurveFault`.
+    A relative name counts from `folder`. Raises `FileFault` if there is no such file, `CurveFault`
+    if it is no curve.
     """
     found: dict[float | None, list[tuple[float, float]]] = {}
     for _, values in read_points(name, folder, _FORM):

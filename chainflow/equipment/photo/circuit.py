@@ -16,7 +16,7 @@ from math import asinh, log, sqrt
 
 from chainflow.equipment.cells.losses import between
 from chainflow.equipment.photo.electrode_curves import ElectrodeCurve
-from chainflow.equipment.photo.junctions import Junction
+from chainflow.equipment.photo.junctions import Source
 
 _STEP = 1e-7  # [V]; a crossing closes to less
 _EDGE = 1e-12  # relative gap kept to the limiting current while a crossing is looked for
@@ -45,7 +45,7 @@ class Circuit:
 
     electrode: ElectrodeCurve
     part: float
-    junctions: tuple[Junction, ...]
+    junctions: tuple[Source, ...]
     counter: Overpotential
     resistance: float
     base: float  # reversible voltage of a dark anode; zero with a photoanode [V]

@@ -17,6 +17,10 @@ FORMULAS: tuple[str, ...] = (
         "junction: J = quantum_efficiency * photons - J_0 (exp((V + J R) / (n kT/q)) - 1) - "
         "(V + J R) / shunt; J_0 = light sent out in the detailed balance / radiative_efficiency"
     ),
+    (
+        "measured cell: J = measured J + (r - 1) J_sc, V = measured V - series_resistance (r - 1) "
+        "J_sc; r = photons of the junction that gets the fewest, now per when it was measured"
+    ),
     "works where needed = sum of the junctions' voltages + bias, at the same current",
     "hydrogen = faraday_efficiency * current / 2F",
     (
@@ -46,6 +50,7 @@ SOURCES: tuple[str, ...] = (
         "detailed balance: Shockley and Queisser, J. Appl. Phys. 32 (1961) 510; Ruehle, Solar "
         "Energy 130 (2016) 139 (C)"
     ),
+    "measured cell in other light: IEC 60891, procedure 1 (M)",
     "shape by onset, half-wave and width: own",
     (
         "dark electrodes: ranges in McCrory et al., JACS 135 (2013) 16977 (M); width 0.05 to "

@@ -129,7 +129,8 @@ def _voltages(piece: Photoelectrode, work: Work) -> dict[str, float]:
     if junctions:
         found["cell_V"] = sum(junctions)
         found["cell_open_circuit_V"] = circuit.given(0.0) - circuit.bias
-        found |= dict(zip(_JUNCTIONS, junctions, strict=False))
+        if piece.cell is not None and len(junctions) == len(piece.cell.gaps):
+            found |= dict(zip(_JUNCTIONS, junctions, strict=False))
     return found
 
 
@@ -215,6 +216,10 @@ def _cautions(piece: Photoelectrode, work: Work, results: dict[str, float]) -> I
         if stray:
             text = f"{results['electrode_potential_V']:.4g} V at the photoelectrode is {stray}"
             yield Caution("outside-the-curve", text)
+        for one in circuit.junctions:
+            away = one.stray(circuit.density)
+            if away:
+                yield Caution("outside-the-curve", f"{circuit.density:.4g} A/m2 is {away}")
         yield from _too_good(piece, work, results)
     yield from _beyond_gap(piece)
     yield from _edges(piece)

@@ -20,9 +20,11 @@ from chainflow.basis.quantities import (
 )
 from chainflow.equipment.cells.stack_settings import boiling_trouble, missing_components
 from chainflow.equipment.csv_points import CurveFault
+from chainflow.equipment.photo.cell_curve import CellCurveSetting
 from chainflow.equipment.photo.circuit import Overpotential
-from chainflow.equipment.photo.light_paths import current_at, light_paths
-from chainflow.equipment.photo.measured_points import EfficiencyCurve
+from chainflow.equipment.photo.light_paths import current_above, current_at, light_paths
+from chainflow.equipment.photo.measured_points import EfficiencyCurve, per_area
+from chainflow.equipment.setting_numbers import stated
 from chainflow.equipment.sun.photons import FULL_SUN
 from chainflow.thermo.components import Matter
 
@@ -76,6 +78,10 @@ HYDROGEN_ELECTRODE = DarkElectrode(tafel_slope=0.030, exchange_current=10.0)
 OXYGEN_ELECTRODE = DarkElectrode(tafel_slope=0.050, exchange_current=1e-5)
 
 
+_OF_CURVE = ("measured_at", "measured_in")
+_IN_CURVE = ("quantum_efficiency", "radiative_efficiency", "ideality", "shunt_resistance")
+
+
 class SolarCell(BaseModel):
     """A solar cell behind the photoelectrode or beside it, in series with it."""
 
@@ -103,9 +109,24 @@ class SolarCell(BaseModel):
     in_series: Annotated[int, Field(ge=1, le=20)] = Field(
         1, description="number of equal cells that share the area and are joined in series"
     )
-    series_resistance: Resistance = Field(1e-4, description="of one cell, by its area")
+    series_resistance: Resistance = Field(
+        1e-4, description="of one cell, by its area; a measured curve is moved to other light by it"
+    )
     shunt_resistance: Annotated[float, measured("ohm*m2", gt=0)] | None = Field(
         None, description="of one cell, by its area; left out: no current leaks"
+    )
+    curve: CellCurveSetting | None = Field(
+        None,
+        description="current by voltage of one cell in the light, measured at the device's "
+        "temperature, in place of junctions as diodes; between short and open circuit",
+    )
+    measured_at: Annotated[float, measured("W/m2", gt=0)] | None = Field(
+        None, description="irradiance of the measured curve (1000 W/m2)"
+    )
+    measured_in: Literal["sunlight", "passed-light"] = Field(
+        "sunlight",
+        description="whether the curve was measured in the sun or in the light that the "
+        "photoelectrode passes on under that irradiance",
     )
 
     @property
@@ -116,6 +137,16 @@ class SolarCell(BaseModel):
     @property
     def trouble(self) -> str:
         """Say which settings do not go together; empty if all do."""
+        given = stated(self)
+        strange = [
+            name for name in (_OF_CURVE if self.curve is None else _IN_CURVE) if name in given
+        ]
+        if strange and self.curve is None:
+            return f"'cell.{strange[0]}' is of a measured 'cell.curve': remove it"
+        if strange:
+            return f"'cell.{strange[0]}' is already in the measured 'cell.curve': remove it"
+        if self.place == "beside" and self.measured_in == "passed-light":
+            return "'cell.measured_in' is of a cell behind, one beside stands in the sun: remove it"
         if self.place == "behind" and self.area is not None:
             return "'cell.area' is of a cell beside: write 'place: beside' or remove it"
         for upper, lower in zip(self.gaps, self.gaps[1:], strict=False):
@@ -185,6 +216,8 @@ def _file_trouble(piece: Photoelectrode) -> str:
     try:
         if piece.curve is not None:
             piece.curve.cleaned(piece.direction)
+        if piece.cell is not None and piece.cell.curve is not None:
+            piece.cell.curve.cleaned()
         if isinstance(piece.quantum_efficiency, EfficiencyCurve):
             piece.quantum_efficiency.sorted()
     except CurveFault as fault:
@@ -199,6 +232,7 @@ def setting_faults(piece: Photoelectrode, matter: Matter) -> Faults:
         yield ("kind",), missing
     yield from _state_faults(piece)
     yield from _current_faults(piece)
+    yield from _cell_faults(piece)
 
 
 def _state_faults(piece: Photoelectrode) -> Faults:
@@ -230,7 +264,7 @@ def _current_faults(piece: Photoelectrode) -> Faults:
         * light_paths(piece.band_gap, piece.reflection, piece.absorption, (), 0.0).electrode.photons
     )
     if piece.shape is not None and (piece.shape.saturation or 0.0) > most:
-        text = _too_much(f"'shape.saturation' is {_per_area(piece.shape.saturation or 0.0)}", most)
+        text = _too_much(f"'shape.saturation' is {per_area(piece.shape.saturation or 0.0)}", most)
         yield ("shape", "saturation"), text
     if piece.curve is not None:
         reached = (
@@ -239,13 +273,50 @@ def _current_faults(piece: Photoelectrode) -> Faults:
             / (piece.measured_at or FULL_SUN)
         )
         if reached > most:
-            reads = f"the curve reaches {_per_area(reached)} in 1000 W/m2"
+            reads = f"the curve reaches {per_area(reached)} in 1000 W/m2"
             yield ("curve",), _too_much(reads, most)
+
+
+def _cell_faults(piece: Photoelectrode) -> Faults:
+    """Refuse a measured cell that gives more current than photons or more volts than gaps."""
+    cell = piece.cell
+    if cell is None or cell.curve is None:
+        return
+    points = cell.curve.cleaned()
+    level = cell.measured_at or FULL_SUN
+    most = level * light_of_cell(piece)
+    if points.short > most:
+        text = (
+            f"the curve reaches {per_area(points.short)} in {level:.4g} W/m2, but the photons that "
+            f"its junctions get there give {per_area(most)} at most: check it, 'measured_at', "
+            "'measured_in' and the gaps"
+        )
+        yield ("cell", "curve"), text
+    gaps = sum(cell.gaps) / ELEMENTARY_CHARGE
+    if points.voltages[-1] >= gaps:
+        text = (
+            f"the curve reaches {points.voltages[-1]:.4g} V, but the gaps of its junctions add up "
+            f"to {gaps:.4g} V: give all 'gaps', and cells in series as 'in_series'"
+        )
+        yield ("cell", "curve"), text
+
+
+def light_of_cell(piece: Photoelectrode) -> float:
+    """Return the photons that a measured cell got where it was measured [A/W].
+
+    Those of the junction that gets the fewest, by the cell's own area.
+    """
+    cell = piece.cell
+    assert cell is not None
+    if cell.measured_in == "passed-light":
+        return min(taken.photons for taken in piece.paths.junctions) / (cell.beside or 1.0)
+    above = [current_above(gap) for gap in cell.gaps]
+    return min(high - low for high, low in zip(above, [0.0, *above], strict=False))
 
 
 def _too_much(reads: str, most: float) -> str:
     return (
-        f"{reads}, but the photons absorbed above 'band_gap' give {_per_area(most)} at most: "
+        f"{reads}, but the photons absorbed above 'band_gap' give {per_area(most)} at most: "
         "check it, the gap, 'reflection' and 'absorption'"
     )
 
@@ -260,10 +331,6 @@ def plateau(piece: Photoelectrode) -> float:
         1.0 if piece.catalyst is None else piece.catalyst
     )
     return factors * current_at(piece.efficiency_points, piece.band_gap)
-
-
-def _per_area(density: float) -> str:
-    return f"{density / 10.0:.4g} mA/cm2"
 
 
 def _volts(gap: float) -> str:

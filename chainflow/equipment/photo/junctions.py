@@ -12,8 +12,33 @@ from __future__ import annotations
 
 from dataclasses import dataclass
 from math import exp, inf, log1p
+from typing import Protocol
 
 _MOST_STEPS = 100
+
+
+class Source(Protocol):
+    """What gives a voltage that falls as the current rises."""
+
+    @property
+    def light(self) -> float:
+        """The current density that its light makes [A/m2]."""
+
+    @property
+    def limit(self) -> float:
+        """The current density that it does not exceed [A/m2]."""
+
+    def voltage(self, density: float) -> float:
+        """The voltage [V] at a current density up to the limit."""
+
+    def steepness(self, density: float) -> float:
+        """Change of the voltage by the current density [V m2/A]; never above zero."""
+
+    def by_light(self, density: float) -> float:
+        """Change of the voltage by the light current [V m2/A]."""
+
+    def stray(self, density: float) -> str:
+        """Say how a current lies outside what was measured; empty if it does not."""
 
 
 @dataclass(frozen=True, slots=True)
@@ -45,6 +70,10 @@ class Junction:
             return self.level / (self.light - density + self.dark)
         inner = self._inner(self.light - density)
         return 1.0 / (self.dark / self.level * exp(inner / self.level) + 1.0 / self.shunt)
+
+    def stray(self, density: float) -> str:
+        """The diode holds everywhere."""
+        return ""
 
     def _inner(self, left: float) -> float:
         """The voltage of the diode that `left` of the light current passes through [V]."""

@@ -49,7 +49,7 @@ _EFFICIENCY = Form(
 )
 
 
-class _Points(BaseModel):
+class FilePoints(BaseModel):
     """Points with the names of where they stand."""
 
     model_config = ConfigDict(frozen=True, extra="forbid")
@@ -68,7 +68,7 @@ class _Points(BaseModel):
         return f"{self._file}, " if self._file else ""
 
 
-class PhotoCurve(_Points):
+class PhotoCurve(FilePoints):
     """A measured curve of the illuminated photoelectrode."""
 
     potential: tuple[Voltage, ...] = Field(description="against the reversible hydrogen electrode")
@@ -81,7 +81,7 @@ class PhotoCurve(_Points):
         return _cleaned(self.potential, self.current_density, direction, self.places, self.prefix)
 
 
-class EfficiencyCurve(_Points):
+class EfficiencyCurve(FilePoints):
     """A measured external quantum efficiency."""
 
     wavelength: tuple[Length, ...]
@@ -94,7 +94,7 @@ class EfficiencyCurve(_Points):
         return _sorted(self.wavelength, self.efficiency, self.places, self.prefix)
 
 
-def _from_file(form: Form, model: type[_Points]) -> Any:
+def from_file(form: Form, model: type[FilePoints]) -> Any:
     """Return a validator that reads a file where a name is given."""
 
     def read(given: Any, info: ValidationInfo) -> Any:
@@ -116,7 +116,7 @@ def _from_file(form: Form, model: type[_Points]) -> Any:
 
 PhotoCurveSetting = Annotated[
     PhotoCurve,
-    BeforeValidator(_from_file(_CURVE, PhotoCurve)),
+    BeforeValidator(from_file(_CURVE, PhotoCurve)),
     WithJsonSchema({"type": ["string", "object"], "description": f"a CSV file: {_CURVE.example}"}),
 ]
 
@@ -124,7 +124,7 @@ PhotoCurveSetting = Annotated[
 def _share_or_curve(given: Any, info: ValidationInfo) -> Any:
     """Tell the name of a file from a share."""
     is_file = isinstance(given, str) and given.strip().lower().endswith((".csv", ".txt", ".tsv"))
-    return _from_file(_EFFICIENCY, EfficiencyCurve)(given, info) if is_file else given
+    return from_file(_EFFICIENCY, EfficiencyCurve)(given, info) if is_file else given
 
 
 QuantumEfficiency = Annotated[
@@ -146,7 +146,9 @@ class Cleaned(NamedTuple):
     densities: tuple[float, ...]
 
 
-class _Point(NamedTuple):
+class CurvePoint(NamedTuple):
+    """A point of a curve that rises: where, how much, and the name of the place it stands in."""
+
     drive: float
     density: float
     place: str
@@ -171,26 +173,26 @@ def _cleaned(
         )
     sign = 1.0 if max(densities) >= -min(densities) else -1.0
     triples = zip(potentials, densities, places, strict=True)
-    points = sorted(_Point(direction * v, sign * j, place) for v, j, place in triples)
+    points = sorted(CurvePoint(direction * v, sign * j, place) for v, j, place in triples)
     highest = max(point.density for point in points)
     if highest <= 0.0:
         raise CurveFault(f"{prefix}every current is zero, wanted the curve in the light")
     _refuse_other_direction(points, highest, direction, prefix)
     _refuse_backward(points, highest, sign, prefix)
-    merged = _merged(points, highest, direction, prefix)
-    levelled = _levelled([max(point.density, 0.0) for point in merged])
-    for point, level in zip(merged, levelled, strict=True):
+    single = merged(points, highest, direction, prefix)
+    levels = levelled([max(point.density, 0.0) for point in single])
+    for point, level in zip(single, levels, strict=True):
         if abs(max(point.density, 0.0) - level) > SCATTER * highest:
             raise CurveFault(
-                f"{prefix}{point.place}: {_shown(point.density)} at "
+                f"{prefix}{point.place}: {per_area(point.density)} at "
                 f"{direction * point.drive:.4g} V is out of line with its neighbours "
-                f"({_shown(level)}), wanted a current that rises to a plateau"
+                f"({per_area(level)}), wanted a current that rises to a plateau"
             )
-    return Cleaned(tuple(point.drive for point in merged), tuple(levelled))
+    return Cleaned(tuple(point.drive for point in single), tuple(levels))
 
 
 def _refuse_other_direction(
-    points: Sequence[_Point], highest: float, direction: float, prefix: str
+    points: Sequence[CurvePoint], highest: float, direction: float, prefix: str
 ) -> None:
     """Refuse a curve that belongs to the other kind of electrode."""
     half = len(points) // 2
@@ -207,38 +209,40 @@ def _refuse_other_direction(
     )
 
 
-def _refuse_backward(points: Sequence[_Point], highest: float, sign: float, prefix: str) -> None:
+def _refuse_backward(
+    points: Sequence[CurvePoint], highest: float, sign: float, prefix: str
+) -> None:
     """Refuse currents of both directions in one curve."""
     lowest = min(points, key=lambda point: point.density)
     if lowest.density < -SCATTER * highest:
         raise CurveFault(
-            f"{prefix}{lowest.place}: {_shown(sign * lowest.density)} runs against the rest "
-            f"(up to {_shown(sign * highest)}): leave out the branch in which the electrode works "
-            "the other way"
+            f"{prefix}{lowest.place}: {per_area(sign * lowest.density)} runs against the rest "
+            f"(up to {per_area(sign * highest)}): leave out the branch in which the electrode "
+            "works the other way"
         )
 
 
-def _merged(
-    points: Sequence[_Point], highest: float, direction: float, prefix: str
-) -> list[_Point]:
+def merged(
+    points: Sequence[CurvePoint], highest: float, direction: float, prefix: str
+) -> list[CurvePoint]:
     """Return one point for each potential, the mean of all that stand there."""
-    groups: dict[float, list[_Point]] = {}
+    groups: dict[float, list[CurvePoint]] = {}
     for point in points:
         groups.setdefault(point.drive, []).append(point)
-    merged = []
+    found = []
     for drive, group in groups.items():
         low, high = (f(group, key=lambda p: p.density) for f in (min, max))
         if high.density - low.density > SCATTER * highest:
             raise CurveFault(
-                f"{prefix}{low.place} and {high.place}: {_shown(low.density)} and "
-                f"{_shown(high.density)} at {direction * drive:.4g} V: keep one of the two sweeps"
+                f"{prefix}{low.place} and {high.place}: {per_area(low.density)} and "
+                f"{per_area(high.density)} at {direction * drive:.4g} V: keep one of the two sweeps"
             )
         mean = sum(point.density for point in group) / len(group)
-        merged.append(_Point(drive, mean, group[0].place))
-    return merged
+        found.append(CurvePoint(drive, mean, group[0].place))
+    return found
 
 
-def _levelled(values: Sequence[float]) -> list[float]:
+def levelled(values: Sequence[float]) -> list[float]:
     """Return the nearest values that never fall: pool adjacent violators."""
     blocks: list[tuple[float, int]] = []
     for value in values:
@@ -289,5 +293,6 @@ def _sorted(
     return tuple(groups), tuple(means)
 
 
-def _shown(density: float) -> str:
+def per_area(density: float) -> str:
+    """Return a current density [A/m2] in the words of the trade."""
     return f"{density / 10.0:.4g} mA/cm2"

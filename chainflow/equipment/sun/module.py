@@ -26,7 +26,6 @@ SOURCES = (
     "translation: De Soto, Klein and Beckman, Solar Energy 80 (2006) 78",
     "module tables by name: library pvlib, table of 2019",
 )
-_SHOWN = 4  # names listed in a message
 _COLUMNS = {
     "light_current": "I_L_ref",
     "saturation_current": "I_o_ref",
@@ -91,9 +90,9 @@ def from_table(pattern: str) -> dict[str, float]:
     table = _table()
     names = [n for n in table.columns if fnmatchcase(n.lower(), pattern.strip().lower())]
     if len(names) != 1:
-        some = ", ".join(names[:_SHOWN]) + (", ..." if len(names) > _SHOWN else "")
         text = (
-            f"{shorten(pattern)} fits {len(names)} modules of the table: {some}; wanted one"
+            f"{shorten(pattern)} fits {len(names)} modules of the table, wanted one: narrow it "
+            "with more of the name"
             if names
             else f"{shorten(pattern)} fits no module of the table; * stands for anything"
         )

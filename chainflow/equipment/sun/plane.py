@@ -17,6 +17,8 @@ from pydantic_core import PydanticCustomError
 
 from chainflow.basis.quantities import Fraction, OpenFraction, measured
 from chainflow.equipment.setting_numbers import stated
+from chainflow.equipment.sun import cover
+from chainflow.equipment.sun.cover import Cover
 from chainflow.equipment.sun.sky import middles, positions
 from chainflow.equipment.sun.weather import Weather
 
@@ -26,6 +28,7 @@ SOURCES = (
     "sky on a tilted plane: Hay and Davies, First Canadian Solar Radiation Data Workshop (1980) 59",
     "sky on a tilted plane: Perez et al., Solar Energy 44 (1990) 271",
     "tracking about one axis: Marion and Dobos, NREL/TP-6A20-58891 (2013)",
+    *cover.SOURCES,
 )
 _MODELS = {"isotropic": "isotropic", "hay-davies": "haydavies", "perez": "perez"}
 _AIMED = {
@@ -65,10 +68,15 @@ class Plane(BaseModel):
     albedo: Fraction = Field(
         0.2, description="light that the ground throws back; common practice, no source"
     )
+    cover: Cover | None = Field(
+        None,
+        description="front that turns slanting light back, as {model: fresnel}; without it all "
+        "light gets in as straight light does",
+    )
 
     @model_validator(mode="after")
     def _of_one_mount(self) -> Plane:
-        own = (*_AIMED[self.mount], "mount", "sky", "albedo")
+        own = (*_AIMED[self.mount], "mount", "sky", "albedo", "cover")
         strange = sorted(stated(self) - set(own))
         if strange:
             text = (
@@ -84,15 +92,17 @@ class InPlane:
 
     total: np.ndarray  # [W/m2]
     beam: np.ndarray  # [W/m2], straight from the sun
+    admitted: np.ndarray  # [W/m2], of the total: what the cover does not turn back
+    admitted_beam: np.ndarray  # [W/m2], of the beam
     zenith: np.ndarray  # of the sun [deg]
     azimuth: np.ndarray  # of the sun [deg]
     incidence: np.ndarray  # between sun and plane [deg]
 
     @property
     def direct(self) -> np.ndarray:
-        """Share of it that comes straight from the sun [-]; none in the dark."""
-        lit = self.total > 0.0
-        return np.where(lit, self.beam / np.where(lit, self.total, 1.0), 0.0)
+        """Share of what gets in that comes straight from the sun [-]; none in the dark."""
+        lit = self.admitted > 0.0
+        return np.where(lit, self.admitted_beam / np.where(lit, self.admitted, 1.0), 0.0)
 
 
 @lru_cache(maxsize=16)
@@ -100,7 +110,8 @@ def in_plane(weather: Weather, plane: Plane) -> InPlane:
     """Return what falls on a plane, hour by hour.
 
     The sun counts where it stands in the middle of the hour. Where the brightness of Perez is
-    undefined (the sun is below the horizon) the sky is taken as evenly bright.
+    undefined (the sun is below the horizon) the sky is taken as evenly bright. A cover treats sky
+    and ground as evenly bright too, also the brightness around the sun.
     """
     from pvlib import atmosphere, irradiance
 
@@ -127,8 +138,14 @@ def in_plane(weather: Weather, plane: Plane) -> InPlane:
     even = weather.diffuse * 0.5 * (1.0 + np.cos(np.radians(tilt)))
     sky = np.maximum(np.where(np.isfinite(sky), sky, even), 0.0)
     beam = np.maximum(np.nan_to_num(beam), 0.0)
-    total = beam + sky + np.maximum(np.nan_to_num(ground), 0.0)
-    return InPlane(total, beam, sun.zenith, sun.azimuth, np.asarray(incidence))
+    ground = np.maximum(np.nan_to_num(ground), 0.0)
+    total = beam + sky + ground
+    within, within_beam = total, beam
+    if plane.cover is not None:
+        shares = plane.cover.diffuse(tilt)
+        within_beam = plane.cover.beam(incidence) * beam
+        within = within_beam + shares.sky * sky + shares.ground * ground
+    return InPlane(total, beam, within, within_beam, sun.zenith, sun.azimuth, np.asarray(incidence))
 
 
 def _stance(plane: Plane, zenith: np.ndarray, azimuth: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
