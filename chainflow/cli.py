@@ -7,7 +7,6 @@ stderr.
 
 from __future__ import annotations
 
-import contextlib
 import functools
 import os
 import sys
@@ -19,7 +18,15 @@ from typing import TYPE_CHECKING, Annotated, Any
 import typer
 
 from chainflow import __version__
-from chainflow.basis.faults import ChainflowError, Fault, FileFault, FlowsheetFault, UsageFault
+from chainflow.basis.faults import ChainflowError, FileFault, FlowsheetFault, UsageFault
+from chainflow.report.outputs import (
+    STDOUT,
+    check_outputs,
+    write_answer,
+    write_failure,
+    write_json,
+)
+from chainflow.report.saying import forget_output, say, say_bug, say_faults
 
 if TYPE_CHECKING:
     from chainflow.flowsheet.network import Flowsheet
@@ -28,7 +35,6 @@ if TYPE_CHECKING:
 
 BUG = 70
 INTERRUPTED = 130
-STDOUT = "-"
 
 app = typer.Typer(
     name="chainflow",
@@ -78,22 +84,22 @@ def reported(command: Callable[..., None]) -> Callable[..., None]:
         except typer.Exit:
             raise
         except BrokenPipeError:
-            _forget_output()
+            forget_output()
         except KeyboardInterrupt:
-            _say("interrupted")
+            say("interrupted")
             raise typer.Exit(INTERRUPTED) from None
         except FlowsheetFault as problem:
-            _say_faults(problem.faults, kwargs.get("file"))
+            say_faults(problem.faults, kwargs.get("file"))
             raise typer.Exit(problem.exit_code) from None
         except ChainflowError as problem:
-            _say(str(problem))
+            say(str(problem))
             raise typer.Exit(problem.exit_code) from None
         except OSError as problem:
-            _forget_output()
-            _say(f"cannot read or write {problem.filename or 'the output'}: {problem.strerror}")
+            forget_output()
+            say(f"cannot read or write {problem.filename or 'the output'}: {problem.strerror}")
             raise typer.Exit(FileFault.exit_code) from None
         except Exception as problem:  # noqa: BLE001 - the outermost frame: whatever gets here is a bug
-            _say_bug(problem)
+            say_bug(problem)
             raise typer.Exit(BUG) from None
 
     return wrapped
@@ -148,12 +154,12 @@ def solve(
     idealisations and cautions.
     """
     overrides = _overrides(set_)
-    _check_outputs(file, json, csv)
+    check_outputs(file, json, csv)
     solution = _solved(file, overrides, json)
     if not quiet:
-        _say_faults(solution.remarks, file, "remark: ")
+        say_faults(solution.remarks, file, "remark: ")
     reasons = _reasons(solution) if why else None
-    _write(solution, json, csv, reasons)
+    write_answer(solution, json, csv, reasons)
     if not quiet and json != STDOUT:
         from chainflow.report.printed import print_answer
 
@@ -200,7 +206,7 @@ def compare(
 
     overrides = _overrides(set_)
     for file in files:
-        _check_outputs(file, json, None)
+        check_outputs(file, json, None)
     if csv is not None:
         if csv.resolve() in {file.resolve() for file in files}:
             raise UsageFault(f"--csv {csv} is one of the flowsheets: name another file")
@@ -211,12 +217,12 @@ def compare(
     if csv is not None:
         write_whole(csv, comparison_csv(found))
     if json is not None:
-        _write_json(to_json(comparison_document(found)), json)
+        write_json(to_json(comparison_document(found)), json)
     if json != STDOUT:
         print_comparison(found)
     for route in found.routes:
         if not route.solved:
-            _say(route.told)
+            say(route.told)
     if found.exit_code:
         sys.stdout.flush()
         raise typer.Exit(found.exit_code)
@@ -231,7 +237,7 @@ def check(file: FileArgument, set_: SetOption = None) -> None:
     from chainflow.solver.solve import inspect
 
     structure = inspect(read_flowsheet(file, _overrides(set_)))
-    _say_faults(structure.remarks, file, "remark: ")
+    say_faults(structure.remarks, file, "remark: ")
     print_check(structure)
 
 
@@ -306,7 +312,7 @@ def limits(
     if json is not None:
         from chainflow.report.document import to_json
 
-        _write_json(to_json(limits_document(found)), json)
+        write_json(to_json(limits_document(found)), json)
     if json != STDOUT:
         from chainflow.report.limits import print_limits
 
@@ -358,18 +364,6 @@ def _overrides(given: Iterable[str] | None) -> dict[str, str]:
     return found
 
 
-def _check_outputs(file: Path, json: str | None, csv: Path | None) -> None:
-    """Refuse what cannot be written before any work is done."""
-    from chainflow.report.writing import check_directory, check_writable
-
-    if json is not None and json != STDOUT:
-        if Path(json).resolve() == file.resolve():
-            raise UsageFault(f"--json {json} is the flowsheet itself: name another file")
-        check_writable(Path(json))
-    if csv is not None:
-        check_directory(csv)
-
-
 def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution:
     """Read and solve; a wrong file or a missing steady state is also written as JSON."""
     from chainflow.flowsheet.building import read_flowsheet
@@ -381,20 +375,8 @@ def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution
         return solve_flowsheet(flowsheet)
     except ChainflowError as problem:
         if json is not None and problem.exit_code in (1, 3):
-            _write_failure(file, problem, flowsheet, json)
+            write_failure(file, problem, flowsheet, json)
         raise
-
-
-def _write_failure(
-    file: Path, problem: ChainflowError, flowsheet: Flowsheet | None, json: str
-) -> None:
-    from chainflow.report.document import faults_document, problem_document, to_json
-
-    if isinstance(problem, FlowsheetFault):
-        found = faults_document(file, problem.faults)
-    else:
-        found = problem_document(file, problem, flowsheet)
-    _write_json(to_json(found), json)
 
 
 def _reasons(solution: Solution) -> Why | None:
@@ -404,70 +386,8 @@ def _reasons(solution: Solution) -> Why | None:
     try:
         return why(solution)
     except UsageFault as nothing:
-        _say(f"--why: {nothing}")
+        say(f"--why: {nothing}")
         return None
-
-
-def _write(
-    solution: Solution, json: str | None, csv: Path | None, reasons: Why | None = None
-) -> None:
-    """Write the files that are asked for; all texts are made before the first is written."""
-    from chainflow.report.writing import write_all
-
-    text = None
-    if json is not None:
-        from chainflow.report.document import document, to_json
-
-        text = to_json(document(solution, reasons))
-    if csv is not None:
-        from chainflow.report.csv_files import csv_texts
-
-        write_all(csv, csv_texts(solution))
-    if json is not None and text is not None:
-        _write_json(text, json)
-
-
-def _write_json(text: str, json: str) -> None:
-    if json == STDOUT:
-        sys.stdout.write(text)
-        return
-    from chainflow.report.writing import write_whole
-
-    write_whole(Path(json), text)
-
-
-def _say(text: str) -> None:
-    """Print to stderr, one safe line for each line of text."""
-    from chainflow.report.plain import encoding_of, printable
-
-    encoding = encoding_of(sys.stderr)
-    for line in text.splitlines() or [""]:
-        typer.echo(f"chainflow: {printable(line, encoding)}", err=True)
-
-
-def _say_faults(faults: Iterable[Fault], file: Path | None, what: str = "") -> None:
-    for fault in faults:
-        where = "" if fault.place is None else f"{file}:{fault.place}: "
-        _say(f"{where}{what}{fault.text}")
-
-
-def _say_bug(problem: Exception) -> None:
-    if os.environ.get("CHAINFLOW_DEBUG"):
-        import traceback
-
-        traceback.print_exception(problem)
-    name = type(problem).__name__
-    first = str(problem).partition("\n")[0]
-    _say(
-        f"a bug of ours (please report): {name}: {first} "
-        "[CHAINFLOW_DEBUG=1 prints where it happened]"
-    )
-
-
-def _forget_output() -> None:
-    """Send what is left for stdout nowhere, so that Python's last flush cannot fail."""
-    with contextlib.suppress(OSError):  # an output without a file behind it has no last flush
-        os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
 
 
 if __name__ == "__main__":
