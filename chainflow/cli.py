@@ -367,6 +367,7 @@ def _overrides(given: Iterable[str] | None) -> dict[str, str]:
 def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution:
     """Read and solve; a wrong file or a missing steady state is also written as JSON."""
     from chainflow.flowsheet.building import read_flowsheet
+    from chainflow.flowsheet.linkage import open_outlets
     from chainflow.solver.solve import solve_flowsheet
 
     flowsheet: Flowsheet | None = None
@@ -374,6 +375,10 @@ def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution
         flowsheet = read_flowsheet(file, overrides)
         return solve_flowsheet(flowsheet)
     except ChainflowError as problem:
+        if flowsheet is not None:  # a missing line may be why there is no steady state
+            say_faults(flowsheet.remarks, file, "remark: ")
+            if leaving := open_outlets(flowsheet):
+                say(f"not linked, so leaving the plant: {', '.join(leaving)}")
         if json is not None and problem.exit_code in (1, 3):
             write_failure(file, problem, flowsheet, json)
         raise

@@ -1,4 +1,7 @@
-"""Does every port that needs a line have one, and does every piece take part?"""
+"""Does every port that needs a line have one, and does every piece take part?
+
+A port that may stay without a line is no fault; where there is no steady state it may be why.
+"""
 
 from __future__ import annotations
 
@@ -8,10 +11,10 @@ from chainflow.basis.faults import Place
 from chainflow.equipment.base import Equipment
 from chainflow.equipment.ports import Port
 from chainflow.flowsheet.lines import JoinedPorts
-from chainflow.flowsheet.network import Hold
+from chainflow.flowsheet.network import Flowsheet, Hold
 
-Say = Callable[[str, str, Place | None], None]
 LINE_FAULTS = ("bad-line", "unknown-port", "unknown-equipment")
+Say = Callable[[str, str, Place | None], None]
 
 
 class Linkage:
@@ -76,3 +79,14 @@ class Linkage:
             if name not in used:
                 text = f"{name}: no line touches it, it takes no part"
                 self.remark("unused-equipment", text, self.spot(name, ()))
+
+
+def open_outlets(flowsheet: Flowsheet) -> list[str]:
+    """Return the outlets for matter that no line leaves, as ``wash.clean``."""
+    return [
+        f"{name}.{port.name}"
+        for name, piece in flowsheet.equipment.items()
+        for port in piece.port_list()
+        if port.content == "material" and not port.is_inlet and not port.any_name
+        if not flowsheet.line_from(name, port.name)
+    ]

@@ -181,6 +181,9 @@ def test_short_of_power_is_3_and_writes_the_document(run, tmp_path):
     assert set(found["problem"]) == {"code", "text", "details"}
     assert found["problem"]["text"] in result.stderr
     assert not (tmp_path / "out").exists()
+    first, *_, last = result.stderr.splitlines()
+    assert first.startswith("chainflow: not linked, so leaving the plant: ")
+    assert last == f"chainflow: {found['problem']['text']}"
 
 
 # --- 4: files that cannot be read or written -----------------------------------------------------
