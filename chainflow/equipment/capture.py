@@ -32,7 +32,7 @@ from chainflow.equipment.base import (
     material,
 )
 from chainflow.equipment.capture_figures import SOLVENTS, SORBENTS, CaptureFigures, Solvent, Sorbent
-from chainflow.equipment.cooling_slopes import carried_at_fixed_temperatures
+from chainflow.equipment.cooling_slopes import carried_at_levels
 from chainflow.equipment.parting import free_separation, minimum_work, worth_of
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
@@ -259,7 +259,7 @@ class Absorber(_Capture):
             heat = heat + self._set.heat_slope(content) * captured * by_content
         power = power_use * mass
         rates = {"regeneration": heat, "waste heat": change - heat - power}
-        return carried_at_fixed_temperatures(rates, power, site, outcome)
+        return carried_at_levels(rates, power, site, outcome)
 
     def _moisture(self) -> float:
         """Water per mol of CO2 at saturation [-]."""

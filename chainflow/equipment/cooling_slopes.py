@@ -61,31 +61,42 @@ def add_heat_slopes(
     return {"inlet": blocks}
 
 
-def carried_at_fixed_temperatures(
-    rates: dict[str, Array], power: Array, site: Site, outcome: Outcome
+def carried_at_levels(
+    rates: dict[str, Array],
+    power: Array,
+    site: Site,
+    outcome: Outcome,
+    moving: dict[str, Array] | None = None,
 ) -> dict[str, Array] | None:
-    """Slopes of what the linked `heat` and `power` ports carry for duties at fixed temperatures.
+    """Slopes of what the linked `heat` and `power` ports carry for duties at one temperature each.
 
     `rates` holds the slopes of each duty's heat by its purpose, `power` those of power that is
-    drawn whatever the heat needs.  None where a duty was parted or two share the `heat` inlet.
+    drawn whatever the heat needs, `moving` those of the temperatures that are not fixed.  None
+    where a duty was parted, or where nothing passes a port and its temperature may move.
     """
     purposes = [duty.purpose for duty in outcome.duties]
-    called = [d for d in outcome.duties if d.met_by == "heat" and d.heat > 0.0]
-    given = [d for d in outcome.duties if d.met_by == "heat" and d.heat < 0.0]
-    if len(set(purposes)) < len(purposes) or max(len(called), len(given)) > 1:
+    if len(set(purposes)) < len(purposes):
         return None
+    moving = moving or {}
+    called = [d.purpose for d in outcome.duties if d.met_by == "heat" and d.heat > 0.0]
+    given = [d.purpose for d in outcome.duties if d.met_by == "heat" and d.heat < 0.0]
     drawn = power + sum(rates[d.purpose] for d in outcome.duties if d.met_by == "power")
     carried = {"drawn:power": drawn[None, :]}
-    none = np.zeros((4, len(power)))
-    if "heat" in site.inlets:
-        carried["drawn:heat"] = none.copy()
-        for duty in called:
-            carried["drawn:heat"][0] = rates[duty.purpose]
-    if "heat" in site.outlets:
-        carried["heat"] = none.copy()
-        for duty in given:
-            carried["heat"][0] = -rates[duty.purpose]
+    ports = (("drawn:heat", "heat" in site.inlets, called, 1.0),)
+    ports += (("heat", "heat" in site.outlets, given, -1.0),)
+    for port, linked, passing, sign in ports:
+        if linked and not passing and moving:
+            return None
+        if linked:
+            rows = [_at_a_level(sign * rates[name], moving.get(name)) for name in passing]
+            carried[port] = np.vstack(rows or [np.zeros((4, len(power)))])
     return carried
+
+
+def _at_a_level(rate: Array, level: Array | None) -> Array:
+    """Slopes ``[rate, start, end, mean]`` of heat at one temperature."""
+    still = np.zeros(len(rate)) if level is None else level
+    return np.vstack([rate, still, still, still])
 
 
 class _End(NamedTuple):

@@ -15,6 +15,7 @@ from pydantic_core import PydanticCustomError
 from chainflow.basis.quantities import HeatingValueShare, OpenFraction, Temperature
 from chainflow.equipment.base import (
     HEAT_PORTS,
+    Array,
     Caution,
     Duty,
     Flow,
@@ -22,12 +23,15 @@ from chainflow.equipment.base import (
     Port,
     Role,
     Site,
+    material,
 )
 from chainflow.equipment.burning import Combustion, Oxygen, burnt, oxidiser_needed
 from chainflow.equipment.cooling import cooling_duties
+from chainflow.equipment.cooling_slopes import carried_at_levels
 from chainflow.equipment.flue import flue_results
-from chainflow.equipment.ports import Feeds
-from chainflow.thermo.streams import Stream
+from chainflow.equipment.ports import Feeds, arriving
+from chainflow.thermo.heating_slopes import heating_value_slopes
+from chainflow.thermo.streams import Stream, enthalpy_slopes
 
 
 class Engine(Combustion):
@@ -152,6 +156,45 @@ class Engine(Combustion):
             return Stream.at(flue.matter, flue.flows, self.exhaust, pressure)
         enthalpy = float(flue.enthalpy) - cooling
         return Stream.from_enthalpy(flue.matter, flue.flows, enthalpy, pressure, self.temperature)
+
+    def slopes(
+        self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
+    ) -> dict[str, dict[str, Array]]:
+        amount, flue = outcome.drawn["oxidiser"], outcome.outlets["flue"]
+        assert isinstance(flue, Stream) and isinstance(amount, float)
+        plain = self.exhaust is None and self.jacket_share is None
+        partial, capacity = enthalpy_slopes(flue)
+        if outcome.unmet or amount <= 0.0 or not np.isfinite(capacity):
+            return {}
+        if "heat" in site.outlets and not plain:
+            return {}
+        matter, oxidiser = site.matter, material(feeds, "oxidiser")
+        upper = self.efficiency.basis == "HHV"
+        weights = np.append(Oxygen.at(self.excess, matter).weights, 0.0)
+        air = np.append(oxidiser.flows, oxidiser.enthalpy)
+        called = weights / -float(weights @ air)  # oxidiser by what enters beside it
+        entering = np.eye(len(air)) + np.outer(air, called)
+        flue_block = np.zeros((len(air), len(air)))
+        flue_block[:-1, :-1] = burnt(matter)
+        flue_block[-1, :-1] = partial @ burnt(matter)
+        made = flue_block @ entering
+        brought = self.efficiency.value * float(oxidiser.hhv if upper else oxidiser.lhv) * called
+        found: dict[str, dict[str, Array]] = {}
+        for port, factor in (("fuel", 1.0), ("moderator", 1.0), ("oxidiser", amount)):
+            for number, stream in enumerate(arriving(feeds, port), start=1):
+                assert isinstance(stream, Stream)
+                power = brought + self.efficiency.value * heating_value_slopes(stream, upper=upper)
+                rates = {"jacket and exhaust cooling": made[-1] + power - entering[-1]}
+                none = np.zeros(len(power))
+                carried = carried_at_levels(rates, none, site, outcome) if plain else {}
+                if carried is None or not np.isfinite(power).all():
+                    return {}
+                blocks = {"flue": made, "power": power[None, :], "drawn:oxidiser": called[None, :]}
+                if "heat" in carried:
+                    blocks["heat"] = carried["heat"]
+                label = port if number == 1 else f"{port}#{number}"
+                found[label] = {name: factor * block for name, block in blocks.items()}
+        return found
 
 
 def _too_good(heat: float, missing: float, power: float) -> tuple[Caution, ...]:

@@ -28,7 +28,7 @@ from chainflow.equipment.base import (
     material,
 )
 from chainflow.equipment.cooling import cooling_duties
-from chainflow.equipment.cooling_slopes import add_heat_slopes
+from chainflow.equipment.cooling_slopes import add_heat_slopes, carried_at_levels
 from chainflow.equipment.parting import free_separation, minimum_work, worth_of
 from chainflow.equipment.ports import ANY_NAME, Feeds
 from chainflow.equipment.pressures import lower_feed
@@ -276,11 +276,10 @@ class Cut(Equipment):
     def slopes(
         self, feeds: Feeds, asked: Mapping[str, Any], site: Site, outcome: Outcome
     ) -> dict[str, dict[str, Array]]:
-        if {"heat", "power"} & (site.inlets | site.outlets):
-            return {}
         inlet = material(feeds, "inlet")
         by_flow, by_enthalpy = temperature_slopes(inlet)
-        blocks = {}
+        blocks, taken = {}, np.zeros(len(by_flow) + 1)
+        mixing = np.append(np.zeros(len(by_flow)), -1.0)
         for name, share in self.taken(site.matter).items():
             outlet = outcome.outlets[name]
             assert isinstance(outlet, Stream)
@@ -289,7 +288,16 @@ class Cut(Equipment):
                 return {}
             row = np.append(partial * share + capacity * by_flow, capacity * by_enthalpy)
             blocks[name] = np.vstack([np.hstack([np.diag(share), np.zeros((len(share), 1))]), row])
-        return {"inlet": blocks}
+            mixing += row
+            if name != REST:
+                taken[:-1] += share
+        if not {"heat", "power"} & (site.inlets | site.outlets):
+            return {"inlet": blocks}
+        heat = self.heat * taken
+        rates = {"distillation": heat, "separation": mixing - heat}
+        level = {"separation": np.append(by_flow, by_enthalpy)}
+        carried = carried_at_levels(rates, np.zeros(len(heat)), site, outcome, level)
+        return {} if carried is None else {"inlet": blocks | carried}
 
 
 def carbon_numbers(matter: Matter) -> Array:

@@ -9,6 +9,7 @@ from tests.equipment.feeds import stream
 
 GASES = ("H2", "N2", "H2O", "CO", "CO2", "CH4")
 PARAFFINS = Matter.of((*GASES, *(alkane(n) for n in range(2, 13)), WAX))
+BURNING = Matter.of((*PARAFFINS.components, "O2"))
 ALL = Matter.of(
     (
         *GASES,
@@ -39,6 +40,7 @@ def liquid_fuels(add):
     _synthesis(add)
     _drum(add)
     _cut(add)
+    _engine(add)
 
 
 def _synthesis(add):
@@ -188,4 +190,45 @@ def _cut(add):
         inlets=("heat",),
         outlets=("heat",),
         matter=PARAFFINS,
+    )
+    add(
+        "heat from a line",
+        kind,
+        {"cuts": {"light": "C2-C4", "heavy": "C5+"}, "heat": "60 kJ/mol"},
+        {"inlet": product(PARAFFINS, 120.0, 5.0, 12, 0.2)},
+        inlets=("heat",),
+        matter=PARAFFINS,
+    )
+    add(
+        "heat by power",
+        kind,
+        {"cuts": {"heavy": "C8+"}, "heat": "60 kJ/mol"},
+        {"inlet": product(PARAFFINS, 120.0, 5.0, 12, 0.2)},
+        inlets=("power",),
+        matter=PARAFFINS,
+    )
+
+
+def _engine(add):
+    kind = "engine"
+    air = stream({"N2": 0.79, "O2": 0.21}, 25.0, 1.2, BURNING)
+    flows = BURNING.vector({alkane(n): 0.01 * n for n in range(5, 13)})
+    oil = Stream.at(BURNING, flows, 300.0, 1.2e5)
+    half = product(BURNING, 60.0, 1.2, 12, 0.2)
+    gas = stream({"CH4": 0.3, "H2": 0.1, alkane(3): 0.05}, 350.0, 1.2, BURNING)
+    add(
+        "oil, half an oil and gas",
+        kind,
+        {"efficiency": "40 % LHV", "temperature": "120 degC", "excess": "100 %"},
+        {"fuel": (gas, oil, half), "oxidiser": air},
+        outlets=("flue", "power"),
+        matter=BURNING,
+    )
+    add(
+        "oil, heat offered, wet flue",
+        kind,
+        {"efficiency": "40 % HHV", "temperature": "30 degC", "jacket": "90 degC"},
+        {"fuel": (oil,), "moderator": (half,), "oxidiser": air},
+        outlets=("flue", "power", "heat"),
+        matter=BURNING,
     )
