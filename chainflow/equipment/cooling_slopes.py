@@ -82,8 +82,10 @@ def carried_at_levels(
     given = [d.purpose for d in outcome.duties if d.met_by == "heat" and d.heat < 0.0]
     drawn = power + sum(rates[d.purpose] for d in outcome.duties if d.met_by == "power")
     carried = {"drawn:power": drawn[None, :]}
-    ports = (("drawn:heat", "heat" in site.inlets, called, 1.0),)
-    ports += (("heat", "heat" in site.outlets, given, -1.0),)
+    ports = (
+        ("drawn:heat", "heat" in site.inlets, called, 1.0),
+        ("heat", "heat" in site.outlets, given, -1.0),
+    )
     for port, linked, passing, sign in ports:
         if linked and not passing and moving:
             return None

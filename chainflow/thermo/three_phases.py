@@ -24,6 +24,7 @@ if TYPE_CHECKING:
     from chainflow.thermo.components import Array, Matter
 
 _NO_LIQUID = 1e-15  # share of the flow below which a liquid is round-off
+_GONE = 1e-30  # share of the flow: an oil that has shrunk to it shrinks for ever
 _MOST_STEPS = 200
 _LAST_STEP = 1e-9  # relative: the step after it is below round-off
 GAS, WATER, OIL = range(3)
@@ -60,12 +61,14 @@ def three_phase_split(
     dry = None if pair is None else Split(gas, water, matter.nothing)
     if oil is None or not _oil_forms(oil, gas, temperature, pressure):
         return dry
+    total = float(flows.sum())
+    if float(flows[oil.places].sum()) <= _NO_LIQUID * total:
+        return dry
     ratios = _ratios(matter, flows, temperature, pressure, dissolved)
     amounts = _all_liquid(flows, ratios)
     if amounts is None:
         amounts = _amounts(flows, ratios, gas, water)
     found = _phases(flows, ratios, amounts)
-    total = float(flows.sum())
     if float(found.oil.sum()) <= _NO_LIQUID * total:
         return dry
     return found
@@ -137,6 +140,7 @@ def _minimised(flows: "Array", e: "Array", start: "Array", active: list[int]) ->
     """Return the amounts of the active phases, all of which are there at the answer."""
     there = flows > 0.0
     z, e = flows[there], e[active][:, there]
+    gone = _GONE * float(z.sum())
     amounts = start[active]
     for _ in range(_MOST_STEPS):
         whole = amounts @ e
@@ -149,7 +153,7 @@ def _minimised(flows: "Array", e: "Array", start: "Array", active: list[int]) ->
         if size > 0.1:
             step = _lower(z, e, amounts, step, whole)
         amounts = amounts + step
-        if size <= _LAST_STEP:
+        if size <= _LAST_STEP or amounts[-1] < gone:
             break
     found = np.zeros(3)
     found[active] = amounts
