@@ -11,8 +11,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from itertools import pairwise
-
-import numpy as np
+from typing import NamedTuple
 
 from chainflow.equipment.base import Caution, Site
 from chainflow.equipment.heat_needs import Duty
@@ -44,13 +43,16 @@ def cooling_duties(
         float(number) for number in (inlet.temperature, outlet.temperature, outlet.pressure)
     )
     heat = float(outlet.enthalpy) - float(inlet.enthalpy)
-    linked = bool(site.inlets & {"heat", "power"}) or "heat" in site.outlets
-    shaped = site.detail or (site.shaped and "heat" in site.inlets | site.outlets)
+    linked, shaped = (
+        bool(site.inlets & {"heat", "power"}) or "heat" in site.outlets,
+        is_shaped(site),
+    )
     if not (site.detail or linked) or heat == 0.0 or float(inlet.total) == 0.0:
         return [Duty.between(purpose, heat, start, level)]
     matter, flows = inlet.matter, inlet.flows
     first = inlet.at_pressure(pressure, dissolved)
-    between = _cuts(first, level, dissolved) if shaped else []
+    cuts = path_cuts(first, level, dissolved) if shaped else []
+    between = [cut.temperature for cut in cuts]
     if min(start, level) < site.ambient < max(start, level):  # below it heat is another thing
         between = sorted({*between, site.ambient}, reverse=start > level)
     path = [first, *(Stream.at(matter, flows, t, pressure, dissolved) for t in between), outlet]
@@ -60,6 +62,11 @@ def cooling_duties(
         curve = _curve(before, after, *ends) if shaped else ()
         duties.append(Duty(purpose, *_part(before, after, *ends), curve=curve))
     return duties
+
+
+def is_shaped(site: Site) -> bool:
+    """Return whether it is asked how heat is spread over its temperatures."""
+    return site.detail or (site.shaped and "heat" in site.inlets | site.outlets)
 
 
 def _part(before: Stream, after: Stream, start: float, end: float) -> Part:
@@ -78,7 +85,8 @@ def _curve(before: Stream, after: Stream, start: float, end: float) -> tuple[Par
     """The parts of the heat of a gas between two states; none where it is no gas all the way."""
     if not (_is_gas(before) and _is_gas(after)) or min(start, end) < LOWEST_TEMPERATURE:
         return ()
-    levels = [float(t) for t in np.linspace(start, end, GAS_STEPS + 1)]
+    step = (end - start) / GAS_STEPS
+    levels = [*(start + k * step for k in range(GAS_STEPS)), end]
     flows, pressure = before.flows, after.pressure
     inside = [Stream.gaseous(before.matter, flows, t, pressure) for t in levels[1:-1]]
     path = [before, *inside, after]
@@ -92,7 +100,16 @@ def _is_gas(stream: Stream) -> bool:
     return liquid <= _TRACE * float(stream.total)
 
 
-def _cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[float]:
+class Cut(NamedTuple):
+    """A temperature [K] at which a path is cut, and how it moves with the path's start and dew."""
+
+    temperature: float
+    by_start: float = 0.0
+    by_dew: float = 0.0
+    oil: bool = False  # the dew point is that of an oil
+
+
+def path_cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[Cut]:
     """Temperatures between the two ends where the path is cut, in its order."""
     start, pressure = float(first.temperature), float(first.pressure)
     matter, flows = first.matter, first.flows
@@ -105,16 +122,18 @@ def _cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[float
     if not wet_start and not wet_end:
         return []
     if wet_start and wet_end:
-        return _inside(start, level, _STEPS)
+        return [Cut(t, by_start=1.0 - share) for t, share in _inside(start, level)]
     if matter.water is not None and float(flows[matter.water]) == float(first.total):
-        return _around_boiling(start, level, saturation_temperature(pressure))
+        return [Cut(t) for t in _around_boiling(start, level, saturation_temperature(pressure))]
     dew = dew_temperature(matter, flows, pressure, dissolved) if first.matter.oil is None else None
     low, high = (start, level) if wet_start else (level, start)
-    if dew is None or not low < dew < high:
+    found = dew is not None and low < dew < high
+    if dew is None or not found:
         dew = _dew_point(wet, low, high)
+    at_dew = Cut(dew, by_dew=1.0, oil=not found)
     if wet_start:
-        return [*_inside(start, dew, _STEPS), dew]
-    return [dew, *_inside(dew, level, _STEPS)]
+        return [*(Cut(t, 1.0 - k, k, not found) for t, k in _inside(start, dew)), at_dew]
+    return [at_dew, *(Cut(t, 0.0, 1.0 - k, not found) for t, k in _inside(dew, level))]
 
 
 def _around_boiling(start: float, level: float, boiling: float) -> list[float]:
@@ -132,8 +151,10 @@ def _dew_point(wet: Callable[[float], bool], low: float, high: float) -> float:
     return high
 
 
-def _inside(start: float, end: float, steps: int) -> list[float]:
-    return [float(t) for t in np.linspace(start, end, steps + 1)[1:-1]]
+def _inside(start: float, end: float) -> list[tuple[float, float]]:
+    """Temperatures between two that part the way into even steps, with their shares of it."""
+    step = (end - start) / _STEPS
+    return [(start + k * step, k / _STEPS) for k in range(1, _STEPS)]
 
 
 def wrong_way(what: str, heat: float, total: float, *, cools: bool) -> tuple[Caution, ...]:

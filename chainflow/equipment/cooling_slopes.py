@@ -6,14 +6,18 @@ SI throughout: heat [W], temperature [K], pressure [Pa]; slopes by ``[n_1..n_C, 
 from __future__ import annotations
 
 from collections.abc import Iterator
+from dataclasses import dataclass
 from typing import NamedTuple
 
 import numpy as np
 
 from chainflow.equipment.base import Array, Outcome, Site
+from chainflow.equipment.cooling import Cut, is_shaped, path_cuts
 from chainflow.equipment.heat_needs import Duty
-from chainflow.equipment.ports import Part
+from chainflow.equipment.ports import MOST_PARTS, Part
+from chainflow.thermo.dew import dew_slopes
 from chainflow.thermo.streams import (
+    DISSOLVED,
     Stream,
     enthalpy_slopes,
     entropy_slopes,
@@ -31,6 +35,7 @@ def add_heat_slopes(
     site: Site,
     outcome: Outcome,
     at: tuple[float, float],
+    dissolved: tuple[str, ...] = DISSOLVED,
 ) -> dict[str, dict[str, Array]]:
     """Add what the linked `heat` or `power` port carries to the slopes; {} if it is not known.
 
@@ -40,20 +45,24 @@ def add_heat_slopes(
     if not (site.inlets & {"heat", "power"} or "heat" in site.outlets):
         return {"inlet": blocks}
     carried = [duty for duty in outcome.duties if duty.met_by in ("heat", "power")]
-    if len(carried) > 1:
-        return {}
     none = np.zeros((4, len(outlet_row)))
-    parts: list[Array] = [none]
+    parts: list[Array] = []
     if carried:
-        found = list(_part_rows(inlet, outlet_row, carried[0], at))
-        parts = [rows for rows in found if rows is not None]
-        if len(parts) < len(found):
+        path = _Path.of(inlet, outlet_row, site, at, dissolved)
+        if path is None:
             return {}
-    given = bool(carried) and carried[0].heat < 0.0
+        found = [rows for duty in carried for rows in path.part_rows(duty)]
+        parts = [rows for rows in found if rows is not None and np.isfinite(rows).all()]
+        if len(parts) < len(found) or len(found) > MOST_PARTS:
+            return {}
+    signs = {(duty.heat < 0.0, duty.met_by) for duty in carried}
+    if len(signs) > 1:
+        return {}
+    ((given, met_by),) = signs or {(False, "")}
+    parts = parts or [none]
     if "power" in site.inlets:
-        by_power = bool(carried) and carried[0].met_by == "power"
         whole = -np.sum([rows[:1] for rows in parts], axis=0)
-        blocks["drawn:power"] = whole if by_power else none[:1]
+        blocks["drawn:power"] = whole if met_by == "power" else none[:1]
     if "heat" in site.inlets:
         blocks["drawn:heat"] = none if given else np.vstack([rows * _ASKED for rows in parts])
     if "heat" in site.outlets:
@@ -110,29 +119,87 @@ class _End(NamedTuple):
     entropy: Array
 
 
-def _part_rows(
-    inlet: Stream, outlet_row: Array, duty: Duty, at: tuple[float, float]
-) -> Iterator[Array | None]:
-    """Slopes of each part of heat given off, ``[rate, start, end, mean]``.
+@dataclass(frozen=True, slots=True)
+class _Path:
+    """The way of a stream to the outlet's temperature, at the outlet's pressure."""
 
-    None for a part whose mean was set by a limit: it is heat over entropy elsewhere, the entropy
-    being that of the stream at the outlet's pressure before less after.
-    """
-    level, pressure = at
-    own = duty.start == float(inlet.temperature)
-    first = _inlet_end(inlet, pressure) if own else _fixed_end(inlet, duty.start, pressure)
-    last = _fixed_end(inlet, duty.end, pressure)
-    if duty.end == level:
-        last = last._replace(enthalpy=outlet_row)
-    before = first
-    for number, part in enumerate(duty.curve or ((duty.heat, duty.start, duty.end, duty.mean),)):
-        share = (number + 1) / max(len(duty.curve), 1)
-        after = last
-        if share < 1.0:
-            moves = (1.0 - share) * first.temperature + share * last.temperature
-            after = _inner_end(inlet, part[2], pressure, moves)
-        yield _rows(part, before, after)
-        before = after
+    inlet: Stream
+    pressure: float
+    dissolved: tuple[str, ...]
+    moves: dict[float, Array]  # slopes of the temperatures between which duties lie
+    ends: dict[float, _End]  # those that are known
+
+    @staticmethod
+    def of(
+        inlet: Stream,
+        outlet_row: Array,
+        site: Site,
+        at: tuple[float, float],
+        dissolved: tuple[str, ...],
+    ) -> _Path | None:
+        """The path of a stream; None where it is cut at the dew point of an oil."""
+        level, pressure = at
+        first = inlet.at_pressure(pressure, dissolved)
+        cuts = path_cuts(first, level, dissolved) if is_shaped(site) else []
+        if any(cut.oil for cut in cuts):
+            return None
+        moves = {site.ambient: np.zeros(len(outlet_row))} | _moves(first, cuts, dissolved)
+        path = _Path(inlet, pressure, dissolved, moves, {})
+        path.ends[float(inlet.temperature)] = _inlet_end(inlet, first, dissolved)
+        last = path.end(level, np.zeros(len(outlet_row)))
+        path.ends[level] = last._replace(enthalpy=outlet_row)
+        return path
+
+    def at(self, level: float) -> _End | None:
+        """One of the ends of the duties; None for a temperature that is not on the path."""
+        if level not in self.ends:
+            if level not in self.moves:
+                return None
+            self.ends[level] = self.end(level, self.moves[level])
+        return self.ends[level]
+
+    def end(self, level: float, moves: Array) -> _End:
+        """The state at a temperature that moves."""
+        return _end(
+            Stream.at(self.inlet.matter, self.inlet.flows, level, self.pressure, self.dissolved),
+            moves,
+            self.dissolved,
+        )
+
+    def part_rows(self, duty: Duty) -> Iterator[Array | None]:
+        """Slopes of each part of heat given off, ``[rate, start, end, mean]``.
+
+        None for a part whose mean was set by a limit: it is heat over entropy elsewhere, the
+        entropy being that of the stream at the outlet's pressure before less after.
+        """
+        before, last = self.at(duty.start), self.at(duty.end)
+        if before is None or last is None:
+            yield None
+            return
+        first = before
+        parts = duty.curve or ((duty.heat, duty.start, duty.end, duty.mean),)
+        for number, part in enumerate(parts, start=1):
+            after = last
+            if number < len(parts):
+                share = number / len(parts)
+                moves = (1.0 - share) * first.temperature + share * last.temperature
+                gas = Stream.gaseous(self.inlet.matter, self.inlet.flows, part[2], self.pressure)
+                after = _end(gas, moves, self.dissolved)
+            yield _rows(part, before, after)
+            before = after
+
+
+def _moves(first: Stream, cuts: list[Cut], dissolved: tuple[str, ...]) -> dict[float, Array]:
+    """Slopes of the temperatures at which a path is cut."""
+    began = np.append(*temperature_slopes(first, dissolved))
+    moves, dew = {}, np.zeros(len(began))
+    for cut in cuts:
+        if cut.by_dew == 1.0:
+            pressure = float(first.pressure)
+            dew[:-1] = dew_slopes(first.matter, first.flows, cut.temperature, pressure, dissolved)
+    for cut in cuts:
+        moves[cut.temperature] = cut.by_start * began + cut.by_dew * dew
+    return moves
 
 
 def _rows(part: Part, before: _End, after: _End) -> Array | None:
@@ -146,11 +213,10 @@ def _rows(part: Part, before: _End, after: _End) -> Array | None:
     return np.vstack([rate, before.temperature, after.temperature, mean])
 
 
-def _inlet_end(inlet: Stream, pressure: float) -> _End:
+def _inlet_end(inlet: Stream, first: Stream, dissolved: tuple[str, ...]) -> _End:
     """The inlet, let down to the outlet's pressure where its entropy counts."""
-    first = inlet.at_pressure(pressure)
-    by_flow, by_level = entropy_slopes(first)
-    to_flow, to_enthalpy = temperature_slopes(first)
+    by_flow, by_level = entropy_slopes(first, dissolved)
+    to_flow, to_enthalpy = temperature_slopes(first, dissolved)
     temperature = np.append(*temperature_slopes(inlet))
     enthalpy = np.zeros(len(temperature))
     enthalpy[-1] = 1.0
@@ -158,19 +224,13 @@ def _inlet_end(inlet: Stream, pressure: float) -> _End:
     return _End(first, temperature, enthalpy, entropy)
 
 
-def _fixed_end(inlet: Stream, level: float, pressure: float) -> _End:
-    """The same flows at a temperature that does not move."""
-    stream = Stream.at(inlet.matter, inlet.flows, level, pressure)
-    enthalpy = np.append(enthalpy_slopes(stream)[0], 0.0)
-    entropy = np.append(entropy_slopes(stream)[0], 0.0)
-    return _End(stream, np.zeros(len(enthalpy)), enthalpy, entropy)
-
-
-def _inner_end(inlet: Stream, level: float, pressure: float, moves: Array) -> _End:
-    """The same flows as a gas at a temperature that moves with the two ends of its curve."""
-    stream = Stream.gaseous(inlet.matter, inlet.flows, level, pressure)
-    by_flow, capacity = enthalpy_slopes(stream)
-    entropy_by_flow, by_level = entropy_slopes(stream)
-    enthalpy = np.append(by_flow, 0.0) + capacity * moves
-    entropy = np.append(entropy_by_flow, 0.0) + by_level * moves
+def _end(stream: Stream, moves: Array, dissolved: tuple[str, ...]) -> _End:
+    """A state at a temperature that moves."""
+    by_flow, capacity = enthalpy_slopes(stream, dissolved)
+    entropy_by_flow, by_level = entropy_slopes(stream, dissolved)
+    enthalpy = np.append(by_flow, 0.0)
+    entropy = np.append(entropy_by_flow, 0.0)
+    if moves.any():
+        enthalpy += capacity * moves
+        entropy += by_level * moves
     return _End(stream, moves, enthalpy, entropy)

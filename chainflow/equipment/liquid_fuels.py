@@ -138,7 +138,7 @@ class FlashDrum(Equipment):
         split = Split(gas.gas, water.water, oil.liquid)
         blocks = phase_blocks(site.matter, split, *at, self._gases)
         leaving = blocks["gas"][-1] + blocks["oil"][-1] + blocks["water"][-1]
-        return add_heat_slopes(blocks, inlet, leaving, site, outcome, at)
+        return add_heat_slopes(blocks, inlet, leaving, site, outcome, at, self._gases)
 
 
 def _apart(held: Stream, matter: Matter) -> tuple[Stream, Stream, Stream]:

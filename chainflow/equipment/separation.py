@@ -262,7 +262,8 @@ class Condenser(Equipment):
         )
         blocks = {"gas": parts["gas"], "liquid": parts["water"] + parts["oil"]}
         leaving = blocks["gas"][-1] + blocks["liquid"][-1]
-        return add_heat_slopes(blocks, inlet, leaving, site, outcome, (level, pressure))
+        at = (level, pressure)
+        return add_heat_slopes(blocks, inlet, leaving, site, outcome, at, self._gases)
 
 
 def condensate(matter: Matter, water: Array, oil: Array, level: float, pressure: float) -> Stream:

@@ -316,9 +316,13 @@ class Matter:
             if name == "H2O":
                 entropies[place] = self._liquid.entropy(temperature) - GAS_CONSTANT * log(share)
             else:
-                pure = self._polynomials[place].entropy(temperature)
-                entropies[place] = pure + _dissolution_entropy(name, temperature, share)
+                entropies[place] = self.dissolved_entropy(name, temperature, share)
         return entropies
+
+    def dissolved_entropy(self, name: str, temperature: float, share: float) -> float:
+        """Return the partial molar entropy of a gas dissolved in water [J/(mol K)]."""
+        pure = self._polynomials[self.index[name]].entropy(temperature)
+        return pure + _dissolution_entropy(name, temperature, share)
 
     def water_heat_capacity(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return dH/dT of liquid water with what is dissolved in it [W/K]."""

@@ -8,6 +8,8 @@ from __future__ import annotations
 
 from math import log
 
+import numpy as np
+
 from chainflow.thermo.components import Array, Matter
 from chainflow.thermo.species import LOWEST_TEMPERATURE
 from chainflow.thermo.water import (
@@ -61,3 +63,24 @@ def dew_temperature(
             return better
         level = better
     return level
+
+
+def dew_slopes(
+    matter: Matter,
+    flows: Array,
+    dew: float,
+    pressure: float,
+    dissolved: tuple[str, ...] = ("CO2",),
+) -> Array:
+    """Return the slopes of the dew temperature by the flows [K s/mol], shape (components,)."""
+    places, names = matter.solubles(dissolved)
+    ratios = distribution(names, dew, pressure)
+    total = float(flows.sum())
+    heated = [log_saturation_pressure(dew).first]
+    heated += [log_henry_constant(name, dew).first for name in names[1:]]
+    by_level = 0.0
+    by_flows = np.full(len(flows), -1.0 / total)
+    for place, ratio, slope in zip(places, ratios, heated, strict=True):
+        by_flows[place] += 1.0 / (ratio * total)
+        by_level += float(flows[place]) / (ratio * total) * slope
+    return by_flows / by_level

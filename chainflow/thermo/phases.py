@@ -349,55 +349,11 @@ def phase_slopes(
     return EnthalpySlopes(vapour.enthalpy + condensation @ moved.by_flows, by_temperature)
 
 
-def entropy_slopes(
-    matter: Matter,
-    found: Split,
-    temperature: float,
-    pressure: float,
-    dissolved: tuple[str, ...],
-) -> tuple[Array, float]:
-    """Return dS/dn (components,) [J/(mol K)] and dS/dT [W/K2] of phases in equilibrium."""
-    gas, water, oil = found
-    if some(oil):
-        return _entropy_slopes_with_oil(matter, found, temperature, pressure, dissolved)
-    vapour = matter.gas_partial(gas, temperature, pressure)
-    if not some(water):
-        return vapour.entropy, vapour.heat_capacity / temperature
-    liquid = matter.water_partial_entropies(water, temperature, pressure)
-    moved = split_slopes(matter, gas + water, gas, water, temperature, pressure, dissolved)
-    own = vapour.heat_capacity + matter.water_heat_capacity(water, temperature, pressure)
-    places = list(matter.solubles(dissolved).places)
-    condensation = (liquid - vapour.entropy)[places]
-    by_flows = vapour.entropy + condensation @ moved.by_flows[places]
-    return by_flows, own / temperature + float(condensation @ moved.by_temperature[places])
-
-
-def _entropy_slopes_with_oil(
-    matter: Matter, found: Split, temperature: float, pressure: float, dissolved: tuple[str, ...]
-) -> tuple[Array, float]:
-    assert matter.oil is not None
-    vapour = matter.gas_partial(found.gas, temperature, pressure)
-    moved = liquid_slopes(matter, found, temperature, pressure, dissolved)
-    own = vapour.heat_capacity + float(found.oil @ matter.oil.heat_capacities(temperature))
-    gain = matter.oil.partial_entropies(found.oil, temperature) - vapour.entropy
-    gain = np.where(found.oil > 0.0, gain, 0.0)
-    by_flows = vapour.entropy + gain @ moved.oil_by_flows
-    by_temperature = float(gain @ moved.oil_by_temperature)
-    if some(found.water):
-        own += matter.water_heat_capacity(found.water, temperature, pressure)
-        wet = matter.water_partial_entropies(found.water, temperature, pressure)
-        gain = np.where(found.water > 0.0, wet - vapour.entropy, 0.0)
-        by_flows += gain @ moved.water_by_flows
-        by_temperature += float(gain @ moved.water_by_temperature)
-    return by_flows, own / temperature + by_temperature
-
-
 __all__ = [
     "Split",
     "any_liquid",
     "split_at",
     "EnthalpySlopes",
-    "entropy_slopes",
     "Phases",
     "find_phases",
     "phase_slopes",

@@ -16,7 +16,8 @@ from typing import TYPE_CHECKING, Any, cast
 import numpy as np
 
 from chainflow.basis.constants import T_REFERENCE
-from chainflow.thermo import liquefied, phases
+from chainflow.thermo import entropy_slopes as entropies
+from chainflow.thermo import liquefied
 from chainflow.thermo.components import Array, Matter
 from chainflow.thermo.phases import Phases, Split, find_phases, phase_slopes, phases_at
 from chainflow.thermo.species import LOWEST_TEMPERATURE
@@ -418,7 +419,7 @@ def entropy_slopes(stream: Stream, dissolved: tuple[str, ...] = DISSOLVED) -> tu
             by_flows[stream.matter.water] = float(stream.entropy) / float(stream.total)
         return _fixed(by_flows, np.inf)
     split = _split_of(stream)
-    return _fixed(*phases.entropy_slopes(stream.matter, split, temperature, pressure, dissolved))
+    return _fixed(*entropies.entropy_slopes(stream.matter, split, temperature, pressure, dissolved))
 
 
 @lru_cache(maxsize=_KEPT)

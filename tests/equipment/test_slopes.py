@@ -122,6 +122,9 @@ def test_slopes_agree_with_differences(case, label):
             if key == "state" or isinstance(outcome.outlets.get(key), Stream):
                 given[-1] /= ENTHALPY
             scale = max(1.0, np.abs(numeric * unit).max(), _rate_of(case, key, outcome))
+            if np.abs((given - numeric) * unit).max() > SLOPES * scale:  # is it truncation?
+                closer = differences(case, label, place, STEP * size / 4.0, settled)[key]
+                numeric = (16.0 * closer - numeric) / 15.0
             assert given * unit == pytest.approx(numeric * unit, abs=SLOPES * scale), (key, place)
 
 
