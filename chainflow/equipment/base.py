@@ -152,7 +152,8 @@ class Equipment(BaseModel):
         Material flows are vectors ``[n_1..n_C, H]``; an input is an inlet's name (of ``name#2``
         for one of several lines), ``asked:name`` or ``settings:path``; an output is an outlet's
         name or ``drawn:name``.  An input that is given at all is given completely: outputs that
-        are not listed do not depend on it.  Inputs not given are found by differences.
+        are not listed do not depend on it.  Inputs not given are found by differences.  A result
+        that a hold may look at is ``own:name``, given for all of these inputs or for none.
         """
         return {}
 

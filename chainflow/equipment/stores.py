@@ -382,6 +382,7 @@ class _StoreSlopes:
         column = {
             "rest": self.turn.surplus * full_state + np.outer(one, surplus),
             "state": full_state,
+            "own:net_mol_s": (surplus - made_up)[None, :],
         }
         for name, amount in self.asked.items():
             column[name] = float(amount) * full_state

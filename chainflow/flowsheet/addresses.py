@@ -259,3 +259,20 @@ def of_outcome(outcome: Outcome, where: str, name: str) -> float:
     if where == "duty":
         return float(outcome.heat if name == "heat" else outcome.power)
     return float(outcome.results.get(name, 0.0))
+
+
+@dataclass(frozen=True, slots=True)
+class HeldResult:
+    """A duty or an own result of equipment that a hold looks at."""
+
+    where: str
+    name: str
+
+    def of(self, outcome: Outcome) -> float:
+        """Its value, in SI."""
+        return of_outcome(outcome, self.where, self.name)
+
+    @property
+    def label(self) -> str:
+        """What the slopes of the equipment call it."""
+        return f"{self.where}:{self.name}"

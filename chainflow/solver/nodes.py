@@ -18,6 +18,7 @@ from chainflow.basis.faults import NotSolved
 from chainflow.equipment.base import Equipment, Outcome, Site
 from chainflow.equipment.junctions import joined
 from chainflow.equipment.ports import ANY_NAME, Flow, Heat, times
+from chainflow.flowsheet.addresses import HeldResult
 from chainflow.solver.scaling import added, scaled_rows, scaling
 from chainflow.solver.variables import ENTHALPY_SCALE, HEAT_NUMBERS, Variable
 from chainflow.thermo.components import Matter
@@ -131,9 +132,7 @@ class EquipmentStep(Step):
     settings: tuple[tuple[tuple[str, ...], str], ...] = ()  # (path, variable)
     outlets: dict[str, str] = field(default_factory=dict)  # outlet -> variable
     drawn: dict[str, str] = field(default_factory=dict)  # inlet -> variable
-    results: dict[str, Callable[[Outcome], float]] = field(
-        default_factory=dict
-    )  # variable -> getter
+    results: dict[str, HeldResult] = field(default_factory=dict)  # by variable
     outcome: Outcome | None = None
     twin: EquipmentStep | None = None  # the step whose settled equipment this one runs
     _used: tuple[Any, Any, Equipment] | None = None
@@ -173,7 +172,7 @@ class EquipmentStep(Step):
     def _written(self, outcome: Outcome) -> Values:
         written: Values = {key: outcome.outlets[port] for port, key in self.outlets.items()}
         written |= {key: outcome.drawn[port] for port, key in self.drawn.items()}
-        written |= {key: get(outcome) for key, get in self.results.items()}
+        written |= {key: held.of(outcome) for key, held in self.results.items()}
         return written
 
     def memory(self) -> Any:
@@ -187,11 +186,10 @@ class EquipmentStep(Step):
     def closed_forms(self, values: Mapping[str, Flow]) -> dict[str, Blocks]:  # noqa: ARG002 - as in Step
         """The slopes that the equipment knows, at its last run."""
         assert self.site is not None and self._used is not None and self.outcome is not None
-        if self.results:
-            return {}
         feeds, asked, piece = self._used
         slopes = piece.slopes(feeds, asked, self.site, self.outcome)
-        if not slopes:
+        given = {label for column in slopes.values() for label in column}
+        if not slopes or any(result.label not in given for result in self.results.values()):
             return {}
         labels = self._labels()
         known = {}
@@ -250,7 +248,8 @@ class EquipmentStep(Step):
     def _outputs(self) -> list[tuple[str, str]]:
         """Each variable that is written, with what the equipment calls it."""
         drawn = [(w, f"drawn:{port}") for port, w in self.drawn.items()]
-        return [*((w, port) for port, w in self.outlets.items()), *drawn]
+        held = [(w, result.label) for w, result in self.results.items()]
+        return [*((w, port) for port, w in self.outlets.items()), *drawn, *held]
 
     def _spot(self, written: str, read: str) -> Any:
         """Where a block's numbers stand in the matrix over all components."""

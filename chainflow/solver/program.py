@@ -11,12 +11,12 @@ from dataclasses import dataclass, field, replace
 import numpy as np
 
 from chainflow.basis.faults import NotSolved
-from chainflow.equipment.base import Equipment, Outcome, Site
+from chainflow.equipment.base import Equipment, Site
 from chainflow.equipment.boundary import Supply
 from chainflow.equipment.ports import ANY_NAME, Flow, Role
 from chainflow.equipment.power import Switchboard
 from chainflow.equipment.stores import Store
-from chainflow.flowsheet.addresses import of_outcome, parse_result, property_of
+from chainflow.flowsheet.addresses import HeldResult, parse_result, property_of
 from chainflow.flowsheet.network import Flowsheet, Hold, Line
 from chainflow.solver.inventories import Presence
 from chainflow.solver.nodes import (
@@ -78,7 +78,7 @@ class _Builder:
         self.flowsheet, self.pressures, self.presence = flowsheet, pressures, presence
         self.program = Program(flowsheet)
         self.held: dict[str, list[tuple[tuple[str, ...], str]]] = {}
-        self.results: dict[str, dict[str, Callable[[Outcome], float]]] = {}
+        self.results: dict[str, dict[str, HeldResult]] = {}
         self.extra_outlets: dict[str, set[str]] = {}
         self.into: dict[str, list[Line]] = {name: [] for name in flowsheet.equipment}
         self.out: dict[str, list[Line]] = {name: [] for name in flowsheet.equipment}
@@ -297,7 +297,7 @@ class _Builder:
             self.program.holds.append((hold, setting, result))
             address = parse_result(hold.text, self.flowsheet.equipment, self.flowsheet.components)
             if address.where in ("own", "duty"):
-                self.results.setdefault(address.piece, {})[result] = _getter(
+                self.results.setdefault(address.piece, {})[result] = HeldResult(
                     address.where, address.name
                 )
             elif address.where == "outlet" and not self.flowsheet.line_from(
@@ -360,10 +360,6 @@ def _sampled(name: str, piece: Equipment, site: Site) -> dict[str, Flow]:
         return piece.sample({}, {}, site)
     except StateError as problem:
         raise outside_the_data(name, problem) from problem
-
-
-def _getter(where: str, name: str) -> Callable[[Outcome], float]:
-    return lambda outcome: of_outcome(outcome, where, name)
 
 
 def _property(prop: str, argument: str) -> Callable[[Flow], float]:
