@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
+from functools import lru_cache
 from typing import Annotated, ClassVar
 
 import numpy as np
@@ -26,14 +27,18 @@ from chainflow.thermo.streams import Stream
 Excess = Annotated[float, measured("1", ge=0.0, le=20.0)]
 
 
+@lru_cache(maxsize=16)
 def oxygen_demand(matter: Matter) -> Array:
     """Oxygen needed to burn one mol of each component [mol/mol]; zero for what does not burn."""
     atoms = {element: matter.formula[row] for row, element in enumerate(matter.elements)}
     zero = np.zeros(len(matter.components))
     demand = atoms.get("C", zero) + 0.25 * atoms.get("H", zero) - 0.5 * atoms.get("O", zero)
-    return np.where(matter.lhv > 0.0, demand, 0.0)
+    demand = np.where(matter.lhv > 0.0, demand, 0.0)
+    demand.setflags(write=False)
+    return demand
 
 
+@lru_cache(maxsize=16)
 def burnt(matter: Matter) -> Array:
     """What complete combustion makes of each component, columns by component, oxygen negative."""
     result = np.eye(len(matter.components))
@@ -47,6 +52,7 @@ def burnt(matter: Matter) -> Array:
                 column[matter.index[product]] += per_atom * count
         column[matter.index["O2"]] -= demand[place]
         result[:, place] = column
+    result.setflags(write=False)
     return result
 
 

@@ -35,7 +35,7 @@ from chainflow.equipment.pressure_split import least_work_pressures
 from chainflow.equipment.pressures import higher_feed
 from chainflow.equipment.separation import phase_blocks
 from chainflow.thermo.components import Matter
-from chainflow.thermo.compression import isentropic_temperature
+from chainflow.thermo.compression import isentropic
 from chainflow.thermo.phases import split_at
 from chainflow.thermo.polytropic import polytropic_temperature
 from chainflow.thermo.streams import Stream, temperature_slopes
@@ -279,13 +279,12 @@ class Compressor(Equipment):
             return Stage(
                 gas, suction, low, high, suction, suction, 0.0, cool, 0.0, nothing, nothing
             )
-        ideal = isentropic_temperature(matter, gas, suction, low, high)
-        before = matter.gas_enthalpy(gas, suction, low)
-        isentropic = matter.gas_enthalpy(gas, ideal, high) - before
+        ideal, _, before = isentropic(matter, gas, suction, low, high)
+        lossless = matter.gas_enthalpy(gas, ideal, high) - before
         if self.polytropic_efficiency is None:
-            work = isentropic / self.efficiency
+            work = lossless / self.efficiency
             capacity = matter.gas_heat_capacity(gas, ideal, high)
-            guess = ideal + (work - isentropic) / capacity
+            guess = ideal + (work - lossless) / capacity
             discharge = _gas_temperature(matter, gas, before + work, high, guess)
         else:
             discharge = polytropic_temperature(

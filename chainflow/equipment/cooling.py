@@ -43,23 +43,27 @@ def cooling_duties(
         float(number) for number in (inlet.temperature, outlet.temperature, outlet.pressure)
     )
     heat = float(outlet.enthalpy) - float(inlet.enthalpy)
-    linked, shaped = (
-        bool(site.inlets & {"heat", "power"}) or "heat" in site.outlets,
-        is_shaped(site),
-    )
+    linked = bool(site.inlets & {"heat", "power"}) or "heat" in site.outlets
     if not (site.detail or linked) or heat == 0.0 or float(inlet.total) == 0.0:
         return [Duty.between(purpose, heat, start, level)]
     matter, flows = inlet.matter, inlet.flows
-    first = inlet.at_pressure(pressure, dissolved)
-    cuts = path_cuts(first, level, dissolved) if shaped else []
-    between = [cut.temperature for cut in cuts]
+    shaped, between = is_shaped(site), []
+    if shaped:
+        first = inlet.at_pressure(pressure, dissolved)
+        between = [cut.temperature for cut in path_cuts(first, level, dissolved)]
     if min(start, level) < site.ambient < max(start, level):  # below it heat is another thing
         between = sorted({*between, site.ambient}, reverse=start > level)
-    path = [first, *(Stream.at(matter, flows, t, pressure, dissolved) for t in between), outlet]
     levels = [start, *between, level]
+    inside = [Stream.at(matter, flows, t, pressure, dissolved) for t in between]
+    if not shaped:  # how much heat it is, and nothing else
+        enthalpies = [float(state.enthalpy) for state in (inlet, *inside, outlet)]
+        heats = [after - before for before, after in pairwise(enthalpies)]
+        pairs = zip(heats, pairwise(levels), strict=True)
+        return [Duty.between(purpose, part, *ends) for part, ends in pairs]
     duties = []
+    path = [first, *inside, outlet]
     for before, after, ends in zip(path, path[1:], pairwise(levels), strict=False):
-        curve = _curve(before, after, *ends) if shaped else ()
+        curve = _curve(before, after, *ends)
         duties.append(Duty(purpose, *_part(before, after, *ends), curve=curve))
     return duties
 

@@ -44,6 +44,9 @@ def add_heat_slopes(
     """
     if not (site.inlets & {"heat", "power"} or "heat" in site.outlets):
         return {"inlet": blocks}
+    if not is_shaped(site):
+        power = _power_row(inlet, outlet_row, site, outcome, at, dissolved)
+        return {"inlet": blocks | ({"drawn:power": power} if "power" in site.inlets else {})}
     carried = [duty for duty in outcome.duties if duty.met_by in ("heat", "power")]
     none = np.zeros((4, len(outlet_row)))
     parts: list[Array] = []
@@ -68,6 +71,30 @@ def add_heat_slopes(
     if "heat" in site.outlets:
         blocks["heat"] = np.vstack(parts) if given else none
     return {"inlet": blocks}
+
+
+def _power_row(
+    inlet: Stream,
+    outlet_row: Array,
+    site: Site,
+    outcome: Outcome,
+    at: tuple[float, float],
+    dissolved: tuple[str, ...],
+) -> Array:
+    """Slopes of the power that meets the heat of a path, where nobody asks for its shape."""
+    level, pressure = at
+    row = np.zeros((1, len(outlet_row)))
+    for duty in outcome.duties:
+        if duty.met_by == "power":
+            for end, sign in ((duty.end, 1.0), (duty.start, -1.0)):
+                if end == level:
+                    row += sign * outlet_row
+                elif end == float(inlet.temperature):
+                    row[0, -1] += sign
+                else:
+                    state = Stream.at(inlet.matter, inlet.flows, site.ambient, pressure, dissolved)
+                    row[0, :-1] += sign * enthalpy_slopes(state, dissolved)[0]
+    return row
 
 
 def carried_at_levels(
@@ -140,7 +167,7 @@ class _Path:
         """The path of a stream; None where it is cut at the dew point of an oil."""
         level, pressure = at
         first = inlet.at_pressure(pressure, dissolved)
-        cuts = path_cuts(first, level, dissolved) if is_shaped(site) else []
+        cuts = path_cuts(first, level, dissolved)
         if any(cut.oil for cut in cuts):
             return None
         moves = {site.ambient: np.zeros(len(outlet_row))} | _moves(first, cuts, dissolved)

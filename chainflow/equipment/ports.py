@@ -11,6 +11,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, replace
 from enum import Enum
 from itertools import pairwise
+from math import log
 from typing import Any
 
 import numpy as np
@@ -211,7 +212,7 @@ def mean_temperature(start: float, end: float) -> float:
     """Entropy-mean temperature [K] of heat spread evenly from `start` to `end` [K]."""
     if abs(start - end) < 1e-6 * start:
         return 0.5 * (start + end)
-    return float((start - end) / np.log(start / end))
+    return (start - end) / log(start / end)
 
 
 def arriving(feeds: Feeds, port: str) -> tuple[Flow, ...]:

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import replace
+from functools import lru_cache
 from typing import Annotated, ClassVar
 
 import numpy as np
@@ -89,15 +90,7 @@ class Reformer(FedReactor):
         return exchanging(species, self.equilibrium_species(matter), outlets, matter)
 
     def equilibrium_species(self, matter: Matter) -> tuple[str, ...]:
-        return tuple(
-            name
-            for place, name in enumerate(matter.components)
-            if all(
-                element in _ELEMENTS
-                for element, count in zip(matter.elements, matter.formula[:, place], strict=True)
-                if count > 0.0
-            )
-        )
+        return _made_of_reforming_elements(matter)
 
     @property
     def shift_of_temperature(self) -> float:
@@ -151,4 +144,17 @@ def _too_wet(surplus: float) -> str:
     return (
         f"overfull, the feed already brings {surplus:.6g} mol/s of steam more than "
         "'steam_to_carbon' asks for: raise it, leave it out, or take water out of the feed"
+    )
+
+
+@lru_cache(maxsize=16)
+def _made_of_reforming_elements(matter: Matter) -> tuple[str, ...]:
+    return tuple(
+        name
+        for place, name in enumerate(matter.components)
+        if all(
+            element in _ELEMENTS
+            for element, count in zip(matter.elements, matter.formula[:, place], strict=True)
+            if count > 0.0
+        )
     )

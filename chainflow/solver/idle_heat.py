@@ -63,4 +63,5 @@ def _leave_out(step: EquipmentStep, idle: list[str]) -> None:
     step.outlets = {port: key for port, key in step.outlets.items() if key not in idle}
     step.drawn = {port: key for port, key in step.drawn.items() if key not in idle}
     step.writes = tuple(key for key in step.writes if key not in idle)
-    step.site = replace(step.site, shaped=False)
+    if all(step.variables[key].form != "heat" for key in step.writes):
+        step.site = replace(step.site, shaped=False)

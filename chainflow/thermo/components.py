@@ -125,6 +125,10 @@ class Matter:
         self._liquid = polynomial("H2O(L)")
         self._gas = gas_phase(components, "Redlich-Kwong")
         self._gas_is: tuple[float, float, bytes] | None = None  # the state it was last set to
+        self._gas_total = 0.0  # and its flow
+        self._insoluble = [
+            (i, name) for i, name in enumerate(components) if name not in {"H2O", *wet.HENRY}
+        ]
         self.oil = Oil.of(components)
         critical = [s.input_data["critical-parameters"] for s in species]
         # above this no root but the vapour exists for any component, so no reset is needed
@@ -166,13 +170,13 @@ class Matter:
         Cantera picks the root of the cubic by where the phase was before. Coming from a hot thin
         gas it is the vapour, whatever was asked earlier.
         """
+        state = temperature, pressure, flows.tobytes()
+        if state == self._gas_is:
+            return self._gas_total
         require_state(temperature, pressure)
         total = require_amounts(flows, self.components)
         if total == 0.0:
             return 0.0
-        state = temperature, pressure, flows.tobytes()
-        if state == self._gas_is:
-            return total
         self._gas_is = None
         gas = self._gas
         try:
@@ -183,7 +187,7 @@ class Matter:
                 gas.TP = temperature, pressure
         except ct.CanteraError as problem:  # its cubic solver fails where two roots meet
             raise StateError(liquefaction(temperature, pressure)) from problem
-        self._gas_is = state
+        self._gas_is, self._gas_total = state, total
         return total
 
     def _start_thin(self, flows: Array) -> None:
@@ -359,8 +363,9 @@ class Matter:
                 f"liquid water at {temperature:g} K: its critical temperature is "
                 f"{wet.CRITICAL_TEMPERATURE:g} K"
             )
-        for name, amount in zip(self.components, flows.tolist(), strict=True):
-            if amount > 0.0 and name != "H2O" and name not in wet.HENRY:
+        amounts = flows.tolist()
+        for place, name in self._insoluble:
+            if amounts[place] > 0.0:
                 raise StateError(f"{name} in liquid water: no Henry's constant is known for it")
         return total
 

@@ -16,10 +16,11 @@ LAST_STEP = 1e-6  # relative: the next error is below round-off
 
 
 class Isentropic(NamedTuple):
-    """End of an isentropic change: temperature [K] and work [W]."""
+    """End of an isentropic change: temperature [K], work [W], and the enthalpy at its start [W]."""
 
     temperature: float
     work: float
+    start: float
 
 
 class IsentropicSlopes(NamedTuple):
@@ -55,7 +56,7 @@ def isentropic(
     require_state(temperature, end_pressure)
     start = matter.gas_state(flows, temperature, pressure)
     if start.heat_capacity == 0.0:
-        return Isentropic(temperature, 0.0)
+        return Isentropic(temperature, 0.0, start.enthalpy)
     bracket = Bracket()
     exponent = GAS_CONSTANT * float(flows.sum()) / start.heat_capacity
     trial = bracket.clip(temperature * (end_pressure / pressure) ** exponent)
@@ -78,7 +79,7 @@ def isentropic(
 def _end(trial: float, ratio: float, enthalpy: float, capacity: float, start: float) -> Isentropic:
     """Take the last step; the enthalpy follows it to second order."""
     end = trial * ratio
-    return Isentropic(end, enthalpy + capacity * (end - trial) - start)
+    return Isentropic(end, enthalpy + capacity * (end - trial) - start, start)
 
 
 def isentropic_slopes(

@@ -12,6 +12,7 @@ stays what it is at the end and ln p goes on straight in 1/T, also above the cri
 that is how C2 to C4 dissolve. Data and errors: ``hydrocarbons.yaml``. One case; [K], [Pa], [J/mol].
 """
 
+from functools import lru_cache
 from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
@@ -28,10 +29,16 @@ _LEAST_LOGARITHM = -200.0  # of a vapour pressure in Pa; colder chains are just 
 
 
 class LogPressures(NamedTuple):
-    """Logarithms of vapour pressures [Pa] and their slopes by temperature [1/K]."""
+    """Logarithms of vapour pressures [Pa], their slopes by temperature [1/K], and 1/pressure."""
 
     value: "Array"
     slope: "Array"
+    inverse: "Array"  # [1/Pa]
+
+
+@lru_cache(maxsize=64)  # each trial of a search asks several times
+def _log_pressures(oil: "Oil", temperature: float) -> LogPressures:
+    return oil.find_log_pressures(temperature)
 
 
 class Oil:
@@ -65,6 +72,10 @@ class Oil:
 
     def log_pressures(self, temperature: float) -> LogPressures:
         """Return the logarithms of the vapour pressures [Pa] and their slopes [1/K]."""
+        return _log_pressures(self, temperature)
+
+    def find_log_pressures(self, temperature: float) -> LogPressures:
+        """Work out what `log_pressures` keeps."""
         a, b, c, d = self._pressure
         t = self._inside(temperature)
         value = a + b / t + c * np.log(t) + d * t
@@ -73,7 +84,13 @@ class Oil:
         value = value + slope * t * (1.0 - ratio)
         slope = slope * ratio * ratio
         deep = value < _LEAST_LOGARITHM
-        return LogPressures(np.where(deep, _LEAST_LOGARITHM, value), np.where(deep, 0.0, slope))
+        if deep.any():
+            value = np.where(deep, _LEAST_LOGARITHM, value)
+            slope = np.where(deep, 0.0, slope)
+        found = LogPressures(value, slope, np.exp(-value))
+        for array in found:
+            array.setflags(write=False)
+        return found
 
     def _inside(self, temperature: float) -> "Array":
         inside: Array = np.minimum(np.maximum(temperature, self._low), self._high)

@@ -58,7 +58,7 @@ class Stream:
         the cases. Raises `StateError` for negative flows and states outside the data.
         """
         flows = np.asarray(flows, dtype=float)
-        if flows.ndim > 1 or np.ndim(temperature) or np.ndim(pressure):
+        if flows.ndim > 1 or _several(temperature, pressure):
             make = _per_case(lambda n, t, p: cls.at(matter, n, t, p, dissolved))
             return cast(Stream, make(flows, temperature, pressure))
         return _at(matter, flows.tobytes(), float(temperature), float(pressure), dissolved)
@@ -81,7 +81,7 @@ class Stream:
     def gaseous(cls, matter: Matter, flows: Array, temperature: Value, pressure: Value) -> "Stream":
         """Return the stream as a gas without looking for liquid."""
         flows = np.asarray(flows, dtype=float)
-        if flows.ndim > 1 or np.ndim(temperature) or np.ndim(pressure):
+        if flows.ndim > 1 or _several(temperature, pressure):
             make = _per_case(lambda n, t, p: cls.gaseous(matter, n, t, p))
             return cast(Stream, make(flows, temperature, pressure))
         return _gaseous(matter, flows.tobytes(), float(temperature), float(pressure))
@@ -102,7 +102,7 @@ class Stream:
         guess, or 298.15 K. Raises `StateError` if no temperature of the data has this enthalpy.
         """
         flows = np.asarray(flows, dtype=float)
-        if flows.ndim > 1 or np.ndim(enthalpy) or np.ndim(pressure):
+        if flows.ndim > 1 or _several(enthalpy, pressure):
             start: Value = np.nan if guess is None else guess
             make = _per_case(
                 lambda n, h, p, t: cls.from_enthalpy(
@@ -332,6 +332,13 @@ def _own(flows: Array) -> Array:
     """Return the flows as an array that nobody else can change."""
     array = np.asarray(flows, dtype=float)
     return array.copy() if array.flags.writeable else array
+
+
+def _several(first: Value, second: Value) -> bool:
+    """Return whether one of two values holds several cases."""
+    if type(first) is float and type(second) is float:
+        return False
+    return bool(np.ndim(first) or np.ndim(second))
 
 
 def _plain(value: Any) -> Value:

@@ -80,11 +80,8 @@ def oil_forms(matter: "Matter", gas: "Array", temperature: float, pressure: floa
 
 
 def _oil_forms(oil: Oil, gas: "Array", temperature: float, pressure: float) -> bool:
-    there = gas[oil.places]
-    if not there.any():
-        return False
-    pressures = np.exp(oil.log_pressures(temperature).value)
-    return float((there / pressures).sum()) * pressure > float(gas.sum())
+    liquid = float(gas[oil.places] @ oil.log_pressures(temperature).inverse) * pressure
+    return liquid > 0.0 and liquid > sum(gas.tolist())
 
 
 def _ratios(
@@ -98,7 +95,7 @@ def _ratios(
     assert matter.oil is not None
     e = np.zeros((3, len(matter.components)))
     e[GAS] = 1.0
-    e[OIL, matter.oil.places] = pressure * np.exp(-matter.oil.log_pressures(temperature).value)
+    e[OIL, matter.oil.places] = pressure * matter.oil.log_pressures(temperature).inverse
     wet = matter.water is not None and flows[matter.water] > 0.0
     if wet and temperature < CRITICAL_TEMPERATURE:
         places, names = matter.solubles(dissolved)

@@ -66,5 +66,8 @@ def _repaired_total(values: list[float], names: Sequence[str]) -> float:
 
 def without_round_off(amounts: "Array", names: Sequence[str]) -> "Array":
     """Return the amounts with negative round-off set to zero, or raise `StateError`."""
-    require_amounts(amounts, names)
-    return amounts.clip(0.0) if min(amounts.tolist()) < 0.0 else amounts
+    values = amounts.tolist()
+    if min(values) >= 0.0 and isfinite(sum(values)):
+        return amounts
+    _repaired_total(values, names)
+    return amounts.clip(0.0)

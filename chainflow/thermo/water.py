@@ -102,9 +102,11 @@ def _surely_dry(
     """Whether the gas is dry even if every other gas dissolved as readily as any can."""
     if not _LEAST_HENRY_FROM <= temperature <= _LEAST_HENRY_TO:
         return False
-    wet = amounts[places[0]] * pressure / saturation_pressure(temperature)
-    others = sum(amounts[i] for i in places[1:]) * pressure / _LEAST_HENRY
-    return wet + others < sum(amounts)
+    water, *others = places
+    wet = amounts[water] * pressure / saturation_pressure(temperature)
+    for i in others:
+        wet += amounts[i] * pressure / _LEAST_HENRY
+    return wet < sum(amounts)
 
 
 def water_split(
@@ -158,8 +160,10 @@ def split(
     if not _condenses(matter, amounts, values, dissolved):
         return None
     total = sum(amounts)
-    inert = sum(amount for i, amount in enumerate(amounts) if i not in places) / total
-    shares = [amounts[i] / total for i in places]
+    shares, others = [amounts[i] / total for i in places], amounts.copy()
+    for i in places:
+        others[i] = 0.0
+    inert = sum(others) / total
     vapour = _vapour_share(shares, values, inert)
     water = np.zeros(len(amounts))
     for i, value in zip(places, values, strict=True):

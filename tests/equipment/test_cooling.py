@@ -1,5 +1,7 @@
 """Heat over temperature: where a path is cut, and the entropy that goes with each part."""
 
+from dataclasses import replace
+
 import numpy as np
 import pytest
 
@@ -8,8 +10,10 @@ from chainflow.equipment.cooling import cooling_duties
 from chainflow.equipment.separation import Condenser
 from chainflow.thermo.streams import Stream
 from chainflow.thermo.water import saturation_temperature
+from tests.equipment.cases import CASES, named
 from tests.equipment.feeds import FLUE, MATTER, PRODUCT, SYNTHESIS, WATER, stream
 
+MET = ("power", "heat", "own", "ambient", "bought")
 SITE = Site(MATTER, ambient=200.0)  # so cold that nothing is cut at the ambient
 
 
@@ -113,3 +117,23 @@ def test_the_mean_is_that_of_a_reversible_engine():
         (a - b) * (1.0 - 298.15 / t) for a, b, t in zip(path, path[1:], middle, strict=False)
     )
     assert -whole.heat * (1.0 - 298.15 / whole.mean) == pytest.approx(small, rel=1e-6)
+
+
+@named([case for case in CASES if case.equipment.kind in ("heater", "cooler", "condenser")])
+@pytest.mark.parametrize("ports", [("inlet", "power"), ("inlet", "heat")])
+def test_how_much_heat_it_is_does_not_hang_on_its_shape(case, ports):
+    """A pass that does not ask for the shape of heat finds the same power, and the same slopes."""
+    found, shapes = [], (True, False)
+    for shaped in shapes:
+        site = replace(case.site, inlets=frozenset(ports), detail=shaped, shaped=shaped)
+        outcome = case.equipment.operate(case.feeds, case.asked, site)
+        slopes = case.equipment.slopes(case.feeds, case.asked, site, outcome)
+        by_power = slopes.get("inlet", {}).get("drawn:power", np.zeros(1))
+        met = {how: sum(d.heat for d in outcome.duties if d.met_by == how) for how in MET}
+        found.append((met, outcome.power, by_power))
+    (met, power, by_power), (plain_met, plain_power, plain_by_power) = found
+    size = sum(abs(heat) for heat in met.values())
+    assert plain_met == pytest.approx(met, abs=1e-9 * size)
+    assert plain_power == pytest.approx(power, abs=1e-9 * size)
+    scale = np.abs(by_power).max() or 1.0
+    assert plain_by_power == pytest.approx(by_power, abs=1e-9 * scale)

@@ -34,7 +34,7 @@ def test_argon_follows_the_exponent_of_a_monatomic_gas():
 
 
 def test_without_flow_nothing_happens():
-    assert isentropic(MATTER, np.zeros(8), 300.0, 1e5, 10e5) == (300.0, 0.0)
+    assert isentropic(MATTER, np.zeros(8), 300.0, 1e5, 10e5) == (300.0, 0.0, 0.0)
     slopes = isentropic_slopes(MATTER, np.zeros(8), 300.0, 1e5, 10e5, 300.0)
     assert slopes.work_by_start == 0.0
 
