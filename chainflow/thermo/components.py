@@ -290,9 +290,9 @@ class Matter:
         With `names`, only those are worked out and the others are zero.
         """
         enthalpies = np.zeros(len(self.components))
-        for name, place in self.index.items():
-            if (name in wet.HENRY or name == "H2O") if names is None else name in names:
-                enthalpies[place] = self._aqueous_enthalpy(name, temperature, pressure)
+        for name in ("H2O", *wet.HENRY) if names is None else names:
+            if name in self.index:
+                enthalpies[self.index[name]] = self._aqueous_enthalpy(name, temperature, pressure)
         return AqueousPartial(enthalpies)
 
     def _aqueous_enthalpy(self, name: str, temperature: float, pressure: float) -> float:
@@ -313,10 +313,10 @@ class Matter:
         """Return the partial molar entropies in a liquid [J/(mol K)]; zero for what is absent."""
         total = self._wet(flows, temperature, pressure)
         entropies = np.zeros(len(self.components))
-        for place, name in enumerate(self.components if total else ()):
-            share = float(flows[place]) / total
-            if share <= 0.0:
+        for place, amount in enumerate(flows.tolist() if total else ()):
+            if amount <= 0.0:
                 continue
+            name, share = self.components[place], amount / total
             if name == "H2O":
                 entropies[place] = self._liquid.entropy(temperature) - GAS_CONSTANT * log(share)
             else:
@@ -331,13 +331,14 @@ class Matter:
     def water_heat_capacity(self, flows: Array, temperature: float, pressure: float) -> float:
         """Return dH/dT of liquid water with what is dissolved in it [W/K]."""
         capacity = 0.0
-        for place, name in enumerate(
-            self.components if self._wet(flows, temperature, pressure) else ()
-        ):
-            amount = float(flows[place])
+        amounts = flows.tolist() if self._wet(flows, temperature, pressure) else ()
+        for place, amount in enumerate(amounts):
+            if amount <= 0.0:
+                continue
+            name = self.components[place]
             if name == "H2O":
                 capacity += amount * self._liquid.heat_capacity(temperature)
-            elif amount > 0.0:
+            else:
                 pure = self._polynomials[place].heat_capacity(temperature)
                 capacity += amount * (pure + _dissolution_heat_capacity(name, temperature))
         return capacity

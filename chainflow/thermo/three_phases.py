@@ -18,12 +18,13 @@ from typing import TYPE_CHECKING, NamedTuple
 import numpy as np
 
 from chainflow.thermo.oil import Oil
+from chainflow.thermo.validity import some
 from chainflow.thermo.water import CRITICAL_TEMPERATURE, distribution, log_slopes, split
 
 if TYPE_CHECKING:
     from chainflow.thermo.components import Array, Matter
 
-_NO_LIQUID = 1e-15  # share of the flow below which a liquid is round-off
+_NO_LIQUID = 1e-14  # share of the flow below which a liquid is round-off
 _GONE = 1e-30  # share of the flow: an oil that has shrunk to it shrinks for ever
 _MOST_STEPS = 200
 _LAST_STEP = 1e-9  # relative: the step after it is below round-off
@@ -80,8 +81,11 @@ def oil_forms(matter: "Matter", gas: "Array", temperature: float, pressure: floa
 
 
 def _oil_forms(oil: Oil, gas: "Array", temperature: float, pressure: float) -> bool:
-    liquid = float(gas[oil.places] @ oil.log_pressures(temperature).inverse) * pressure
-    return liquid > 0.0 and liquid > sum(gas.tolist())
+    there = gas[oil.places]
+    if not some(there):
+        return False
+    liquid = float(there @ oil.log_pressures(temperature).inverse) * pressure
+    return liquid > sum(gas.tolist())
 
 
 def _ratios(
@@ -105,9 +109,9 @@ def _ratios(
 
 def _all_liquid(flows: "Array", e: "Array") -> "Array | None":
     """Return the amounts of water and oil where no gas is left, or None."""
-    water, oil = (float(flows[e[phase] > 0.0].sum()) for phase in (WATER, OIL))
     if flows[(e[WATER] <= 0.0) & (e[OIL] <= 0.0)].any():
         return None
+    water, oil = (float(flows[e[phase] > 0.0].sum()) for phase in (WATER, OIL))
     vapour = 0.0
     for phase, amount in ((WATER, water), (OIL, oil)):
         if amount > 0.0:
@@ -141,9 +145,8 @@ def _minimised(flows: "Array", e: "Array", start: "Array", active: list[int]) ->
     amounts = start[active]
     for _ in range(_MOST_STEPS):
         whole = amounts @ e
-        share = e / whole
-        slope = share @ z
-        step = small_solve((share * z) @ share.T, 1.0 - slope)
+        once = z / whole
+        step = small_solve((e * (once / whole)) @ e.T, 1.0 - e @ once)
         relative = (step / amounts).tolist()  # negative: downwards is where the answer is less
         size = max(abs(part) for part in relative)
         step *= -min(1.0, 0.9 / max(*relative, 0.9))
@@ -168,6 +171,10 @@ def _lower(z: "Array", e: "Array", amounts: "Array", step: "Array", whole: "Arra
 
 def small_solve(matrix: "Array", right: "Array") -> "Array":
     """Solve two or three equations with a symmetric matrix; not finite where it is singular."""
+    if len(matrix) == 2 and right.ndim == 1:
+        (a, b), (_, d) = matrix.tolist()
+        one, two = right.tolist()
+        return _over(np.array([d * one - b * two, a * two - b * one]), a * d - b * b)
     if len(matrix) == 2:
         (a, b), (_, d) = matrix.tolist()
         both = np.array([[d, -b], [-b, a]])
