@@ -16,7 +16,7 @@ from typing import NamedTuple
 from chainflow.equipment.base import Caution, Site
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import Part, mean_temperature
-from chainflow.thermo.dew import dew_temperature
+from chainflow.thermo.dew import dew_temperature, oil_dew_temperature
 from chainflow.thermo.phases import any_liquid
 from chainflow.thermo.species import LOWEST_TEMPERATURE
 from chainflow.thermo.streams import DISSOLVED, Stream
@@ -110,7 +110,7 @@ class Cut(NamedTuple):
     temperature: float
     by_start: float = 0.0
     by_dew: float = 0.0
-    oil: bool = False  # the dew point is that of an oil
+    liquid: str = ""  # water or oil, at a dew point of that
 
 
 def path_cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[Cut]:
@@ -129,15 +129,16 @@ def path_cuts(first: Stream, level: float, dissolved: tuple[str, ...]) -> list[C
         return [Cut(t, by_start=1.0 - share) for t, share in _inside(start, level)]
     if matter.water is not None and float(flows[matter.water]) == float(first.total):
         return [Cut(t) for t in _around_boiling(start, level, saturation_temperature(pressure))]
-    dew = dew_temperature(matter, flows, pressure, dissolved) if first.matter.oil is None else None
-    low, high = (start, level) if wet_start else (level, start)
-    found = dew is not None and low < dew < high
-    if dew is None or not found:
-        dew = _dew_point(wet, low, high)
-    at_dew = Cut(dew, by_dew=1.0, oil=not found)
+    water = dew_temperature(matter, flows, pressure, dissolved) or 0.0
+    oil = oil_dew_temperature(matter, flows, pressure) or 0.0
+    dew, low, high = max(water, oil), min(start, level), max(start, level)
+    liquid = "oil" if dew == oil else "water"
+    if not low < dew < high:  # it is wet where it is hot
+        dew, liquid = _dew_point(wet, *((start, level) if wet_start else (level, start))), ""
+    at_dew = Cut(dew, by_dew=1.0, liquid=liquid)
     if wet_start:
-        return [*(Cut(t, 1.0 - k, k, not found) for t, k in _inside(start, dew)), at_dew]
-    return [at_dew, *(Cut(t, 0.0, 1.0 - k, not found) for t, k in _inside(dew, level))]
+        return [*(Cut(t, 1.0 - k, k) for t, k in _inside(start, dew)), at_dew]
+    return [at_dew, *(Cut(t, 0.0, 1.0 - k) for t, k in _inside(dew, level))]
 
 
 def _around_boiling(start: float, level: float, boiling: float) -> list[float]:

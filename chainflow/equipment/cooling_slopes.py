@@ -15,7 +15,7 @@ from chainflow.equipment.base import Array, Outcome, Site
 from chainflow.equipment.cooling import Cut, is_shaped, path_cuts
 from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.ports import MOST_PARTS, Part
-from chainflow.thermo.dew import dew_slopes
+from chainflow.thermo.dew import dew_slopes, oil_dew_slopes
 from chainflow.thermo.streams import (
     DISSOLVED,
     Stream,
@@ -164,11 +164,11 @@ class _Path:
         at: tuple[float, float],
         dissolved: tuple[str, ...],
     ) -> _Path | None:
-        """The path of a stream; None where it is cut at the dew point of an oil."""
+        """The path of a stream; None where the dew point was only searched for."""
         level, pressure = at
         first = inlet.at_pressure(pressure, dissolved)
         cuts = path_cuts(first, level, dissolved)
-        if any(cut.oil for cut in cuts):
+        if any(cut.by_dew == 1.0 and not cut.liquid for cut in cuts):
             return None
         moves = {site.ambient: np.zeros(len(outlet_row))} | _moves(first, cuts, dissolved)
         path = _Path(inlet, pressure, dissolved, moves, {})
@@ -222,8 +222,8 @@ def _moves(first: Stream, cuts: list[Cut], dissolved: tuple[str, ...]) -> dict[f
     moves, dew = {}, np.zeros(len(began))
     for cut in cuts:
         if cut.by_dew == 1.0:
-            pressure = float(first.pressure)
-            dew[:-1] = dew_slopes(first.matter, first.flows, cut.temperature, pressure, dissolved)
+            at = (first.matter, first.flows, cut.temperature, float(first.pressure))
+            dew[:-1] = oil_dew_slopes(*at) if cut.liquid == "oil" else dew_slopes(*at, dissolved)
     for cut in cuts:
         moves[cut.temperature] = cut.by_start * began + cut.by_dew * dew
     return moves

@@ -1,17 +1,19 @@
-"""At which temperature does a flow begin to condense water, or liquid water begin to boil?
+"""At which temperature does a flow begin to condense water or oil, or liquid water begin to boil?
 
 One case: flows (components,) [mol/s], temperature [K], pressure [Pa]; the same ideal laws as in
-`chainflow.thermo.water`, solved to round-off so that what hangs on it is smooth.
+`chainflow.thermo.water` and `chainflow.thermo.three_phases`, solved to round-off so that what
+hangs on it is smooth.
 """
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from math import log
 
 import numpy as np
 
 from chainflow.thermo.components import Array, Matter
-from chainflow.thermo.species import LOWEST_TEMPERATURE
+from chainflow.thermo.species import HIGHEST_TEMPERATURE, LOWEST_TEMPERATURE
 from chainflow.thermo.water import (
     CRITICAL_TEMPERATURE,
     distribution,
@@ -49,10 +51,36 @@ def dew_temperature(
         whole = sum(parts)
         return log(whole), -sum(p * s for p, s in zip(parts, slopes, strict=True)) / whole
 
-    low, high = LOWEST_TEMPERATURE, CRITICAL_TEMPERATURE - 1e-6
+    return _root(excess, LOWEST_TEMPERATURE, CRITICAL_TEMPERATURE - 1e-6, 350.0)
+
+
+def oil_dew_temperature(matter: Matter, flows: Array, pressure: float) -> float | None:
+    """Return the temperature [K] below which oil forms from a gas, None if there is none.
+
+    ``sum(z_i / K_i) = 1`` over the hydrocarbons.  None without any, and for a gas from which none
+    or always some condenses within the range of the data.
+    """
+    oil = matter.oil
+    if oil is None or not flows[oil.places].any():
+        return None
+    shares = flows[oil.places] / float(flows.sum())
+
+    def excess(temperature: float) -> tuple[float, float]:
+        pressures = oil.find_log_pressures(temperature)
+        parts = shares * pressures.inverse
+        whole = float(parts.sum())
+        return log(whole * pressure), -float(parts @ pressures.slope) / whole
+
+    return _root(excess, LOWEST_TEMPERATURE, HIGHEST_TEMPERATURE, 450.0)
+
+
+def _root(
+    excess: Callable[[float], tuple[float, float]], low: float, high: float, start: float
+) -> float | None:
+    """Return where a falling function of temperature is zero, None if that is not between."""
     if excess(low)[0] <= 0.0 or excess(high)[0] >= 0.0:
         return None
-    level = 350.0
+    level = start
     for _ in range(_MOST_STEPS):
         value, slope = excess(level)
         low, high = (level, high) if value > 0.0 else (low, level)
@@ -84,3 +112,15 @@ def dew_slopes(
         by_flows[place] += 1.0 / (ratio * total)
         by_level += float(flows[place]) / (ratio * total) * slope
     return by_flows / by_level
+
+
+def oil_dew_slopes(matter: Matter, flows: Array, dew: float, pressure: float) -> Array:
+    """Return the slopes of the oil's dew temperature by the flows [K s/mol], (components,)."""
+    oil = matter.oil
+    assert oil is not None
+    total = float(flows.sum())
+    pressures = oil.find_log_pressures(dew)
+    parts = pressures.inverse * (pressure / total)
+    by_flows = np.full(len(flows), -1.0 / total)
+    by_flows[oil.places] += parts
+    return by_flows / float((flows[oil.places] * parts) @ pressures.slope)

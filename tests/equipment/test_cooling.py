@@ -6,11 +6,14 @@ import numpy as np
 import pytest
 
 from chainflow.equipment.base import Site
-from chainflow.equipment.cooling import cooling_duties
+from chainflow.equipment.cooling import cooling_duties, path_cuts
 from chainflow.equipment.separation import Condenser
+from chainflow.thermo.dew import dew_slopes, oil_dew_slopes
+from chainflow.thermo.phases import any_liquid
 from chainflow.thermo.streams import Stream
 from chainflow.thermo.water import saturation_temperature
 from tests.equipment.cases import CASES, named
+from tests.equipment.cases_liquid_fuels import PARAFFINS, product
 from tests.equipment.feeds import FLUE, MATTER, PRODUCT, SYNTHESIS, WATER, stream
 
 MET = ("power", "heat", "own", "ambient", "bought")
@@ -137,3 +140,23 @@ def test_how_much_heat_it_is_does_not_hang_on_its_shape(case, ports):
     assert plain_power == pytest.approx(power, abs=1e-9 * size)
     scale = np.abs(by_power).max() or 1.0
     assert plain_by_power == pytest.approx(by_power, abs=1e-9 * scale)
+
+
+@pytest.mark.parametrize("celsius", [60.0, 150.0])
+def test_a_path_is_cut_where_oil_or_water_begins_to_condense(celsius):
+    """Just above the first cut all is gas, just below it is not; it moves as its slopes say."""
+    hot = product(PARAFFINS, 600.0, 20.0, 12, 1e-9 if celsius < 100.0 else 0.2)
+    first = path_cuts(hot, celsius + 273.15, ("CO2",))[0]
+    dew, by_flows = first.temperature, {"oil": oil_dew_slopes, "water": dew_slopes}[first.liquid]
+    assert not any_liquid(PARAFFINS, hot.flows, dew * (1 + 1e-11), hot.pressure)
+    assert any_liquid(PARAFFINS, hot.flows, dew * (1 - 1e-11), hot.pressure)
+    slopes = by_flows(PARAFFINS, hot.flows, dew, hot.pressure)
+    for place in np.flatnonzero(hot.flows > 1e-3):
+        moved = []
+        for sign in (1.0, -1.0):
+            flows = hot.flows.copy()
+            flows[place] *= 1.0 + 1e-5 * sign
+            changed = Stream.at(PARAFFINS, flows, hot.temperature, hot.pressure)
+            moved.append(path_cuts(changed, celsius + 273.15, ("CO2",))[0].temperature)
+        found = (moved[0] - moved[1]) / (2e-5 * hot.flows[place])
+        assert slopes[place] == pytest.approx(found, rel=1e-5, abs=1e-6 * np.abs(slopes).max())

@@ -15,7 +15,7 @@ from typing import Any
 
 import pytest
 
-from chainflow.thermo import reactants, streams
+from chainflow.thermo import oil, reactants, streams
 from chainflow.thermo.species import gas_phase
 from tests.equipment.cases import CASES
 
@@ -32,6 +32,7 @@ KEPT = (
     streams.entropy_slopes,
     streams.temperature_slopes,
     reactants._balance,
+    oil._log_pressures,
 )
 LONGER = {
     "methanation-reactor: beds": "three reactors one after the other, recycle or steam found",
