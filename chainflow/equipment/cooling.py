@@ -61,7 +61,7 @@ def cooling_duties(
         pairs = zip(heats, pairwise(levels), strict=True)
         return [Duty.between(purpose, part, *ends) for part, ends in pairs]
     duties = []
-    path = [first, *inside, outlet]
+    path = [_State.of(stream) for stream in (first, *inside, outlet)]
     for before, after, ends in zip(path, path[1:], pairwise(levels), strict=False):
         curve = _curve(before, after, *ends)
         duties.append(Duty(purpose, *_part(before, after, *ends), curve=curve))
@@ -73,27 +73,41 @@ def is_shaped(site: Site) -> bool:
     return site.detail or (site.shaped and "heat" in site.inlets | site.outlets)
 
 
-def _part(before: Stream, after: Stream, start: float, end: float) -> Part:
+class _State(NamedTuple):
+    """A stream on its path, and its entropy [W/K], which two parts of the path ask for."""
+
+    stream: Stream
+    entropy: float
+
+    @classmethod
+    def of(cls, stream: Stream) -> _State:
+        return cls(stream, float(stream.entropy))
+
+
+def _part(before: _State, after: _State, start: float, end: float) -> Part:
     """The heat from one state to the next, its ends and its entropy-mean temperature."""
-    heat = float(after.enthalpy) - float(before.enthalpy)
-    entropy = float(after.entropy) - float(before.entropy)
+    heat = float(after.stream.enthalpy) - float(before.stream.enthalpy)
+    entropy = after.entropy - before.entropy
     mean = mean_temperature(start, end)
     if heat * entropy > 0.0:
-        ends = (start, end, float(before.temperature))
+        ends = (start, end, float(before.stream.temperature))
         least, most = min(ends) * (1.0 - _DATA_SPREAD), max(ends) * (1.0 + _DATA_SPREAD)
         mean = min(max(heat / entropy, least), most)
     return heat, start, end, mean
 
 
-def _curve(before: Stream, after: Stream, start: float, end: float) -> tuple[Part, ...]:
+def _curve(before: _State, after: _State, start: float, end: float) -> tuple[Part, ...]:
     """The parts of the heat of a gas between two states; none where it is no gas all the way."""
-    if not (_is_gas(before) and _is_gas(after)) or min(start, end) < LOWEST_TEMPERATURE:
+    if (
+        not (_is_gas(before.stream) and _is_gas(after.stream))
+        or min(start, end) < LOWEST_TEMPERATURE
+    ):
         return ()
     step = (end - start) / GAS_STEPS
     levels = [*(start + k * step for k in range(GAS_STEPS)), end]
-    flows, pressure = before.flows, after.pressure
-    inside = [Stream.gaseous(before.matter, flows, t, pressure) for t in levels[1:-1]]
-    path = [before, *inside, after]
+    first, pressure = before.stream, after.stream.pressure
+    inside = [Stream.gaseous(first.matter, first.flows, t, pressure) for t in levels[1:-1]]
+    path = [before, *map(_State.of, inside), after]
     parts = tuple(_part(path[i], path[i + 1], levels[i], levels[i + 1]) for i in range(GAS_STEPS))
     signs = {part[0] > 0.0 for part in parts}  # a let-down that cools more than a step warms
     return parts if len(signs) == 1 else ()

@@ -138,9 +138,9 @@ def _at_a_level(rate: Array, level: Array | None) -> Array:
 
 
 class _End(NamedTuple):
-    """One end of a part of the heat: its state, and its slopes by the inlet."""
+    """One end of a part of the heat: its entropy [W/K], and its slopes by the inlet."""
 
-    stream: Stream
+    content: float
     temperature: Array
     enthalpy: Array
     entropy: Array
@@ -232,7 +232,7 @@ def _moves(first: Stream, cuts: list[Cut], dissolved: tuple[str, ...]) -> dict[f
 def _rows(part: Part, before: _End, after: _End) -> Array | None:
     """Slopes of one part of heat given off; None if a limit set its mean."""
     heat, _, _, level = part
-    entropy = float(before.stream.entropy) - float(after.stream.entropy)
+    entropy = before.content - after.content
     if entropy == 0.0 or abs(-heat / entropy - level) > _SAME * level:
         return None
     rate = before.enthalpy - after.enthalpy
@@ -248,7 +248,7 @@ def _inlet_end(inlet: Stream, first: Stream, dissolved: tuple[str, ...]) -> _End
     enthalpy = np.zeros(len(temperature))
     enthalpy[-1] = 1.0
     entropy = np.append(by_flow + by_level * to_flow, by_level * to_enthalpy)
-    return _End(first, temperature, enthalpy, entropy)
+    return _End(float(first.entropy), temperature, enthalpy, entropy)
 
 
 def _end(stream: Stream, moves: Array, dissolved: tuple[str, ...]) -> _End:
@@ -260,4 +260,4 @@ def _end(stream: Stream, moves: Array, dissolved: tuple[str, ...]) -> _End:
     if moves.any():
         enthalpy += capacity * moves
         entropy += by_level * moves
-    return _End(stream, moves, enthalpy, entropy)
+    return _End(float(stream.entropy), moves, enthalpy, entropy)

@@ -38,7 +38,6 @@ LONGER = {
     "methanation-reactor: beds": "three reactors one after the other, recycle or steam found",
     "methanation-reactor: hydrogen holds no bed": "three reactors, and the steam that is not found",
     "compressor: least work": "the pressures between three or four stages are searched for",
-    "compressor: polytropic": "the path of each stage is integrated on the real gas",
     "compressor: oil": "55 components: one state of the real gas takes Cantera 70 us",
     "membrane": "40 to 70 steps of a fifth-order integration with an error estimate",
     "valve: oil": "55 components, three phases at each of several temperatures",
@@ -48,10 +47,6 @@ LONGER = {
     "reformer": "oxygen, steam and temperature: six to eight equilibria",
     "shift-reactor": "oxygen is searched for: six to eight equilibria",
     "burner": "a flame that is kept, enriched or leaks: six to eight equilibria",
-    "electrolyser: steam": "shift and methane along the cell",
-    "fuel-cell": "reforming along the cell",
-    "heat-exchanger: condenses and boils": "the pinch inside, on two curves with a change of phase",
-    "heat-exchanger: boils": "the pinch inside, on two curves with a change of phase",
 }
 
 
