@@ -20,12 +20,13 @@ RUNS = 21
 
 
 @pytest.mark.parametrize(
-    ("name", "most"), [("methane-cycle", 17.0), ("liquid-fuel", 12.0), ("steam-methane", 27.0)]
+    ("name", "most"), [("methane-cycle", 15.0), ("liquid-fuel", 9.5), ("steam-methane", 22.5)]
 )
 def test_a_pass_over_its_raw_cantera_calls(name: str, most: float) -> None:
     """One evaluation of the whole loop, at the answer, without derivatives.
 
-    The limits are about 1.6 times what was measured: they catch a doubling, not a busy machine.
+    Measured with other work on the machine: 11 to 12, 6.1 to 7.9, 14.5 to 17; the limits are some
+    1.3 times that.  The ratio grows when Cantera calls are saved, and falls when Python is.
     """
     flowsheet = read_flowsheet(FLOWSHEETS / f"{name}.yaml")
     prepared = Prepared(flowsheet)
