@@ -12,8 +12,9 @@ from typing import NamedTuple
 import numpy as np
 
 from chainflow.equipment.base import Array, Outcome, Site
-from chainflow.equipment.cooling import Cut, is_shaped, path_cuts
+from chainflow.equipment.cooling import is_shaped
 from chainflow.equipment.heat_needs import Duty
+from chainflow.equipment.path_cuts import Way, find_way
 from chainflow.equipment.ports import MOST_PARTS, Part
 from chainflow.thermo.dew import dew_slopes, oil_dew_slopes
 from chainflow.thermo.streams import (
@@ -25,6 +26,7 @@ from chainflow.thermo.streams import (
 )
 
 _ASKED = np.array([[-1.0], [1.0], [1.0], [1.0]])  # heat asked for is negative heat given off
+_TRACE = 1e-12  # of the flow
 _SAME = 1e-9  # relative: a mean that is heat over entropy and no limit
 
 
@@ -150,8 +152,8 @@ class _End(NamedTuple):
 class _Path:
     """The way of a stream to the outlet's temperature, at the outlet's pressure."""
 
-    inlet: Stream
-    pressure: float
+    first: Stream  # the inlet at the outlet's pressure
+    way: Way
     dissolved: tuple[str, ...]
     moves: dict[float, Array]  # slopes of the temperatures between which duties lie
     ends: dict[float, _End]  # those that are known
@@ -164,14 +166,19 @@ class _Path:
         at: tuple[float, float],
         dissolved: tuple[str, ...],
     ) -> _Path | None:
-        """The path of a stream; None where the dew point was only searched for."""
+        """The path of a stream.
+
+        None where the dew point was only searched for, and where all is liquid at the start: an
+        absent gas would bring a phase with it, whose slopes are not those without it.
+        """
         level, pressure = at
         first = inlet.at_pressure(pressure, dissolved)
-        cuts = path_cuts(first, level, dissolved)
-        if any(cut.by_dew == 1.0 and not cut.liquid for cut in cuts):
+        way = find_way(first, level, dissolved)
+        by_dew = any(cut.by_dew for cut in way.cuts)
+        if not way.dew_of or (by_dew and _may_bring_gas(first)):
             return None
-        moves = {site.ambient: np.zeros(len(outlet_row))} | _moves(first, cuts, dissolved)
-        path = _Path(inlet, pressure, dissolved, moves, {})
+        moves = {site.ambient: np.zeros(len(outlet_row))} | _moves(first, way, dissolved)
+        path = _Path(first, way, dissolved, moves, {})
         path.ends[float(inlet.temperature)] = _inlet_end(inlet, first, dissolved)
         last = path.end(level, np.zeros(len(outlet_row)))
         path.ends[level] = last._replace(enthalpy=outlet_row)
@@ -187,11 +194,7 @@ class _Path:
 
     def end(self, level: float, moves: Array) -> _End:
         """The state at a temperature that moves."""
-        return _end(
-            Stream.at(self.inlet.matter, self.inlet.flows, level, self.pressure, self.dissolved),
-            moves,
-            self.dissolved,
-        )
+        return _end(self.way.state(self.first, level, self.dissolved), moves, self.dissolved)
 
     def part_rows(self, duty: Duty) -> Iterator[Array | None]:
         """Slopes of each part of heat given off, ``[rate, start, end, mean]``.
@@ -203,30 +206,37 @@ class _Path:
         if before is None or last is None:
             yield None
             return
-        first = before
+        first, stream = before, self.first
         parts = duty.curve or ((duty.heat, duty.start, duty.end, duty.mean),)
         for number, part in enumerate(parts, start=1):
             after = last
             if number < len(parts):
                 share = number / len(parts)
                 moves = (1.0 - share) * first.temperature + share * last.temperature
-                gas = Stream.gaseous(self.inlet.matter, self.inlet.flows, part[2], self.pressure)
+                gas = Stream.gaseous(stream.matter, stream.flows, part[2], stream.pressure)
                 after = _end(gas, moves, self.dissolved)
             yield _rows(part, before, after)
             before = after
 
 
-def _moves(first: Stream, cuts: list[Cut], dissolved: tuple[str, ...]) -> dict[float, Array]:
+def _may_bring_gas(stream: Stream) -> bool:
+    """Whether there is no gas, and something absent that would be one."""
+    trace = _TRACE * float(stream.total)
+    return bool(float(stream.gas.sum()) < trace and (stream.flows < trace).any())
+
+
+def _moves(first: Stream, way: Way, dissolved: tuple[str, ...]) -> dict[float, Array]:
     """Slopes of the temperatures at which a path is cut."""
     began = np.append(*temperature_slopes(first, dissolved))
-    moves, dew = {}, np.zeros(len(began))
-    for cut in cuts:
-        if cut.by_dew == 1.0:
-            at = (first.matter, first.flows, cut.temperature, float(first.pressure))
-            dew[:-1] = oil_dew_slopes(*at) if cut.liquid == "oil" else dew_slopes(*at, dissolved)
-    for cut in cuts:
-        moves[cut.temperature] = cut.by_start * began + cut.by_dew * dew
-    return moves
+    dew, rest, water = np.zeros(len(began)), np.ones(len(began)), np.zeros(len(began))
+    rest[-1] = 0.0
+    if first.matter.water is not None:
+        rest[first.matter.water], water[first.matter.water] = 0.0, 1.0
+    if any(cut.by_dew for cut in way.cuts):
+        at = (first.matter, first.flows, way.dry_from, float(first.pressure))
+        dew[:-1] = oil_dew_slopes(*at) if way.dew_of == "oil" else dew_slopes(*at, dissolved)
+    ways = np.vstack([began, dew, water, rest])
+    return {cut.temperature: np.array(cut[1:]) @ ways for cut in way.cuts}
 
 
 def _rows(part: Part, before: _End, after: _End) -> Array | None:

@@ -6,7 +6,8 @@ import numpy as np
 import pytest
 
 from chainflow.equipment.base import Site
-from chainflow.equipment.cooling import cooling_duties, path_cuts
+from chainflow.equipment.cooling import cooling_duties
+from chainflow.equipment.path_cuts import find_way
 from chainflow.equipment.separation import Condenser
 from chainflow.thermo.dew import dew_slopes, oil_dew_slopes
 from chainflow.thermo.phases import any_liquid
@@ -73,6 +74,44 @@ def test_boiling_water_takes_its_heat_at_one_temperature():
     assert boiling.heat > 3e4  # 32 kJ/mol at 30 bar
     assert boiling.mean == pytest.approx(level, rel=0.01)  # two data sets
     assert heating.heat > superheating.heat > 0.0
+
+
+def test_water_with_a_trace_of_gas_boils_where_water_does():
+    """A trace spreads the boiling over a hundredth of a kelvin, not over the whole way there."""
+    flows = WATER.flows.copy()
+    flows[MATTER.components.index("H2")] = 1e-5 * WATER.total
+    traced = Stream.at(MATTER, flows, 298.15, WATER.pressure)
+    level = saturation_temperature(WATER.pressure)
+    found = duties(traced, 300.0)
+    boiling = sum(d.heat for d in found if d.start > level - 2.0 and d.end < level + 0.1)
+    (_, pure, _) = duties(WATER, 300.0)
+    assert boiling == pytest.approx(pure.heat, rel=0.01)  # 2 K of liquid are 0.5 % of it
+    assert found[-1].curve  # from there on it is a gas
+
+
+def test_fog_is_no_shape_of_its_own():
+    """At the dew point round-off decides whether a little is liquid; the parts do not."""
+    fog = Condenser.model_validate({"temperature": "40 degC"}).operate({"inlet": FLUE}, {}, SITE)
+    gas = fog.outlets["gas"]
+    for shift in (-1e-3, 0.0, 1e-3):
+        inlet = Stream.from_enthalpy(
+            MATTER, gas.flows, gas.enthalpy * (1.0 + shift * 1e-3), gas.pressure, gas.temperature
+        )
+        (only,) = duties(inlet, 150.0)
+        assert len(only.curve) == 4
+
+
+@pytest.mark.parametrize("inlet", [FLUE, PRODUCT])
+def test_the_parts_follow_the_heat_of_condensing(inlet):
+    """Between its ends no part is off the real curve by more than 3 % of the heat (a pin: 2.6)."""
+    found = duties(inlet, 30.0)[1:]
+    whole = sum(d.heat for d in found)
+    for part in found:
+        before = Stream.at(MATTER, inlet.flows, part.start, inlet.pressure).enthalpy
+        for share in np.linspace(0.1, 0.9, 9):
+            level = part.start + share * (part.end - part.start)
+            real = Stream.at(MATTER, inlet.flows, level, inlet.pressure).enthalpy - before
+            assert abs(real - share * part.heat) < 0.03 * abs(whole)
 
 
 def test_condensing_is_boiling_backwards():
@@ -146,8 +185,8 @@ def test_how_much_heat_it_is_does_not_hang_on_its_shape(case, ports):
 def test_a_path_is_cut_where_oil_or_water_begins_to_condense(celsius):
     """Just above the first cut all is gas, just below it is not; it moves as its slopes say."""
     hot = product(PARAFFINS, 600.0, 20.0, 12, 1e-9 if celsius < 100.0 else 0.2)
-    first = path_cuts(hot, celsius + 273.15, ("CO2",))[0]
-    dew, by_flows = first.temperature, {"oil": oil_dew_slopes, "water": dew_slopes}[first.liquid]
+    way = find_way(hot, celsius + 273.15, ("CO2",))
+    dew, by_flows = way.dry_from, {"oil": oil_dew_slopes, "water": dew_slopes}[way.dew_of]
     assert not any_liquid(PARAFFINS, hot.flows, dew * (1 + 1e-11), hot.pressure)
     assert any_liquid(PARAFFINS, hot.flows, dew * (1 - 1e-11), hot.pressure)
     slopes = by_flows(PARAFFINS, hot.flows, dew, hot.pressure)
@@ -157,6 +196,33 @@ def test_a_path_is_cut_where_oil_or_water_begins_to_condense(celsius):
             flows = hot.flows.copy()
             flows[place] *= 1.0 + 1e-5 * sign
             changed = Stream.at(PARAFFINS, flows, hot.temperature, hot.pressure)
-            moved.append(path_cuts(changed, celsius + 273.15, ("CO2",))[0].temperature)
+            moved.append(find_way(changed, celsius + 273.15, ("CO2",)).dry_from)
         found = (moved[0] - moved[1]) / (2e-5 * hot.flows[place])
         assert slopes[place] == pytest.approx(found, rel=1e-5, abs=1e-6 * np.abs(slopes).max())
+
+
+@pytest.mark.parametrize(
+    ("inlet", "celsius"), [(FLUE, 30.0), (at(FLUE, 40.0), 150.0), (at(PRODUCT, 60.0), 30.0)]
+)
+def test_cuts_move_as_they_say(inlet, celsius):
+    """With the start of the path, the dew point and the flows, against central differences."""
+    start, flows, pressure = float(inlet.temperature), inlet.flows, float(inlet.pressure)
+
+    def way(level, amounts):
+        return find_way(Stream.at(MATTER, amounts, level, pressure), celsius + 273.15, ("CO2",))
+
+    own = way(start, flows)
+    moves = [np.array([cut.by_start for cut in own.cuts])]
+    ends = [(way(start + 0.01, flows), way(start - 0.01, flows), 0.02)]
+    dew = dew_slopes(MATTER, flows, own.dry_from, pressure) if own.dry_from < 1e3 else 0.0 * flows
+    for place in np.flatnonzero(flows):
+        by = "by_water" if place == MATTER.water else "by_rest"
+        moves.append(np.array([getattr(cut, by) + cut.by_dew * dew[place] for cut in own.cuts]))
+        step = np.zeros(len(flows))
+        step[place] = 1e-5 * flows[place]
+        ends.append((way(start, flows + step), way(start, flows - step), 2.0 * step[place]))
+    assert len(own.cuts) >= 5
+    for slopes, (high, low, by) in zip(moves, ends, strict=True):
+        levels = [[cut.temperature for cut in end.cuts] for end in (high, low)]
+        seen = (np.array(levels[0]) - np.array(levels[1])) / by
+        assert slopes == pytest.approx(seen, rel=1e-4, abs=1e-5 * max(np.abs(seen).max(), 1e-3))

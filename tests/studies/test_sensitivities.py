@@ -22,21 +22,16 @@ AGREE = 1e-5  # relative
 # elasticity below which a slope is nothing: the differences of two solves, and those on one piece,
 # each end at round-off (1e-13 of the result) over their step
 NOTHING = 2e-8
-# Where 1e-5 is not reached, the largest difference in elasticity seen, rounded up (pins): what acts
-# through the shape of condensing heat in a network (steam-methane, blend.ratio 1.9e-4), the
-# ratio that moves two loops at once (cycles, 3e-6), round-off of 36 components (liquid-fuel, 3e-8).
-NOT_REACHED = {
-    "steam-methane": 3e-4,
-    "methane-cycle": 5e-6,
-    "methane-cycle-direct": 5e-6,
-    "liquid-fuel": 5e-8,
-}
+# Where 1e-5 is not reached, the largest difference in elasticity seen, rounded up (a pin):
+# round-off of 36 components (liquid-fuel, 3e-8).
+NOT_REACHED = {"liquid-fuel": 5e-8}
+FINER = 3.0  # by how much the second step of an extrapolation is smaller
 OF_ANOTHER_MODEL = re.compile(r"\.module\.|\.cell_temperature\.|\.converter$")  # of pv-field
 KINK = 1e-2  # relative difference of the slopes on both sides that is no curvature
 USUAL = {"Pa": 1e5, "J/mol": 1e4, "J/kg": 1e6, "W": 1e3}  # sizes of settings that stand at zero
 
 
-def solved_again(flowsheet, one, results, start):
+def solved_again(flowsheet, one, results, start, finer=1.0):
     """Slopes by solving at both sides, or at one side of the second order; None if none solves.
 
     Not a number where there are two slopes: what returns to a store just as cold as it is has to be
@@ -45,6 +40,7 @@ def solved_again(flowsheet, one, results, start):
     step = STEP * (abs(one.value) or USUAL.get(one.unit, 1.0))
     if one.unit == "1" and 0.5 < one.value < 1.0:  # what a recovery leaves goes by its logarithm
         step = min(step, 1e-3 * (1.0 - one.value))
+    step /= finer
     at = {}
 
     def solves(k):
@@ -65,6 +61,12 @@ def solved_again(flowsheet, one, results, start):
     return sign * (4 * at[sign] - at[2 * sign] - 3 * start) / (2 * step)
 
 
+def extrapolated(flowsheet, one, results, start, again):
+    """Slopes by solving again without their error of the square of the step."""
+    near = solved_again(flowsheet, one, results, start, FINER)
+    return None if near is None else near + (near - again) / (FINER**2 - 1)
+
+
 def disagreements(path, every=1):
     """Settings whose slopes are not those of solving again, with both; looked at one of `every`."""
     flowsheet = read_flowsheet(path)
@@ -78,8 +80,14 @@ def disagreements(path, every=1):
         mine = found.slopes[:, place]
         usual = found.values / (abs(one.value) or USUAL.get(one.unit, 1.0))
         floor = NOT_REACHED.get(path.stem, NOTHING)
-        near = AGREE * np.abs(again) + floor * np.abs(usual) if again is not None else 0.0
-        if again is None or (np.abs(mine - again) > near).any():
+
+        def differs(again, mine=mine, usual=usual, floor=floor):
+            near = AGREE * np.abs(again) + floor * np.abs(usual)
+            return (np.abs(mine - again) > near).any()
+
+        if again is not None and differs(again):
+            again = extrapolated(flowsheet, one, results, found.values, again)
+        if again is None or differs(again):
             yield one.name, mine, again
 
 
