@@ -18,7 +18,7 @@ from typing import TYPE_CHECKING, Annotated, Any
 import typer
 
 from chainflow import __version__
-from chainflow.basis.faults import ChainflowError, FileFault, FlowsheetFault, UsageFault
+from chainflow.basis.faults import ChainflowError, FileFault, FlowsheetFault, NotSolved, UsageFault
 from chainflow.report.outputs import (
     STDOUT,
     check_outputs,
@@ -35,6 +35,7 @@ if TYPE_CHECKING:
 
 BUG = 70
 INTERRUPTED = 130
+_LACKING = ("heat-short", "short-of-power", "overfull")  # what goes astray may be what is lacking
 
 app = typer.Typer(
     name="chainflow",
@@ -367,7 +368,6 @@ def _overrides(given: Iterable[str] | None) -> dict[str, str]:
 def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution:
     """Read and solve; a wrong file or a missing steady state is also written as JSON."""
     from chainflow.flowsheet.building import read_flowsheet
-    from chainflow.flowsheet.linkage import open_outlets
     from chainflow.solver.solve import solve_flowsheet
 
     flowsheet: Flowsheet | None = None
@@ -375,13 +375,21 @@ def _solved(file: Path, overrides: dict[str, str], json: str | None) -> Solution
         flowsheet = read_flowsheet(file, overrides)
         return solve_flowsheet(flowsheet)
     except ChainflowError as problem:
-        if flowsheet is not None:  # a missing line may be why there is no steady state
-            say_faults(flowsheet.remarks, file, "remark: ")
-            if leaving := open_outlets(flowsheet):
-                say(f"not linked, so leaving the plant: {', '.join(leaving)}")
+        if flowsheet is not None and isinstance(problem, NotSolved):
+            _say_what_is_open(flowsheet, problem, file)
         if json is not None and problem.exit_code in (1, 3):
             write_failure(file, problem, flowsheet, json)
         raise
+
+
+def _say_what_is_open(flowsheet: Flowsheet, problem: NotSolved, file: Path) -> None:
+    """A line that is missing may be why there is no steady state."""
+    from chainflow.flowsheet.linkage import open_outlets
+
+    say_faults(flowsheet.remarks, file, "remark: ")
+    leaving = open_outlets(flowsheet)
+    if leaving and problem.code in _LACKING:
+        say(f"not linked, so leaving the plant: {', '.join(leaving)}")
 
 
 def _reasons(solution: Solution) -> Why | None:
