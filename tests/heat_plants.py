@@ -125,3 +125,37 @@ lines:
   - board.press -> press.power
   - board.rest -> grid.surplus
 """
+
+# Two gases give heat off, two need it; what is missing is electric.  Heat capacity flows stand as
+# 2 : 4 : 3 : 2.6, as in Linnhoff and Flower, AIChE J. 24 (1978) 633, and so does the pinch.
+TWO_HEATERS = """\
+title: Two heaters and two coolers on one network (invented)
+components: [N2]
+equipment:
+  sun:   {kind: sunlight, irradiance: 800 W/m2, aperture: 5000 m2}
+  field: {kind: pv-field, efficiency: 20 %}
+  board: {kind: switchboard}
+  h1: {kind: supply, composition: {N2: 1}, temperature: 180 degC, pressure: 1.2 bar, flow: 10 mol/s}
+  h2: {kind: supply, composition: {N2: 1}, temperature: 150 degC, pressure: 1.2 bar, flow: 20 mol/s}
+  c1: {kind: supply, composition: {N2: 1}, temperature: 60 degC, pressure: 1.2 bar, flow: 15 mol/s}
+  c2: {kind: supply, composition: {N2: 1}, temperature: 30 degC, pressure: 1.2 bar, flow: 13 mol/s}
+  k1: {kind: cooler, temperature: 40 degC}
+  k2: {kind: cooler, temperature: 40 degC}
+  w1: {kind: heater, temperature: 180 degC}
+  w2: {kind: heater, temperature: 130 degC}
+  net: {kind: heat-network}
+  out: {kind: vent}
+  town: {kind: product}
+lines:
+  - sun -> field -> board.supply
+  - board.heat -> net.shortage
+  - board.rest -> town
+  - h1 -> k1 -> out
+  - h2 -> k2 -> out
+  - c1 -> w1 -> out
+  - c2 -> w2 -> out
+  - k1.heat -> net.supply
+  - k2.heat -> net.supply
+  - net.one -> w1.heat
+  - net.two -> w2.heat
+"""

@@ -30,7 +30,14 @@ from chainflow.equipment.ports import (
     arriving,
     rate_of,
 )
-from chainflow.equipment.setting_numbers import inside, number_of, replaced, unit_at
+from chainflow.equipment.setting_numbers import (
+    inside,
+    is_difference,
+    number_of,
+    replaced,
+    type_at,
+    unit_of,
+)
 from chainflow.thermo.components import Matter
 from chainflow.thermo.streams import Stream
 
@@ -195,11 +202,20 @@ class Equipment(BaseModel):
     @classmethod
     def setting_unit(cls, path: tuple[str, ...]) -> str | None:
         """The SI unit of a setting's number ('' if it has none), or None if there is no number."""
+        return unit_of(cls._setting_type(path))
+
+    @classmethod
+    def setting_is_difference(cls, path: tuple[str, ...]) -> bool:
+        """Whether a setting's number is a temperature difference."""
+        return is_difference(cls._setting_type(path))
+
+    @classmethod
+    def _setting_type(cls, path: tuple[str, ...]) -> Any:
         info = cls.model_fields.get(path[0])
         if info is None:
             return None
         own = Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
-        return unit_at(own, path[1:])
+        return type_at(own, path[1:])
 
     # --- for subclasses ----------------------------------------------------------------------
 

@@ -52,8 +52,8 @@ def _is_list(value: Any) -> bool:
     return isinstance(value, tuple | list) and not hasattr(value, "_fields")
 
 
-def unit_at(annotation: Any, path: tuple[str, ...]) -> str | None:
-    """Find the unit of the number at a path inside a setting of this type."""
+def type_at(annotation: Any, path: tuple[str, ...]) -> Any:
+    """Find the type of the number at a path inside a setting of this type."""
     for key in path:
         model = _model_in(annotation)
         if model is not None and key in model.model_fields:
@@ -61,7 +61,7 @@ def unit_at(annotation: Any, path: tuple[str, ...]) -> str | None:
             annotation = (
                 Annotated[info.annotation, *info.metadata] if info.metadata else info.annotation
             )
-    return unit_of(annotation)
+    return annotation
 
 
 def _model_in(annotation: Any) -> type[BaseModel] | None:
@@ -88,6 +88,14 @@ def unit_of(annotation: Any) -> str | None:
             if unit is not None:
                 return unit
     return None
+
+
+def is_difference(annotation: Any) -> bool:
+    """Whether a setting's type is that of a temperature difference."""
+    notes = annotation.__metadata__ if typing.get_origin(annotation) is Annotated else ()
+    if any(getattr(note, "difference", False) for note in notes):
+        return True
+    return any(is_difference(part) for part in typing.get_args(annotation))
 
 
 def stated(model: BaseModel) -> set[str]:

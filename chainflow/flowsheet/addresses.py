@@ -55,6 +55,7 @@ _RESULT_UNITS = {  # the first end that fits counts: longer ones stand before wh
     "_rad": "rad",
     "_s": "s",
 }
+_DIFFERENCES = ("approach_K", "difference_K")
 
 
 class AddressError(ValueError):
@@ -72,6 +73,11 @@ class ResultAddress:
     argument: str = ""
     unit: str = "1"
 
+    @property
+    def difference(self) -> bool:
+        """Whether it is a temperature difference."""
+        return self.where == "own" and is_difference(self.name)
+
 
 @dataclass(frozen=True, slots=True)
 class SettingAddress:
@@ -80,6 +86,12 @@ class SettingAddress:
     piece: str
     path: tuple[str, ...]
     unit: str
+    difference: bool = False  # a temperature difference
+
+
+def is_difference(name: str) -> bool:
+    """Whether a result is a temperature difference, by the end of its name."""
+    return name.endswith(_DIFFERENCES)
 
 
 def unit_of_result(name: str) -> str:
@@ -115,7 +127,7 @@ def parse_setting(address: str, equipment: Mapping[str, Equipment]) -> SettingAd
     number = number_of(value)
     if unit is None or isinstance(number, bool) or not isinstance(number, int | float):
         raise AddressError(f"'{address}' {_no_number(number)}")
-    return SettingAddress(words[0], path, unit)
+    return SettingAddress(words[0], path, unit, piece.setting_is_difference(path))
 
 
 def _no_number(value: object) -> str:

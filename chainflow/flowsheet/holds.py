@@ -86,7 +86,7 @@ class HoldReader:
         result, setting = self._result(words["hold"], item), self._setting(words["by"], item)
         if result is None or setting is None:
             return None
-        at = self._value("at", item.get("at"), result.unit)
+        at = self._value("at", item.get("at"), result)
         ends = self._ends(item, setting)
         if at is None or ends is None:
             return None
@@ -101,6 +101,8 @@ class HoldReader:
             high=ends[1],
             by_unit=setting.unit,
             place=item.place,
+            difference=result.difference,
+            by_difference=setting.difference,
         )
 
     def _words(self, item: Mapping) -> dict[str, str] | None:
@@ -139,7 +141,7 @@ class HoldReader:
             text = "within: wanted two values, as in [250 degC, 450 degC]"
             self._fault("bad-hold", text, within.place if within is not None else item.place)
             return None
-        low, high = (self._value("within", node, setting.unit) for node in within.items)
+        low, high = (self._value("within", node, setting) for node in within.items)
         if low is None or high is None:
             return None
         for end, node in ((low, within.items[0]), (high, within.items[1])):
@@ -162,12 +164,15 @@ class HoldReader:
             return next(complaints(problem, type(piece), setting.piece)).text
         return ""
 
-    def _value(self, key: str, node: Node | None, unit: str) -> float | None:
+    def _value(
+        self, key: str, node: Node | None, of: ResultAddress | SettingAddress
+    ) -> float | None:
         if not isinstance(node, Text) or node.value is None:
             self._fault("bad-hold", f"{key}: wanted a value", node.place if node else None)
             return None
         try:
-            return parse(node.value, unit, gt=0.0 if unit == "K" else None)
+            above = 0.0 if of.unit == "K" and not of.difference else None
+            return parse(node.value, of.unit, gt=above, difference=of.difference)
         except QuantityFault as problem:
             self._fault("wrong-quantity", f"{key}: {problem}", node.place)
             return None

@@ -27,6 +27,7 @@ class Lever:
     holds: tuple[int, ...] = ()  # places of the holds whose wanted value it sets
     value: float = 0.0  # SI
     unit: str = "1"
+    difference: bool = False  # a temperature difference
     elsewhere: tuple[str, ...] = ()  # where it stands besides, out of reach
 
 
@@ -57,7 +58,8 @@ def lever(flowsheet: Flowsheet, name: str) -> Lever:
 
 def _setting(flowsheet: Flowsheet, setting: SettingAddress) -> Lever:
     value = flowsheet.equipment[setting.piece].setting(setting.path)
-    return Lever(address_of(setting), (setting,), value=value, unit=setting.unit)
+    name, difference = address_of(setting), setting.difference
+    return Lever(name, (setting,), value=value, unit=setting.unit, difference=difference)
 
 
 def _knob(flowsheet: Flowsheet, name: str) -> Lever | None:
@@ -72,7 +74,7 @@ def _knob(flowsheet: Flowsheet, name: str) -> Lever | None:
         return replace(first, name=name, settings=settings, holds=holds, elsewhere=elsewhere)
     if holds:
         hold = flowsheet.holds[holds[0]]
-        return Lever(name, (), holds, hold.at, hold.unit, elsewhere)
+        return Lever(name, (), holds, hold.at, hold.unit, hold.difference, elsewhere)
     return None
 
 
@@ -104,7 +106,7 @@ def _below(
     if isinstance(number, float):
         unit = piece.setting_unit(path)
         if unit is not None:
-            yield SettingAddress(name, path, unit)
+            yield SettingAddress(name, path, unit, piece.setting_is_difference(path))
     elif number is value:
         for key in keys_inside(value):
             yield from _below(name, piece, (*path, key), inside(value, key))

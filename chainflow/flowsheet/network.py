@@ -53,6 +53,8 @@ class Hold:
     high: float
     by_unit: str
     place: Place | None = None
+    difference: bool = False  # the result is a temperature difference
+    by_difference: bool = False  # the setting is one
 
 
 @dataclass(frozen=True, slots=True)

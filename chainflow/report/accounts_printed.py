@@ -25,6 +25,7 @@ if TYPE_CHECKING:
     from rich.table import Table
 
 _LEAST = 1e-4  # of the exergy that enters: smaller losses share one line
+_ROUND_OFF = 1e-9  # of it: how far the loops close, not worth that line
 _LABEL = 26  # characters
 _CAUSES = {
     "destroyed": "destroyed in it",
@@ -82,11 +83,11 @@ def _loss_table(losses: LossMap) -> Table:
         per_fuel = "-" if shares[1] is None else format_number(shares[1], 3)
         table.add_row(where, how, numbers.energy(exergy), shares[0], per_fuel)
 
-    least = _LEAST * losses.entering_total
+    least, nothing = _LEAST * losses.entering_total, _ROUND_OFF * losses.entering_total
     shown = [loss for loss in losses.losses if abs(loss.exergy) >= least]
     for loss in shown:
         row(loss.where, _CAUSES[loss.cause], loss.exergy)
-    small = [loss for loss in losses.losses if 0.0 < abs(loss.exergy) < least]
+    small = [loss for loss in losses.losses if nothing < abs(loss.exergy) < least]
     if small:
         row(
             f"{len(small)} smaller" + (" ones" if len(small) > 1 else " one"),

@@ -86,7 +86,7 @@ def _short_answer(solution: Solution) -> Iterator[str]:
     yield from _listed("bought", _bought(account, _ROUND_OFF * largest))
     yield from _listed("delivered", _delivered(account))
     yield from _listed_if_any("heat recovery", _heat(account.heat))
-    yield _line("exergy lost in", _losses(solution))
+    yield _line("exergy lost in", _losses(solution, account))
 
 
 def _on_bases(values: Mapping[str, float | None], basis: str) -> str:
@@ -175,9 +175,10 @@ def _shares(stream: Stream) -> str:
     return f"{numbers.composition(stream)} %"
 
 
-def _losses(solution: Solution) -> str:
+def _losses(solution: Solution, account: PlantAccount) -> str:
     lost = sorted(exergy_destroyed(solution).items(), key=lambda pair: -pair[1])
-    shown = [f"{name} {numbers.energy(value)}" for name, value in lost[:_MOST_LOSSES] if value > 0]
+    least = _ROUND_OFF * account.losses.entering_total
+    shown = [f"{name} {numbers.energy(w)}" for name, w in lost[:_MOST_LOSSES] if w > least]
     return ", ".join(shown) or "nothing"
 
 
@@ -236,10 +237,10 @@ def _hold_table(holds: tuple[HoldResult, ...]) -> Table:
     for hold in holds:
         table.add_row(
             hold.hold,
-            format_quantity(hold.wanted, hold.unit),
-            format_quantity(hold.reached, hold.unit, digits=6),
+            format_quantity(hold.wanted, hold.unit, difference=hold.difference),
+            format_quantity(hold.reached, hold.unit, digits=6, difference=hold.difference),
             hold.by,
-            format_quantity(hold.value, hold.by_unit, digits=6),
+            format_quantity(hold.value, hold.by_unit, digits=6, difference=hold.by_difference),
         )
     return table
 

@@ -6,7 +6,7 @@ from typing import TYPE_CHECKING, TextIO
 
 from chainflow.basis.formatting import format_number, format_quantity
 from chainflow.basis.units import is_named, resolve
-from chainflow.flowsheet.addresses import short_name, unit_of_result
+from chainflow.flowsheet.addresses import is_difference, short_name, unit_of_result
 from chainflow.report.plain import console, plain_table
 from chainflow.solver.solution import Solution
 
@@ -38,5 +38,5 @@ def _shown(value: float, result: str) -> str:
     if unit == "1":
         return format_number(value)
     if unit == "J/m3" or is_named(resolve(unit).exponents):
-        return format_quantity(value, unit)
+        return format_quantity(value, unit, difference=is_difference(result))
     return f"{format_number(value)} {unit}"

@@ -51,6 +51,8 @@ class HoldResult:
     by: str
     value: float
     by_unit: str
+    difference: bool = False  # the result is a temperature difference
+    by_difference: bool = False  # the setting is one
 
 
 @dataclass(frozen=True, slots=True, eq=False, weakref_slot=True)

@@ -156,6 +156,8 @@ class Prepared:
                 h.by,
                 _number(closed, setting),
                 h.by_unit,
+                h.difference,
+                h.by_difference,
             )
             for h, setting, result in self.program.holds
         )
@@ -179,8 +181,7 @@ class Prepared:
         if not missed:
             return
         comes = " and ".join(
-            f"{hold.text} comes to {_shown(now, hold.unit)} where {_shown(hold.at, hold.unit)} "
-            "is wanted"
+            f"{hold.text} comes to {_reached(now, hold)} where {_reached(hold.at, hold)} is wanted"
             for hold, now in missed
         )
         if len(missed) > 1:
@@ -200,14 +201,14 @@ class Prepared:
         stuck = f"hold {hold.text}: moving {hold.by} changes nothing there"
         if not moved:
             text = (
-                f"{stuck} (it stays at {_shown(here, hold.unit)}): "
+                f"{stuck} (it stays at {_reached(here, hold)}): "
                 "aim at a result that the setting can move, or let something flow"
             )
             return NotSolved("hold-unable", text, {"hold": hold.text})
         if _all_on_one_side([here, *moved], hold.at):
             return _beyond_reach(hold, reached)
         text = (
-            f"{stuck} at {_shown(_number(closed, setting), hold.by_unit)}, though it is "
+            f"{stuck} at {_set(_number(closed, setting), hold)}, though it is "
             f"{_listed(hold, reached)}: begin nearer, or narrow 'within' to where it moves"
         )
         return NotSolved("hold-unable", text, {"hold": hold.text})
@@ -310,14 +311,14 @@ def _all_on_one_side(values: list[float], wanted: float) -> bool:
 def _listed(hold: Hold, reached: Mapping[float, float]) -> str:
     """What comes out at both ends of what was tried."""
     return " and ".join(
-        f"{_shown(reached[value], hold.unit)} with {hold.by} at {_shown(value, hold.by_unit)}"
+        f"{_reached(reached[value], hold)} with {hold.by} at {_set(value, hold)}"
         for value in (min(reached), max(reached))
     )
 
 
 def _beyond_reach(hold: Hold, reached: Mapping[float, float]) -> NotSolved:
     text = (
-        f"hold {hold.text}: {_shown(hold.at, hold.unit)} is out of reach: it is "
+        f"hold {hold.text}: {_reached(hold.at, hold)} is out of reach: it is "
         f"{_listed(hold, reached)}; widen 'within' or change what is wanted"
     )
     ends = [(value, reached[value]) for value in (min(reached), max(reached))]
@@ -340,10 +341,19 @@ def _number(closed: Closed, key: str) -> float:
     return value
 
 
-def _shown(value: float, unit: str) -> str:
+def _reached(value: float, hold: Hold) -> str:
+    return _shown(value, hold.unit, hold.difference)
+
+
+def _set(value: float, hold: Hold) -> str:
+    return _shown(value, hold.by_unit, hold.by_difference)
+
+
+def _shown(value: float, unit: str, difference: bool) -> str:
     from chainflow.basis.quantities import format_quantity
 
-    return format_quantity(value, unit) if value == value else "not to be had"
+    known = value == value
+    return format_quantity(value, unit, difference=difference) if known else "not to be had"
 
 
 def _equipment_of(order: Order, flowsheet: Flowsheet) -> tuple[tuple[str, ...], ...]:

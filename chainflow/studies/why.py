@@ -201,7 +201,7 @@ def _moving(matter: Matter, what: str, efficiency: float) -> str:
 
 
 def _value(one: Lever, more: float) -> str:
-    return format_quantity(one.value + more, one.unit, digits=5)
+    return format_quantity(one.value + more, one.unit, digits=5, difference=one.difference)
 
 
 def _listed(parts: list[str]) -> str:

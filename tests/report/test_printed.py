@@ -1,4 +1,5 @@
 import io
+import re
 
 import pytest
 
@@ -6,6 +7,7 @@ from chainflow.accounts.hazards import CLOSING_SENTENCE
 from chainflow.report.plain import printable
 from chainflow.report.printed import print_answer
 from chainflow.report.results_printed import print_results
+from tests.heat_plants import TWO_HEATERS
 from tests.plants import BOUGHT, CYCLE, HYDROGEN, METHANE, solved
 
 
@@ -145,3 +147,39 @@ lines:
     assert "Results of the equipment" in shown
     assert "hydrogen 15.09 kg/h" in shown  # 800 kW / 53 kWh/kg
     assert "direct current 800 kW" in shown
+
+
+EXCHANGER = """
+components: [N2]
+equipment:
+  flue: {kind: supply, composition: {N2: 1}, temperature: 180 degC, pressure: 2 bar, flow: 1 mol/s}
+  cool: {kind: supply, composition: {N2: 1}, temperature: 60 degC, pressure: 2 bar, flow: 1 mol/s}
+  bundle: {kind: heat-exchanger, approach: 30 K}
+  out: {kind: vent}
+lines: [flue -> bundle.hot, cool -> bundle.cold, bundle.hot_out -> out, bundle.cold_out -> out]
+holds:
+  - {hold: bundle.mean_difference_K, at: 40 K, by: bundle.approach, within: [1 K, 100 K]}
+"""
+
+
+def test_temperature_differences_stay_in_kelvin():
+    """Equal flows keep one distance over the whole length, but for 1 % of heat capacity."""
+    solution, out = solved(EXCHANGER), io.StringIO()
+    print_answer(solution, out)
+    print_results(solution, out)
+    shown = out.getvalue()
+    (hold,) = solution.holds
+    assert hold.value == pytest.approx(40.0, rel=0.02)
+    assert re.search(
+        r"bundle\.mean_difference_K +40 K +40 K +bundle\.approach +(39|40)\.\d+ K\n", shown
+    )
+    assert re.search(r"  mean difference +40 K\n", shown)
+    assert re.search(r"  pinch +\d+\.?\d* degC\n", shown)
+
+
+def test_losses_that_are_only_round_off_are_not_named():
+    """A heater destroys nothing: its network does, where heat falls by the approach."""
+    shown = printed(TWO_HEATERS)
+    (line,) = [row for row in shown.splitlines() if row.startswith("exergy lost in")]
+    names = [part.split()[0] for part in line.removeprefix("exergy lost in").split(",")]
+    assert names == ["field", "net"]
