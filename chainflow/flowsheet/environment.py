@@ -7,13 +7,16 @@ Analysis of Thermal, Chemical and Metallurgical Processes (1988).
 
 from __future__ import annotations
 
+from typing import Annotated
+
 from pydantic import BaseModel, ConfigDict, Field, model_validator
 from pydantic_core import PydanticCustomError
 
 from chainflow.basis.constants import ATMOSPHERE, T_REFERENCE
-from chainflow.basis.quantities import OpenFraction, Pressure, Temperature
+from chainflow.basis.quantities import OpenFraction, Pressure, measured
 from chainflow.thermo.exergy import Environment
-from chainflow.thermo.validity import StateError
+from chainflow.thermo.saturation import CRITICAL_TEMPERATURE
+from chainflow.thermo.species import LOWEST_TEMPERATURE
 
 
 class Surroundings(BaseModel):
@@ -21,7 +24,12 @@ class Surroundings(BaseModel):
 
     model_config = ConfigDict(frozen=True, extra="forbid")
 
-    temperature: Temperature = Field(T_REFERENCE, description="temperature of the surroundings")
+    temperature: Annotated[float, measured("K", ge=LOWEST_TEMPERATURE, le=CRITICAL_TEMPERATURE)] = (
+        Field(
+            T_REFERENCE,
+            description="temperature of the surroundings, where water has a vapour pressure",
+        )
+    )
     pressure: Pressure = Field(ATMOSPHERE, description="pressure of the air, absolute")
     carbon_dioxide: OpenFraction | None = Field(
         None, description="mole fraction of CO2 in the air (default: 33.5 Pa at 1.01325 bar)"
@@ -35,7 +43,7 @@ class Surroundings(BaseModel):
         """Refuse surroundings that no air can have."""
         try:
             self.environment()
-        except (StateError, ValueError) as problem:
+        except ValueError as problem:
             raise PydanticCustomError("environment", "{text}", {"text": str(problem)}) from None
         return self
 

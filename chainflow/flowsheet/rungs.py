@@ -61,6 +61,7 @@ class RungReader:
             if trouble := name_trouble(name):
                 self._fault("bad-name", trouble, place)
             cut = self._cut(name, entry)
+            self._refuse_other_word(name, cut, place)
             if cut is not None:
                 self._refuse_twins(cut, found, entry.place)
                 found.append(cut)
@@ -75,7 +76,8 @@ class RungReader:
             word = entry.value or ""
             if word in WORDS:
                 return NamedCut(name, word=word)
-            said = f"{shorten(word)} is no cut{suggest(word, WORDS)}, wanted {_FORM}"
+            hint = "" if "." in word else suggest(word, WORDS)
+            said = f"{shorten(word)} is no cut{hint}, wanted {_FORM}"
             self._fault("bad-rung", f"{shorten(name)}: {said}", entry.place)
             return None
         if not isinstance(entry, Sequence) or not entry.items:
@@ -116,6 +118,13 @@ class RungReader:
             self._fault("unknown-port", f"{shorten(name)}: {text}", place)
             return False
         return True
+
+    def _refuse_other_word(self, name: str, cut: NamedCut | None, place: Place) -> None:
+        """The word of one cut is no name for another: an answer would show two of that name."""
+        ends = (FIRST, LAST)  # always there, under these names unless the file gives others
+        if cut is not None and name != cut.word and name in (WORDS if cut.word else ends):
+            text = f"'{name}' is the word of another cut: take another name"
+            self._fault("bad-rung", text, place)
 
     def _refuse_twins(self, cut: NamedCut, found: list[NamedCut], place: Place) -> None:
         for other in found:
