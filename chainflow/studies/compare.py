@@ -132,7 +132,7 @@ def compare(
     lights = {r.name: r.account.sunlight for r in routes if r.account is not None}
     sunlight = next((light for light in lights.values() if light > 0.0), None)
     scales = {n: sunlight / light if sunlight and light else 1.0 for n, light in lights.items()}
-    notes += _light_notes(lights, scales)
+    notes += [*_light_notes(lights, scales), *_cost_notes(routes, scales)]
     return Comparison(chosen, routes, sunlight, energy, scales, tuple(notes))
 
 
@@ -204,6 +204,22 @@ def _light_notes(lights: Mapping[str, float], scales: Mapping[str, float]) -> It
     dark = [name for name, light in lights.items() if light <= 0.0]
     if dark:
         yield f"no sunlight falls on {', '.join(dark)}: amounts there are not scaled"
+
+
+def _cost_notes(routes: Sequence[Route], scales: Mapping[str, float]) -> Iterator[str]:
+    costs = {r.name: r.account.costs for r in routes if r.account and r.account.costs}
+    currencies = dict.fromkeys(one.currency for one in costs.values())
+    if len(currencies) > 1:
+        yield (
+            f"the costs are in {', '.join(currencies)}: nothing is exchanged, so compare costs in "
+            "one currency only"
+        )
+    other = [name for name in costs if abs(scales[name] - 1.0) > 1e-9]
+    if other:
+        yield (
+            f"what is installed in {', '.join(other)} is scaled in proportion, as that many plants "
+            "of its size; a kWh costs what it costs at its own size"
+        )
 
 
 def _accounted(route: Route, basis: str) -> Route:

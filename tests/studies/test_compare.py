@@ -290,6 +290,7 @@ def priced(tmp_path_factory):
 def test_costs_side_by_side_by_hand(priced):
     """850 W/m2 x 6000 m2 x 20 % = 1020 kW at 1000 each; 1/20 of it a year, over 2000 h."""
     found = compare([priced["crowns"], priced["large"], priced["free"]], basis="LHV")
+    assert "what is installed in large is scaled in proportion" in found.notes[1]
     assert value(found, "installed", 0) == pytest.approx(1.02e6, rel=1e-12)
     assert value(found, "installed", 1) == pytest.approx(1.02e6, rel=1e-9)  # on the same sunlight
     assert value(found, "installed", 2) is None
@@ -314,5 +315,7 @@ def test_two_currencies_are_named_and_nothing_is_exchanged(priced, capsys):
     print_comparison(found)
     (line,) = [row for row in capsys.readouterr().out.splitlines() if row.startswith("currency")]
     assert line.split() == ["currency", "crowns", "marks"]
+    (note,) = found.notes
+    assert note.startswith("the costs are in crowns, marks: nothing is exchanged")
     entries = comparison_document(found)["routes"]
     assert [entry["cost"]["currency"] for entry in entries] == ["crowns", "marks"]
