@@ -195,6 +195,37 @@ lines:
   - gas -> press -> warm -> chill -> town
 """
 
+# Methane of a grid's power; behind the reactor all but most of the methane is thrown away.
+PARTED = """
+title: Methane of bought power, parted once (invented)
+components: [H2, O2, N2, H2O, CO, CO2, CH4]
+equipment:
+  grid: {kind: grid, carbon_intensity: 40 g/kWh}
+  water: {kind: supply, composition: {H2O: 1}, temperature: 25 degC, pressure: 10 bar}
+  stack: {kind: electrolyser, energy_use: 50 kWh/kg, temperature: 60 degC, pressure: 10 bar,
+          hydrogen: 100 kg/h}
+  carbon: {kind: supply, composition: {CO2: 98 %, N2: rest}, temperature: 25 degC,
+           pressure: 10 bar, origin: fossil, carbon_intensity: 20 g/kg}
+  blend: {kind: blend, ratio: {H2: 4, CO2: 1}}
+  warm: {kind: heater, temperature: 250 degC}
+  make: {kind: methanation-reactor, temperature: 300 degC}
+  dry: {kind: condenser, temperature: 30 degC}
+  part: {kind: separator, recovery: {CH4: 95 %}}
+  town: {kind: product}
+  flare: {kind: vent}
+  sky: {kind: vent}
+lines:
+  - grid.power -> stack.power
+  - grid.power -> warm.power
+  - water -> stack.water
+  - stack.hydrogen -> blend.main
+  - stack.oxygen -> sky
+  - carbon -> blend.trim
+  - blend -> warm -> make -> dry -> part
+  - part.kept -> town
+  - part.passed -> flare
+"""
+
 
 @cache
 def _solved(text: str, overrides: tuple[tuple[str, str], ...]) -> Solution:

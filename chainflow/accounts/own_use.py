@@ -13,8 +13,9 @@ the chain itself and not counted. It was in the cut above as power, and is missi
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from collections.abc import Iterable, Iterator
 from dataclasses import dataclass
+from itertools import chain
 
 from chainflow.accounts.cuts import Cut
 from chainflow.accounts.fuel import is_fuel
@@ -43,20 +44,29 @@ def uses_by_rung(
     if len(cuts) < 2:
         return ()
     places = _rung_of_each(solution, cuts)
-    making = {
+    makers = {
         port.partition(".")[0] for cut in cuts if cut.name == "hydrogen" for port in cut.ports
     }
     found: list[list[Use]] = [[] for _ in cuts[1:]]
-    for use in (*_own(solution, making), *_bought(bought)):
+    for use in _summed(_own(solution, makers), _bought(bought)):
         place = places.get(use.equipment, 0)
         if use.rate > _LEAST * cuts[place].worth.lhv:
             found[place].append(use)
     return tuple(tuple(sorted(uses, key=lambda use: -use.rate)) for uses in found)
 
 
-def _own(solution: Solution, making: set[str]) -> Iterator[Use]:
+def _summed(*parts: Iterable[Use]) -> Iterator[Use]:
+    """Yield one use for each equipment and what it is, though it may need it in several pieces."""
+    rates: dict[tuple[str, str], float] = {}
+    for use in chain(*parts):
+        key = (use.equipment, use.what)
+        rates[key] = rates.get(key, 0.0) + use.rate
+    return (Use(*key, rate) for key, rate in rates.items())
+
+
+def _own(solution: Solution, makers: set[str]) -> Iterator[Use]:
     for line in solution.flowsheet.lines:
-        if line.content == "power" and line.called and line.target not in making:
+        if line.content == "power" and line.called and line.target not in makers:
             asked = solution.outcomes[line.target].drawn.get(line.inlet, 0.0)
             if solution.flowsheet.equipment[line.target].family != "power":
                 yield Use(line.target, "own power", rate_of(asked))
@@ -78,6 +88,9 @@ def _rung_of_each(solution: Solution, cuts: tuple[Cut, ...]) -> dict[str, int]:
     for rung, above in enumerate(cuts[:-1]):
         starts = [line for line in sheet.lines if line.start in above.ports]
         _follow(sheet, starts if rung else _first(sheet), rung, stops[rung], places)
+    for rung, cut in enumerate(cuts[1:]):
+        for port in cut.ports:  # what runs on called power alone is not reached from above
+            places.setdefault(port.partition(".")[0], rung)
     for rung, stop in enumerate(stops):
         while calling := _behind_stores(sheet, places, rung, fuel - stop):
             _follow(sheet, calling, rung, stop, places)

@@ -8,7 +8,7 @@ from chainflow.accounts.efficiency import efficiency
 from chainflow.accounts.worth import BASES
 from tests.accounts.test_losses import PLANTS, SHIPPED
 from tests.flowsheets.shipped import solved_text
-from tests.plants import BOUGHT, CYCLE, HYDROGEN, METHANE, solved
+from tests.plants import BOUGHT, CYCLE, HYDROGEN, METHANE, PARTED, solved
 
 
 def uses(text):
@@ -77,6 +77,18 @@ def test_current_for_the_stack_is_the_chain_itself():
     assert solution.outcomes["stack"].drawn["power"] == pytest.approx(520e3, rel=1e-9)
     assert "stack" not in drawn
     assert "feed" in drawn
+
+
+def test_power_of_a_grid_is_used_where_hydrogen_is_made():
+    """And heat that is bought in many pieces, where water boils on the way, is told once."""
+    text = PARTED.replace("  - grid.power -> warm.power\n", "")
+    found = uses(text)
+    assert ("grid", "bought power") in found["hydrogen"]
+    rungs = efficiency(solved(text)).rungs
+    (warm,) = [use for rung in rungs for use in rung.uses if use.equipment == "warm"]
+    needs = [d.heat for d in solved(text).outcomes["warm"].duties]
+    assert len(needs) > 1
+    assert warm.rate == pytest.approx(sum(needs), rel=1e-12)
 
 
 # --- names from the file ---------------------------------------------------------------------
