@@ -2,8 +2,9 @@
 
 Carbon [mol/s of C], carbon dioxide [kg/s].
 
-* *Carbon efficiency* = carbon in the fuel made / (that + carbon that leaves the making part
-  otherwise); what the use of the fuel lets go is not held against its making.
+* *Carbon efficiency* = carbon in the fuel kept / (that + carbon that leaves the making part
+  otherwise, before or after the fuel is made); what the use of the fuel lets go is not held
+  against its making.
 * *Closure*: carbon that leaves less carbon that enters, relative to what passes through the fuel.
 * *Emission* = power bought x its intensity + mass bought x its intensity + 44.01 g for every mol of
   fossil carbon bought. Fossil carbon counts in full where it is bought, whoever burns it later and
@@ -44,6 +45,7 @@ class CarbonAccount:
     leaving: dict[str, float]  # by the sending port
     sold: float
     fuel_made: float
+    fuel_kept: float
     lost_in_making: float
     emitted: dict[str, float]  # [kg/s] by part of the plant
     unknown: tuple[str, ...]  # bought without origin or intensity
@@ -52,9 +54,9 @@ class CarbonAccount:
 
     @property
     def efficiency(self) -> float | None:
-        """Carbon in the fuel made per carbon that is in it or lost in making it."""
-        whole = self.fuel_made + self.lost_in_making
-        return self.fuel_made / whole if self.fuel_made > 0.0 else None
+        """Carbon in the fuel kept per carbon that is in it or lost in making and keeping it."""
+        whole = self.fuel_kept + self.lost_in_making
+        return self.fuel_kept / whole if self.fuel_kept > 0.0 else None
 
     @property
     def closure(self) -> float | None:
@@ -79,6 +81,7 @@ class CarbonAccount:
             "leaving_mol_s": dict(self.leaving),
             "sold_mol_s": self.sold,
             "fuel_made_mol_s": self.fuel_made,
+            "fuel_kept_mol_s": self.fuel_kept,
             "efficiency": self.efficiency,
             "closure": self.closure,
             "emitted_kg_s": whole,
@@ -109,10 +112,11 @@ def carbon_account(solution: Solution, bought: Purchases, delivered: Deliveries)
         leaving={key: flow for key, flow in leaving.items() if flow > least},
         sold=sum(carbon_in(flow) for _, flow in matter_sold(solution)),
         fuel_made=sum(carbon_in(flow) for key, flow in streams if key in lines.made),
+        fuel_kept=sum(carbon_in(flow) for key, flow in streams if key in lines.kept),
         lost_in_making=sum(
             flow
             for key, flow in leaving.items()
-            if key.partition(".")[0] not in using and key not in (*lines.made, *lines.kept)
+            if key.partition(".")[0] not in using and key not in (*lines.kept, *lines.staying)
         ),
         emitted={part: sum(m or 0.0 for _, p, m in items if p == part) for part in PARTS},
         unknown=tuple(dict.fromkeys(what for what, _, mass in items if mass is None)),

@@ -54,6 +54,7 @@ class FuelLines:
 
     made: tuple[str, ...]
     kept: tuple[str, ...]
+    staying: tuple[str, ...] = ()  # outlets of stores that keep the fuel: it does not leave there
 
 
 _FOUND: WeakKeyDictionary[Solution, FuelLines] = WeakKeyDictionary()  # every account asks for it
@@ -67,6 +68,7 @@ def fuel_lines(solution: Solution) -> FuelLines:
         found = FuelLines(
             made=tuple(line.start for line in search.made()),
             kept=tuple(line.start for line in search.kept()),
+            staying=search.staying(),
         )
         _FOUND[solution] = found
     return found
@@ -105,6 +107,11 @@ class _Search:
                 origin = self._stored(line, frozenset())
                 kept |= {found.number: found for found in origin or (line,)}
         return list(kept.values())
+
+    def staying(self) -> tuple[str, ...]:
+        """Return the outlets without a line by which the surplus of filling stores goes."""
+        filling = [line.target for line in self.final if self._fills(line.target)]
+        return tuple(f"{name}.rest" for name in dict.fromkeys(filling))
 
     def _going_back(self) -> set[int]:
         """Numbers of the lines with what uses leave of their fuel and get back."""

@@ -54,7 +54,8 @@ def fuel_kept(solution: Solution) -> float:
 def purges(solution: Solution) -> tuple[Purge, ...]:
     """Return the streams that leave with fuel in them, the richest first."""
     fuel = fuel_kept(solution)
-    kept = frozenset(fuel_lines(solution).kept)
+    lines = fuel_lines(solution)
+    kept = frozenset((*lines.kept, *lines.staying))
     found = [
         Purge(sent.key, stream, float(stream.lhv) / fuel if fuel > 0.0 else None)
         for sent, stream in matter_leaving(solution)

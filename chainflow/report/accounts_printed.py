@@ -101,7 +101,7 @@ def _loss_table(losses: LossMap) -> Table:
 
 
 def _carbon(carbon: CarbonAccount) -> Iterator[str]:
-    if carbon.fuel_made > 0.0:
+    if carbon.efficiency is not None:
         yield _line("carbon kept in the fuel", numbers.percent(carbon.efficiency, 4))
     if carbon.entering or carbon.from_air:
         entering = sum(carbon.entering.values()) + carbon.from_air

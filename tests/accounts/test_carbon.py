@@ -8,7 +8,7 @@ from chainflow.accounts.plant import plant_account
 from chainflow.accounts.returned import returned
 from tests.accounts.test_losses import PLANTS, SHIPPED
 from tests.flowsheets.shipped import solved_text
-from tests.plants import BOUGHT, CYCLE, ENGINE_INSIDE, HYDROGEN, METHANE, solved
+from tests.plants import BOUGHT, CYCLE, ENGINE_INSIDE, HYDROGEN, METHANE, PARTED, solved
 
 ALL = [*PLANTS.values(), *SHIPPED.values()]
 IDS = [*PLANTS, *SHIPPED]
@@ -46,6 +46,34 @@ def test_the_chimney_of_a_closed_cycle_is_not_held_against_the_fuel():
     found = carbon(CYCLE)
     assert found.leaving["capture.stackgas"] == max(found.leaving.values())
     assert found.efficiency > 0.999
+
+
+def test_carbon_lost_behind_the_reactor_is_lost_once():
+    """All carbon is bought, so what is in the methane per what is bought; CO2 is no fuel kept."""
+    solution, found = solved(PARTED), carbon(PARTED)
+    kept = float(solution.stream("part.kept").flow.flow("CH4"))
+    bought = float(solution.stream("carbon.outlet").flow.flow("CO2"))
+    assert found.fuel_made == pytest.approx(bought, rel=1e-12)
+    assert found.efficiency == pytest.approx(kept / bought, rel=1e-12)
+
+
+def test_carbon_dioxide_of_power_and_material_by_hand():
+    """40 g/kWh of 5 MW and the heater, 20 g a kg bought, 44.01 g a mol of fossil carbon."""
+    solution, found = solved(PARTED), carbon(PARTED)
+    grid = solution.outcomes["grid"].results["bought_W"]
+    carbon_in = solution.stream("carbon.outlet").flow
+    by_hand = grid * 0.04 / 3.6e6 + float(carbon_in.mass_flow) * 0.02
+    by_hand += float(carbon_in.flow("CO2")) * 44.0095e-3
+    assert 5.09e6 < grid < 5.13e6
+    assert found.emission("making") == pytest.approx(by_hand, rel=1e-9)
+
+
+def test_fuel_that_stays_in_its_store_is_neither_lost_nor_purged():
+    text = METHANE.replace("  - fuel.rest -> town\n", "")
+    solution = solved(text)
+    assert carbon(text).efficiency == pytest.approx(carbon(METHANE).efficiency, rel=1e-3)
+    assert "fuel.rest" not in {purge.key for purge in purges(solution)}
+    assert "fuel.rest" in carbon(text).leaving
 
 
 def test_nothing_is_known_of_carbon_without_origin():
