@@ -217,8 +217,8 @@ def _cost_notes(routes: Sequence[Route], scales: Mapping[str, float]) -> Iterato
     other = [name for name in costs if abs(scales[name] - 1.0) > 1e-9]
     if other:
         yield (
-            f"what is installed in {', '.join(other)} is scaled in proportion, as that many plants "
-            "of its size; a kWh costs what it costs at its own size"
+            f"what is installed in {', '.join(other)} is scaled in proportion, without exponents; "
+            "a kWh costs what it costs at the size of its plant"
         )
 
 
