@@ -32,10 +32,6 @@ class Rung:
     ratio: ByBasis
     uses: tuple[Use, ...] = ()
 
-    def total(self, what: str) -> float:
-        """What is drawn or bought of one thing on this rung [W]: "own power", "bought heat", ..."""
-        return sum(use.rate for use in self.uses if use.what == what)
-
 
 @dataclass(frozen=True, slots=True)
 class Efficiency:

@@ -170,10 +170,13 @@ def _heat(found: Comparison) -> Iterator[Figure]:
         ("needed_W", "needed", "W"),
         ("recovered_W", "  met by own heat", "W"),
         ("electric_W", "  met by power", "W"),
+        ("ambient_W", "  met by the ambient", "W"),
         ("bought_W", "  bought", "W"),
         ("hottest_K", "hottest need", "K"),
     )
-    known = {r.name: heat_needs(r.solution) for r in found.solved if r.solution is not None}
+    known = {
+        r.name: heat_needs(r.solution, r.account) for r in found.solved if r.solution and r.account
+    }
     yield from _amounts(found, "heat", rows, known, fixed=("K",))
 
 

@@ -40,18 +40,23 @@ def _mass(streams: Iterable[Stream], species: str) -> float:
     return total
 
 
-def heat_needs(solution: Solution) -> dict[str, float | None]:
-    """Return the heat that a plant needs [W], how it is met, and the hottest need [K]."""
+def heat_needs(solution: Solution, account: PlantAccount) -> dict[str, float | None]:
+    """Return the heat that a plant needs [W], how it is met, and the hottest need [K].
+
+    What a heat network makes of power for users that it is short of is met by power.
+    """
     duties = [duty for outcome in solution.outcomes.values() for duty in outcome.duties]
     asked = [duty for duty in duties if duty.heat > 0.0]
 
     def met(*ways: str) -> float:
         return sum(duty.heat for duty in asked if duty.met_by in ways)
 
+    short = sum(network.electric for network in account.heat.networks.values())
     return {
         "needed_W": sum(duty.heat for duty in asked),
-        "recovered_W": met("own", "heat"),
-        "electric_W": met("power"),
+        "recovered_W": met("own", "heat") - short,
+        "electric_W": met("power") + short,
+        "ambient_W": met("ambient"),
         "bought_W": met("bought"),
         "hottest_K": max((duty.hottest for duty in asked), default=None),
     }

@@ -15,6 +15,7 @@ from dataclasses import dataclass
 from chainflow.accounts.efficiency import Rung
 from chainflow.accounts.plant import PlantAccount
 from chainflow.accounts.worth import of_light
+from chainflow.equipment.power import Grid
 from chainflow.solver.solution import Solution
 
 NAMES = {  # by the cut that a stage ends at
@@ -49,7 +50,7 @@ def stages(solution: Solution, account: PlantAccount, basis: str) -> Stages:
     rungs = account.efficiency.rungs
     light = of_light(account.sunlight, solution.flowsheet.environment)
     entering = (light + account.bought.worth).by_basis[basis]
-    drawn = _moved(rungs, basis, entering)
+    drawn = _moved(rungs, basis, entering, _grids(solution))
     lost: dict[str, float] = {}
     to_store: dict[str, float] = {}
     left, kept = 1.0, None
@@ -79,15 +80,26 @@ def _sells_else(account: PlantAccount) -> bool:
     return matter or account.sold.heat_total > 0.0
 
 
-def _moved(rungs: tuple[Rung, ...], basis: str, entering: float) -> list[float]:
-    """What is counted at another rung than where it is missing, as shares that add up to zero."""
+def _grids(solution: Solution) -> frozenset[str]:
+    pieces = solution.flowsheet.equipment.items()
+    return frozenset(name for name, piece in pieces if isinstance(piece, Grid))
+
+
+def _moved(
+    rungs: tuple[Rung, ...], basis: str, entering: float, grids: frozenset[str]
+) -> list[float]:
+    """What is counted at another rung than where it is missing, as shares that add up to zero.
+
+    What a grid serves is its users' own power, which is counted already.
+    """
     shift = [0.0] * len(rungs)
     missing = next((i for i, rung in enumerate(rungs) if rung.start == "power"), None)
     for place, rung in enumerate(rungs):
         for what, source in ((_DRAWN, missing), ((_HEATED,), 0)):
             if source is None or source == place or (what == (_HEATED,) and basis == "exergy"):
                 continue
-            share = sum(rung.total(one) for one in what) / entering
+            uses = (u.rate for u in rung.uses if u.what in what and u.equipment not in grids)
+            share = sum(uses) / entering
             shift[place] += share
             shift[source] -= share
     return shift

@@ -64,7 +64,9 @@ def test_all_that_is_bought_enters_where_it_is_used():
         "bought cold",
     }
     press = solved(BOUGHT).outcomes["press"].power
-    assert rung.total("bought power") == pytest.approx(press, rel=1e-12)
+    assert sum(u.rate for u in rung.uses if u.what == "bought power") == pytest.approx(
+        press, rel=1e-12
+    )
     assert [use.rate for use in rung.uses] == sorted((u.rate for u in rung.uses), reverse=True)
 
 

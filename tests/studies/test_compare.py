@@ -14,7 +14,8 @@ from chainflow.studies.compare import compare
 from chainflow.studies.figures import figures
 from chainflow.studies.stages import stages
 from tests.flowsheets.shipped import FOLDER, NAMES, solved
-from tests.plants import HYDROGEN, METHANE
+from tests.heat_plants import TWO_HEATERS
+from tests.plants import HYDROGEN, METHANE, PARTED
 
 KWH = 3.6e6
 STORE, GAS, BATTERY = (
@@ -257,6 +258,43 @@ def test_wrong_usage(more, code, said):
 
 def test_no_file_is_wrong_usage():
     assert run().exit_code == 2
+
+
+# --- heat and power from elsewhere --------------------------------------------------------------
+
+
+def test_electric_heat_of_a_network_is_no_heat_of_its_own(tmp_path):
+    """60 of 620 kW needed are short in the problem of 1978, here at 0.1464 of its size: 8.8 kW."""
+    file = tmp_path / "heaters.yaml"
+    file.write_text(TWO_HEATERS, encoding="utf-8")
+    found = compare([file])
+    electric, own = (value(found, key, 0, "heat") for key in ("electric_W", "recovered_W"))
+    assert electric == pytest.approx(60e3 * 0.1464, rel=0.01)
+    assert own + electric == pytest.approx(value(found, "needed_W", 0, "heat"), rel=1e-12)
+
+
+def test_every_way_of_meeting_heat_is_told():
+    found = compare([FOLDER / "hydrogen-liquid.yaml"])
+    ways = ("recovered_W", "electric_W", "ambient_W")
+    met = sum(value(found, way, 0, "heat") for way in ways)
+    assert met == pytest.approx(value(found, "needed_W", 0, "heat"), rel=1e-12)
+
+
+def test_power_of_a_grid_of_its_own_counts_once(tmp_path):
+    """A compressor on a second grid is the plant with a compressor on bought power."""
+    press = "  press: {kind: compressor, pressure: 200 bar, aftercool: 35 degC}\n"
+    text = PARTED.replace("  town:", press + "  town:").replace(
+        "kept -> town", "kept -> press -> town"
+    )
+    grid = text.replace("equipment:\n", "equipment:\n  other: {kind: grid}\n")
+    grid = grid.replace("lines:\n", "lines:\n  - other.power -> press.power\n")
+    files = [tmp_path / "plain.yaml", tmp_path / "grid.yaml"]
+    for file, words in zip(files, (text, grid), strict=True):
+        file.write_text(words, encoding="utf-8")
+    found = compare(files)
+    for stage in ("electrolysis", "synthesis", "compression and storage"):
+        plain, other = (value(found, stage, place, "lost") for place in (0, 1))
+        assert other == pytest.approx(plain, rel=1e-9)
 
 
 # --- costs -----------------------------------------------------------------------------------
