@@ -135,13 +135,22 @@ def _end_of_call(sheet: Flowsheet, line: Line) -> Line:
 
 
 def _place_servants(sheet: Flowsheet, places: dict[str, int]) -> None:
-    """Give what only serves others their first rung, and what only draws from others their last."""
-    waiting = True
-    while waiting:
-        waiting = False
-        for name in sheet.equipment:
-            served = [places[line.target] for line in sheet.out_of(name) if line.target in places]
-            drawn = [places[line.source] for line in sheet.into(name) if line.source in places]
-            if name not in places and (served or drawn):
-                places[name] = min(served) if served else max(drawn)
-                waiting = True
+    """Give what only serves others their first rung, and what only draws from others their last.
+
+    Nothing counts as drawing only before all that serves has its place: a pump may serve a heater
+    that serves a stack.
+    """
+    while True:
+        waiting = [name for name in sheet.equipment if name not in places]
+        served = {name: _rungs(places, (x.target for x in sheet.out_of(name))) for name in waiting}
+        drawn = {name: _rungs(places, (x.source for x in sheet.into(name))) for name in waiting}
+        if any(served.values()):
+            places.update((name, min(rungs)) for name, rungs in served.items() if rungs)
+        elif any(drawn.values()):
+            places.update((name, max(rungs)) for name, rungs in drawn.items() if rungs)
+        else:
+            return
+
+
+def _rungs(places: dict[str, int], names: Iterable[str]) -> list[int]:
+    return [places[name] for name in names if name in places]

@@ -33,6 +33,8 @@ _SCALES: Final = (
     ("1", ("%", "ppm")),
 )
 
+_OF_ONE_ELECTRON = 1e-15  # [J]: what is less is told in eV
+
 
 def format_quantity(value: float, unit: str, *, digits: int = 4, difference: bool = False) -> str:
     """Return an SI value as short plain text for a table: "12 bar", "320 degC", "5.1 MW".
@@ -62,6 +64,8 @@ def format_quantity(value: float, unit: str, *, digits: int = 4, difference: boo
 def _scaled(value: float, si: str, difference: bool) -> Unit:
     if si == "K":
         return resolve("K" if difference else "degC")
+    if si == "J" and 0.0 < abs(value) < _OF_ONE_ELECTRON:
+        return resolve("eV")
     candidates = dict(_SCALES).get(si, (si,))
     for candidate in candidates:
         if abs(resolve(candidate).from_si(value)) >= 1.0:

@@ -81,6 +81,13 @@ def test_current_for_the_stack_is_the_chain_itself():
     assert "feed" in drawn
 
 
+def test_a_pump_behind_a_heater_belongs_to_the_stack_they_serve():
+    """Though the water it draws comes back from methanation, a rung further down."""
+    found = uses(SHIPPED["steam-methane"])
+    assert ("feed", "own power") in found["hydrogen"]
+    assert ("feed", "own power") not in found["fuel made"]
+
+
 def test_power_of_a_grid_is_used_where_hydrogen_is_made():
     """And heat that is bought in many pieces, where water boils on the way, is told once."""
     text = PARTED.replace("  - grid.power -> warm.power\n", "")

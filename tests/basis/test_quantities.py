@@ -378,6 +378,7 @@ def test_settings_go_out_as_plain_json():
         (850.0, "W/m2", "850 W/m2"),
         (60000.0, "m2", "60000 m2"),
         (3.2, "J/(mol*K)", "3.2 J/(mol*K)"),
+        (1.602176634e-19, "J", "1 eV"),  # elementary charge: SI, exact
         (math.nan, "W", "-"),
         (math.inf, "W", "-"),
     ],
