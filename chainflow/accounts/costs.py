@@ -18,6 +18,7 @@ from __future__ import annotations
 
 from collections.abc import Iterable, Iterator
 from dataclasses import dataclass, field
+from math import expm1, log1p
 from typing import Any
 
 from chainflow.accounts.deliveries import Deliveries, deliveries
@@ -38,8 +39,7 @@ def capital_recovery_factor(interest: float, years: float) -> float:
     """Return the yearly payment per amount lent at `interest` a year over `years` [1/a]."""
     if interest == 0.0:
         return 1.0 / years
-    growth = (1.0 + interest) ** years
-    return interest * growth / (growth - 1.0)
+    return interest / -expm1(-years * log1p(interest))  # the same, also where interest is tiny
 
 
 @dataclass(frozen=True, slots=True)

@@ -46,7 +46,7 @@ class MoneyType:
             return given
         text = str(given).strip() if isinstance(given, str) else ""
         if self.form == "yearly" and re.fullmatch(rf"{NUMBER_PATTERN} *%?", text):
-            return Money(parse(text, "1", ge=0.0), "share")
+            return Money(parse(text, "1", ge=0.0, le=1.0), "share")
         found = _FORM.fullmatch(text)
         if found is None:
             raise QuantityFault(f"{shorten(str(given))} is no money, wanted {self.means(currency)}")

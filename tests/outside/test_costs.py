@@ -26,6 +26,13 @@ def test_capital_recovery_factors(interest, years, printed, tolerance):
     assert capital_recovery_factor(interest, years) == pytest.approx(printed, abs=tolerance)
 
 
+@pytest.mark.parametrize("interest", [1e-13, 1e-9, 1e-6])
+def test_tiny_interest_is_nearly_none(interest):
+    # series of the closed form: 1/n + (n + 1) i / 2n + O(i^2)
+    series = 1 / 20 + 21 * interest / 40
+    assert capital_recovery_factor(interest, 20) == pytest.approx(series, rel=1e-9)
+
+
 def test_present_worth_factor():
     # 8 %, 20 a: 9.8181, 1e-4
     assert 1 / capital_recovery_factor(0.08, 20) == pytest.approx(9.8181, abs=1e-4)
