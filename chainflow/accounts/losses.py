@@ -25,8 +25,15 @@ from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.exergy import solar_exergy_factor
 from chainflow.thermo.streams import Stream
 
-Cause = Literal["destroyed", "heat", "stream"]
+Cause = Literal["destroyed", "heat", "light", "power", "stream"]
 _SLACK = 1e-6  # [K]
+_CAUSES: dict[str, Cause] = {  # by content
+    "heat": "heat",
+    "light": "light",
+    "power": "power",
+    "material": "stream",
+}
+_THROWN_AWAY: tuple[Cause, ...] = ("heat", "light", "power", "stream")
 
 
 @dataclass(frozen=True, slots=True)
@@ -66,7 +73,7 @@ class LossMap:
             "entering_W": dict(self.entering),
             "products_W": self.products_total,
             "destroyed_W": self.total("destroyed"),
-            "thrown_away_W": self.total("heat", "stream"),
+            "thrown_away_W": self.total(*_THROWN_AWAY),
             "closure": self.closure,
         }
 
@@ -87,7 +94,7 @@ class LossMap:
     @property
     def closure(self) -> float | None:
         """What is missing in the sum, relative to what enters; None if nothing does."""
-        gap = self.entering_total - self.products_total - self.total("destroyed", "heat", "stream")
+        gap = self.entering_total - self.products_total - self.total("destroyed", *_THROWN_AWAY)
         return abs(gap) / self.entering_total if self.entering_total > 0.0 else None
 
     def share_of_sunlight(self, exergy: float) -> float | None:
@@ -178,7 +185,7 @@ def _leaving(solution: Solution) -> Iterator[Loss]:
         if into_vent or unlinked or _is_unlinked_energy(stream):
             exergy = flow_exergy(stream.flow, stream.content, air)
             if exergy:
-                yield Loss(stream.key, "heat" if stream.content == "heat" else "stream", exergy)
+                yield Loss(stream.key, _CAUSES[stream.content], exergy)
 
 
 def _is_unlinked_energy(stream: SolvedStream) -> bool:

@@ -30,6 +30,8 @@ _LABEL = 26  # characters
 _CAUSES = {
     "destroyed": "destroyed in it",
     "heat": "thrown away as heat",
+    "light": "thrown away as light",
+    "power": "thrown away as power",
     "stream": "thrown away with a stream",
 }
 
