@@ -7,6 +7,7 @@ destroyed piece by piece, so that the sum closes only if every line carries at b
 
 Heat that a piece gives to the ambient from above the ambient's temperature is thrown away there;
 at or below it, it counts as destroyed. Light or heat at an outlet without a line is thrown away.
+Fuel that stays in a store without a line behind it is kept: no product yet, not thrown away either.
 """
 
 from __future__ import annotations
@@ -25,7 +26,7 @@ from chainflow.solver.solution import Solution, SolvedStream
 from chainflow.thermo.exergy import solar_exergy_factor
 from chainflow.thermo.streams import Stream
 
-Cause = Literal["destroyed", "heat", "light", "power", "stream"]
+Cause = Literal["destroyed", "heat", "light", "power", "stream", "kept"]
 _SLACK = 1e-6  # [K]
 _CAUSES: dict[str, Cause] = {  # by content
     "heat": "heat",
@@ -74,6 +75,7 @@ class LossMap:
             "products_W": self.products_total,
             "destroyed_W": self.total("destroyed"),
             "thrown_away_W": self.total(*_THROWN_AWAY),
+            "kept_W": self.total("kept"),
             "closure": self.closure,
         }
 
@@ -94,7 +96,11 @@ class LossMap:
     @property
     def closure(self) -> float | None:
         """What is missing in the sum, relative to what enters; None if nothing does."""
-        gap = self.entering_total - self.products_total - self.total("destroyed", *_THROWN_AWAY)
+        gap = (
+            self.entering_total
+            - self.products_total
+            - self.total("destroyed", "kept", *_THROWN_AWAY)
+        )
         return abs(gap) / self.entering_total if self.entering_total > 0.0 else None
 
     def share_of_sunlight(self, exergy: float) -> float | None:
@@ -179,13 +185,15 @@ def _in_equipment(solution: Solution) -> Iterator[Loss]:
 def _leaving(solution: Solution) -> Iterator[Loss]:
     """Yield what leaves the plant and is not useful, by the port that sends it."""
     pieces, air = solution.flowsheet.equipment, solution.flowsheet.environment
+    staying = fuel_lines(solution).staying
     for stream in solution.streams:
         into_vent = any(isinstance(pieces[t.partition(".")[0]], Vent) for t in stream.targets)
         unlinked = not stream.targets and isinstance(stream.flow, Stream)
         if into_vent or unlinked or _is_unlinked_energy(stream):
             exergy = flow_exergy(stream.flow, stream.content, air)
             if exergy:
-                yield Loss(stream.key, _CAUSES[stream.content], exergy)
+                kept = stream.key in staying
+                yield Loss(stream.key, "kept" if kept else _CAUSES[stream.content], exergy)
 
 
 def _is_unlinked_energy(stream: SolvedStream) -> bool:

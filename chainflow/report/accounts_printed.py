@@ -33,6 +33,7 @@ _CAUSES = {
     "light": "thrown away as light",
     "power": "thrown away as power",
     "stream": "thrown away with a stream",
+    "kept": "stays in its store",
 }
 
 

@@ -108,6 +108,16 @@ lines:
     assert found.closure < CLOSURE
 
 
+def test_fuel_that_stays_in_its_store_is_kept():
+    found = loss_map(solved(HYDROGEN.replace("  - fuel.rest -> town\n", "")))
+    losses = {(x.where, x.cause): x.exergy for x in found.losses}
+    stays = losses["fuel.rest", "kept"]
+    delivered = loss_map(solved(HYDROGEN)).products["town"]
+    assert stays == pytest.approx(delivered, rel=1e-9)
+    assert found.sums()["kept_W"] == stays
+    assert found.closure < CLOSURE
+
+
 def test_power_into_a_vent_is_thrown_away():
     text = """
 equipment:
