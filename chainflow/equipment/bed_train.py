@@ -26,7 +26,8 @@ from chainflow.equipment.junctions import joined
 from chainflow.equipment.ports import mean_temperature
 from chainflow.thermo.components import Matter
 from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
-from chainflow.thermo.streams import DISSOLVED, Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import DISSOLVED, Stream
 from chainflow.thermo.water import condenses, water_split
 
 _MOST_STEPS = 60

@@ -34,7 +34,8 @@ from chainflow.equipment.ports import Feeds, arriving
 from chainflow.thermo.components import Matter
 from chainflow.thermo.equilibrium import Equilibrium, equilibrate, equilibrate_adiabatic
 from chainflow.thermo.flames import flame_state
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 _MOST_STEPS = 60
 _FLAME = 2000.0  # [K], where the search for an adiabatic flame begins

@@ -31,7 +31,8 @@ from chainflow.equipment.carbon_margin import (
 from chainflow.equipment.junctions import joined, spread_faults
 from chainflow.equipment.ports import Feeds
 from chainflow.equipment.reactor_base import Product, ReactorBase, holds_carbon
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 _MOST_STEPS = 100
 _CLOSE = 1e-8  # of what is fed: a step this small ends the search, its error is its square

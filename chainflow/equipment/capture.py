@@ -36,7 +36,8 @@ from chainflow.equipment.cooling_slopes import carried_at_levels
 from chainflow.equipment.parting import free_separation, minimum_work, worth_of
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.water import saturation_pressure
 
 SpecificUse = Annotated[float, measured("J/kg", ge=0)]

@@ -38,7 +38,8 @@ from chainflow.thermo.components import Matter
 from chainflow.thermo.compression import isentropic
 from chainflow.thermo.phases import split_at
 from chainflow.thermo.polytropic import polytropic_temperature
-from chainflow.thermo.streams import Stream, temperature_slopes
+from chainflow.thermo.stream_slopes import temperature_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.three_phases import Split
 
 _MOST_STAGES = 12

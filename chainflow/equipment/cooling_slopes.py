@@ -17,13 +17,8 @@ from chainflow.equipment.heat_needs import Duty
 from chainflow.equipment.path_cuts import Way, find_way
 from chainflow.equipment.ports import MOST_PARTS, Part
 from chainflow.thermo.dew import dew_slopes, oil_dew_slopes
-from chainflow.thermo.streams import (
-    DISSOLVED,
-    Stream,
-    enthalpy_slopes,
-    entropy_slopes,
-    temperature_slopes,
-)
+from chainflow.thermo.stream_slopes import enthalpy_slopes, entropy_slopes, temperature_slopes
+from chainflow.thermo.streams import DISSOLVED, Stream
 
 _ASKED = np.array([[-1.0], [1.0], [1.0], [1.0]])  # heat asked for is negative heat given off
 _TRACE = 1e-12  # of the flow

@@ -31,7 +31,8 @@ from chainflow.equipment.cooling_slopes import carried_at_levels
 from chainflow.equipment.flue import flue_results
 from chainflow.equipment.ports import Feeds, arriving
 from chainflow.thermo.heating_slopes import heating_value_slopes
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 
 class Engine(Combustion):

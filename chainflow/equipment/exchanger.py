@@ -17,7 +17,8 @@ from chainflow.equipment.base import Array, Caution, Equipment, Outcome, Port, R
 from chainflow.equipment.exchange import cold_kinks, hot_kinks, least_on, stream_curve
 from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 _PLACES = 24  # where the temperature difference is looked at for the printed answer
 _REACHED = 1e-9  # relative

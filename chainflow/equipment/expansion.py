@@ -28,12 +28,8 @@ from chainflow.equipment.ports import Feeds
 from chainflow.equipment.pressures import higher_feed, lower_feed
 from chainflow.thermo.components import WATER_MOLAR_VOLUME, Matter
 from chainflow.thermo.compression import isentropic_temperature
-from chainflow.thermo.streams import (
-    Stream,
-    enthalpy_slopes,
-    entropy_slopes,
-    temperature_slopes,
-)
+from chainflow.thermo.stream_slopes import enthalpy_slopes, entropy_slopes, temperature_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
 _ENTROPY_ROUND_OFF = 1e-12

@@ -29,7 +29,8 @@ from chainflow.equipment.base import (
 from chainflow.equipment.cooling import cooling_duties, wrong_way
 from chainflow.equipment.cooling_slopes import add_heat_slopes
 from chainflow.equipment.ports import Feeds, arriving
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 
 class _Exchanger(Equipment):

@@ -35,7 +35,8 @@ from chainflow.equipment.pressures import lower_feed
 from chainflow.equipment.separation import condensate, phase_blocks
 from chainflow.thermo.chains import carbon_range
 from chainflow.thermo.components import Matter
-from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes, temperature_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.three_phases import Split
 
 REST = "rest"

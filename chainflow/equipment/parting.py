@@ -13,7 +13,8 @@ import numpy as np
 from chainflow.equipment.base import Array, Caution
 from chainflow.thermo.components import Matter
 from chainflow.thermo.exergy import Environment
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
 _MOST_STEPS = 60

@@ -39,7 +39,8 @@ from chainflow.equipment.reactions import Reaction
 from chainflow.thermo.carbon import carbon_activity
 from chainflow.thermo.components import Matter
 from chainflow.thermo.equilibrium import equilibrate, equilibrate_adiabatic
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 TRACE = 1e-4  # mole fraction from which CO or O2 deserves a caution
 

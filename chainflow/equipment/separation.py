@@ -31,7 +31,8 @@ from chainflow.equipment.ports import Feeds
 from chainflow.thermo.components import Matter
 from chainflow.thermo.exergy import Environment
 from chainflow.thermo.phases import split_at
-from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes, temperature_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.three_phases import Split, liquid_slopes
 from chainflow.thermo.water import water_split_slopes
 

@@ -40,7 +40,8 @@ from chainflow.equipment.ports import ANY_NAME, Feeds, arriving
 from chainflow.equipment.pressures import lower_feed
 from chainflow.equipment.shares import Shares, fractions, resolved
 from chainflow.thermo.components import Matter
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 _ROUND_OFF = 1e-14  # of what is asked
 

@@ -26,6 +26,7 @@ KWH = 3.6e6  # [J]
 _GAP = "  "
 _NOTHING = "-"
 _FAILED = "not solved"
+_LARGE = 1e5  # of money: no exponents beside whole numbers
 _SMALL = 5e-5  # of what goes in: differences below are not worth a word
 _CLOSING = (
     "A comparison is as good as its flowsheets: hazards are told by code here, 'chainflow solve' "
@@ -129,7 +130,9 @@ def _cell(row: Figure, value: Value) -> str:
         return f"{100 * value if abs(value) >= _SMALL else 0.0:.2f}"
     if row.unit == "share":
         return numbers.percent(value)
-    if row.unit in ("money", "number"):
+    if row.unit == "money" and abs(value) >= _LARGE:
+        return f"{float(f'{value:.2e}'):.0f}"
+    if row.unit in ("money", "kg/kWh"):
         return format_number(value, 3)
     if row.unit in ("J/m3", "J/kg"):
         return f"{format_number(value / KWH, 4)} kWh/{row.unit.removeprefix('J/')}"
@@ -238,7 +241,7 @@ def comparison_csv(found: Comparison) -> str:
     writer = csv.writer(out, lineterminator="\n")
     writer.writerow(["group", "figure", "unit", *(route.name for route in found.routes)])
     for row in figures(found):
-        unit = {"share": "1", "number": "", "text": "", "money": "currency"}.get(row.unit, row.unit)
+        unit = {"share": "1", "text": "", "money": "currency"}.get(row.unit, row.unit)
         writer.writerow([row.group, row.key, unit, *row.values])
     writer.writerow(["answer", "problem", "", *(route.why_not for route in found.routes)])
     return out.getvalue()

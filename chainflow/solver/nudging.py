@@ -10,7 +10,8 @@ import numpy as np
 
 from chainflow.flowsheet.movable import Lever
 from chainflow.solver.variables import ENTHALPY_SCALE, Variable
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 
 _STEP = 1e-5  # relative step of differences; central, so the error is its square
 _TRACE_STEP = 3e-3  # of a trace

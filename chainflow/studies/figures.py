@@ -24,7 +24,7 @@ class Figure:
     group: str
     key: str  # dotted, ends in its unit as in the document
     label: str
-    unit: str  # SI; "share" for what is shown in per cent, "number", "text", "money"
+    unit: str  # SI; "share" for what is shown in per cent, "text", "money", "kg/kWh"
     values: tuple[Value, ...]
 
 
@@ -156,13 +156,13 @@ def _needs(found: Comparison) -> Iterator[Figure]:
         ("power_W", "power bought", "W"),
         ("heat_W", "heat bought", "W"),
         ("cold_W", "cooling bought", "W"),
-        ("water_kg_kWh_fuel", "water, kg a kWh of fuel", "number"),
+        ("water_kg_kWh_fuel", "water, kg a kWh of fuel", "kg/kWh"),
         ("carbon_efficiency", "carbon that ends in fuel", "share"),
         ("water_returned", "water returned", "share"),
         ("CO2_returned", "CO2 returned", "share"),
     )
     known = {r.name: needs(r.account) for r in found.solved if r.account is not None}
-    yield from _amounts(found, "needs", rows, known, fixed=("share", "number"))
+    yield from _amounts(found, "needs", rows, known, fixed=("share", "kg/kWh"))
 
 
 def _heat(found: Comparison) -> Iterator[Figure]:

@@ -6,7 +6,8 @@ Gas burns as it is; what is in the oil burns from the liquid, so the phases coun
 import numpy as np
 
 from chainflow.thermo.components import Array
-from chainflow.thermo.streams import DISSOLVED, Stream, enthalpy_slopes, temperature_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes, temperature_slopes
+from chainflow.thermo.streams import DISSOLVED, Stream
 from chainflow.thermo.three_phases import Split, liquid_slopes
 from chainflow.thermo.validity import some
 

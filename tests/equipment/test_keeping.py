@@ -7,7 +7,8 @@ from chainflow.equipment.liquefier import Liquefier
 from chainflow.equipment.stores import Store
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
 from chainflow.thermo.liquefied import LIQUEFIABLE, cold_at, cold_of_enthalpy, saturated
-from chainflow.thermo.streams import Stream, enthalpy_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 
 MATTER = Matter.of(DEFAULT_COMPONENTS)

@@ -15,7 +15,7 @@ from typing import Any
 
 import pytest
 
-from chainflow.thermo import oil, reactants, streams
+from chainflow.thermo import oil, reactants, stream_slopes, streams
 from chainflow.thermo.species import gas_phase
 from tests.equipment.cases import CASES
 
@@ -28,9 +28,9 @@ KEPT = (
     streams._at,
     streams._gaseous,
     streams._from_enthalpy,
-    streams.enthalpy_slopes,
-    streams.entropy_slopes,
-    streams.temperature_slopes,
+    stream_slopes.enthalpy_slopes,
+    stream_slopes.entropy_slopes,
+    stream_slopes.temperature_slopes,
     reactants._balance,
     oil._log_pressures,
 )

@@ -8,7 +8,8 @@ from chainflow.thermo import species
 from chainflow.thermo.chains import LONGEST_ALKANE, WAX, WAX_LENGTH, alkane, alkene
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter, known_components
 from chainflow.thermo.species import component_species, polynomial
-from chainflow.thermo.streams import Stream, enthalpy_slopes, entropy_slopes, temperature_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes, entropy_slopes, temperature_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 from tests.data_making import hydrocarbons as maker
 

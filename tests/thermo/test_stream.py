@@ -6,7 +6,8 @@ from hypothesis import assume, given
 from hypothesis import strategies as st
 
 from chainflow.thermo.components import DEFAULT_COMPONENTS, Matter
-from chainflow.thermo.streams import Stream, enthalpy_slopes, temperature_slopes
+from chainflow.thermo.stream_slopes import enthalpy_slopes, temperature_slopes
+from chainflow.thermo.streams import Stream
 from chainflow.thermo.validity import StateError
 from chainflow.thermo.water import saturation_temperature
 
