@@ -41,6 +41,7 @@ class Efficiency:
     sunlight_to_fuel: ByBasis  # fuel made over all that goes in
     sunlight_share: float | None  # of the input, as energy
     rungs: tuple[Rung, ...]
+    left_out: tuple[str, ...] = ()  # cuts that the file names and nothing passes
 
 
 def efficiency(
@@ -52,11 +53,14 @@ def efficiency(
     light = sunlight(solution)
     entering = of_light(light, solution.flowsheet.environment) + bought.worth
     made = worth_of_lines(solution, fuel_lines(solution).made)
+    found = cuts(solution, entering, bought, delivered)
+    names = {cut.name for cut in found}
     return Efficiency(
         overall=delivered.worth.over(entering),
         sunlight_to_fuel=made.over(entering),
         sunlight_share=light / entering.lhv if entering.lhv > 0.0 else None,
-        rungs=_rungs(solution, cuts(solution, entering, bought, delivered), bought),
+        rungs=_rungs(solution, found, bought),
+        left_out=tuple(c.name for c in solution.flowsheet.blocks.cuts if c.name not in names),
     )
 
 

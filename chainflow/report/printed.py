@@ -77,6 +77,8 @@ def _short_answer(solution: Solution) -> Iterator[str]:
     yield _line("sunlight share", f"{numbers.percent(found.sunlight_share)} of what goes in")
     for rung in found.rungs:
         yield _line("", f"{rung.start + ' -> ' + rung.end:<24} {_on_bases(rung.ratio, basis)}")
+    if found.left_out:
+        yield _line("", f"left out of the rungs, nothing passes: {', '.join(found.left_out)}")
     for name, share in account.returned.items():
         yield _line(f"{name} returned", numbers.percent(share, 4))
     yield _line("sunlight", numbers.energy(account.sunlight))

@@ -143,8 +143,9 @@ def test_cuts_of_several_ports_and_contents():
 
 def test_a_cut_that_carries_nothing_is_left_out():
     text = METHANE + "\nrungs:\n  drain: [blower.condensate]\n  kept: power kept\n"
-    names = [rung.end for rung in efficiency(solved(text)).rungs]
-    assert names == ["useful"]
+    found = efficiency(solved(text))
+    assert [rung.end for rung in found.rungs] == ["useful"]
+    assert found.left_out == ("drain", "kept")
 
 
 # --- power that is kept ------------------------------------------------------------------------

@@ -49,6 +49,11 @@ def test_the_short_answer_comes_first():
     assert places == sorted(places)
 
 
+def test_a_named_rung_that_nothing_passes_is_told():
+    text = printed(METHANE + "\nrungs:\n  drain: [blower.condensate]\n  kept: power kept\n")
+    assert "left out of the rungs, nothing passes: drain, kept\n" in text
+
+
 def test_the_basis_of_the_file_comes_first():
     assert "% HHV (" in printed(METHANE).split("overall efficiency")[1].split("\n")[0]
     assert "% LHV (" in printed(HYDROGEN).split("overall efficiency")[1].split("\n")[0]
