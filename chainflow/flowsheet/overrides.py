@@ -14,11 +14,15 @@ from chainflow.basis.names import shorten, suggest
 from chainflow.flowsheet.tree import Mapping, Node, Sequence, Text, Tree
 
 _DEEPEST = 8  # words behind the name of the equipment
+_BLOCKS = ("environment", "costs")  # of numbers, at the top of a file
 _SET = Place(0, 0)  # where a value from the command line stands
 
 
 def with_settings(tree: Tree, overrides: AnyMapping[str, str]) -> Tree:
-    """The tree with other texts at the addresses of settings (``reactor.temperature``)."""
+    """The tree with other texts at the addresses of settings (``reactor.temperature``).
+
+    ``environment.temperature`` and ``costs.interest`` name entries of these blocks.
+    """
     root: Node = tree.root
     pieces = tree.root.get("equipment")
     known = pieces.entries if isinstance(pieces, Mapping) else {}
@@ -28,6 +32,9 @@ def with_settings(tree: Tree, overrides: AnyMapping[str, str]) -> Tree:
             raise UsageFault(
                 f"--set {shorten(address)}: no setting lies so deep, name one as in a file"
             )
+        if name in _BLOCKS and name not in known:
+            root = _put(root, (name, *path), Text(text, _SET))
+            continue
         if name not in known:
             found = f"there is no equipment {shorten(name)}{suggest(name, known)}"
             raise UsageFault(f"--set {shorten(address)}: {found}")

@@ -233,6 +233,11 @@ def test_knobs_as_they_now_are_are_kept():
         ({"reactor.temperature": "$warm"}, "--set: there is no knob 'warm'"),
         ({"gas.composition.N2": "30 %"}, "--set: gas: composition: the shares add up to 110 %"),
         ({"mix.kind": "heater"}, "--set: mix: give one of"),
+        (
+            {"environment.humidty": "50 %"},
+            "environment: there is no setting 'humidty' (did you mean",
+        ),
+        ({"costs.interest": "5 kg"}, "--set: costs: interest: '5 kg' is a mass"),
         ({".": "1"}, "there is no equipment ''"),
         ({"a" + ".b" * 5000: "1"}, "no setting lies so deep"),
     ],
@@ -242,6 +247,16 @@ def test_a_wrong_set_is_wrong_usage(overrides, says):
         read_text(METHANE, overrides)
     assert says in str(caught.value)
     assert str(caught.value).isprintable()
+
+
+def test_surroundings_and_costs_can_be_set_too():
+    assert (
+        read_text(METHANE, {"environment.temperature": "5 degC"}).environment.temperature == 278.15
+    )
+    costs = "\ncosts: {interest: 7 %, lifetime: 25 a, hours: 2000 h, equipment: {}}\n"
+    found = read_text(METHANE + costs, {"costs.interest": "5 %"}).blocks.costs
+    assert found is not None
+    assert found.interest == pytest.approx(0.05)
 
 
 def test_a_fault_of_the_file_stays_one_whatever_is_set():
