@@ -38,6 +38,7 @@ LONGER = {
     "methanation-reactor: beds": "three reactors one after the other, recycle or steam found",
     "methanation-reactor: hydrogen holds no bed": "three reactors, and the steam that is not found",
     "compressor: least work": "the pressures between three or four stages are searched for",
+    "compressor: heat offered": "three intercoolers, each cut seven times where water condenses",
     "compressor: oil": "55 components: one state of the real gas takes Cantera 70 us",
     "membrane": "40 to 70 steps of a fifth-order integration with an error estimate",
     "valve: oil": "55 components, three phases at each of several temperatures",

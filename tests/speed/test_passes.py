@@ -25,8 +25,9 @@ RUNS = 21
 def test_a_pass_over_its_raw_cantera_calls(name: str, most: float) -> None:
     """One evaluation of the whole loop, at the answer, without derivatives.
 
-    Measured with other work on the machine: 11 to 12, 6.1 to 7.9, 14 to 18; the limits are some
-    1.3 times that.  The ratio grows when Cantera calls are saved, and falls when Python is.
+    Measured with other work on the machine: 11 to 12, 6.1 to 7.9, 14 to 18, on a quiet one 10.6,
+    5.9 and 15.5; the limits are some 1.3 times the former.  The ratio grows when Cantera calls are
+    saved, and falls when Python is.
     """
     flowsheet = read_flowsheet(FLOWSHEETS / f"{name}.yaml")
     prepared = Prepared(flowsheet)
