@@ -14,6 +14,7 @@ from typing import Any
 from pydantic import ValidationError
 
 from chainflow.basis.faults import Fault, FileFault, FlowsheetFault, Place
+from chainflow.basis.formatting import format_quantity
 from chainflow.basis.names import name_trouble, shorten, suggest
 from chainflow.basis.quantities import QuantityFault, parse
 from chainflow.equipment.base import Equipment
@@ -56,6 +57,7 @@ _REQUIRED = {
     "lines": "'lines:' and below it a list, as in '- stack.hydrogen -> dry'",
 }
 _AMBIENT = 298.15  # [K]
+_SAME_LEVEL = 0.01  # [K]
 _APPROACH = 10.0  # [K], common practice, no source
 
 
@@ -165,6 +167,7 @@ class _Builder:
         used = Sight(used, lines, holds, broken, self.fault, self._spot).seeing()
         starts = frozenset(f"{line.source}.{line.outlet.name}" for line in joined)
         blocks = read_blocks(self.root, pieces, broken, known, starts, self.faults)
+        self._compare_surroundings(ambient, blocks.environment.temperature)
         self.stop_on_faults()
         return Flowsheet(
             title,
@@ -226,6 +229,18 @@ class _Builder:
 
     def _ambient(self) -> float:
         return self._temperature("ambient", _AMBIENT, gt=0.0)
+
+    def _compare_surroundings(self, ambient: float, environment: float) -> None:
+        """Heat that is given to the ambient is worth nothing only where that is the environment."""
+        block = self.root.get("environment")
+        if block is not None and abs(environment - ambient) > _SAME_LEVEL:
+            self.remark(
+                "two-surroundings",
+                f"environment: it is at {format_quantity(environment, 'K')}, 'ambient' at "
+                f"{format_quantity(ambient, 'K')}: heat given to the ambient then carries exergy; "
+                "give both the same temperature",
+                block.place if block.place.line else None,  # no line of the file: it is set
+            )
 
     def _approach(self) -> float:
         return self._temperature("approach", _APPROACH, ge=0.0, difference=True)

@@ -166,6 +166,17 @@ def test_an_unused_knob_is_remarked():
     assert remarks_of("knobs: {sun: 3 W/m2}\n" + SMALL) == [("unused-knob", 1)]
 
 
+def test_an_environment_at_another_temperature_than_the_ambient_is_remarked():
+    apart = "environment: {temperature: 15 degC}\n" + SMALL
+    assert remarks_of(apart) == [("two-surroundings", 1)]
+    (remark,) = read_text(apart).remarks
+    assert remark.text.startswith("environment: it is at 15 degC, 'ambient' at 25 degC: ")
+    assert remarks_of("ambient: 15 degC\n" + apart) == []
+    (remark,) = read_text(SMALL, {"environment.temperature": "15 degC"}).remarks
+    assert (remark.code, remark.place) == ("two-surroundings", None)
+    assert remarks_of("ambient: 15 degC\n" + SMALL) == []  # the usual one is a convention
+
+
 def test_a_main_outlet_without_a_line_is_remarked():
     text = SMALL.replace("b: {kind: product}", "b: {kind: heater, temperature: 50 degC}")
     assert remarks_of(text) == [("unlinked-outlet", 3)]
