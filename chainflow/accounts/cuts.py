@@ -152,12 +152,17 @@ def _solar_power(solution: Solution) -> Iterator[SolvedStream]:
 
 
 def _is_sun_heated(sheet: Flowsheet, name: str) -> bool:
-    """Whether all that arrives at a piece is from receivers of light, be it through a network."""
-    for line in sheet.into(name):
-        source = sheet.equipment[line.source]
-        passes_on = isinstance(source, HeatNetwork | Splitter) and sheet.into(line.source)
-        if not (_takes_light(source) or (passes_on and _is_sun_heated(sheet, line.source))):
-            return False
+    """Whether all that arrives at a piece is from receivers of light, be it through networks."""
+    seen, waiting = {name}, [name]
+    while waiting:
+        for line in sheet.into(waiting.pop()):
+            source = sheet.equipment[line.source]
+            if _takes_light(source) or line.source in seen:
+                continue
+            if not (isinstance(source, HeatNetwork | Splitter) and sheet.into(line.source)):
+                return False
+            seen.add(line.source)
+            waiting.append(line.source)
     return True
 
 

@@ -136,3 +136,29 @@ def test_hydrogen_cut_holds_the_lhv_of_what_the_stack_makes():
     rung = next(r for r in efficiency(solution).rungs if r.end == "hydrogen")
     made = float(solution.stream("stack.hydrogen").flow.lhv)
     assert rung.ratio["LHV"] == pytest.approx(made / (0.2 * 850 * 6000), rel=1e-12)
+
+
+HEAT_GOES_ROUND = """
+equipment:
+  sun:   {kind: sunlight, irradiance: 900 W/m2, aperture: 1000 m2}
+  dish:  {kind: concentrator, temperature: 500 degC, concentration: 500, optical_efficiency: 80 %}
+  first: {kind: heat-network}
+  next:  {kind: heat-network}
+  wheel: {kind: heat-engine, share_of_carnot: 60 %}
+  part:  {kind: splitter, shares: {out: 50 %, round: rest}}
+  town:  {kind: product}
+lines:
+  - sun -> dish
+  - dish.heat -> first.supply
+  - first.rest -> next.supply
+  - next.rest -> part
+  - part.round -> first.supply
+  - part.out -> wheel.heat
+  - wheel.power -> town
+"""
+
+
+def test_heat_of_the_sun_that_goes_round_is_found_to_be_the_suns():
+    """Two networks that pass heat on to each other are a loop to search."""
+    rungs = efficiency(solved(HEAT_GOES_ROUND)).rungs
+    assert [rung.start for rung in rungs] == ["light", "power"]

@@ -196,7 +196,7 @@ def epw(rows=HOURS, **columns):
     """An invented year on a hill in the format EPW: the same day for a year."""
     values = {"ghi": 300, "dni": 400, "dhi": 100, "temp": 12.5, "wind": 2.5, **columns}
     head = [
-        "LOCATION,Invented Hill,-,XXX,invented,999999,46.40,9.60,1.0,1500.0",
+        "LOCATION,Invented Hill,-,none,invented,999999,46.40,9.60,1.0,1500.0",
         *(f"{word},0" for word in ("DESIGN CONDITIONS", "TYPICAL/EXTREME PERIODS")),
         "GROUND TEMPERATURES,0",
         "HOLIDAYS/DAYLIGHT SAVINGS,No,0,0,0",

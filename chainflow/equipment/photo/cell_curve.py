@@ -30,6 +30,7 @@ from chainflow.equipment.photo.measured_points import (
     levelled,
     merged,
     per_area,
+    require_curve,
 )
 
 FALL = 1e-7  # [1/V], of the short-circuit current: what a flat piece falls at least, our own
@@ -148,13 +149,7 @@ def _cleaned(
     places: tuple[str, ...],
     prefix: str,
 ) -> CellPoints:
-    if len(voltages) != len(densities):
-        raise CurveFault(
-            f"{len(voltages)} voltages and {len(densities)} current densities are given, "
-            "wanted as many of the one as of the other"
-        )
-    if len(set(voltages)) < 3:
-        raise CurveFault(f"{prefix}{len(set(voltages))} voltages are given, wanted at least three")
+    require_curve("voltages", voltages, densities, prefix)
     if max(voltages) <= 0.0:
         raise CurveFault(
             f"{prefix}{places[voltages.index(min(voltages))]}: no voltage is above zero, wanted "

@@ -154,6 +154,19 @@ class CurvePoint(NamedTuple):
     place: str
 
 
+def require_curve(
+    word: str, levels: Sequence[float], densities: Sequence[float], prefix: str
+) -> None:
+    """Refuse lists of unequal length, and less than three different levels (`word` names them)."""
+    if len(levels) != len(densities):
+        raise CurveFault(
+            f"{len(levels)} {word} and {len(densities)} current densities are given, "
+            "wanted as many of the one as of the other"
+        )
+    if len(set(levels)) < 3:
+        raise CurveFault(f"{prefix}{len(set(levels))} {word} are given, wanted at least three")
+
+
 @lru_cache(maxsize=64)
 def _cleaned(
     potentials: tuple[float, ...],
@@ -162,15 +175,7 @@ def _cleaned(
     places: tuple[str, ...],
     prefix: str,
 ) -> Cleaned:
-    if len(potentials) != len(densities):
-        raise CurveFault(
-            f"{len(potentials)} potentials and {len(densities)} current densities are given, "
-            "wanted as many of the one as of the other"
-        )
-    if len(set(potentials)) < 3:
-        raise CurveFault(
-            f"{prefix}{len(set(potentials))} potentials are given, wanted at least three"
-        )
+    require_curve("potentials", potentials, densities, prefix)
     sign = 1.0 if max(densities) >= -min(densities) else -1.0
     triples = zip(potentials, densities, places, strict=True)
     points = sorted(CurvePoint(direction * v, sign * j, place) for v, j, place in triples)
